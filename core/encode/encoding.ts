@@ -1,0 +1,50 @@
+import type { Residual } from '../factor/factors';
+import type { SpinHamiltonian } from '../hamiltonian/hamiltonian';
+import type { VariantName } from './variant';
+
+/** λ in hartree, by part; the parts sum to `total`. Keys: design interfaces, "lambda.parts". */
+export interface LambdaByPart {
+  readonly oneBody: number;
+  readonly twoBody: number;
+  readonly total: number;
+  readonly parts: Readonly<Record<string, number>>;
+}
+
+/**
+ * The sizes a circuit recipe needs; nothing else of the integrals enters the costs.
+ * Row = one table row of SELECT: an eigenpair (S row) or a canonical pair (A row) of one plane of one factor.
+ */
+export interface EncodingShape {
+  readonly kind: 'sparse' | 'triplet' | 'spinor';
+  /** N spatial orbitals; 2N spinors. */
+  readonly orbitals: number;
+  /** T: items of the outer PREPARE beside the one-body item. 0 for sparse. */
+  readonly factors: number;
+  /** Rows of all factors, S and A. For sparse: number of stored unique coefficients. */
+  readonly rows: number;
+  /** Rows of all factors that need a second vector (A rows). */
+  readonly pairRows: number;
+  /** Rows of the one-body item. */
+  readonly oneBodyRows: number;
+  /** Of these, rows with a second vector. */
+  readonly oneBodyPairRows: number;
+  /** Largest number of rows in one factor (the one-body item included). */
+  readonly maxRowsPerFactor: number;
+  /** True where any row or coefficient carries spin (μ ≠ 0) or an antisymmetric plane. */
+  readonly spinDependent: boolean;
+}
+
+/** One variant's encoding, ready for counting and for rebuilding H. */
+export interface Encoding {
+  readonly variant: VariantName;
+  readonly shape: EncodingShape;
+  readonly lambda: LambdaByPart;
+  /** c with H − c what the circuit encodes: E₀ − ½Σw_tτ_t² + tr κ⁰ + ¼Σw_tΛ_t² (+ shift terms). Hartree. */
+  readonly constant: number;
+  readonly residual: Residual;
+  /**
+   * Rebuilds the Hamiltonian that this encoding stands for, from its factors alone, in product form. A shifted
+   * encoding gives the same operator in the η-electron sector only.
+   */
+  rebuild(): SpinHamiltonian;
+}
