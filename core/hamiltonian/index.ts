@@ -1,0 +1,25 @@
+export { type BuildOptions, buildHamiltonian, heldTerms, SELECTABLE_TERMS } from './build';
+export { orderingOperator } from './contraction';
+export { fromProductForm, fromStoredForm, spinorFromProductForm, spinorFromStoredForm } from './forms';
+export type {
+  SpatialHamiltonian,
+  SpinHamiltonian,
+  SpinorHamiltonian,
+  TwoElectronTensor,
+} from './hamiltonian';
+export { spinOrbitMeanField } from './mean-field';
+export {
+  addScaled,
+  chargeTrace,
+  frobeniusNorm,
+  hermiticityDefect,
+  isSymmetricPlane,
+  MUS,
+  type Mu,
+  planeOf,
+  type Sector,
+  scaled,
+  type TripletOperator,
+  toSpinOrbitals,
+  zeroOperator,
+} from './operators';
