@@ -1,0 +1,44 @@
+// `npm run check`: type check of every part, the components included. Prints what fails, then a line a part.
+import { pathToFileURL } from 'node:url';
+import { inRoot, packageCommand, runNode } from './process.mjs';
+import { ensureDependencies, ensureKernels } from './setup.mjs';
+
+/** The parts, each a project of its own because each may use other globals. */
+const PROJECTS = ['core', 'node', 'web', 'worker', 'test'];
+
+/** @returns {Promise<{ name: string, ok: boolean, output: string }[]>} */
+export async function typeChecks() {
+  const results = [];
+  for (const project of PROJECTS) {
+    const { code, output } = await runNode(
+      packageCommand('typescript', 'tsc'),
+      ['-p', `tsconfig.${project}.json`],
+      {
+        quiet: true,
+      },
+    );
+    results.push({ name: `types: ${project}`, ok: code === 0, output });
+  }
+  const { code, output } = await runNode(
+    packageCommand('svelte-check'),
+    ['--tsconfig', inRoot('tsconfig.web.json'), '--fail-on-warnings', '--output', 'human'],
+    { quiet: true },
+  );
+  results.push({ name: 'types: components', ok: code === 0, output });
+  return results;
+}
+
+/** Shows results; true where all are well. */
+export function showChecks(results) {
+  for (const { name, ok, output } of results) {
+    if (!ok) process.stdout.write(`${output.trimEnd()}\n`);
+    process.stdout.write(`${ok ? 'ok    ' : 'FAILED'} ${name}\n`);
+  }
+  return results.every(({ ok }) => ok);
+}
+
+if (import.meta.url === pathToFileURL(process.argv[1] ?? '').href) {
+  await ensureDependencies();
+  await ensureKernels();
+  process.exitCode = showChecks(await typeChecks()) ? 0 : 1;
+}
