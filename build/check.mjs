@@ -1,7 +1,7 @@
 // `npm run check`: type check of every part, the components included. Prints what fails, then a line a part.
 import { pathToFileURL } from 'node:url';
 import { inRoot, packageCommand, runNode } from './process.mjs';
-import { ensureDependencies, ensureKernels } from './setup.mjs';
+import { setUp } from './setup.mjs';
 
 /** The parts, each a project of its own because each may use other globals. */
 const PROJECTS = ['core', 'node', 'web', 'worker', 'test'];
@@ -38,7 +38,6 @@ export function showChecks(results) {
 }
 
 if (import.meta.url === pathToFileURL(process.argv[1] ?? '').href) {
-  await ensureDependencies();
-  await ensureKernels();
+  await setUp([]);
   process.exitCode = showChecks(await typeChecks()) ? 0 : 1;
 }

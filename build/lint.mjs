@@ -5,7 +5,7 @@ import { join, resolve } from 'node:path';
 import { pathToFileURL } from 'node:url';
 import { showChecks } from './check.mjs';
 import { inRoot, packageCommand, ROOT, runNode } from './process.mjs';
-import { ensureDependencies, ensureKernels } from './setup.mjs';
+import { setUp } from './setup.mjs';
 
 /** @returns {Promise<{ name: string, ok: boolean, output: string }[]>} */
 export async function lintChecks(root = ROOT) {
@@ -30,8 +30,7 @@ export async function lintChecks(root = ROOT) {
 
 if (import.meta.url === pathToFileURL(process.argv[1] ?? '').href) {
   const at = process.argv.indexOf('--root');
-  await ensureDependencies();
-  await ensureKernels();
+  await setUp([]);
   const results = await lintChecks(at < 0 ? ROOT : resolve(process.argv[at + 1]));
   process.exitCode = showChecks(results) ? 0 : 1;
 }
