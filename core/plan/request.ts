@@ -1,0 +1,47 @@
+import type { VariantName } from '../encode/variant';
+import type { SelectableTerm } from '../integrals/terms';
+import type { Problem } from '../job';
+import type { EnergyUnit } from '../units';
+import type { Comparison, VariantEstimate } from './comparison';
+
+/** What the wanted accuracy is of. */
+export const MEANINGS = ['level', 'splitting', 'matrix-element'] as const;
+export type Meaning = (typeof MEANINGS)[number];
+
+/** Everything that decides a comparison beside the integrals. Plain data: crosses worker borders. */
+export interface ComparisonRequest {
+  /** Terms of H to keep, or every term the files hold. */
+  readonly terms: readonly SelectableTerm[] | 'all';
+  /** Electrons in the orbitals; null: as the files say. */
+  readonly electrons: number | null;
+  /** Reference occupations for computed mean fields, 0…2 each; null: as the files say. */
+  readonly occupations: readonly number[] | null;
+  readonly target: {
+    readonly value: number;
+    readonly unit: EnergyUnit;
+    readonly meaning: Meaning;
+  };
+  /** Variants in the order of the table; null: the default set. */
+  readonly variants: readonly VariantName[] | null;
+  /** Sum of LCU norms that truncation may drop, hartree; `auto`: the error budget's share for it. */
+  readonly threshold: number | 'auto';
+  /** Bits of keep values and of angles, 4…60; `auto`: as many as the error budget asks for. */
+  readonly bits: number | 'auto';
+  /** Squared overlap of the start state with the wanted state(s), one a level, 0 < p ≤ 1. */
+  readonly overlaps: readonly number[];
+  /** Most logical qubits a run may use; null: no cap. */
+  readonly qubitsMax: number | null;
+}
+
+/** What became of one requested variant. */
+export type VariantOutcome =
+  | { readonly status: 'done'; readonly name: string; readonly estimate: VariantEstimate }
+  /** Not computed for a reason known beforehand, such as a sector that is too large. */
+  | { readonly status: 'left-out'; readonly name: string; readonly reason: string }
+  | { readonly status: 'failed'; readonly name: string; readonly problem: Problem };
+
+/** A comparison and, in the order asked for, what became of each variant. */
+export interface ComparisonRun {
+  readonly comparison: Comparison;
+  readonly outcomes: readonly VariantOutcome[];
+}
