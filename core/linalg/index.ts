@@ -1,0 +1,35 @@
+export { antisymmetricNormsBatch, antisymmetricPairs, type PairOptions } from './antisymmetric';
+export {
+  type CholeskyOptions,
+  denseRows,
+  type PivotedCholesky,
+  pivotedCholesky,
+  pivotedCholeskyAsync,
+  type RowSource,
+} from './cholesky';
+export { type ClusteredBasis, clusterBasis, clusterTriples } from './cluster';
+export { hermitianEigen, hermitianEigenvalues, hermitianEigenvaluesBatch } from './hermitian';
+export {
+  extremalEigenvalues,
+  type LowestOptions,
+  lowestEigenpairs,
+  type Operator,
+  type Planes,
+} from './lowest';
+export { type MultiplyOptions, multiply, transpose } from './multiply';
+export { hermitianNuclearNorm, sumOfSizes, symmetricNuclearNorm } from './norms';
+export { householderQr, type ThinQr } from './qr';
+export { type SingularOptions, singularValues } from './singular';
+export {
+  symmetricEigen,
+  symmetricEigenAsync,
+  symmetricEigenvalues,
+  symmetricEigenvaluesBatch,
+} from './symmetric';
+export type {
+  AntisymmetricPairs,
+  ComplexMatrix,
+  HermitianEigen,
+  SingularValues,
+  SymmetricEigen,
+} from './types';
