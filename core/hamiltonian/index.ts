@@ -23,3 +23,15 @@ export {
   toSpinOrbitals,
   zeroOperator,
 } from './operators';
+export { spinorForm, tensorElement } from './spinor-form';
+export {
+  coulombBlock,
+  operatorFromVector,
+  otherOrbitBlock,
+  planeDimension,
+  sameOrbitBlock,
+  sectorDimension,
+  sectorMatrix,
+  spinSpinBlock,
+  vectorFromOperator,
+} from './super-matrix';
