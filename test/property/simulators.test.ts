@@ -48,7 +48,7 @@ it('the sparse and the dense simulator agree on random circuits', () => {
           }
         }
         const seen = new Map<number, [number, number]>();
-        sparse.forEach((isSet, re, im) => {
+        sparse.visit((isSet, re, im) => {
           let index = 0;
           for (let w = 0; w <= WIRES; w++) if (isSet(w + offset)) index |= 1 << w;
           seen.set(index, [re, im]);

@@ -124,8 +124,8 @@ export class SparseState implements GateSink {
 
   leave(): void {}
 
-  /** Calls `visit` with the listed wires as an integer (first wire = lowest bit) for each basis state. */
-  forEach(visit: (isSet: (wire: number) => boolean, re: number, im: number) => void): void {
+  /** Calls `callback` for each basis state that has an amplitude. */
+  visit(callback: (isSet: (wire: number) => boolean, re: number, im: number) => void): void {
     for (let i = 0; i < this.#count; i++) {
       const at = i * this.#words;
       visit(
