@@ -128,7 +128,7 @@ export class SparseState implements GateSink {
   visit(callback: (isSet: (wire: number) => boolean, re: number, im: number) => void): void {
     for (let i = 0; i < this.#count; i++) {
       const at = i * this.#words;
-      visit(
+      callback(
         (wire) => ((this.#keys[at + (wire >>> 5)]! >>> (wire & 31)) & 1) === 1,
         this.#re[i]!,
         this.#im[i]!,
