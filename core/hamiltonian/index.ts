@@ -8,6 +8,7 @@ export type {
   TwoElectronTensor,
 } from './hamiltonian';
 export { spinOrbitMeanField } from './mean-field';
+export { type NormalOrdered, normalOrder } from './normal-order';
 export {
   addScaled,
   chargeTrace,
@@ -23,7 +24,7 @@ export {
   toSpinOrbitals,
   zeroOperator,
 } from './operators';
-export { spinorForm, tensorElement } from './spinor-form';
+export { spinorForm } from './spinor-form';
 export {
   coulombBlock,
   operatorFromVector,
@@ -35,3 +36,5 @@ export {
   spinSpinBlock,
   vectorFromOperator,
 } from './super-matrix';
+export { tensorElement } from './tensor-element';
+export { type OrbitalWindow, restrictToWindow } from './window';

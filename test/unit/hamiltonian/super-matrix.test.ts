@@ -87,7 +87,7 @@ describe('super-matrix', () => {
       const again = vectorFromOperator(operator);
       const norm = (x: Float64Array) => x.reduce((sum, value) => sum + value * value, 0);
       expect(norm(operator.planes)).toBeCloseTo(norm(vector), 12);
-      vector.forEach((value, i) => expect(again[i]).toBeCloseTo(value, 14));
+      for (const [i, value] of vector.entries()) expect(again[i]).toBeCloseTo(value, 14);
     }
   });
 
