@@ -7,3 +7,14 @@ export {
   parseEnergy,
   toHartree,
 } from './energy';
+export {
+  formatChange,
+  formatCount,
+  formatDuration,
+  formatExactCount,
+  formatOneNorm,
+  formatRatio,
+  formatShare,
+  formatSignificant,
+  NOT_APPLICABLE,
+} from './figures';

@@ -8,7 +8,7 @@ import {
   formatRatio,
   formatShare,
   formatSignificant,
-} from '../../../core/report';
+} from '../../../core/units';
 
 // Expected texts follow the rules of the figures themselves (SI Brochure 9th ed., 5.4.4: digits in groups of
 // three by a thin space; U+2212 for minus), written out by hand.
