@@ -24,22 +24,26 @@ export interface Hdf5Dataset {
   readonly shape: readonly number[];
   /** Element type as the file has it. Strings and compounds are not numeric and are refused by readers. */
   readonly kind: 'float' | 'integer' | 'complex' | 'other';
-  /** All elements as doubles; complex ones interleaved re, im. Reads in slices and yields between them. */
-  readAll(): Promise<Float64Array>;
+  /**
+   * All elements as doubles, row-major; complex ones interleaved re, im. Reads in slices and awaits `step`
+   * with the number of elements read so far after each of them.
+   * @throws InputError `hdf5-unreadable` where a chunk is damaged, `too-large` beyond the reader's limits.
+   */
+  readAll(step?: (done: number) => Promise<void>): Promise<Float64Array>;
 }
 
 export interface Hdf5File {
-  /** Paths of all datasets, "/group/name". */
+  /** Paths of all datasets, "/group/name". Links that leave the file are not followed. */
   datasets(): readonly string[];
   /** undefined where there is no such dataset. */
   dataset(path: string): Hdf5Dataset | undefined;
-  /** Numeric attribute of the root group, or undefined. */
-  attribute(name: string): number | undefined;
+  /** Numeric scalar attribute of a group (the root group unless named), or undefined. */
+  attribute(name: string, group?: string): number | undefined;
   close(): void;
 }
 
 /** What the platform lends to readers: the HDF5 library needs a file system of its own kind on each side. */
 export interface ReadPlatform {
-  /** @throws InputError `not-hdf5` where the bytes are no HDF5 file. */
+  /** @throws InputError `not-hdf5` or `hdf5-truncated` where the bytes are no complete HDF5 file. */
   openHdf5(source: ByteSource): Promise<Hdf5File>;
 }

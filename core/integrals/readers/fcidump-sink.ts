@@ -1,0 +1,72 @@
+import { InputError } from '../../job';
+import type { SpinFreeContents, SpinorContents } from '../raw';
+import type { EntryParser } from './fcidump-entry';
+
+/** Two lines give one integral different values. */
+export interface Clash {
+  /** Identifies the integral: `slotOf` of either line. */
+  readonly slot: number;
+  readonly line: number;
+  readonly difference: number;
+}
+
+/** Where the entries of an FCIDUMP go. */
+export interface FcidumpSink {
+  add(entry: EntryParser, line: number): void;
+  /** A number that is the same for two entries exactly if they give the same integral. */
+  slotOf(entry: EntryParser): number;
+  clash(): Clash | null;
+  finish(): SpinFreeContents | SpinorContents;
+}
+
+/** The core energy, and what is wrong with it; shared by both kinds of file. */
+export class CoreEnergy {
+  value = 0;
+  private line = 0;
+
+  constructor(private readonly path: string) {}
+
+  add(value: number, imaginary: number, line: number): void {
+    const tolerance = 1e-10 * Math.max(1, Math.abs(value));
+    if (Math.abs(imaginary) > tolerance) {
+      throw new InputError({
+        code: 'complex-constant',
+        where: `${this.path}:${line}`,
+        found: `a core energy with imaginary part ${imaginary}`,
+        expected: 'a real core energy',
+        mend: 'Correct this line.',
+      });
+    }
+    if (this.line > 0 && Math.abs(value - this.value) > tolerance) {
+      throw new InputError({
+        code: 'duplicate-entry',
+        where: `${this.path}:${line}`,
+        found: `a second core energy ${value}, after ${this.value} in line ${this.line}`,
+        expected: 'one core energy (0 0 0 0)',
+        mend: 'Remove one of the lines; files with separate sections for each spin are not read.',
+      });
+    }
+    if (this.line === 0) this.value = value;
+    this.line = line;
+  }
+
+  /** @throws InputError where there was none: the line comes last, so its absence tells of a cut file. */
+  require(lastLine: number): void {
+    if (this.line > 0) return;
+    throw new InputError({
+      code: 'no-core-energy',
+      where: `${this.path}:${lastLine}`,
+      found: 'the end of the file, without a core energy',
+      expected: 'a line "E 0 0 0 0"',
+      mend: 'If the file was cut short, copy it again; if the constant is zero, add the line "0.0 0 0 0 0".',
+    });
+  }
+}
+
+/** Orbitals (1-based) that no entry names, as a note, or nothing. */
+export function unusedNote(used: Uint8Array, what: string): string[] {
+  const missing = [...used.keys()].filter((i) => i > 0 && used[i] === 0);
+  if (missing.length === 0) return [];
+  const shown = missing.length > 8 ? `${missing.slice(0, 8).join(', ')}, …` : missing.join(', ');
+  return [`No entry names ${what} ${shown}: is NORB too large?`];
+}

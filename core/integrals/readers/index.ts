@@ -1,0 +1,3 @@
+export { readFcidump } from './fcidump';
+export { fileSetFromMemory, memorySource } from './memory';
+export { type Format, sniffFormat } from './sniff';

@@ -1,0 +1,110 @@
+import { InputError } from '../../job';
+import { latin1 } from './text-lines';
+
+const MAX_HEADER_BYTES = 2 ** 20;
+/** A line of integrals where the header should go on: a number with a decimal point comes first. */
+const DATA_LINE = /^\s*\(?\s*[-+]?\d*\.\d/;
+
+/** The keys of a Fortran namelist group, upper case, each with its values as written and its line. */
+export type Namelist = ReadonlyMap<string, { readonly values: readonly string[]; readonly line: number }>;
+
+/**
+ * Collects a Fortran namelist group from the lines at the head of a file, up to `&END`, `$END` or `/`.
+ * `add` takes a line and returns true with the line that closes the group.
+ */
+export class NamelistCollector {
+  private text = '';
+  private opened = false;
+  private firstLine = 1;
+
+  constructor(
+    private readonly path: string,
+    private readonly group: string,
+  ) {}
+
+  add(bytes: Uint8Array, start: number, end: number, line: number): boolean {
+    let text = latin1(bytes.subarray(start, end));
+    if (!this.opened) {
+      if (text.trim() === '' || text.trimStart().startsWith('!')) return false;
+      const opening = new RegExp(`^\\s*[&$]\\s*${this.group}\\b`, 'i').exec(text);
+      if (opening === null) {
+        throw this.problem(
+          'bad-header',
+          line,
+          `"${excerpt(text)}"`,
+          `a header that opens with &${this.group}`,
+        );
+      }
+      this.opened = true;
+      this.firstLine = line;
+      text = text.slice(opening[0].length);
+    } else if (DATA_LINE.test(text)) {
+      throw this.problem('unclosed-header', line, `"${excerpt(text)}"`, 'the end of the header, &END or /');
+    }
+    const { kept, closed } = untilEnd(text);
+    this.text += `${kept}\n`;
+    if (this.text.length > MAX_HEADER_BYTES) throw this.unclosed(line);
+    return closed;
+  }
+
+  /** For a file that ended inside the header. */
+  unclosed(line: number): InputError {
+    return this.opened
+      ? this.problem('unclosed-header', line, 'no end of the header', '&END or /')
+      : this.problem('bad-header', line, 'no header', `a header that opens with &${this.group}`);
+  }
+
+  parse(): Namelist {
+    const keys = new Map<string, { values: string[]; line: number }>();
+    const pattern = /([A-Za-z][A-Za-z0-9_]*)\s*(?:\([^)]*\))?\s*=/g;
+    const found = [...this.text.matchAll(pattern)];
+    found.forEach((match, i) => {
+      const key = match[1].toUpperCase();
+      const line = this.firstLine + this.text.slice(0, match.index).split('\n').length - 1;
+      const from = match.index + match[0].length;
+      const body = this.text.slice(from, found[i + 1]?.index ?? this.text.length);
+      const values = body
+        .split(/[\s,;]+/)
+        .filter((value) => value !== '')
+        .flatMap(repeated);
+      const earlier = keys.get(key)?.values;
+      if (earlier && earlier.join(' ') !== values.join(' ')) {
+        const both = `${earlier.join(' ')} and ${values.join(' ')}`;
+        throw this.problem('bad-header', line, `${key} twice, ${both}`, 'one value');
+      }
+      keys.set(key, { values, line });
+    });
+    return keys;
+  }
+
+  private problem(code: string, line: number, found: string, expected: string): InputError {
+    return new InputError({
+      code,
+      where: `${this.path}:${line}`,
+      found,
+      expected,
+      mend: `Give a file that starts with a namelist such as "&${this.group} NORB=8,NELEC=8,MS2=0, &END".`,
+    });
+  }
+}
+
+export const excerpt = (text: string): string => {
+  const clean = text.trim().replace(/[^\x20-\x7e]/g, '?');
+  return clean.length > 60 ? `${clean.slice(0, 60)}…` : clean;
+};
+
+/** A line of the group up to its end mark and without a comment; quoted text may hold either. */
+function untilEnd(text: string): { kept: string; closed: boolean } {
+  const mark = /'[^']*'|"[^"]*"|!|\/|[&$]\s*END\b/gi;
+  for (const match of text.matchAll(mark)) {
+    if (/^['"]/.test(match[0])) continue;
+    return { kept: text.slice(0, match.index), closed: match[0] !== '!' };
+  }
+  return { kept: text, closed: false };
+}
+
+/** Fortran's repeat count: `8*1` stands for eight ones. */
+function repeated(value: string): string[] {
+  const match = /^(\d{1,4})\*(.+)$/.exec(value);
+  return match ? new Array<string>(Number(match[1])).fill(match[2]) : [value];
+}
