@@ -1,0 +1,97 @@
+import type { SparseHermitian } from './sector-matrix';
+
+/**
+ * Splits a sparse Hermitian matrix into the blocks that its pattern of zeros leaves unconnected: symmetries (spin
+ * projection, point groups) show themselves as such, without being named. A block is made real where a change
+ * of phases by powers of i does it.
+ *
+ * @returns blocks in ascending order of their first determinant; together they have the matrix' spectrum.
+ */
+export function connectedBlocks(matrix: SparseHermitian): SparseHermitian[] {
+  const { dim, start, row } = matrix;
+  const parent = Uint32Array.from({ length: dim }, (_, i) => i);
+  const root = (i: number): number => {
+    while (parent[i] !== i) {
+      parent[i] = parent[parent[i]!]!;
+      i = parent[i]!;
+    }
+    return i;
+  };
+  for (let j = 0; j < dim; j++) {
+    for (let e = start[j]!; e < start[j + 1]!; e++) {
+      const [a, b] = [root(j), root(row[e]!)];
+      if (a < b) parent[b] = a;
+      else if (b < a) parent[a] = b;
+    }
+  }
+  const members = new Map<number, number[]>();
+  const position = new Uint32Array(dim);
+  for (let i = 0; i < dim; i++) {
+    const list = members.get(root(i)) ?? [];
+    if (list.length === 0) members.set(root(i), list);
+    position[i] = list.length;
+    list.push(i);
+  }
+  return [...members.values()].map((list) => extract(matrix, list, position));
+}
+
+function extract(matrix: SparseHermitian, list: readonly number[], position: Uint32Array): SparseHermitian {
+  const dim = list.length;
+  const complex = matrix.im.length > 0;
+  const start = new Uint32Array(dim + 1);
+  for (let j = 0; j < dim; j++) {
+    start[j + 1] = start[j]! + matrix.start[list[j]! + 1]! - matrix.start[list[j]!]!;
+  }
+  const row = new Uint32Array(start[dim]!);
+  const re = new Float64Array(start[dim]!);
+  const im = new Float64Array(complex ? start[dim]! : 0);
+  for (let j = 0; j < dim; j++) {
+    const from = matrix.start[list[j]!]!;
+    for (let e = start[j]!, f = from; e < start[j + 1]!; e++, f++) {
+      row[e] = position[matrix.row[f]!]!;
+      re[e] = matrix.re[f]!;
+      if (complex) im[e] = matrix.im[f]!;
+    }
+  }
+  const diagonal = Float64Array.from(list, (i) => matrix.diagonal[i]!);
+  const block = { dim, diagonal, start, row, re, im };
+  return complex ? madeReal(block) : block;
+}
+
+/**
+ * The block in phases i^t, t ∈ {0, 1}, that make it real, or unchanged where there are none: that takes every
+ * element purely real or purely imaginary and all cycles to agree.
+ */
+function madeReal(block: SparseHermitian): SparseHermitian {
+  const { dim, start, row, re, im } = block;
+  for (let e = 0; e < row.length; e++) if (re[e] !== 0 && im[e] !== 0) return block;
+  const neighbours: number[][] = Array.from({ length: dim }, () => []);
+  for (let j = 0; j < dim; j++) {
+    for (let e = start[j]!; e < start[j + 1]!; e++) {
+      const turned = im[e] !== 0 ? 1 : 0;
+      neighbours[j]!.push(2 * row[e]! + turned);
+      neighbours[row[e]!]!.push(2 * j + turned);
+    }
+  }
+  const turns = new Int8Array(dim).fill(-1);
+  turns[0] = 0;
+  const queue = [0];
+  for (let i = queue.pop(); i !== undefined; i = queue.pop()) {
+    for (const code of neighbours[i]!) {
+      const expected = turns[i]! ^ (code & 1);
+      const other = code >> 1;
+      if (turns[other] === -1) {
+        turns[other] = expected;
+        queue.push(other);
+      } else if (turns[other] !== expected) return block;
+    }
+  }
+  // Element (i, j) times (−i)^t_i i^t_j: an imaginary y becomes y where the row is turned, −y where the column is.
+  const real = re.slice();
+  for (let j = 0; j < dim; j++) {
+    for (let e = start[j]!; e < start[j + 1]!; e++) {
+      if (im[e] !== 0) real[e] = turns[row[e]!] === 1 ? im[e]! : -im[e]!;
+    }
+  }
+  return { ...block, re: real, im: new Float64Array(0) };
+}

@@ -1,0 +1,258 @@
+import {
+  type SpinHamiltonian,
+  type SpinorHamiltonian,
+  spinorForm,
+  spinorFromProductForm,
+} from '../hamiltonian';
+import { InputError, type JobContext } from '../job';
+import { binomial, countBits, type SectorBasis, sectorBasis } from './determinants';
+import type { Form } from './fock';
+
+/**
+ * Hermitian matrix by its diagonal and the elements below it, column by column: column j holds the rows
+ * `row[start[j]…start[j+1])`, all larger than j.
+ */
+export interface SparseHermitian {
+  readonly dim: number;
+  readonly diagonal: Float64Array;
+  readonly start: Uint32Array;
+  readonly row: Uint32Array;
+  readonly re: Float64Array;
+  /** Length 0 for a real matrix. */
+  readonly im: Float64Array;
+}
+
+export interface SectorMatrix extends SparseHermitian {
+  readonly basis: SectorBasis;
+  /** Rigorous bound on the shift of any eigenvalue by what was left out as numerical zero, hartree. */
+  readonly droppedBound: number;
+}
+
+/** Integrals below this share of the largest are noise of the transformation that made them. */
+const NOISE = 1e-15;
+
+/** Largest sector that is set up: memory of the matrix is at most about 25 kB a determinant. */
+export const MAX_SECTOR_DIMENSION = 20_000;
+
+/**
+ * H among the determinants of η electrons, by the Slater–Condon rules over 2N spin orbitals.
+ *
+ * @param form - `product` starts from k alone (its own reordering gives h), `stored` from h.
+ * @throws InputError `sector-too-large` above {@link MAX_SECTOR_DIMENSION} determinants.
+ */
+export async function sectorMatrix(
+  hamiltonian: SpinHamiltonian,
+  electrons: number,
+  form: Form,
+  context: JobContext,
+): Promise<SectorMatrix> {
+  const modes = hamiltonian.kind === 'spatial' ? 2 * hamiltonian.orbitals : hamiltonian.spinors;
+  const dim = binomial(modes, electrons);
+  if (modes > 32 || dim > MAX_SECTOR_DIMENSION) {
+    throw new InputError({
+      code: 'sector-too-large',
+      where: 'exact diagonalisation',
+      found: `${electrons} electrons in ${modes} spin orbitals: ${dim} determinants`,
+      expected: `at most ${MAX_SECTOR_DIMENSION} determinants and 32 spin orbitals`,
+      mend: 'Choose a smaller window of orbitals.',
+    });
+  }
+  const spinor = hamiltonian.kind === 'spatial' ? spinorForm(hamiltonian) : hamiltonian;
+  const h = form === 'stored' ? spinor.h : spinorFromProductForm(spinor).h;
+  return fill(integralsOf(spinor, h), sectorBasis(modes, electrons), hamiltonian.constant, context);
+}
+
+/** Antisymmetrised integrals, arranged for the loops below. */
+interface Integrals {
+  readonly m: number;
+  readonly h: SpinorHamiltonian['h'];
+  readonly g: SpinorHamiltonian['g'];
+  /** For annihilated Q < S: the disjoint created P < R with V = g_PQRS − g_PSRQ not zero. */
+  readonly doubles: readonly {
+    readonly p: Uint8Array;
+    readonly r: Uint8Array;
+    readonly re: Float64Array;
+    readonly im: Float64Array;
+  }[];
+  readonly cut: number;
+}
+
+function integralsOf(spinor: SpinorHamiltonian, h: SpinorHamiltonian['h']): Integrals {
+  const { spinors: m, g } = spinor;
+  let largest = 0;
+  for (const plane of [g.re, g.im, h.re, h.im]) {
+    for (let i = 0; i < plane.length; i++) largest = Math.max(largest, Math.abs(plane[i]!));
+  }
+  const cut = NOISE * largest;
+  const doubles = [];
+  for (let S = 0; S < m; S++) {
+    for (let Q = 0; Q < S; Q++) {
+      const [p, r, re, im]: [number[], number[], number[], number[]] = [[], [], [], []];
+      for (let R = 0; R < m; R++) {
+        if (R === Q || R === S) continue;
+        for (let P = 0; P < R; P++) {
+          if (P === Q || P === S) continue;
+          const direct = ((P * m + Q) * m + R) * m + S;
+          const exchange = ((P * m + S) * m + R) * m + Q;
+          const x = g.re[direct]! - g.re[exchange]!;
+          const y = g.im[direct]! - g.im[exchange]!;
+          if (Math.abs(x) <= cut && Math.abs(y) <= cut) continue;
+          p.push(P);
+          r.push(R);
+          re.push(x);
+          im.push(y);
+        }
+      }
+      doubles.push({
+        p: Uint8Array.from(p),
+        r: Uint8Array.from(r),
+        re: Float64Array.from(re),
+        im: Float64Array.from(im),
+      });
+    }
+  }
+  return { m, h, g, doubles, cut };
+}
+
+/** (−1)^(electrons in modes below P). */
+const signBelow = (state: number, P: number): number => 1 - 2 * (countBits(state & ((1 << P) - 1)) & 1);
+
+async function fill(
+  integrals: Integrals,
+  basis: SectorBasis,
+  constant: number,
+  context: JobContext,
+): Promise<SectorMatrix> {
+  const { m, h, g, doubles, cut } = integrals;
+  const { dim, states, electrons } = basis;
+  const out = new Columns(dim);
+  const diagonal = new Float64Array(dim);
+  const occupied = new Uint8Array(electrons);
+  for (let column = 0; column < dim; column++) {
+    if (column % 64 === 0) {
+      context.report('determinants', column, dim);
+      await context.checkpoint();
+    }
+    const state = states[column]!;
+    for (let P = 0, i = 0; P < m; P++) if ((state >>> P) & 1) occupied[i++] = P;
+    diagonal[column] = constant + diagonalElement(integrals, occupied);
+    // Singles Q → P, with the field of the other electrons.
+    for (let i = 0; i < electrons; i++) {
+      const Q = occupied[i]!;
+      const rest = state ^ (1 << Q);
+      const signQ = signBelow(state, Q);
+      for (let P = Q + 1; P < m; P++) {
+        // A larger state only: the lower triangle is enough.
+        if ((state >>> P) & 1) continue;
+        let x = h.re[P * m + Q]!;
+        let y = h.im[P * m + Q]!;
+        for (let j = 0; j < electrons; j++) {
+          const R = occupied[j]!;
+          if (R === Q) continue;
+          const direct = (P * m + Q) * m * m + R * m + R;
+          const exchange = (P * m + R) * m * m + R * m + Q;
+          x += g.re[direct]! - g.re[exchange]!;
+          y += g.im[direct]! - g.im[exchange]!;
+        }
+        const sign = signQ * signBelow(rest, P);
+        out.push(basis.rank(rest | (1 << P)), sign * x, sign * y, cut);
+      }
+    }
+    // Doubles Q, S → P, R.
+    for (let j = 1; j < electrons; j++) {
+      const S = occupied[j]!;
+      for (let i = 0; i < j; i++) {
+        const Q = occupied[i]!;
+        const list = doubles[(S * (S - 1)) / 2 + Q]!;
+        const less = state ^ (1 << Q);
+        const rest = less ^ (1 << S);
+        const signQS = signBelow(state, Q) * signBelow(less, S);
+        for (let d = 0; d < list.p.length; d++) {
+          const P = list.p[d]!;
+          const R = list.r[d]!;
+          if ((rest >>> P) & 1 || (rest >>> R) & 1) continue;
+          const withR = rest | (1 << R);
+          const target = (withR | (1 << P)) >>> 0;
+          if (target < state) continue;
+          const sign = signQS * signBelow(rest, R) * signBelow(withR, P);
+          out.push(basis.rank(target), sign * list.re[d]!, sign * list.im[d]!, cut);
+        }
+      }
+    }
+    out.closeColumn(column);
+  }
+  context.report('determinants', dim, dim);
+  // At most `cut` each in |re| and |im|, for every possible single and double excitation of a row.
+  const excitations = electrons * (m - electrons) + binomial(electrons, 2) * binomial(m - electrons, 2);
+  return { basis, droppedBound: Math.SQRT2 * cut * excitations, ...out.finish(diagonal) };
+}
+
+function diagonalElement({ m, h, g }: Integrals, occupied: Uint8Array): number {
+  let sum = 0;
+  for (let i = 0; i < occupied.length; i++) {
+    const P = occupied[i]!;
+    sum += h.re[P * m + P]!;
+    for (let j = 0; j < i; j++) {
+      const Q = occupied[j]!;
+      sum += g.re[(P * m + P) * m * m + Q * m + Q]! - g.re[(P * m + Q) * m * m + Q * m + P]!;
+    }
+  }
+  return sum;
+}
+
+/** Growing store of the elements below the diagonal. */
+class Columns {
+  private readonly start: Uint32Array;
+  private row: Uint32Array<ArrayBuffer>;
+  private re: Float64Array<ArrayBuffer>;
+  private im: Float64Array<ArrayBuffer>;
+  private size = 0;
+  private real = true;
+
+  constructor(private readonly dim: number) {
+    this.start = new Uint32Array(dim + 1);
+    const first = Math.max(16, 32 * dim);
+    this.row = new Uint32Array(first);
+    this.re = new Float64Array(first);
+    this.im = new Float64Array(first);
+  }
+
+  push(row: number, x: number, y: number, cut: number): void {
+    const re = Math.abs(x) > cut ? x : 0;
+    const im = Math.abs(y) > cut ? y : 0;
+    if (re === 0 && im === 0) return;
+    if (this.size === this.row.length) this.grow();
+    this.row[this.size] = row;
+    this.re[this.size] = re;
+    this.im[this.size] = im;
+    if (im !== 0) this.real = false;
+    this.size++;
+  }
+
+  closeColumn(column: number): void {
+    this.start[column + 1] = this.size;
+  }
+
+  finish(diagonal: Float64Array): SparseHermitian {
+    const { dim, start, size } = this;
+    return {
+      dim,
+      diagonal,
+      start,
+      row: this.row.slice(0, size),
+      re: this.re.slice(0, size),
+      im: this.real ? new Float64Array(0) : this.im.slice(0, size),
+    };
+  }
+
+  private grow(): void {
+    const length = Math.ceil(1.5 * this.row.length);
+    const copy = <T extends Uint32Array | Float64Array>(from: T, to: T): T => {
+      to.set(from);
+      return to;
+    };
+    this.row = copy(this.row, new Uint32Array(length));
+    this.re = copy(this.re, new Float64Array(length));
+    this.im = copy(this.im, new Float64Array(length));
+  }
+}
