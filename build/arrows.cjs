@@ -95,7 +95,7 @@ module.exports = {
     doNotFollow: { path: 'node_modules' },
     exclude: { path: '^(dist|release|coverage)/' },
     tsPreCompilationDeps: true,
-    tsConfig: { fileName: 'tsconfig.base.json' },
+    tsConfig: { fileName: require('node:path').join(__dirname, '../tsconfig.base.json') },
     enhancedResolveOptions: {
       extensions: ['.ts', '.js', '.mjs', '.cjs', '.svelte', '.json'],
       exportsFields: ['exports'],
