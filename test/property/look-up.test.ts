@@ -2,7 +2,7 @@ import fc from 'fast-check';
 import { expect, it } from 'vitest';
 import { GateCounter } from '../../core/circuit/gates/counter';
 import { Machine } from '../../core/circuit/gates/machine';
-import { erasureToffoli, lookUp, lookUpToffoli } from '../../core/circuit/primitives/look-up';
+import { countBlocks, erasureToffoli, lookUp, lookUpToffoli } from '../../core/circuit/primitives/look-up';
 import {
   addressBits,
   unaryIteration,
@@ -13,23 +13,25 @@ import { SparseState } from '../../core/circuit/simulate/sparse-state';
 const read = (isSet: (w: number) => boolean, wires: readonly number[]) =>
   wires.reduce((sum, w, i) => sum + (isSet(w) ? 2 ** i : 0), 0);
 
-/** A superposition over the addresses below `count`, one basis state at a time and all at once. */
-function superpose(machine: Machine, wires: readonly number[]): void {
-  for (const wire of wires) machine.gate('H', wire);
-}
+/** Ascending addresses with gaps. */
+const addresses = (max: number, length: number) =>
+  fc
+    .uniqueArray(fc.nat(max), { minLength: 1, maxLength: length })
+    .map((list) => Uint32Array.from(list).sort());
 
 it('unary iteration flags exactly the addressed item and costs what the formula says', () => {
   fc.assert(
-    fc.property(fc.integer({ min: 1, max: 40 }), fc.boolean(), fc.nat(), (count, controlled, pick) => {
-      const value = pick % count;
-      const state = new SparseState();
+    fc.property(addresses(63, 30), fc.boolean(), fc.nat(), (list, controlled, pick) => {
+      const value = list[pick % list.length]!;
+      const bits = addressBits(list[list.length - 1]! + 1);
+      const state = new SparseState({ maxWires: 128 });
       const machine = new Machine(state);
-      const address = machine.allocateRegister(addressBits(count));
-      const hit = machine.allocateRegister(count);
+      const register = machine.allocateRegister(bits);
+      const hit = machine.allocateRegister(64);
       const control = controlled ? machine.allocate() : null;
       if (control !== null) machine.gate('H', control);
-      for (const [i, wire] of address.entries()) if ((value >> i) & 1) machine.gate('X', wire);
-      unaryIteration(address, count, control, (m, index, flag) => m.gate('CX', flag, hit[index]!)).run(
+      for (const [i, wire] of register.entries()) if ((value >> i) & 1) machine.gate('X', wire);
+      unaryIteration(register, list, control, (m, index, flag) => m.gate('CX', flag, hit[index]!)).run(
         machine,
       );
       state.visit((isSet) => {
@@ -39,9 +41,9 @@ it('unary iteration flags exactly the addressed item and costs what the formula 
 
       const counter = new GateCounter();
       const counting = new Machine(counter);
-      const a = counting.allocateRegister(addressBits(count));
-      unaryIteration(a, count, controlled ? counting.allocate() : null, () => {}).run(counting);
-      expect(GateCounter.total(counter.root).toffoli).toBe(unaryIterationToffoli(count, controlled));
+      const wires = counting.allocateRegister(bits);
+      unaryIteration(wires, list, controlled ? counting.allocate() : null, () => {}).run(counting);
+      expect(GateCounter.total(counter.root).toffoli).toBe(unaryIterationToffoli(list.length, controlled));
     }),
     { numRuns: 120 },
   );
@@ -51,68 +53,81 @@ it('a look-up writes the addressed row, its erasure restores the state, and both
   fc.assert(
     fc.property(
       fc.record({
-        rows: fc.integer({ min: 1, max: 21 }),
+        list: addresses(31, 21),
         width: fc.integer({ min: 1, max: 3 }),
-        block: fc.constantFrom(1, 2, 4, 8),
-        erasureBlock: fc.constantFrom(1, 2, 4, 8),
+        read: fc.constantFrom(1, 2, 4, 8),
+        erase: fc.constantFrom(1, 2, 4, 8),
         controlled: fc.boolean(),
         outcomes: fc.constantFrom<'random' | 0 | 1>('random', 0, 1),
         seed: fc.integer(),
-        contents: fc.array(fc.nat(7), { minLength: 21, maxLength: 21 }),
+        contents: fc.array(fc.nat(7), { minLength: 32, maxLength: 32 }),
+        phases: fc.tuple(fc.nat(), fc.nat()),
       }),
-      ({ rows, width, block, erasureBlock, controlled, outcomes, seed, contents }) => {
+      ({ list, width, read: block, erase, controlled, outcomes, seed, contents, phases }) => {
         const row = (l: number) => contents[l]! % 2 ** width;
-        const table = { rows, width, bit: (l: number, b: number) => ((row(l) >> b) & 1) === 1 };
-        // Address registers are wide enough for whole blocks of either kind.
-        const size = Math.max(
-          addressBits(rows),
-          Math.log2(block) + addressBits(Math.ceil(rows / block)),
-          Math.log2(erasureBlock) + addressBits(Math.ceil(rows / erasureBlock)),
-        );
-        const simulate = () => {
-          const state = new SparseState({ outcomes, seed });
-          const machine = new Machine(state);
-          const address = machine.allocateRegister(size);
-          return { state, machine, address };
-        };
+        const table = { addresses: list, width, bit: (l: number, b: number) => ((row(l) >> b) & 1) === 1 };
+        const size = Math.max(3, addressBits(list[list.length - 1]! + 1));
 
-        const { state, machine, address } = simulate();
+        const state = new SparseState({ maxWires: 96, outcomes, seed });
+        const machine = new Machine(state);
+        const register = machine.allocateRegister(size);
         const control = controlled ? machine.allocate() : null;
         if (control !== null) machine.gate('H', control);
-        // Addresses below `rows` only: superpose the low bits as far as a power of two reaches, then shift.
-        const free = Math.floor(Math.log2(rows));
-        superpose(machine, address.slice(0, free));
+        // Two addresses side by side: |a⟩ + |b⟩, so that a wrong relative phase shows.
+        const [a, b] = phases.map((pick) => list[pick % list.length]!) as [number, number];
+        const differing = register.filter((_, i) => ((a ^ b) >> i) & 1);
+        for (const [i, wire] of register.entries()) if ((a >> i) & 1) machine.gate('X', wire);
+        if (differing[0] !== undefined) {
+          machine.gate('H', differing[0]);
+          for (const wire of differing.slice(1)) machine.gate('CX', differing[0], wire);
+          // A start bit of 1 gives |a⟩ with the sign of the Hadamard and shifts the other bits: put them right.
+          const lead = register.indexOf(differing[0]);
+          if ((a >> lead) & 1) {
+            machine.gate('Z', differing[0]);
+            for (const wire of differing.slice(1)) machine.gate('X', wire);
+          }
+        }
+        const before = snapshot(state, register, control);
+        expect([...before.keys()].map((key) => key % 32).every((l) => l === a || l === b)).toBe(true);
         const output = machine.allocateRegister(width * block);
-        const operation = lookUp(address, output, table, block, erasureBlock, control);
+        const operation = lookUp(register, output, table, { read: block, erase }, control);
         operation.run(machine);
         state.visit((isSet) => {
           const on = control === null || isSet(control);
-          const l = read(isSet, address);
-          if (on) expect(read(isSet, output.slice(0, width))).toBe(row(l));
+          if (on) expect(read(isSet, output.slice(0, width))).toBe(row(read(isSet, register)));
         });
         operation.runAdjoint(machine);
         machine.releaseRegister(output);
-        const amplitude = Math.SQRT1_2 ** (free + (controlled ? 1 : 0));
-        expect(state.size).toBe(2 ** (free + (controlled ? 1 : 0)));
-        state.visit((_, re, im) => {
-          expect(re).toBeCloseTo(amplitude, 12);
-          expect(im).toBeCloseTo(0, 12);
-        });
+        const after = snapshot(state, register, control);
+        expect(after.size).toBe(before.size);
+        for (const [key, [re, im]] of before) {
+          expect(after.get(key)![0]).toBeCloseTo(re, 12);
+          expect(after.get(key)![1]).toBeCloseTo(im, 12);
+        }
 
         const count = (adjoint: boolean) => {
           const counter = new GateCounter();
           const m = new Machine(counter);
-          const a = m.allocateRegister(size);
+          const wires = m.allocateRegister(size);
           const c = controlled ? m.allocate() : null;
-          const op = lookUp(a, m.allocateRegister(width * block), table, block, erasureBlock, c);
+          const op = lookUp(wires, m.allocateRegister(width * block), table, { read: block, erase }, c);
           if (adjoint) op.runAdjoint(m);
           else op.run(m);
           return GateCounter.total(counter.root).toffoli;
         };
-        expect(count(false)).toBe(lookUpToffoli(rows, width, block, controlled));
-        expect(count(true)).toBe(erasureToffoli(rows, erasureBlock, controlled));
+        expect(count(false)).toBe(lookUpToffoli(countBlocks(list, block), width, block, controlled));
+        expect(count(true)).toBe(erasureToffoli(countBlocks(list, erase), erase, controlled));
       },
     ),
     { numRuns: 200 },
   );
 });
+
+function snapshot(state: SparseState, register: readonly number[], control: number | null) {
+  const amplitudes = new Map<number, [number, number]>();
+  state.visit((isSet, re, im) => {
+    const on = control !== null && isSet(control) ? 32 : 0;
+    amplitudes.set(read(isSet, register) + on, [re, im]);
+  });
+  return amplitudes;
+}

@@ -2,34 +2,37 @@ import type { Machine } from '../gates/machine';
 import type { Operation } from '../gates/operation';
 import { unaryIteration, unaryIterationToffoli } from './unary-iteration';
 
-/** Bit `bit` of row `row` of a table. */
-export type TableBit = (row: number, bit: number) => boolean;
-
+/** A table whose rows stand at ascending addresses, gaps allowed. */
 export interface Table {
-  readonly rows: number;
+  readonly addresses: Uint32Array;
   /** Output bits per row. */
   readonly width: number;
-  readonly bit: TableBit;
+  /** Content of the row at an address; asked for listed addresses only. */
+  readonly bit: (address: number, bit: number) => boolean;
+}
+
+/** How a table is read: k = 2^j rows at a time, and erased with a block of its own. */
+export interface Blocks {
+  readonly read: number;
+  readonly erase: number;
 }
 
 /**
- * Toffoli of a look-up with block k: ⌈L/k⌉ − 2 for the iteration over blocks (−1 with a control; 0 for at most
- * two blocks without one) and b(k−1) for the swaps that bring the wanted row to the front.
- * G. H. Low, V. Kliuchnikov, L. Schaeffer, Quantum 8, 1375 (2024) (arXiv:1812.00954); D. W. Berry et al.,
- * Quantum 3, 208 (2019), who write the iteration as ⌈L/k⌉.
+ * Toffoli of a look-up that visits `blocks` blocks of k rows: blocks − 2 for the iteration (−1 with a control; 0
+ * for at most two without one) and b(k−1) for the swaps that bring the wanted row to the front. Without gaps
+ * blocks = ⌈L/k⌉. G. H. Low, V. Kliuchnikov, L. Schaeffer, arXiv:1812.00954; D. W. Berry et al., Quantum 3, 208
+ * (2019), who write the iteration as ⌈L/k⌉.
  */
-export function lookUpToffoli(rows: number, width: number, block: number, controlled = false): number {
-  const blocks = Math.ceil(rows / block);
+export function lookUpToffoli(blocks: number, width: number, block: number, controlled = false): number {
   return unaryIterationToffoli(blocks, controlled) + width * (block - 1);
 }
 
 /**
- * Toffoli of the measurement-based erasure with block k: the iteration over ⌈L/k⌉ blocks, and k − 1 − log₂k for
- * the one-hot form of the low address bits. Berry et al. 2019, Appendix C, with the iteration written as ⌈L/k⌉
- * and the one-hot form as k.
+ * Toffoli of the measurement-based erasure: the iteration over the blocks, and k − 1 − log₂k for the flags of the
+ * low address bits. Berry et al. 2019, Appendix C, with the iteration written as ⌈L/k⌉ and the flags as k.
  */
-export function erasureToffoli(rows: number, block: number, controlled = false): number {
-  return unaryIterationToffoli(Math.ceil(rows / block), controlled) + oneHotToffoli(block);
+export function erasureToffoli(blocks: number, block: number, controlled = false): number {
+  return unaryIterationToffoli(blocks, controlled) + oneHotToffoli(block);
 }
 
 /** ANDs of turning log₂k bits into k flags: k − 1 − log₂k (each doubling saves one by the sum rule). */
@@ -37,68 +40,80 @@ export function oneHotToffoli(block: number): number {
   return block - 1 - Math.log2(block);
 }
 
-/** Wires the look-up holds until it is erased: k copies of the output. */
-export function lookUpWires(width: number, block: number): number {
-  return width * block;
+/** Number of blocks of k addresses that hold any of the ascending addresses. */
+export function countBlocks(addresses: Uint32Array, block: number): number {
+  return blockAddresses(addresses, block).length;
+}
+
+function blockAddresses(addresses: Uint32Array, block: number): Uint32Array {
+  const shift = Math.log2(block);
+  const found = new Uint32Array(addresses.length);
+  let count = 0;
+  for (const address of addresses) {
+    const high = address >>> shift;
+    if (count === 0 || found[count - 1] !== high) found[count++] = high;
+  }
+  return found.subarray(0, count);
 }
 
 /**
- * |l⟩|0⟩ → |l⟩|table row l⟩, with `block` = k = 2^j rows read at once and the wanted one swapped to the front
- * (select-swap with clean wires). The adjoint is the measurement-based erasure with block `erasureBlock`.
+ * |l⟩|0⟩ → |l⟩|row at l⟩, with k = `blocks.read` rows read at once and the wanted one swapped to the front
+ * (select-swap with clean wires). The adjoint is the measurement-based erasure.
  *
- * @param address - lowest bit first; must hold a value below `table.rows`.
+ * @param register - address, lowest bit first; must hold one of the table's addresses.
  * @param output - k·width wires in |0⟩: the row comes out in the first `width`, the rest holds other rows until
  *   the erasure.
  */
 export function lookUp(
-  address: readonly number[],
+  register: readonly number[],
   output: readonly number[],
   table: Table,
-  block: number,
-  erasureBlock: number,
+  blocks: Blocks,
   control: number | null = null,
 ): Operation {
-  const { rows, width } = table;
-  if (output.length !== block * width) {
-    throw new RangeError(`a look-up of ${width} bits in blocks of ${block} needs ${block * width} wires`);
-  }
-  const lowBits = Math.log2(block);
-  const low = address.slice(0, lowBits);
-  const high = address.slice(lowBits);
-  const blocks = Math.ceil(rows / block);
-  const write = unaryIteration(high, blocks, control, (machine, index, flag) => {
-    for (let j = 0; j < block; j++) {
-      const row = index * block + j;
-      if (row >= rows) break;
-      for (let b = 0; b < width; b++) {
-        if (table.bit(row, b)) machine.gate('CX', flag, output[j * width + b]!);
-      }
-    }
-  });
   return {
-    run(machine) {
-      write.run(machine);
-      selectBlock(machine, low, output, width);
-    },
+    run: (machine) => read(machine, register, output, table, blocks.read, control),
     runAdjoint(machine) {
-      erase(machine, address, output, rows, placedTable(table, block), erasureBlock, control);
+      erase(
+        machine,
+        register,
+        output,
+        table.addresses,
+        contentAfterSwaps(table, blocks.read),
+        blocks.erase,
+        control,
+      );
     },
   };
 }
 
-/** Brings copy number `low` to the front: Σ over bits of 2^bit·width controlled swaps, width(k−1) in all. */
-function selectBlock(
+function read(
   machine: Machine,
-  low: readonly number[],
+  register: readonly number[],
   output: readonly number[],
-  width: number,
+  table: Table,
+  block: number,
+  control: number | null,
 ): void {
-  for (let bit = low.length - 1; bit >= 0; bit--) {
-    const half = 2 ** bit;
-    for (let j = 0; j < half; j++) {
+  const { addresses, width } = table;
+  if (output.length !== block * width) {
+    throw new RangeError(`a look-up of ${width} bits in blocks of ${block} needs ${block * width} wires`);
+  }
+  const lowBits = Math.log2(block);
+  const listed = new Set(addresses);
+  unaryIteration(register.slice(lowBits), blockAddresses(addresses, block), control, (m, high, flag) => {
+    for (let j = 0; j < block; j++) {
+      const address = high * block + j;
+      if (!listed.has(address)) continue;
       for (let b = 0; b < width; b++) {
-        controlledSwap(machine, low[bit]!, output[j * width + b]!, output[(j + half) * width + b]!);
+        if (table.bit(address, b)) m.gate('CX', flag, output[j * width + b]!);
       }
+    }
+  }).run(machine);
+  // Copy number `low` to the front: bit by bit, 2^bit·width controlled swaps, width(k − 1) in all.
+  for (let bit = lowBits - 1; bit >= 0; bit--) {
+    for (let i = 0; i < 2 ** bit * width; i++) {
+      controlledSwap(machine, register[bit]!, output[i]!, output[i + 2 ** bit * width]!);
     }
   }
 }
@@ -111,54 +126,54 @@ export function controlledSwap(machine: Machine, control: number, a: number, b: 
 }
 
 /** What each of the k·width wires holds after the swaps, as a function of the address. */
-function placedTable(table: Table, block: number): TableBit {
-  const { rows, width, bit } = table;
+export function contentAfterSwaps(
+  table: Table,
+  block: number,
+): (address: number, position: number) => boolean {
+  const { width, bit } = table;
   const lowBits = Math.log2(block);
-  return (row, position) => {
+  const listed = new Set(table.addresses);
+  return (address, position) => {
     let copy = Math.floor(position / width);
     // Undo the swaps: the last one applied (bit 0) comes first.
-    const low = row % block;
     for (let b = 0; b < lowBits; b++) {
       const half = 2 ** b;
-      if (((low >> b) & 1) === 1 && copy < 2 * half) copy = copy < half ? copy + half : copy - half;
+      if (((address >>> b) & 1) === 1 && copy < 2 * half) copy = copy < half ? copy + half : copy - half;
     }
-    const source = row - low + copy;
-    return source < rows && bit(source, position % width);
+    const source = address - (address % block) + copy;
+    return listed.has(source) && bit(source, position % width);
   };
 }
 
 /**
- * Measures every output wire in the X basis, which leaves the phase (−1)^{outcomes · content(l)}, and takes that
- * phase back: flags of the low address bits are paired with flags of the high ones in CZ gates.
+ * Measures every output wire in the X basis, which leaves the phase (−1)^{outcomes · content(address)}, and takes
+ * that phase back: flags of the low address bits are paired with flags of the high ones in CZ gates.
  */
-function erase(
+export function erase(
   machine: Machine,
-  address: readonly number[],
+  register: readonly number[],
   output: readonly number[],
-  rows: number,
-  content: TableBit,
+  addresses: Uint32Array,
+  content: (address: number, position: number) => boolean,
   block: number,
   control: number | null,
 ): void {
   const outcomes = output.map((wire) => machine.measureX(wire));
   const lowBits = Math.log2(block);
-  const low = oneHot(address.slice(0, lowBits));
+  const low = oneHot(register.slice(0, lowBits));
   const flags = low.begin(machine);
-  const phases = unaryIteration(
-    address.slice(lowBits),
-    Math.ceil(rows / block),
-    control,
-    (m, index, flag) => {
-      for (let j = 0; j < block && index * block + j < rows; j++) {
-        for (let b = 0; b < output.length; b++) {
-          if (!content(index * block + j, b)) continue;
-          if (block === 1) m.gate('Z', flag, -1, -1, outcomes[b]!);
-          else m.gate('CZ', flag, flags[j]!, -1, outcomes[b]!);
-        }
+  const listed = new Set(addresses);
+  unaryIteration(register.slice(lowBits), blockAddresses(addresses, block), control, (m, high, flag) => {
+    for (let j = 0; j < block; j++) {
+      const address = high * block + j;
+      if (!listed.has(address)) continue;
+      for (let b = 0; b < output.length; b++) {
+        if (!content(address, b)) continue;
+        if (block === 1) m.gate('Z', flag, -1, -1, outcomes[b]!);
+        else m.gate('CZ', flag, flags[j]!, -1, outcomes[b]!);
       }
-    },
-  );
-  phases.run(machine);
+    }
+  }).run(machine);
   low.end(machine);
 }
 
@@ -195,11 +210,11 @@ function oneHot(bits: readonly number[]): { begin(m: Machine): number[]; end(m: 
           machine.gate('UNAND', flags[j]!, bit, upper[j]!);
         }
         machine.gate('CX', bit, upper[last]!);
+        machine.releaseRegister(upper);
         if (level === 0) {
           machine.gate('X', flags[0]!);
-          machine.releaseRegister(upper);
           machine.releaseRegister(flags.splice(0));
-        } else machine.releaseRegister(upper);
+        }
       }
     },
   };

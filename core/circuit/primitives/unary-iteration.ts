@@ -6,94 +6,119 @@ export function addressBits(count: number): number {
   return count <= 1 ? 0 : 32 - Math.clz32(count - 1);
 }
 
+/** 0 … count − 1, the addresses of a table without gaps. */
+export function firstAddresses(count: number): Uint32Array {
+  return Uint32Array.from({ length: count }, (_, i) => i);
+}
+
 /**
- * Toffoli count of unary iteration over `count` ≥ 1 items: count − 1 with a control, count − 2 without (and 0 for
- * one or two items). Each branching of the binary tree costs one AND; without a control the root costs none.
- * R. Babbush et al., Phys. Rev. X 8, 041015 (2018), Sec. III A.
+ * Toffoli count of unary iteration over `count` ≥ 1 addresses: count − 1 with a control, count − 2 without (and 0
+ * for one or two). Each branching of the binary tree costs one AND; without a control the first costs none. Gaps
+ * between the addresses are free, since a node with one child does not branch.
+ * R. Babbush et al., Phys. Rev. X 8, 041015 (2018), Sec. III A; the remark on gaps is ours.
  */
 export function unaryIterationToffoli(count: number, controlled: boolean): number {
   return controlled ? count - 1 : Math.max(0, count - 2);
 }
 
-/** Wires that unary iteration holds besides address and control: one for each level that branches. */
-export function unaryIterationScratch(count: number, controlled: boolean): number {
-  return Math.max(0, addressBits(count) - (controlled ? 0 : 1));
-}
-
-/** What happens at item `index`; `flag` is 1 exactly when the address holds that index (and the control is 1). */
-export type Leaf = (machine: Machine, index: number, flag: number) => void;
+/** What happens at one address; `flag` is 1 exactly when the register holds it (and the control is 1). */
+export type Leaf = (machine: Machine, address: number, flag: number) => void;
 
 /**
- * Runs `leaf` once for each index 0 … count−1 with a wire that flags the index. The address (lowest bit first)
- * must hold a value below `count`: branches beyond it are left out, not blocked. Leaves must commute where the
- * adjoint is to be the inverse; `leafAdjoint` replaces `leaf` there.
+ * Runs `leaf` once for each of the ascending `addresses` with a wire that flags the address. The register (lowest
+ * bit first) must hold one of the listed addresses: others are not blocked but flag a neighbour.
  *
  * @param control - wire that switches the whole iteration, or null.
+ * @param leafAdjoint - used instead of `leaf` by the adjoint; leaves must commute.
  */
 export function unaryIteration(
-  address: readonly number[],
-  count: number,
+  register: readonly number[],
+  addresses: Uint32Array,
   control: number | null,
   leaf: Leaf,
   leafAdjoint: Leaf = leaf,
 ): Operation {
-  if (count < 1 || count > 2 ** address.length) {
-    throw new RangeError(`${count} items do not fit ${address.length} address bits`);
+  const last = addresses[addresses.length - 1];
+  if (last === undefined || last >= 2 ** register.length) {
+    throw new RangeError(`address ${last} does not fit ${register.length} bits`);
   }
   const from = (use: Leaf) => (machine: Machine) => {
-    if (control === null) withoutControl(machine, address, count, use);
-    else branch(machine, address, address.length, 0, count, control, use);
+    const walk = new Walk(machine, register, addresses, use);
+    if (control !== null) walk.branch(register.length, 0, addresses.length, control);
+    else walk.root();
   };
   return { run: from(leaf), runAdjoint: from(leafAdjoint) };
 }
 
-/** Items [first, first + 2^level) ∩ [0, count) below a node whose flag is `flag`. */
-function branch(
-  machine: Machine,
-  address: readonly number[],
-  level: number,
-  first: number,
-  count: number,
-  flag: number,
-  leaf: Leaf,
-): void {
-  if (level === 0) {
-    leaf(machine, first, flag);
-    return;
-  }
-  const bit = address[level - 1]!;
-  const middle = first + 2 ** (level - 1);
-  if (middle >= count) {
-    branch(machine, address, level - 1, first, count, flag, leaf);
-    return;
-  }
-  // flag·¬bit for the lower half; a CNOT from the flag turns it into flag·bit for the upper one.
-  const child = machine.allocate();
-  machine.gate('X', bit);
-  machine.gate('AND', flag, bit, child);
-  machine.gate('X', bit);
-  branch(machine, address, level - 1, first, count, child, leaf);
-  machine.gate('CX', flag, child);
-  branch(machine, address, level - 1, middle, count, child, leaf);
-  machine.gate('UNAND', flag, bit, child);
-  machine.release(child);
-}
+class Walk {
+  readonly #machine: Machine;
+  readonly #register: readonly number[];
+  readonly #addresses: Uint32Array;
+  readonly #leaf: Leaf;
 
-/** The root needs no AND: its two flags are the top address bit and its complement. */
-function withoutControl(machine: Machine, address: readonly number[], count: number, leaf: Leaf): void {
-  const levels = addressBits(count);
-  if (levels === 0) {
-    // A wire that is 1 throughout: leaves expect one.
+  constructor(machine: Machine, register: readonly number[], addresses: Uint32Array, leaf: Leaf) {
+    this.#machine = machine;
+    this.#register = register;
+    this.#addresses = addresses;
+    this.#leaf = leaf;
+  }
+
+  /** Without a control the first branching needs no AND: its flags are the bit and its complement. */
+  root(): void {
+    const machine = this.#machine;
+    const count = this.#addresses.length;
+    for (let level = this.#register.length; level > 0; level--) {
+      const middle = this.#firstWithBit(level - 1, 0, count);
+      if (middle === 0 || middle === count) continue;
+      const bit = this.#register[level - 1]!;
+      machine.gate('X', bit);
+      this.branch(level - 1, 0, middle, bit);
+      machine.gate('X', bit);
+      this.branch(level - 1, middle, count, bit);
+      return;
+    }
+    // A single address: leaves still expect a flag, a wire that is 1 throughout.
     const one = machine.allocate();
     machine.gate('X', one);
-    leaf(machine, 0, one);
+    this.#leaf(machine, this.#addresses[0]!, one);
     machine.gate('X', one);
     machine.release(one);
-    return;
   }
-  const top = address[levels - 1]!;
-  machine.gate('X', top);
-  branch(machine, address, levels - 1, 0, 2 ** (levels - 1), top, leaf);
-  machine.gate('X', top);
-  branch(machine, address, levels - 1, 2 ** (levels - 1), count, top, leaf);
+
+  /** Addresses number from…to−1, which agree in all bits from `level` upward, under the flag of their node. */
+  branch(level: number, from: number, to: number, flag: number): void {
+    if (to - from === 1) {
+      this.#leaf(this.#machine, this.#addresses[from]!, flag);
+      return;
+    }
+    const middle = this.#firstWithBit(level - 1, from, to);
+    if (middle === from || middle === to) {
+      this.branch(level - 1, from, to, flag);
+      return;
+    }
+    // flag·¬bit for the lower half; a CNOT from the flag turns it into flag·bit for the upper one.
+    const machine = this.#machine;
+    const bit = this.#register[level - 1]!;
+    const child = machine.allocate();
+    machine.gate('X', bit);
+    machine.gate('AND', flag, bit, child);
+    machine.gate('X', bit);
+    this.branch(level - 1, from, middle, child);
+    machine.gate('CX', flag, child);
+    this.branch(level - 1, middle, to, child);
+    machine.gate('UNAND', flag, bit, child);
+    machine.release(child);
+  }
+
+  /** Position of the first address in from…to−1 whose bit is set: they are sorted and agree above it. */
+  #firstWithBit(bit: number, from: number, to: number): number {
+    let low = from;
+    let high = to;
+    while (low < high) {
+      const middle = (low + high) >> 1;
+      if ((this.#addresses[middle]! >>> bit) & 1) high = middle;
+      else low = middle + 1;
+    }
+    return low;
+  }
 }
