@@ -1,5 +1,11 @@
 export * from './integral-set';
+export { type LoadOptions, loadIntegrals, throwFirstError } from './load';
 export * from './raw';
 export * from './readers';
+export { type Json, parseJson } from './recipe/json';
+export { checkRecipe, parseRecipe } from './recipe/parse';
+export type * from './recipe/recipe';
+export { type InputChoice, type ResolvedInputs, resolveInputs } from './recipe/resolve';
+export { checkSchema } from './recipe/schema-check';
 export * from './source';
 export * from './terms';

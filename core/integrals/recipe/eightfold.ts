@@ -1,0 +1,235 @@
+import type { Finding } from '../../job';
+import { numSymmetricPairs, pairsTriangleLength } from '../integral-set';
+import type { ResolvedPart } from './part';
+import type { Component, TensorComponent } from './recipe';
+import type { StoredArray } from './stored';
+import { Deviation, sectorFinding, symmetryFinding } from './symmetry';
+
+/** Order of the six components in a spin–spin part. */
+export const TENSOR: readonly TensorComponent[] = ['xx', 'xy', 'xz', 'yy', 'yz', 'zz'];
+
+/** Position of kl (or lk) among the six. */
+export function tensorIndex(name: Component): number {
+  const direct = TENSOR.indexOf(name as TensorComponent);
+  return direct >= 0 ? direct : TENSOR.indexOf((name[1]! + name[0]!) as TensorComponent);
+}
+
+/**
+ * Applies the conventions of a two-electron array with eightfold symmetry: Coulomb, Darwin, spin–spin (six
+ * components, or nine of which kl and lk must agree) and contact.
+ *
+ * @returns `values`: one pairs-triangle, or six one after the other for the role spin-spin, in hartree.
+ */
+export function convertEightfold(
+  stored: StoredArray,
+  part: ResolvedPart,
+  n: number,
+): { values: Float64Array; findings: Finding[] } {
+  const tensor = part.facts.components === 'tensor';
+  const size = pairsTriangleLength(n);
+  const names: readonly (Component | null)[] = tensor ? part.components : [null];
+  const deviation = new Deviation();
+  const transposed = new Deviation();
+  const findings: Finding[] = [];
+  const inPlace = part.layout === 'pairs-triangle' && stored.stride === 1 && (!tensor || isCanonical(names));
+  if (inPlace) {
+    const values = stored.data;
+    for (let i = 0; i < values.length; i++) values[i] = values[i]! * part.factor;
+    return { values, findings };
+  }
+  const values = new Float64Array((tensor ? 6 : 1) * size);
+  const filled = new Map<number, Component>();
+  for (const [c, name] of names.entries()) {
+    const slot = name === null ? 0 : tensorIndex(name);
+    const earlier = filled.get(slot);
+    const out =
+      earlier === undefined ? values.subarray(slot * size, (slot + 1) * size) : new Float64Array(size);
+    fillTriangle(out, stored, part, n, c, name, deviation);
+    if (earlier !== undefined) compareTriangles(values.subarray(slot * size), out, n, earlier, transposed);
+    filled.set(slot, name!);
+    if (stored.otherPlane !== null) findings.push(...checkOtherPlane(stored, part, n, c, deviation.max));
+  }
+  transposed.max = deviation.max;
+  return {
+    values,
+    findings: [
+      ...symmetryFinding(part, stored.origin, deviation, expectation(part), () => cure(stored, part, n)),
+      ...symmetryFinding(part, stored.origin, transposed, 'equal components kl and lk', () => {
+        return 'Components are in another order than the recipe says.';
+      }),
+      ...findings,
+    ],
+  };
+}
+
+const isCanonical = (names: readonly (Component | null)[]) =>
+  names.length === 6 && names.every((name, c) => name === TENSOR[c]);
+
+const expectation = (part: ResolvedPart) =>
+  part.layout === 'pairs' ? 'a matrix over pairs that is symmetric' : 'a real array with eightfold symmetry';
+
+/** Strides of p, q, r, s in a full array, so that (pq|rs) is the element in chemists' order. */
+export function fullStrides(part: ResolvedPart, n: number, stride: number): [number, number, number, number] {
+  const [n3, n2] = [stride * n ** 3, stride * n ** 2];
+  const n1 = stride * n;
+  // Physicists' order stores p r q s. With the momentum pair second, what is called pq here was written as rs.
+  const [first, second, third, fourth] = part.physicists ? [n3, n1, n2, stride] : [n3, n2, n1, stride];
+  return part.momentumSecond ? [third, fourth, first, second] : [first, second, third, fourth];
+}
+
+function fillTriangle(
+  out: Float64Array,
+  stored: StoredArray,
+  part: ResolvedPart,
+  n: number,
+  c: number,
+  name: Component | null,
+  deviation: Deviation,
+): void {
+  const start = stored.plane + c * stored.componentStride;
+  if (part.layout === 'full') fillFromFull(out, stored, part, n, start, name, deviation);
+  else if (part.layout === 'pairs') fillFromPairs(out, stored, part, n, start, name, deviation);
+  else {
+    const { data, stride } = stored;
+    for (let i = 0; i < out.length; i++) {
+      out[i] = part.factor * data[start + i * stride]!;
+      deviation.max = Math.max(deviation.max, Math.abs(out[i]!));
+    }
+  }
+}
+
+function fillFromFull(
+  out: Float64Array,
+  stored: StoredArray,
+  part: ResolvedPart,
+  n: number,
+  start: number,
+  name: Component | null,
+  deviation: Deviation,
+): void {
+  const { data } = stored;
+  const { factor } = part;
+  const [dp, dq, dr, ds] = fullStrides(part, n, stored.stride);
+  let max = deviation.max;
+  let worst = deviation.worst;
+  let position = 0;
+  for (let p = 0; p < n; p++) {
+    for (let q = 0; q <= p; q++) {
+      for (let r = 0; r <= p; r++) {
+        const lastS = r === p ? q : r;
+        for (let s = 0; s <= lastS; s++) {
+          const value = factor * data[start + p * dp + q * dq + r * dr + s * ds]!;
+          out[position++] = value;
+          if (Math.abs(value) > max) max = Math.abs(value);
+          for (let k = 1; k < 8; k++) {
+            // The other seven orders: k's bits swap p↔q, r↔s and the two pairs.
+            const [a, b] = k & 1 ? [q, p] : [p, q];
+            const [d, e] = k & 2 ? [s, r] : [r, s];
+            const at = k & 4 ? d * dp + e * dq + a * dr + b * ds : a * dp + b * dq + d * dr + e * ds;
+            const partner = factor * data[start + at]!;
+            if (Math.abs(partner) > max) max = Math.abs(partner);
+            if (Math.abs(partner - value) > worst) {
+              worst = Math.abs(partner - value);
+              deviation.note(
+                worst,
+                [p, q, r, s],
+                k & 4 ? [d, e, a, b] : [a, b, d, e],
+                [value, partner],
+                name,
+              );
+            }
+          }
+        }
+      }
+    }
+  }
+  deviation.max = max;
+}
+
+function fillFromPairs(
+  out: Float64Array,
+  stored: StoredArray,
+  part: ResolvedPart,
+  n: number,
+  start: number,
+  name: Component | null,
+  deviation: Deviation,
+): void {
+  const { data, stride } = stored;
+  const pairs = numSymmetricPairs(n);
+  for (let P = 0, position = 0; P < pairs; P++) {
+    for (let Q = 0; Q <= P; Q++, position++) {
+      const value = part.factor * data[start + stride * (P * pairs + Q)]!;
+      const partner = part.factor * data[start + stride * (Q * pairs + P)]!;
+      out[position] = value;
+      deviation.max = Math.max(deviation.max, Math.abs(value), Math.abs(partner));
+      if (Math.abs(value - partner) > deviation.worst) {
+        const [pq, rs] = [unpair(P), unpair(Q)];
+        deviation.note(Math.abs(value - partner), [...pq, ...rs], [...rs, ...pq], [value, partner], name);
+      }
+    }
+  }
+}
+
+function unpair(pair: number): [number, number] {
+  let p = Math.floor((Math.sqrt(8 * pair + 1) - 1) / 2);
+  while ((p * (p + 1)) / 2 > pair) p--;
+  while (((p + 1) * (p + 2)) / 2 <= pair) p++;
+  return [p, pair - (p * (p + 1)) / 2];
+}
+
+function compareTriangles(
+  a: Float64Array,
+  b: Float64Array,
+  n: number,
+  name: Component,
+  worst: Deviation,
+): void {
+  const pairs = numSymmetricPairs(n);
+  for (let P = 0, position = 0; P < pairs; P++) {
+    for (let Q = 0; Q <= P; Q++, position++) {
+      const difference = Math.abs(a[position]! - b[position]!);
+      if (difference <= worst.worst) continue;
+      const indices = [...unpair(P), ...unpair(Q)];
+      worst.note(difference, indices, indices, [a[position]!, b[position]!], name);
+    }
+  }
+}
+
+function checkOtherPlane(
+  stored: StoredArray,
+  part: ResolvedPart,
+  n: number,
+  c: number,
+  max: number,
+): Finding[] {
+  const start = stored.otherPlane! + c * stored.componentStride;
+  const size = part.layout === 'full' ? n ** 4 : numSymmetricPairs(n) ** 2;
+  const length = part.layout === 'pairs-triangle' ? pairsTriangleLength(n) : size;
+  let worst = 0;
+  let at = 0;
+  for (let i = 0; i < length; i++) {
+    const value = Math.abs(part.factor * stored.data[start + i * stored.stride]!);
+    if (value > worst) [worst, at] = [value, i];
+  }
+  return sectorFinding(part, stored.origin, worst, max, storedIndices(at, part, n));
+}
+
+/** Indices of a flat position as the file orders them: four orbitals of a full array, else the position itself. */
+export function storedIndices(at: number, part: ResolvedPart, n: number): number[] {
+  if (part.layout !== 'full') return [at];
+  return [Math.floor(at / n ** 3), Math.floor(at / n ** 2) % n, Math.floor(at / n) % n, at % n];
+}
+
+/** Tries the other reading orders of a full array: the one that gives the symmetry names the mistake. */
+function cure(stored: StoredArray, part: ResolvedPart, n: number): string {
+  if (part.layout === 'full') {
+    const trial = new Deviation();
+    const swapped = { ...part, physicists: !part.physicists };
+    fillFromFull(new Float64Array(pairsTriangleLength(n)), stored, swapped, n, stored.plane, null, trial);
+    if (!trial.isBroken && trial.max > 0) {
+      return `The symmetry holds with "order": "${swapped.physicists ? 'physicists' : 'chemists'}".`;
+    }
+  }
+  return 'Not all permutations may be filled (then use an index-list with "fill": "symmetry"), or the axes, the role or the component axis differ.';
+}

@@ -1,0 +1,129 @@
+import { InputError, type JobContext } from '../../job';
+import type { Provenance } from '../integral-set';
+import type { RawArray, SpinFreeContents, SpinorContents } from '../raw';
+import { readFcidump, readNpy, readNpz, sniffFormat } from '../readers';
+import type { ByteSource, FileSet, ReadPlatform } from '../source';
+import type { ListEntries } from './index-list';
+import { nearest } from './nearest';
+import type { ResolvedPart } from './part';
+import type { Recipe } from './recipe';
+import { orbitalsOfShape } from './stored';
+
+/** What the file of a part holds. */
+export type PartContents =
+  | SpinFreeContents
+  | SpinorContents
+  | { readonly kind: 'array'; readonly raw: RawArray }
+  | { readonly kind: 'list'; readonly list: ListEntries };
+
+/** @throws InputError `missing-file`, with the nearest name in the folder. */
+export function openFile(files: FileSet, path: string): ByteSource {
+  const source = files.open(path);
+  if (source !== undefined) return source;
+  const near = nearest(
+    path,
+    files.list().map((file) => file.path),
+  );
+  throw new InputError({
+    code: 'missing-file',
+    where: path,
+    found: `no such file in ${files.name}`,
+    expected: 'the file the recipe names',
+    mend:
+      near === null
+        ? 'Put it beside the recipe or correct the path.'
+        : `The nearest name there is "${near}".`,
+  });
+}
+
+/**
+ * Reads the file of one part with the reader its contents call for.
+ *
+ * @param orbitals - needed for lists, whose indices must lie in range; null before it is known.
+ */
+export async function readPart(
+  part: ResolvedPart,
+  _orbitals: number | null,
+  files: FileSet,
+  platform: ReadPlatform,
+  context: JobContext,
+): Promise<PartContents> {
+  const source = openFile(files, part.file);
+  const format = await sniffFormat(source);
+  if (part.facts.numIndices === 0) {
+    if (format === 'fcidump') return readFcidump(source, context);
+    throw wrongFormat(part, format, 'an FCIDUMP or a TREXIO file');
+  }
+  if (part.layout === 'index-list') {
+    throw wrongFormat(part, format, 'an index–value list');
+  }
+  if (format === 'npy') return { kind: 'array', raw: await readNpy(source, context) };
+  if (format === 'npz') {
+    return { kind: 'array', raw: await readNpz(source, part.dataset ?? undefined, context) };
+  }
+  if (format === 'hdf5') {
+    const file = await platform.openHdf5(source);
+    const path = requiredDataset(part, 'dataset');
+    const dataset = file.dataset(path)!;
+    const data = await dataset.readAll();
+    file.close();
+    return {
+      kind: 'array',
+      raw: {
+        origin: `${source.path}:${path}`,
+        shape: dataset.shape,
+        complex: dataset.kind === 'complex',
+        data,
+      },
+    };
+  }
+  throw wrongFormat(part, format, 'a NumPy or HDF5 array');
+}
+
+/** Title and files in part order, each file once. */
+export function provenanceOf(recipe: Recipe, files: FileSet, parts: readonly ResolvedPart[]): Provenance {
+  const paths = [...new Set(parts.map((part) => part.file))];
+  return {
+    title: recipe.title ?? files.name,
+    files: paths.map((path) => ({ path, bytes: openFile(files, path).size })),
+  };
+}
+
+/** Number of orbitals as the first array tells it by its shape, or null where there are only lists. */
+export async function orbitalsFromArrays(
+  parts: readonly ResolvedPart[],
+  files: FileSet,
+  platform: ReadPlatform,
+  context: JobContext,
+): Promise<number | null> {
+  for (const part of parts) {
+    if (part.layout === 'index-list') continue;
+    const read = await readPart(part, null, files, platform, context);
+    if (read.kind === 'array') return orbitalsOfShape(read.raw, part);
+  }
+  return null;
+}
+
+function requiredDataset(part: ResolvedPart, word: string): string {
+  if (part.dataset !== null) return part.dataset;
+  throw new InputError({
+    code: 'no-dataset',
+    where: part.file,
+    found: `no "dataset" in part "${part.id}"`,
+    expected: `the name of a ${word}`,
+    mend: 'Add "dataset" to the part.',
+  });
+}
+
+function wrongFormat(part: ResolvedPart, format: string, expected: string): InputError {
+  return new InputError({
+    code: 'wrong-format',
+    where: part.file,
+    found: format === 'unknown' ? 'no format known here' : `a file of format ${format}`,
+    expected: `${expected} for part "${part.id}" (role "${part.role}")`,
+    mend:
+      format === 'text'
+        ? 'For a text list set "layout": "index-list".'
+        : 'Correct role or file in the recipe.',
+  });
+}
