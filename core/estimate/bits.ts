@@ -1,0 +1,108 @@
+import type { EncodingShape } from '../encode/encoding';
+import type { ErrorBudget } from './target';
+
+/** One bit width: what is used, and what the two formulas ask for. */
+export interface BitChoice {
+  readonly used: number;
+  /** Bits that a worst-case bound asks for; null where the encoding has no such register. */
+  readonly rigorous: number | null;
+  /** Bits that the statistical estimate asks for, guard bits not included. */
+  readonly estimate: number | null;
+  readonly chosen: 'given' | 'estimate plus guard bits' | 'least sensible' | 'none needed';
+}
+
+export interface BitChoices {
+  /** ℵ: bits of the keep value in alias sampling. */
+  readonly keep: BitChoice;
+  /** β: bits of an angle. */
+  readonly rotation: BitChoice;
+}
+
+/** λ split as the bit formulas need it, hartree. */
+export interface LambdaSplit {
+  readonly oneBody: number;
+  readonly twoBody: number;
+}
+
+/** Added to the estimate: it held within a factor 4 of exact norms on small molecules (computed, OH STO-3G). */
+export const GUARD_BITS = 2;
+/** Below this a table is too coarse whatever the budget says. Common practice, no source. */
+export const LEAST_BITS = 6;
+
+/**
+ * ℵ and β from the error budget. Rigorous: sums of worst cases. Estimate: independent rounding errors of many rows,
+ * all rows taken to weigh alike. `auto` is the estimate and {@link GUARD_BITS}.
+ */
+export function chooseBits(
+  shape: EncodingShape,
+  lambda: LambdaSplit,
+  budget: Pick<ErrorBudget, 'prepare' | 'rotation'>,
+  given: { readonly keep: number | 'auto'; readonly rotation: number | 'auto' },
+): BitChoices {
+  const keep = keepErrors(shape, lambda);
+  const rotation = rotationErrors(shape, lambda);
+  return {
+    keep: choose(keep, budget.prepare, given.keep),
+    rotation: rotation === null ? NONE : choose(rotation, budget.rotation, given.rotation),
+  };
+}
+
+const NONE: BitChoice = { used: 0, rigorous: null, estimate: null, chosen: 'none needed' };
+
+/** Energy error at one bit: with n bits it is 2^−n times that. */
+interface ErrorAtZeroBits {
+  readonly rigorous: number;
+  readonly estimate: number;
+}
+
+function choose(error: ErrorAtZeroBits, allowed: number, given: number | 'auto'): BitChoice {
+  const rigorous = bitsBelow(error.rigorous, allowed);
+  const estimate = bitsBelow(error.estimate, allowed);
+  if (given !== 'auto') return { used: given, rigorous, estimate, chosen: 'given' };
+  const wanted = estimate + GUARD_BITS;
+  return wanted >= LEAST_BITS
+    ? { used: wanted, rigorous, estimate, chosen: 'estimate plus guard bits' }
+    : { used: LEAST_BITS, rigorous, estimate, chosen: 'least sensible' };
+}
+
+function bitsBelow(errorAtZeroBits: number, allowed: number): number {
+  return errorAtZeroBits <= allowed ? 0 : Math.ceil(Math.log2(errorAtZeroBits / allowed));
+}
+
+/**
+ * Alias sampling over L rows rounds each probability to a multiple of 1/(L 2^ℵ). Outer table: λ 2^−ℵ, or with
+ * independent signs λ 2^−ℵ/√(12 L). Inner tables: the square doubles twice, 4λ₂ 2^−ℵ; the one-body rows count once.
+ */
+function keepErrors(shape: EncodingShape, { oneBody, twoBody }: LambdaSplit): ErrorAtZeroBits {
+  const lambda = oneBody + twoBody;
+  if (shape.kind === 'sparse') {
+    return { rigorous: lambda, estimate: lambda / Math.sqrt(12 * Math.max(shape.rows, 1)) };
+  }
+  const spread = (items: number) => Math.sqrt(12 * Math.max(items, 1));
+  return {
+    rigorous: lambda + 4 * twoBody + oneBody,
+    estimate:
+      lambda / spread(shape.factors + 1) +
+      (4 * twoBody) / spread(shape.rows) +
+      oneBody / spread(shape.oneBodyRows),
+  };
+}
+
+/**
+ * Angles on a grid of 2π/2^β move a unit vector by at most √n π/2^β for n angles: the metric of the sphere has
+ * coefficients ≤ 1 (for spinors the phases together count as one more). A vector error δ costs 8δλ in a square and
+ * 2δλ in a one-body term; statistically δ is (2π/2^β)/√12 · √((n + 2)/2), and rows add up like 1/√rows.
+ */
+function rotationErrors(shape: EncodingShape, { oneBody, twoBody }: LambdaSplit): ErrorAtZeroBits | null {
+  if (shape.kind === 'sparse') return null;
+  const angles = shape.kind === 'spinor' ? 2 * shape.orbitals : shape.orbitals - 1;
+  const worst = Math.PI * Math.sqrt(angles);
+  const typical = ((2 * Math.PI) / Math.sqrt(12)) * Math.sqrt((angles + 2) / 2);
+  return {
+    rigorous: worst * (8 * twoBody + 2 * oneBody),
+    estimate:
+      typical *
+      ((4 * twoBody) / Math.sqrt(Math.max(shape.rows, 1)) +
+        (2 * oneBody) / Math.sqrt(Math.max(shape.oneBodyRows, 1))),
+  };
+}
