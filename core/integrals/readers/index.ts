@@ -1,3 +1,10 @@
 export { readFcidump } from './fcidump';
+export { openWithModule } from './h5-file';
+export type { H5Module } from './h5-module';
+export { readHdf5Dataset } from './hdf5';
+export { type IndexList, type IndexListFormat, readIndexList } from './index-list';
 export { fileSetFromMemory, memorySource } from './memory';
+export { readNpy } from './npy';
+export { listNpz, readNpz } from './npz';
 export { type Format, sniffFormat } from './sniff';
+export { isTrexio, readTrexio } from './trexio';
