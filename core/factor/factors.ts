@@ -1,4 +1,5 @@
-import type { Mu, Sector } from '../hamiltonian/operators';
+import type { Mu, Sector, TripletOperator } from '../hamiltonian/operators';
+import type { ComplexMatrix } from '../linalg';
 
 /** Which physical part of the two-electron tensor a block factorises. */
 export type BlockPart = 'coulomb' | 'spin-orbit' | 'spin-spin' | 'even' | 'odd';
@@ -17,10 +18,16 @@ export interface SquareFactors {
   readonly planes: readonly Mu[];
   readonly dim: number;
   readonly count: number;
-  /** count weights w_t, hartree where the vectors have unit norm. Any sign. */
+  /** count weights w_t, hartree; the vectors have unit norm. Any sign. */
   readonly weights: Float64Array;
   /** count × dim. */
   readonly vectors: Float64Array;
+  /**
+   * count × spectrum width, plane after plane: the n eigenvalues, ascending, of a symmetric plane; the ⌊n/2⌋
+   * numbers a_j, descending, of an antisymmetric one (eigenvalues ±a_j). Every λ, median and row count of the
+   * triplet form follows from these alone.
+   */
+  readonly spectra: Float64Array;
 }
 
 /**
@@ -46,9 +53,31 @@ export interface TripleFactors {
   readonly antisymmetric: Float64Array;
   /** count × npair. */
   readonly symmetric: Float64Array;
+  /** count × ⌊n/2⌋: the a_j of each a_i, descending. */
+  readonly antisymmetricNorms: Float64Array;
+  /** count × n: the eigenvalues of each S_i, ascending. */
+  readonly symmetricValues: Float64Array;
 }
 
-export type FactorBlock = SquareFactors | TripleFactors;
+/**
+ * Factors of a complex spinor Hamiltonian: ½ Σ_t w_t (L^t)², L^t Hermitian over M spinors. `vectors` is in the
+ * orthonormal Hermitian basis over M: first the symmetric pairs P ≥ Q, then the antisymmetric pairs P > Q.
+ * `mixed` = the file's time reversal could not be used (spinors not in Kramers pairs, or a magnetic field).
+ */
+export interface SpinorFactors {
+  readonly kind: 'spinor-squares';
+  readonly part: 'even' | 'odd' | 'mixed';
+  readonly spinors: number;
+  readonly count: number;
+  /** Hartree, any sign; the vectors have unit norm. */
+  readonly weights: Float64Array;
+  /** count × M². */
+  readonly vectors: Float64Array;
+  /** count × M eigenvalues, ascending. */
+  readonly spectra: Float64Array;
+}
+
+export type FactorBlock = SquareFactors | TripleFactors | SpinorFactors;
 
 /** Grouping of the two-body part. */
 export type Grouping = 'joint' | 'separate';
@@ -59,16 +88,23 @@ export interface Residual {
   readonly frobenius: number;
   /** LCU one-norm of the dropped part: rigorous bound on any eigenvalue's shift, hartree. */
   readonly oneNormBound: number;
-  /** Factors or triples dropped. */
+  /** Factors, triples or coefficients dropped. */
   readonly dropped: number;
 }
+
+export const NO_RESIDUAL: Residual = { frobenius: 0, oneNormBound: 0, dropped: 0 };
 
 export interface Factorisation {
   readonly grouping: Grouping;
   readonly blocks: readonly FactorBlock[];
   readonly residual: Residual;
-  /** Mean field of the dropped spin–orbit factors, folded into the one-body part (even sector), or null. */
-  readonly foldedMeanField: import('../hamiltonian/operators').TripletOperator | null;
-  /** Energy constant that goes with the folded mean field, hartree. */
+  /**
+   * One-body operator in hartree that takes the place of what truncation dropped, to be added to k of the product form,
+   * or null: even sector for spatial orbitals, a Hermitian matrix over spinors.
+   */
+  readonly foldedMeanField: TripletOperator | ComplexMatrix | null;
+  /** Energy constant that goes with it, hartree. */
   readonly foldedConstant: number;
+  /** What a reader should know, e.g. that an indefinite charge part was split by eigenvectors. */
+  readonly notes: readonly string[];
 }

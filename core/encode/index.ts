@@ -1,0 +1,16 @@
+export { buildEncoding, type EncodingOptions } from './build';
+export type { Encoding, EncodingShape, LambdaByPart } from './encoding';
+export { encodeTasks } from './tasks';
+export {
+  AXES,
+  DEFAULT_VARIANTS,
+  expandVariants,
+  type FactorisationAxis,
+  formatVariant,
+  type GroupingAxis,
+  type LookupAxis,
+  parseVariant,
+  type ShiftAxis,
+  type SpinAxis,
+  type VariantName,
+} from './variant';

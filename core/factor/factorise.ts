@@ -1,0 +1,97 @@
+import type { SpatialHamiltonian, SpinHamiltonian } from '../hamiltonian/hamiltonian';
+import { numSymmetricPairs } from '../integrals/integral-set';
+import { InputError, type JobContext } from '../job';
+import { chargeFactors } from './coulomb';
+import type { Factorisation, Grouping, SquareFactors, TripleFactors } from './factors';
+import { jointFactors } from './joint';
+import { spinorFactorisation } from './spinor';
+import { eigenvectors, squareFactors } from './squares';
+import { spinSpinMatrix } from './super-matrix';
+import { spinOrbitTriples } from './triples';
+import { type Remainder, truncate } from './truncate';
+
+export interface FactoriseOptions {
+  readonly grouping: Grouping;
+  /** Largest sum of LCU norms that may be dropped, hartree, ≥ 0. @defaultValue 0 = keep all above 1e-13 Eh */
+  readonly threshold?: number;
+  /**
+   * n numbers 0…2: the spin-averaged reference whose mean field replaces dropped spin–orbit factors.
+   * @defaultValue 1 everywhere, the reference of the Majorana form
+   */
+  readonly occupations?: ArrayLike<number>;
+}
+
+/** Cholesky may leave this part of the threshold; the rest is for whole factors. */
+const CHOLESKY_SHARE = 0.01;
+
+/**
+ * Factors of the two-electron part: ½ Σ g T T = ½ Σ_t w_t (L^t)² (+ triples), in product form.
+ *
+ * `joint`: eigenvectors of each time-reversal sector. `separate`: raw pivoted-Cholesky columns of the charge part,
+ * one SVD per Cartesian component of the two-electron spin–orbit part, eigenvectors of the spin–spin part.
+ *
+ * @throws InputError `sector-too-large`, `bad-threshold`, `bad-occupations`.
+ */
+export async function factorise(
+  hamiltonian: SpinHamiltonian,
+  options: FactoriseOptions,
+  ctx: JobContext,
+): Promise<Factorisation> {
+  const { grouping, threshold = 0 } = options;
+  if (!(threshold >= 0 && Number.isFinite(threshold))) {
+    throw new InputError({
+      code: 'bad-threshold',
+      where: '--threshold',
+      found: `${threshold}`,
+      expected: 'a number ≥ 0 in hartree',
+      mend: 'Give 0 to keep everything.',
+    });
+  }
+  if (hamiltonian.kind === 'spinor') return spinorFactorisation(hamiltonian, grouping, threshold, ctx);
+  const occupations = checkOccupations(hamiltonian, options.occupations);
+  const { blocks, notes, remainder } =
+    grouping === 'joint'
+      ? { blocks: await jointFactors(hamiltonian, ctx), notes: [], remainder: null }
+      : await separateFactors(hamiltonian, threshold, ctx);
+  await ctx.checkpoint();
+  const kept = truncate(blocks, hamiltonian.orbitals, threshold, occupations, remainder);
+  return { grouping, notes, ...kept };
+}
+
+async function separateFactors(h: SpatialHamiltonian, threshold: number, ctx: JobContext) {
+  const n = h.orbitals;
+  const blocks: (SquareFactors | TripleFactors)[] = [];
+  const notes: string[] = [];
+  let remainder: Remainder | null = null;
+  const { charge, spinSpin } = h.g;
+  if (charge) {
+    const factors = await chargeFactors(n, charge, (4 * CHOLESKY_SHARE * threshold) / n, ctx);
+    remainder = factors.remainder;
+    if (!factors.semidefinite) {
+      notes.push(
+        'the charge part is indefinite (scalar relativistic terms subtract a contact interaction): eigenvectors instead of Cholesky columns',
+      );
+    }
+    blocks.push(await squareFactors('coulomb', 'even', [0], n, factors, ctx));
+  }
+  blocks.push(...(await spinOrbitTriples(h, ctx)));
+  if (spinSpin) {
+    const dim = 3 * numSymmetricPairs(n);
+    const vectors = await eigenvectors(spinSpinMatrix(n, spinSpin), dim, ctx);
+    blocks.push(await squareFactors('spin-spin', 'odd', [1, 2, 3], n, vectors, ctx));
+  }
+  return { blocks, notes, remainder };
+}
+
+function checkOccupations(h: SpatialHamiltonian, occupations?: ArrayLike<number>): ArrayLike<number> {
+  if (!occupations) return new Float64Array(h.orbitals).fill(1);
+  const list = Array.from(occupations);
+  if (list.length === h.orbitals && list.every((x) => x >= 0 && x <= 2)) return occupations;
+  throw new InputError({
+    code: 'bad-occupations',
+    where: 'reference occupations',
+    found: `${list.length} numbers from ${Math.min(...list)} to ${Math.max(...list)}`,
+    expected: `${h.orbitals} numbers 0…2`,
+    mend: 'Give one occupation per orbital.',
+  });
+}

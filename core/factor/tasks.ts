@@ -1,0 +1,6 @@
+import { spectraTask } from './spectra';
+import { hermitianSpectraTask } from './spinor';
+import { svdTask } from './triples';
+
+/** Tasks that workers must know by name to run factorisations in parallel. */
+export const factorTasks = [spectraTask, svdTask, hermitianSpectraTask] as const;

@@ -1,0 +1,136 @@
+import { zeroOperator } from '../hamiltonian/operators';
+import { antisymmetricNormsBatch, multiply } from '../linalg';
+import { traceOfPairs } from './elements';
+import type { Factorisation, SquareFactors, TripleFactors } from './factors';
+import { type FoldTarget, foldSquare, foldTriple } from './mean-field';
+import { lcuNorms, squareOneNorms } from './one-norms';
+import { selectFactors } from './select';
+import { ZERO_WEIGHT } from './squares';
+
+type SpatialBlock = SquareFactors | TripleFactors;
+
+/** What the Cholesky decomposition itself left out: bounds and the one-body part that stays. */
+export interface Remainder {
+  /** Trace of the remainder, hartree. */
+  readonly trace: number;
+  /** Σ w τ L over the remainder, coordinates over symmetric pairs, hartree. */
+  readonly oneBody: Float64Array;
+  /** Σ w τ², hartree. */
+  readonly traceSquare: number;
+}
+
+/** Which factors to keep: of all blocks together, the lightest are dropped while their sum stays ≤ budget. */
+export function chooseKept(
+  norms: readonly Float64Array[],
+  sizes: readonly Float64Array[],
+  budget: number,
+): { readonly kept: number[][]; readonly dropped: number[][]; readonly sum: number } {
+  const kept: number[][] = norms.map(() => []);
+  const dropped: number[][] = norms.map(() => []);
+  const candidates = norms.flatMap((block, b) =>
+    Array.from(block, (norm, t) => ({ norm, b, t })).filter(({ t }) => sizes[b]![t]! > ZERO_WEIGHT),
+  );
+  candidates.sort((x, y) => x.norm - y.norm || x.b - y.b || x.t - y.t);
+  let sum = 0;
+  let open = true;
+  for (const { norm, b, t } of candidates) {
+    if (open && sum + norm <= budget) {
+      sum += norm;
+      dropped[b]!.push(t);
+    } else {
+      open = false;
+      kept[b]!.push(t);
+    }
+  }
+  for (const list of [...kept, ...dropped]) list.sort((x, y) => x - y);
+  return { kept, dropped, sum };
+}
+
+/** Sizes of the weights, |w_t| or s_t. */
+export function weightSizes(block: SpatialBlock): Float64Array {
+  return block.kind === 'triples' ? block.strengths : block.weights.map(Math.abs);
+}
+
+/**
+ * Truncation: factors are dropped in ascending order of their LCU norm while the sum stays ≤ `threshold` (hartree).
+ *
+ * Dropped are the unitaries, ½w(M² − ½Λ²) with M = L − τ; the one-body part and the constant of a factor stay, except
+ * that its spin components become the mean field over `occupations` (mean-field.ts). The bound is the sum dropped plus
+ * the one-norm of that replacement, so it may exceed the threshold by the latter.
+ */
+export function truncate(
+  blocks: readonly SpatialBlock[],
+  n: number,
+  threshold: number,
+  occupations: ArrayLike<number>,
+  remainder: Remainder | null,
+): Pick<Factorisation, 'residual' | 'foldedMeanField' | 'foldedConstant'> & { blocks: SpatialBlock[] } {
+  // Nuclear norm ≤ √n · Frobenius norm, so the remainder's one-norm is at most ¼ n · trace.
+  const leftOut = remainder ? 0.25 * n * remainder.trace : 0;
+  const norms = blocks.map(lcuNorms);
+  const choice = chooseKept(norms, blocks.map(weightSizes), Math.max(0, threshold - leftOut));
+  const target: FoldTarget = { folded: zeroOperator('even', n), difference: new Float64Array(3 * n * n) };
+  let constant = 0;
+  let frobeniusSquare = 0;
+  let count = 0;
+  blocks.forEach((block, b) => {
+    const dropped = choice.dropped[b]!;
+    count += dropped.length;
+    frobeniusSquare += frobeniusSquareOf(block, dropped);
+    const lambdas = block.kind === 'squares' ? squareOneNorms(block) : null;
+    for (const t of dropped) {
+      if (block.kind === 'triples') {
+        foldTriple(target, block, t, occupations);
+        continue;
+      }
+      foldSquare(target, block, t, occupations);
+      const charged = block.sector === 'even' && block.planes[0] === 0;
+      const tau = charged ? traceOfPairs(block.vectors, t * block.dim, n) : 0;
+      constant += block.weights[t]! * (0.25 * lambdas![t]! ** 2 - 0.5 * tau ** 2);
+    }
+  });
+  if (remainder) {
+    addPairs(target.folded.planes, remainder.oneBody, n);
+    constant += leftOut - 0.5 * remainder.traceSquare;
+  }
+  const replacement = antisymmetricNormsBatch(target.difference, 3, n).reduce((sum, a) => sum + 2 * a, 0);
+  return {
+    blocks: blocks.map((block, b) =>
+      choice.kept[b]!.length === block.count ? block : selectFactors(block, choice.kept[b]!),
+    ),
+    residual: {
+      frobenius: Math.sqrt(frobeniusSquare) + (remainder?.trace ?? 0),
+      oneNormBound: choice.sum + leftOut + replacement,
+      dropped: count,
+    },
+    foldedMeanField: count > 0 || remainder ? target.folded : null,
+    foldedConstant: constant,
+  };
+}
+
+function addPairs(plane: Float64Array, pairs: Float64Array, n: number): void {
+  for (let p = 0, i = 0; p < n; p++) {
+    for (let q = 0; q < p; q++, i++) {
+      plane[p * n + q]! += Math.SQRT1_2 * pairs[i]!;
+      plane[q * n + p]! += Math.SQRT1_2 * pairs[i]!;
+    }
+    plane[p * n + p]! += pairs[i++]!;
+  }
+}
+
+/** ‖Σ w v vᵀ‖² over the dropped factors; raw Cholesky columns are not orthogonal, hence the Gram matrix. */
+function frobeniusSquareOf(block: SpatialBlock, dropped: readonly number[]): number {
+  if (block.kind === 'triples') {
+    // Each array stands twice in g, as g^{k0} and as g^{0k}.
+    const scale = 2 * (block.sameScale ** 2 + block.otherScale ** 2);
+    return dropped.reduce((sum, t) => sum + scale * block.strengths[t]! ** 2, 0);
+  }
+  const m = dropped.length;
+  const { vectors, weights } = selectFactors(block, dropped);
+  const gram = multiply(vectors, vectors, m, block.dim, m, { transposeB: true });
+  let sum = 0;
+  for (let i = 0; i < m; i++) {
+    for (let j = 0; j < m; j++) sum += weights[i]! * weights[j]! * gram[i * m + j]! ** 2;
+  }
+  return Math.max(0, sum);
+}
