@@ -1,0 +1,105 @@
+// Implicit QL on a symmetric tridiagonal matrix.
+
+const EPSILON: f64 = 2.220446049250313e-16;
+const MAX_STEPS = 80;
+
+/**
+ * d: diagonal, becomes the eigenvalues, unordered; e[i]: between i and i+1, destroyed. The rotations go to the n rows
+ * (stride ld, `width` numbers) of z, so that rows which start as Qᵀ end as eigenvectors; width = 0 gives values only.
+ * Returns 0, or 1 if an eigenvalue did not converge.
+ */
+export function qlSteps(d: i32, e: i32, n: i32, z: i32, ld: i32, width: i32): i32 {
+  if (n == 0) return 0;
+  const pd = <usize>d << 3, pe = <usize>e << 3;
+  store<f64>(pe + (<usize>(n - 1) << 3), 0);
+  let scale: f64 = 0;
+  for (let i: usize = 0; i < <usize>n << 3; i += 8) scale = max(scale, max(abs(load<f64>(pd + i)), abs(load<f64>(pe + i))));
+  if (scale == 0) return 0;
+  // Largest element 1: squares cannot overflow, and what underflows is far below the accuracy.
+  scaleBoth(pd, pe, n, 1 / scale);
+  for (let l = 0; l < n; l++) {
+    for (let step = 0; ; step++) {
+      const m = splitAfter(pd, pe, l, n);
+      if (m == l) break;
+      if (step > MAX_STEPS) return 1;
+      sweep(pd, pe, l, m, <usize>z << 3, <usize>ld << 3, <usize>width << 3);
+    }
+  }
+  scaleBoth(pd, pe, n, scale);
+  return 0;
+}
+
+function scaleBoth(pd: usize, pe: usize, n: i32, f: f64): void {
+  for (let i: usize = 0; i < <usize>n << 3; i += 8) {
+    store<f64>(pd + i, load<f64>(pd + i) * f);
+    store<f64>(pe + i, load<f64>(pe + i) * f);
+  }
+}
+
+/** First position from l on whose off-diagonal element is negligible. */
+// @ts-ignore: decorator
+@inline
+function splitAfter(pd: usize, pe: usize, l: i32, n: i32): i32 {
+  let m = l;
+  let here = abs(load<f64>(pd + (<usize>l << 3)));
+  for (; m < n - 1; m++) {
+    const at = <usize>m << 3;
+    const next = abs(load<f64>(pd + at, 8));
+    // The floor is for zero diagonals, where a relative test would never be met.
+    if (abs(load<f64>(pe + at)) <= EPSILON * (here + next + 0.0625)) break;
+    here = next;
+  }
+  return m;
+}
+
+/** One implicit QL step with Wilkinson's shift on rows l…m. */
+// @ts-ignore: decorator
+@inline
+function sweep(pd: usize, pe: usize, l: i32, m: i32, z: usize, ld: usize, width: usize): void {
+  const dl = pd + (<usize>l << 3), el = pe + (<usize>l << 3), em = pe + (<usize>m << 3);
+  let g = (load<f64>(dl, 8) - load<f64>(dl)) / (2 * load<f64>(el));
+  let r = sqrt(g * g + 1);
+  g = load<f64>(pd + (<usize>m << 3)) - load<f64>(dl) + load<f64>(el) / (g >= 0 ? g + r : g - r);
+  let s: f64 = 1, c: f64 = 1, p: f64 = 0;
+  for (let i = m - 1; i >= l; i--) {
+    const at = <usize>i << 3;
+    const f = s * load<f64>(pe + at), b = c * load<f64>(pe + at);
+    r = sqrt(f * f + g * g);
+    store<f64>(pe + at, r, 8);
+    if (r == 0) {
+      // The matrix fell apart in the middle of the step.
+      store<f64>(pd + at, load<f64>(pd + at, 8) - p, 8);
+      store<f64>(em, 0);
+      return;
+    }
+    const inverse = 1 / r;
+    s = f * inverse;
+    c = g * inverse;
+    g = load<f64>(pd + at, 8) - p;
+    const t = (load<f64>(pd + at) - g) * s + 2 * c * b;
+    p = s * t;
+    store<f64>(pd + at, g + p, 8);
+    g = c * t - b;
+    if (width > 0) rotate(z + <usize>i * ld, ld, width, c, s);
+  }
+  store<f64>(dl, load<f64>(dl) - p);
+  store<f64>(el, g);
+  store<f64>(em, 0);
+}
+
+/** Rotates row x and the row after it. */
+// @ts-ignore: decorator
+@inline
+function rotate(x: usize, ld: usize, width: usize, c: f64, s: f64): void {
+  const y = x + ld, vc = f64x2.splat(c), vs = f64x2.splat(s), even = width & ~15;
+  for (let k: usize = 0; k < even; k += 16) {
+    const a = v128.load(x + k), b = v128.load(y + k);
+    v128.store(y + k, f64x2.add(f64x2.mul(vs, a), f64x2.mul(vc, b)));
+    v128.store(x + k, f64x2.sub(f64x2.mul(vc, a), f64x2.mul(vs, b)));
+  }
+  if (even < width) {
+    const a = load<f64>(x + even), b = load<f64>(y + even);
+    store<f64>(y + even, s * a + c * b);
+    store<f64>(x + even, c * a - s * b);
+  }
+}
