@@ -110,7 +110,7 @@ async function loadSpatial(
     meanFieldCoversActive: parts.some((part) => part.coversActive),
     provenance: provenanceOf(recipe, files, parts),
   };
-  return { ...set, findings: [...findings, ...(await validate({ ...set, findings }, context))] };
+  return { ...set, findings: [...findings, ...(await validate(set, context))] };
 }
 
 function buildPart(part: ResolvedPart, read: PartContents, orbitals: number): BuiltPart {

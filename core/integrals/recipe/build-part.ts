@@ -1,8 +1,9 @@
 import type { Finding } from '../../job';
 import { type OneElectronPart, pairsTriangleLength, type TwoElectronPart } from '../integral-set';
 import type { RawArray, SpinFreeContents } from '../raw';
+import type { IndexList } from '../readers';
 import { convertEightfold } from './eightfold';
-import { convertList, expandSummedList, type ListEntries } from './index-list';
+import { convertList, expandSummedList } from './index-list';
 import type { ResolvedPart } from './part';
 import { asRole, convertSpinOrbit } from './spin-orbit';
 import { storedArray } from './stored';
@@ -63,7 +64,7 @@ export function buildArray(part: ResolvedPart, raw: RawArray, n: number): BuiltP
 }
 
 /** A part given as an index–value list. */
-export function buildList(part: ResolvedPart, list: ListEntries, n: number): BuiltPart {
+export function buildList(part: ResolvedPart, list: IndexList, n: number): BuiltPart {
   if (part.role === 'two-electron spin-orbit summed') return buildSummedList(part, list, n);
   const { values, findings } = convertList(list, part, n);
   if (part.facts.numIndices === 2) return oneElectronPart(part, list.origin, values, findings);
@@ -77,7 +78,7 @@ export function buildList(part: ResolvedPart, list: ListEntries, n: number): Bui
   };
 }
 
-function buildSummedList(part: ResolvedPart, list: ListEntries, n: number): BuiltPart {
+function buildSummedList(part: ResolvedPart, list: IndexList, n: number): BuiltPart {
   const count = part.components.length;
   const shape = count > 1 ? [count, n, n, n, n] : [n, n, n, n];
   const data = expandSummedList(list, part, n);

@@ -3,7 +3,7 @@ import { numSymmetricPairs, pairsTriangleLength } from '../integral-set';
 import type { ResolvedPart } from './part';
 import type { Component, TensorComponent } from './recipe';
 import type { StoredArray } from './stored';
-import { Deviation, sectorFinding, symmetryFinding } from './symmetry';
+import { Deviation, sectorFinding, symmetryFinding, unpair } from './symmetry';
 
 /** Order of the six components in a spin–spin part. */
 export const TENSOR: readonly TensorComponent[] = ['xx', 'xy', 'xz', 'yy', 'yz', 'zz'];
@@ -169,13 +169,6 @@ function fillFromPairs(
       }
     }
   }
-}
-
-function unpair(pair: number): [number, number] {
-  let p = Math.floor((Math.sqrt(8 * pair + 1) - 1) / 2);
-  while ((p * (p + 1)) / 2 > pair) p--;
-  while (((p + 1) * (p + 2)) / 2 <= pair) p++;
-  return [p, pair - (p * (p + 1)) / 2];
 }
 
 function compareTriangles(

@@ -5,24 +5,11 @@ import {
   pairsTriangleLength,
   symmetricPair,
 } from '../integral-set';
+import type { IndexList } from '../readers';
 import { tensorIndex } from './eightfold';
 import type { ResolvedPart } from './part';
 import type { Component } from './recipe';
 import { element, SYMMETRY_TOLERANCE, sectorFinding } from './symmetry';
-
-/** Entries of an index–value list, indices already 0-based and below n. */
-export interface ListEntries {
-  readonly origin: string;
-  readonly count: number;
-  /** count × numIndices. */
-  readonly indices: Int32Array;
-  /** Position in the part's components, per entry; null where there is one component or none. */
-  readonly components: Int32Array | null;
-  readonly re: Float64Array;
-  readonly im: Float64Array | null;
-  /** Line number in the file, 1-based, per entry. */
-  readonly lines: Int32Array;
-}
 
 /** A duplicate may differ by this much of the largest element: two printouts of the same number. */
 const DUPLICATE_TOLERANCE = 1e-10;
@@ -46,7 +33,7 @@ interface Slot {
  * @throws InputError `duplicate-element` with both line numbers.
  */
 export function convertList(
-  list: ListEntries,
+  list: IndexList,
   part: ResolvedPart,
   n: number,
 ): { values: Float64Array; findings: Finding[] } {
@@ -92,23 +79,19 @@ export function convertList(
 
 interface Kind {
   readonly size: number;
-  locate(slot: Slot, list: ListEntries, entry: number): void;
+  locate(slot: Slot, list: IndexList, entry: number): void;
   expand(slots: Float64Array): Float64Array;
 }
 
 function kindOf(part: ResolvedPart, n: number): Kind {
-  const vectorOf = (list: ListEntries, e: number) =>
+  const vectorOf = (list: IndexList, e: number) =>
     'xyz'.indexOf(part.components[list.components?.[e] ?? 0] as Component);
   if (part.facts.numIndices === 2) return twoIndexKind(part, n, vectorOf);
   if (part.facts.components === 'vector') return spinOrbitKind(part, n, vectorOf);
   return eightfoldKind(part, n);
 }
 
-function twoIndexKind(
-  part: ResolvedPart,
-  n: number,
-  vectorOf: (list: ListEntries, e: number) => number,
-): Kind {
+function twoIndexKind(part: ResolvedPart, n: number, vectorOf: (list: IndexList, e: number) => number): Kind {
   const vector = part.facts.components === 'vector';
   const pairs = numSymmetricPairs(n);
   return {
@@ -139,7 +122,7 @@ function twoIndexKind(
 function spinOrbitKind(
   part: ResolvedPart,
   n: number,
-  vectorOf: (list: ListEntries, e: number) => number,
+  vectorOf: (list: IndexList, e: number) => number,
 ): Kind {
   const [anti, sym] = [numAntisymmetricPairs(n), numSymmetricPairs(n)];
   return {
@@ -176,7 +159,7 @@ function eightfoldKind(part: ResolvedPart, n: number): Kind {
 }
 
 /** p q r s of (pq|rs), pq the momentum pair where there is one. */
-function chemists(part: ResolvedPart, list: ListEntries, e: number): [number, number, number, number] {
+function chemists(part: ResolvedPart, list: IndexList, e: number): [number, number, number, number] {
   const { indices } = list;
   const [i, j, k, l] = [indices[4 * e]!, indices[4 * e + 1]!, indices[4 * e + 2]!, indices[4 * e + 3]!];
   const [p, q, r, s] = part.physicists ? [i, k, j, l] : [i, j, k, l];
@@ -187,7 +170,7 @@ function chemists(part: ResolvedPart, list: ListEntries, e: number): [number, nu
  * The list of a summed spin–orbit part as a full array [component][p][q][r][s] with value as stored, for the
  * conversion that splits it. Partners A_qpsr = −A_pqrs are filled in unless the list is complete by itself.
  */
-export function expandSummedList(list: ListEntries, part: ResolvedPart, n: number): Float64Array {
+export function expandSummedList(list: IndexList, part: ResolvedPart, n: number): Float64Array {
   const size = n ** 4;
   const full = new Float64Array(Math.max(1, part.components.length) * size);
   const seen = new Int32Array(full.length).fill(-1);
@@ -220,14 +203,14 @@ export function expandSummedList(list: ListEntries, part: ResolvedPart, n: numbe
   return full;
 }
 
-function describeEntry(list: ListEntries, part: ResolvedPart, e: number): string {
+function describeEntry(list: IndexList, part: ResolvedPart, e: number): string {
   const width = part.facts.numIndices;
   const name = list.components === null ? '' : `${part.components[list.components[e]!]} `;
   return `${name}${element([...list.indices.subarray(e * width, (e + 1) * width)])}`;
 }
 
 function duplicate(
-  list: ListEntries,
+  list: IndexList,
   part: ResolvedPart,
   first: number,
   second: number,
@@ -243,7 +226,7 @@ function duplicate(
 }
 
 function disagreement(
-  list: ListEntries,
+  list: IndexList,
   part: ResolvedPart,
   first: number,
   second: number,
@@ -259,7 +242,7 @@ function disagreement(
   };
 }
 
-function diagonal(list: ListEntries, part: ResolvedPart, e: number, value: number): Finding {
+function diagonal(list: IndexList, part: ResolvedPart, e: number, value: number): Finding {
   return {
     severity: 'error',
     code: 'symmetry',
@@ -271,7 +254,7 @@ function diagonal(list: ListEntries, part: ResolvedPart, e: number, value: numbe
 }
 
 function missingPartners(
-  list: ListEntries,
+  list: IndexList,
   part: ResolvedPart,
   kind: Kind,
   slots: Float64Array,
@@ -303,7 +286,7 @@ function missingPartners(
   ];
 }
 
-function otherPlane(list: ListEntries, part: ResolvedPart, imaginary: boolean, max: number): Finding[] {
+function otherPlane(list: IndexList, part: ResolvedPart, imaginary: boolean, max: number): Finding[] {
   if (list.im === null) return [];
   const plane = imaginary ? list.re : list.im;
   const width = part.facts.numIndices;

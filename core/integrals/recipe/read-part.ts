@@ -1,9 +1,17 @@
 import { InputError, type JobContext } from '../../job';
 import type { Provenance } from '../integral-set';
 import type { RawArray, SpinFreeContents, SpinorContents } from '../raw';
-import { readFcidump, readNpy, readNpz, sniffFormat } from '../readers';
+import {
+  type IndexList,
+  readFcidump,
+  readHdf5Dataset,
+  readIndexList,
+  readNpy,
+  readNpz,
+  readTrexio,
+  sniffFormat,
+} from '../readers';
 import type { ByteSource, FileSet, ReadPlatform } from '../source';
-import type { ListEntries } from './index-list';
 import { nearest } from './nearest';
 import type { ResolvedPart } from './part';
 import type { Recipe } from './recipe';
@@ -14,7 +22,7 @@ export type PartContents =
   | SpinFreeContents
   | SpinorContents
   | { readonly kind: 'array'; readonly raw: RawArray }
-  | { readonly kind: 'list'; readonly list: ListEntries };
+  | { readonly kind: 'list'; readonly list: IndexList };
 
 /** @throws InputError `missing-file`, with the nearest name in the folder. */
 export function openFile(files: FileSet, path: string): ByteSource {
@@ -43,7 +51,7 @@ export function openFile(files: FileSet, path: string): ByteSource {
  */
 export async function readPart(
   part: ResolvedPart,
-  _orbitals: number | null,
+  orbitals: number | null,
   files: FileSet,
   platform: ReadPlatform,
   context: JobContext,
@@ -52,30 +60,26 @@ export async function readPart(
   const format = await sniffFormat(source);
   if (part.facts.numIndices === 0) {
     if (format === 'fcidump') return readFcidump(source, context);
+    if (format === 'hdf5') return readTrexio(source, platform, context);
     throw wrongFormat(part, format, 'an FCIDUMP or a TREXIO file');
   }
   if (part.layout === 'index-list') {
-    throw wrongFormat(part, format, 'an index–value list');
+    if (format !== 'text') throw wrongFormat(part, format, 'an index–value list');
+    const { columns, base } = part.list;
+    const list = await readIndexList(
+      source,
+      { columns, base, components: part.components, orbitals },
+      context,
+    );
+    return { kind: 'list', list };
   }
   if (format === 'npy') return { kind: 'array', raw: await readNpy(source, context) };
   if (format === 'npz') {
     return { kind: 'array', raw: await readNpz(source, part.dataset ?? undefined, context) };
   }
   if (format === 'hdf5') {
-    const file = await platform.openHdf5(source);
-    const path = requiredDataset(part, 'dataset');
-    const dataset = file.dataset(path)!;
-    const data = await dataset.readAll();
-    file.close();
-    return {
-      kind: 'array',
-      raw: {
-        origin: `${source.path}:${path}`,
-        shape: dataset.shape,
-        complex: dataset.kind === 'complex',
-        data,
-      },
-    };
+    const dataset = requiredDataset(part);
+    return { kind: 'array', raw: await readHdf5Dataset(source, dataset, platform, context) };
   }
   throw wrongFormat(part, format, 'a NumPy or HDF5 array');
 }
@@ -104,13 +108,13 @@ export async function orbitalsFromArrays(
   return null;
 }
 
-function requiredDataset(part: ResolvedPart, word: string): string {
+function requiredDataset(part: ResolvedPart): string {
   if (part.dataset !== null) return part.dataset;
   throw new InputError({
     code: 'no-dataset',
     where: part.file,
     found: `no "dataset" in part "${part.id}"`,
-    expected: `the name of a ${word}`,
+    expected: 'the path of a dataset, such as /group/name',
     mend: 'Add "dataset" to the part.',
   });
 }

@@ -1,5 +1,5 @@
 import { InputError, type JobContext } from '../../job';
-import { sniffFormat } from '../readers';
+import { isTrexio, sniffFormat } from '../readers';
 import type { ByteSource, FileSet, ReadPlatform } from '../source';
 import { parseJson } from './json';
 import { parseRecipe } from './parse';
@@ -79,8 +79,8 @@ async function spinFreeFiles(
   for (const file of listed) {
     await context.checkpoint();
     const format = await sniffFormat(file);
-    const isTrexio = format === 'hdf5' && (await hasTrexioGroups(file, platform));
-    if (isFcidumpName(file.path) || format === 'fcidump' || isTrexio) found.push(file);
+    const isWhole = format === 'fcidump' || (format === 'hdf5' && (await hasTrexioGroups(file, platform)));
+    if (isWhole || isFcidumpName(file.path)) found.push(file);
   }
   return found;
 }
@@ -88,7 +88,7 @@ async function spinFreeFiles(
 async function hasTrexioGroups(file: ByteSource, platform: ReadPlatform): Promise<boolean> {
   const hdf5 = await platform.openHdf5(file);
   try {
-    return hdf5.datasets().some((path) => path.startsWith('/mo_1e_int/'));
+    return isTrexio(hdf5);
   } finally {
     hdf5.close();
   }

@@ -69,7 +69,7 @@ function fits(shape: readonly number[], part: ResolvedPart, n: number): boolean 
 /**
  * Checks shape and number type against the part and returns the strides.
  *
- * @throws InputError `wrong-shape` (with the layout that would fit, if one does), `complex-data`, `not-finite`.
+ * @throws InputError `wrong-shape` (with the layout that would fit, if one does), `complex-data`.
  */
 export function storedArray(raw: RawArray, part: ResolvedPart, n: number): StoredArray {
   if (!fits(raw.shape, part, n)) throw wrongShape(raw, part, n);
@@ -92,7 +92,6 @@ export function storedArray(raw: RawArray, part: ResolvedPart, n: number): Store
       mend: 'Set "value": "imaginary" if the array is the imaginary part.',
     });
   }
-  checkFinite(raw);
   const stride = raw.complex ? 2 : 1;
   const one = layoutShape(part.layout, part.facts.numIndices, n, part.momentumSecond).reduce(
     (a, b) => a * b,
@@ -107,26 +106,6 @@ export function storedArray(raw: RawArray, part: ResolvedPart, n: number): Store
     plane: raw.complex && imaginary ? 1 : 0,
     otherPlane: raw.complex ? (imaginary ? 0 : 1) : null,
   };
-}
-
-/** @throws InputError `not-finite` naming the first NaN or infinite element (1-based position on each axis). */
-export function checkFinite({ data, shape, complex, origin }: RawArray): void {
-  for (let at = 0; at < data.length; at++) {
-    if (Number.isFinite(data[at]!)) continue;
-    let rest = complex ? at >> 1 : at;
-    const position = new Array<number>(shape.length);
-    for (let axis = shape.length - 1; axis >= 0; axis--) {
-      position[axis] = (rest % shape[axis]!) + 1;
-      rest = Math.floor(rest / shape[axis]!);
-    }
-    throw new InputError({
-      code: 'not-finite',
-      where: `${origin}: element (${position.join(', ')})`,
-      found: String(data[at]),
-      expected: 'finite numbers',
-      mend: 'Write the array again; the program that made it failed there.',
-    });
-  }
 }
 
 function wrongShape(raw: RawArray, part: ResolvedPart, n: number): InputError {

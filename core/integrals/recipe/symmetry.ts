@@ -92,3 +92,11 @@ export function sectorFinding(
     },
   ];
 }
+
+/** The two orbitals p ≥ q of symmetric pair [pq]. */
+export function unpair(pair: number): [number, number] {
+  let p = Math.floor((Math.sqrt(8 * pair + 1) - 1) / 2);
+  while ((p * (p + 1)) / 2 > pair) p--;
+  while (((p + 1) * (p + 2)) / 2 <= pair) p++;
+  return [p, pair - (p * (p + 1)) / 2];
+}

@@ -1,7 +1,26 @@
 import type { Finding, JobContext } from '../../job';
-import type { SpatialIntegrals } from '../integral-set';
+import { checkCoulomb } from './coulomb';
+import { checkMagnitudes } from './magnitude';
+import { checkRepeats, checkTraceless } from './repeats';
+import { checkOtherOverSame, checkScreening } from './spin-orbit';
+import type { Unchecked } from './sums';
 
-/** Checks that need the set as a whole; what each array promises by its role was checked on reading. */
-export async function validate(_set: SpatialIntegrals, _context: JobContext): Promise<Finding[]> {
-  return [];
+/**
+ * Checks that need the set as a whole. What an array promises by its role alone (Hermiticity, permutations, time
+ * reversal) is checked while it is read, because the packed form cannot show it any more.
+ */
+export async function validate(set: Unchecked, context: JobContext): Promise<Finding[]> {
+  const findings: Finding[] = [];
+  for (const check of [
+    checkMagnitudes,
+    checkCoulomb,
+    checkOtherOverSame,
+    checkScreening,
+    checkTraceless,
+    checkRepeats,
+  ]) {
+    findings.push(...check(set));
+    await context.checkpoint();
+  }
+  return findings;
 }
