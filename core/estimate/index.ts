@@ -17,6 +17,13 @@ export {
   walkSteps,
 } from './phase-estimation';
 export { PUBLISHED_ROWS, PUBLISHED_TARGET, type PublishedRow, publishedRow } from './published';
+export {
+  blockFront,
+  costOverCaps,
+  costOverTargets,
+  type FrontPoint,
+  type TargetPoint,
+} from './sensitivity';
 export { stepCost } from './step-cost';
 export { logicalError, patchQubits, SURFACE_CODE_DEFAULTS, surfaceCode } from './surface-code';
 export {

@@ -1,6 +1,7 @@
 import { bitsFor, type LookupPolicy, type Subroutine, sparseStep, spinorStep, tripletStep } from '../circuit';
 import type { EncodingShape, LambdaByPart } from '../encode/encoding';
 import type { VariantName } from '../encode/variant';
+import { InputError } from '../job';
 import { type BitChoices, chooseBits } from './bits';
 import type { PhysicalEstimate, StepCost, SurfaceCodeAssumptions } from './estimate';
 import { type Peak, peakOf } from './lifetimes';
@@ -70,7 +71,7 @@ export interface CostEstimate {
 
 /** Costs of one variant by closed formulas: well below a millisecond, so that it follows every change of the target. */
 export function estimateVariant(input: EstimateInput): CostEstimate {
-  const options = { ...ESTIMATE_DEFAULTS, ...input.options };
+  const options = checkOptions({ ...ESTIMATE_DEFAULTS, ...input.options });
   const { shape, lambda, target } = input;
   const budget = errorBudget(target, confidenceFactor(target.accuracy));
   const bitChoices = chooseBits(shape, lambda, budget, {
@@ -118,6 +119,33 @@ export function runCost(tree: Subroutine, steps: number, machine: SurfaceCodeAss
     totalT: total.t,
     physical: machine === null ? null : surfaceCode(peak.qubits, total, machine),
   };
+}
+
+function checkOptions(options: EstimateOptions): EstimateOptions {
+  const { keepBits, rotationBits, lookupBlock, qubitsMax } = options;
+  const refuse = (where: string, found: unknown, expected: string) =>
+    new InputError({
+      code: 'estimate-option',
+      where,
+      found: String(found),
+      expected,
+      mend: 'Correct the option, or leave it to auto.',
+    });
+  for (const [name, bits] of [
+    ['keep bits', keepBits],
+    ['rotation bits', rotationBits],
+  ] as const) {
+    if (bits !== 'auto' && !(Number.isInteger(bits) && bits >= 4 && bits <= 60)) {
+      throw refuse(name, bits, 'a whole number from 4 to 60, or auto');
+    }
+  }
+  if (lookupBlock !== 'auto' && !(lookupBlock >= 1 && Number.isInteger(Math.log2(lookupBlock)))) {
+    throw refuse('look-up block', lookupBlock, 'a power of two, or auto');
+  }
+  if (qubitsMax !== null && !(Number.isInteger(qubitsMax) && qubitsMax > 0)) {
+    throw refuse('qubit cap', qubitsMax, 'a positive whole number, or none');
+  }
+  return options;
 }
 
 function recipeOf(

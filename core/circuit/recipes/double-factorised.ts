@@ -42,7 +42,7 @@ export function doubleFactorisedStep(sizes: DoubleFactorised, policy: LookupPoli
         lookup('angle look-up', 'select.lookup', { rows, bits: n * beta, main: true }, policy),
         gate('spin swaps', 'select.swaps', controlledSwap(n), 2),
         gate('orbital rotations', 'select.rotations', phaseGradientRotation(beta), 4 * n),
-        unlookup('angle erasure', 'select.lookup', rows, policy),
+        unlookup('angle erasure', 'select.lookup', { rows, bits: n * beta }, policy),
       ],
     );
   const frame = { systemQubits: 2 * n, phaseBits: sizes.phaseBits, gradientBits: beta };

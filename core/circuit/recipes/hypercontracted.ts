@@ -54,7 +54,7 @@ export function hypercontractedStep(sizes: Hypercontracted, policy: LookupPolicy
         lookup('angle look-up', 'select.lookup', { rows, bits: n * beta }, policy),
         gate('spin swaps', 'select.swaps', controlledSwap(n), 2),
         gate('orbital rotations', 'select.rotations', phaseGradientRotation(beta), 4 * n),
-        unlookup('angle erasure', 'select.lookup', rows, policy),
+        unlookup('angle erasure', 'select.lookup', { rows, bits: n * beta }, policy),
       ],
     );
   const pieces = [
@@ -64,7 +64,7 @@ export function hypercontractedStep(sizes: Hypercontracted, policy: LookupPolicy
       vector('μ', rank + n),
       vector('ν', rank),
       ...prepareGates(', undone'),
-      unlookup('coefficient erasure', 'prepare', entries, policy),
+      unlookup('coefficient erasure', 'prepare', { rows: entries, bits: word }, policy),
       // Indices, comparison register, two spins, the symmetry qubit and the rotation qubit.
       gate('reflection', 'reflections', reflection(2 * rankBits + keepBits + 4)),
     ]),

@@ -39,7 +39,7 @@ export function unprepare(label: string, table: AliasTable, policy: LookupPolicy
     [],
     [
       ...aliasGates(label, table),
-      unlookup(`${label} alias erasure`, 'prepare', table.rows, policy),
+      unlookup(`${label} alias erasure`, 'prepare', aliasWord(table), policy),
       gate(`${label} equal superposition, undone`, 'prepare', uniformSuperposition(table.rows)),
     ],
   );

@@ -68,20 +68,20 @@ export function lookup(name: string, part: StepPart, table: LookupTable, policy:
   };
 }
 
-/** Erases a row of a table of `rows` rows at the best block. */
-export function unlookup(name: string, part: StepPart, rows: number, policy: LookupPolicy): Piece {
+/** Erases a row at the best block: its measured wires are free at once and serve as scratch. */
+export function unlookup(name: string, part: StepPart, table: Table, policy: LookupPolicy): Piece {
   return (live) => {
-    if (rows <= 1) return null;
+    if (table.rows <= 1) return null;
     const { mode, qubitCap } = policy;
+    const costAt = (block: number) => {
+      const cost = erase(table.rows, block, mode);
+      return { ...cost, scratch: Math.max(0, cost.scratch - table.bits) };
+    };
+    const fits = (block: number) =>
+      (qubitCap === null || live + costAt(block).scratch <= qubitCap) && (mode !== 'dirty' || block <= live);
     const block =
-      mode === 'plain'
-        ? 1
-        : bestBlock(
-            rows,
-            (k) => eraseToffoli(rows, k, mode),
-            (k) => qubitCap === null || live + erase(rows, k, mode).scratch <= qubitCap,
-          );
-    return leaf(name, part, erase(rows, block, mode));
+      mode === 'plain' ? 1 : bestBlock(table.rows, (k) => eraseToffoli(table.rows, k, mode), fits);
+    return leaf(name, part, costAt(block));
   };
 }
 

@@ -59,7 +59,7 @@ export function singleFactorisedStep(sizes: SingleFactorised, policy: LookupPoli
         lookup('inner alias look-up', 'prepare', { rows, bits: innerWord, main: true }, policy),
         gate('Majorana pair', 'select.other', unaryIteration(2 * n, { controlled: second, ranged: true }), 2),
         ...innerGates(', undone'),
-        unlookup('inner alias erasure', 'prepare', rows, policy),
+        unlookup('inner alias erasure', 'prepare', { rows, bits: innerWord }, policy),
       ],
     );
   };

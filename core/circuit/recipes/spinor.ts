@@ -39,7 +39,7 @@ export function spinorStep(shape: EncodingShape, bits: FactorisedBits, policy: L
         lookup('angle look-up', 'select.lookup', { rows, bits: word, main: true }, policy),
         gate('partner swap layers', 'select.swaps', controlledFermionicSwaps(n), 2),
         gate('Givens rotations with phases', 'select.rotations', phaseGradientRotation(beta), 2 * 3 * pairs),
-        unlookup('angle erasure', 'select.lookup', rows, policy),
+        unlookup('angle erasure', 'select.lookup', { rows, bits: word }, policy),
       ],
     );
   const frame = { systemQubits: 2 * n, phaseBits: bits.phaseBits, gradientBits: beta };

@@ -72,7 +72,10 @@ export function squaresEncoding(sizes: Squares, policy: LookupPolicy, product: P
         scope(
           'inner PREPARE†',
           [],
-          [...innerGates(', undone'), unlookup('inner alias erasure', 'prepare', used, policy)],
+          [
+            ...innerGates(', undone'),
+            unlookup('inner alias erasure', 'prepare', { rows: used, bits: innerWord }, policy),
+          ],
         ),
       ],
     );
@@ -103,7 +106,7 @@ export function squaresEncoding(sizes: Squares, policy: LookupPolicy, product: P
             gate('inner reflection', 'reflections', reflection(innerReflected)),
             use(true),
           ]),
-          unlookup('factor data erasure', 'prepare', items, policy),
+          unlookup('factor data erasure', 'prepare', { rows: items, bits: dataBits }, policy),
         ],
       ),
       unprepare('outer', outer, policy),

@@ -99,7 +99,7 @@ function tripletProduct(
       // The one-body item must switch the two central operators of the second use off; with σ in the index each
       // of them has a control already.
       gate('one-body switch', 'select.other', logicalAnd(second && spin === 'index' ? 2 : 0)),
-      unlookup('angle erasure', 'select.lookup', rows, policy),
+      unlookup('angle erasure', 'select.lookup', { rows, bits: angleBits + ROW_FLAGS }, policy),
     ]);
   };
 }
