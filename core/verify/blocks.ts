@@ -1,4 +1,9 @@
-import type { SparseHermitian } from './sector-matrix';
+import type { SectorMatrix, SparseHermitian } from './sector-matrix';
+
+/** An unconnected part of a sector's matrix, with the determinants it lives on. */
+export interface Block extends SparseHermitian {
+  readonly states: Uint32Array;
+}
 
 /**
  * Splits a sparse Hermitian matrix into the blocks that its pattern of zeros leaves unconnected: symmetries (spin
@@ -7,7 +12,7 @@ import type { SparseHermitian } from './sector-matrix';
  *
  * @returns blocks in ascending order of their first determinant; together they have the matrix' spectrum.
  */
-export function connectedBlocks(matrix: SparseHermitian): SparseHermitian[] {
+export function connectedBlocks(matrix: SectorMatrix): Block[] {
   const { dim, start, row } = matrix;
   const parent = Uint32Array.from({ length: dim }, (_, i) => i);
   const root = (i: number): number => {
@@ -35,7 +40,7 @@ export function connectedBlocks(matrix: SparseHermitian): SparseHermitian[] {
   return [...members.values()].map((list) => extract(matrix, list, position));
 }
 
-function extract(matrix: SparseHermitian, list: readonly number[], position: Uint32Array): SparseHermitian {
+function extract(matrix: SectorMatrix, list: readonly number[], position: Uint32Array): Block {
   const dim = list.length;
   const complex = matrix.im.length > 0;
   const start = new Uint32Array(dim + 1);
@@ -54,7 +59,8 @@ function extract(matrix: SparseHermitian, list: readonly number[], position: Uin
     }
   }
   const diagonal = Float64Array.from(list, (i) => matrix.diagonal[i]!);
-  const block = { dim, diagonal, start, row, re, im };
+  const states = Uint32Array.from(list, (i) => matrix.basis.states[i]!);
+  const block = { dim, states, diagonal, start, row, re, im };
   return complex ? madeReal(block) : block;
 }
 
@@ -62,7 +68,7 @@ function extract(matrix: SparseHermitian, list: readonly number[], position: Uin
  * The block in phases i^t, t ∈ {0, 1}, that make it real, or unchanged where there are none: that takes every
  * element purely real or purely imaginary and all cycles to agree.
  */
-function madeReal(block: SparseHermitian): SparseHermitian {
+function madeReal(block: Block): Block {
   const { dim, start, row, re, im } = block;
   for (let e = 0; e < row.length; e++) if (re[e] !== 0 && im[e] !== 0) return block;
   const neighbours: number[][] = Array.from({ length: dim }, () => []);

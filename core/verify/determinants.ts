@@ -5,12 +5,21 @@ export function countBits(x: number): number {
   return (((v + (v >>> 4)) & 0x0f0f0f0f) * 0x01010101) >>> 24;
 }
 
-/** Binomial coefficient as a double; exact below 2⁵³. */
+/** Pascal's triangle up to row 64; every entry used here is exact in a double. */
+const PASCAL: readonly Float64Array[] = (() => {
+  const rows = [Float64Array.of(1)];
+  for (let n = 1; n <= 64; n++) {
+    const row = new Float64Array(n + 1).fill(1);
+    for (let k = 1; k < n; k++) row[k] = rows[n - 1]![k - 1]! + rows[n - 1]![k]!;
+    rows.push(row);
+  }
+  return rows;
+})();
+
+/** Binomial coefficient of n ≤ 64; exact below 2⁵³. */
 export function binomial(n: number, k: number): number {
-  if (k < 0 || k > n) return 0;
-  let value = 1;
-  for (let i = 1; i <= Math.min(k, n - k); i++) value = (value * (n - i + 1)) / i;
-  return Math.round(value);
+  if (n > 64) throw new RangeError(`binomial of ${n} asked for; at most 64`);
+  return k < 0 || k > n ? 0 : PASCAL[n]![k]!;
 }
 
 /** Determinants of η electrons in M ≤ 32 modes. Bit P of a state is the occupation of mode P. */
@@ -39,14 +48,11 @@ export function sectorBasis(modes: number, electrons: number): SectorBasis {
   }
   const lowBits = Math.min(modes, 16);
   const highBits = modes - lowBits;
-  const low = new Float64Array(2 ** lowBits);
-  for (let bits = 0; bits < low.length; bits++) low[bits] = colexRank(bits, 0, 0);
+  const low = rankTable(lowBits, 0, 0);
   // High half: its rank depends on how many modes of the low half are filled below it.
   const high = new Float64Array((lowBits + 1) * 2 ** highBits);
-  for (let below = 0; below <= lowBits; below++) {
-    for (let bits = 0; bits < 2 ** highBits; bits++) {
-      high[below * 2 ** highBits + bits] = colexRank(bits, lowBits, below);
-    }
+  for (let below = 0; below <= Math.min(lowBits, electrons); below++) {
+    high.set(rankTable(highBits, lowBits, below), below * 2 ** highBits);
   }
   const mask = 2 ** lowBits - 1;
   const width = 2 ** highBits;
@@ -57,11 +63,16 @@ export function sectorBasis(modes: number, electrons: number): SectorBasis {
   return { modes, electrons, dim, states, rank };
 }
 
-function colexRank(bits: number, shift: number, below: number): number {
-  let rank = 0;
-  let count = below;
-  for (let p = 0; bits >> p !== 0; p++) if ((bits >> p) & 1) rank += binomial(p + shift, ++count);
-  return rank;
+/** Colexicographic rank of every bit string, its modes counted from `shift` with `below` others before them. */
+function rankTable(bits: number, shift: number, below: number): Float64Array {
+  const table = new Float64Array(2 ** bits);
+  for (let top = 0; top < bits; top++) {
+    const half = 1 << top;
+    for (let rest = 0; rest < half; rest++) {
+      table[half + rest] = table[rest]! + binomial(top + shift, below + countBits(rest) + 1);
+    }
+  }
+  return table;
 }
 
 /** Next larger number with as many bits set, by arithmetic that stays exact above 2³¹. */

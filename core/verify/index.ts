@@ -1,4 +1,5 @@
 export { binomial, type SectorBasis, sectorBasis } from './determinants';
 export { type Form, fockMatrix, oneBodyFockMatrix, spinorFockMatrix } from './fock';
 export { MAX_SECTOR_DIMENSION, type SectorMatrix, type SparseHermitian, sectorMatrix } from './sector-matrix';
-export { exactSpectrum, multiplySparse, type Spectrum, type SpectrumOptions } from './spectrum';
+export { multiplySparse } from './sparse';
+export { exactSpectrum, type Spectrum, type SpectrumOptions } from './spectrum';

@@ -47,13 +47,13 @@ export async function sectorMatrix(
   context: JobContext,
 ): Promise<SectorMatrix> {
   const modes = hamiltonian.kind === 'spatial' ? 2 * hamiltonian.orbitals : hamiltonian.spinors;
-  const dim = binomial(modes, electrons);
-  if (modes > 32 || dim > MAX_SECTOR_DIMENSION) {
+  const dim = modes > 32 ? Number.POSITIVE_INFINITY : binomial(modes, electrons);
+  if (dim > MAX_SECTOR_DIMENSION) {
     throw new InputError({
       code: 'sector-too-large',
       where: 'exact diagonalisation',
-      found: `${electrons} electrons in ${modes} spin orbitals: ${dim} determinants`,
-      expected: `at most ${MAX_SECTOR_DIMENSION} determinants and 32 spin orbitals`,
+      found: `${electrons} electrons in ${modes} spin orbitals`,
+      expected: `at most 32 spin orbitals and ${MAX_SECTOR_DIMENSION} determinants`,
       mend: 'Choose a smaller window of orbitals.',
     });
   }

@@ -75,7 +75,7 @@ describe('matrix of a sector', () => {
   it('refuses a sector that does not fit, with the cure', async () => {
     const hamiltonian = randomHamiltonian(9, 1, { charge: true, spinOrbit: 'none', spinSpin: false }, 9);
     await expect(sectorMatrix(hamiltonian, 9, 'product', inlineContext())).rejects.toThrow(
-      /48620 determinants; expected at most 20000 determinants.*Choose a smaller window/,
+      /9 electrons in 18 spin orbitals; expected at most 32 spin orbitals and 20000 determinants. Choose a smaller window/,
     );
   });
 });
