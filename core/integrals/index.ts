@@ -7,5 +7,7 @@ export { checkRecipe, parseRecipe } from './recipe/parse';
 export type * from './recipe/recipe';
 export { type InputChoice, type ResolvedInputs, resolveInputs } from './recipe/resolve';
 export { checkSchema } from './recipe/schema-check';
+export { type Suggestion, suggestRecipe } from './recipe/suggest';
 export * from './source';
 export * from './terms';
+export { type Description, describe, type TermSizes } from './validate/describe';

@@ -7,8 +7,10 @@ import { openFile, orbitalsFromArrays, type PartContents, provenanceOf, readPart
 import type { Recipe } from './recipe/recipe';
 import { loadSpinors } from './recipe/spinors';
 import { systemFacts } from './recipe/system';
+import { unusedFiles } from './recipe/unused';
 import type { FileSet, ReadPlatform } from './source';
 import type { Term } from './terms';
+import { checkComponents } from './validate/repeats';
 import { validate } from './validate/validate';
 
 export interface LoadOptions {
@@ -110,7 +112,9 @@ async function loadSpatial(
     meanFieldCoversActive: parts.some((part) => part.coversActive),
     provenance: provenanceOf(recipe, files, parts),
   };
-  return { ...set, findings: [...findings, ...(await validate(set, context))] };
+  findings.push(...checkComponents(parts.map((part) => ({ ...part, origin: part.file }))));
+  findings.push(...(await validate(set, context)), ...unusedFiles(recipe, files));
+  return { ...set, findings };
 }
 
 function buildPart(part: ResolvedPart, read: PartContents, orbitals: number): BuiltPart {

@@ -1,16 +1,22 @@
 import { InputError, type JobContext } from '../../job';
-import { isTrexio, sniffFormat } from '../readers';
 import type { ByteSource, FileSet, ReadPlatform } from '../source';
 import { parseJson } from './json';
 import { parseRecipe } from './parse';
 import type { Recipe } from './recipe';
+import { suggestRecipe } from './suggest';
 import { isTemplateName, templateParts, templateRecipe } from './template';
+import { isFcidumpName, wholeRole } from './whole';
 
 /** What the user pointed at. */
 export interface InputChoice {
   readonly files: FileSet;
   /** Paths in `files` that were named one by one; absent where a whole folder (or one drop) was. */
   readonly chosen?: readonly string[];
+}
+
+interface WholeFile {
+  readonly path: string;
+  readonly role: 'spin-free' | 'spinor';
 }
 
 export interface ResolvedInputs {
@@ -59,39 +65,29 @@ export async function resolveInputs(
   const named = listed.filter((file) => isFcidumpName(file.path));
   const template = await fromMeta(listed, named, files);
   if (template !== null) return template;
-  const spinFree = await spinFreeFiles(listed, platform, context);
-  if (spinFree.length > 1) throw tooMany(files, spinFree, 'FCIDUMP or TREXIO file');
-  const [whole] = spinFree;
-  if (chosen !== undefined && listed.length > 1) return fromNames(listed, whole, files);
+  const wholes = await wholeFiles(listed, platform, context);
+  if (wholes.length > 1) throw tooMany(files, wholes, 'FCIDUMP or TREXIO file');
+  const [whole] = wholes;
+  if (chosen !== undefined && listed.length > 1) {
+    return fromNames(listed, whole, files) ?? (await refuseWithSuggestion(listed, files, platform, context));
+  }
   if (whole !== undefined) return lone(whole, files);
   throw nothing(files, listed);
 }
 
-const isFcidumpName = (path: string): boolean => /(^|\/)fcidump$|\.fcidump$/i.test(path);
-
-/** Files that say themselves what they hold: FCIDUMPs by name or contents, TREXIO files by their groups. */
-async function spinFreeFiles(
+/** Files that say themselves what they hold. A file with an FCIDUMP's name counts, whatever is in it. */
+async function wholeFiles(
   listed: readonly ByteSource[],
   platform: ReadPlatform,
   context: JobContext,
-): Promise<ByteSource[]> {
-  const found: ByteSource[] = [];
+): Promise<WholeFile[]> {
+  const found: WholeFile[] = [];
   for (const file of listed) {
     await context.checkpoint();
-    const format = await sniffFormat(file);
-    const isWhole = format === 'fcidump' || (format === 'hdf5' && (await hasTrexioGroups(file, platform)));
-    if (isWhole || isFcidumpName(file.path)) found.push(file);
+    const role = (await wholeRole(file, platform)) ?? (isFcidumpName(file.path) ? 'spin-free' : null);
+    if (role !== null) found.push({ path: file.path, role });
   }
   return found;
-}
-
-async function hasTrexioGroups(file: ByteSource, platform: ReadPlatform): Promise<boolean> {
-  const hdf5 = await platform.openHdf5(file);
-  try {
-    return isTrexio(hdf5);
-  } finally {
-    hdf5.close();
-  }
 }
 
 async function fromMeta(
@@ -116,49 +112,59 @@ async function fromMeta(
 const isObject = (value: unknown): boolean =>
   typeof value === 'object' && value !== null && !Array.isArray(value);
 
-function lone(whole: ByteSource, files: FileSet): ResolvedInputs {
+function lone(whole: WholeFile, files: FileSet): ResolvedInputs {
   const recipe: Recipe = {
     schema: 'spinwright-recipe/1',
-    parts: [{ id: 'spin-free', role: 'spin-free', file: whole.path }],
+    parts: [{ id: whole.role, role: whole.role, file: whole.path }],
   };
   return { recipe, files, origin: 'spin-free file', recipeName: whole.path };
 }
 
+/** One file that says itself what it holds, and arrays with template names; null where the files are others. */
 function fromNames(
   listed: readonly ByteSource[],
-  whole: ByteSource | undefined,
+  whole: WholeFile | undefined,
   files: FileSet,
-): ResolvedInputs {
+): ResolvedInputs | null {
+  if (whole === undefined || whole.role === 'spinor') return null;
   const arrays = new Map<string, string>();
-  const strangers: string[] = [];
   for (const file of listed) {
-    if (file === whole) continue;
+    if (file.path === whole.path) continue;
     const name = /([^/]+)\.npy$/.exec(file.path)?.[1];
-    if (name !== undefined && isTemplateName(name)) arrays.set(name, file.path);
-    else strangers.push(file.path);
+    if (name === undefined || !isTemplateName(name)) return null;
+    arrays.set(name, file.path);
   }
-  const parts = templateParts(whole?.path ?? null, (name) => {
+  const parts = templateParts(whole.path, (name) => {
     const file = arrays.get(name);
     return file === undefined ? null : { file };
   });
-  if (whole === undefined || strangers.length > 0) {
-    throw new InputError({
-      code: 'no-recipe',
-      where: files.name,
-      found:
-        whole === undefined
-          ? 'several files, none of them an FCIDUMP or TREXIO file'
-          : `${strangers.join(', ')} without a recipe`,
-      expected: 'one FCIDUMP or TREXIO file and arrays with template names, or a recipe',
-      mend: 'Write a recipe ("inspect --write-recipe F" makes a draft) and give that.',
-    });
-  }
-  return {
-    recipe: { schema: 'spinwright-recipe/1', parts },
-    files,
-    origin: 'array names',
-    recipeName: 'these files',
+  const unused = [...arrays.values()].filter((path) => parts.every((part) => part.file !== path));
+  const recipe: Recipe = {
+    schema: 'spinwright-recipe/1',
+    ...(unused.length > 0 ? { ignore: unused } : {}),
+    parts,
   };
+  return { recipe, files, origin: 'array names', recipeName: 'these files' };
+}
+
+async function refuseWithSuggestion(
+  listed: readonly ByteSource[],
+  files: FileSet,
+  platform: ReadPlatform,
+  context: JobContext,
+): Promise<never> {
+  const named: FileSet = { name: files.name, list: () => listed, open: (path) => files.open(path) };
+  const { recipe } = await suggestRecipe(named, platform, context);
+  throw new InputError({
+    code: 'no-recipe',
+    where: files.name,
+    found: `${listed.map((file) => file.path).join(', ')} without a recipe`,
+    expected: 'one FCIDUMP or TREXIO file and arrays with template names, or a recipe',
+    mend:
+      recipe === null
+        ? 'Write a recipe that names the role of each array.'
+        : `Check this draft and save it beside them as NAME.recipe.json: ${JSON.stringify(recipe)}`,
+  });
 }
 
 /** The text of a small file. @throws InputError `not-utf8`, `too-large`. */
@@ -187,7 +193,7 @@ async function readText(source: ByteSource): Promise<string> {
   }
 }
 
-function tooMany(files: FileSet, found: readonly ByteSource[], what: string): InputError {
+function tooMany(files: FileSet, found: readonly { readonly path: string }[], what: string): InputError {
   return new InputError({
     code: 'no-recipe',
     where: files.name,
@@ -208,7 +214,7 @@ function nothing(files: FileSet, listed: readonly ByteSource[]): InputError {
     mend:
       names.length === 0
         ? 'Give a folder with integral files.'
-        : 'Write a recipe ("inspect --write-recipe F" makes a draft).',
+        : 'Write a recipe that names the role of each array.',
   });
 }
 

@@ -55,9 +55,15 @@ export function templateParts(
   return parts;
 }
 
-/** Files that hold the arrays of a template set a second time, or what is never used. */
-export function isKnownUnused(path: string): boolean {
-  return /^(h1|eri_packed|mo_energies|.*_full)\.npy$/.test(path);
+/** Files that hold arrays of the set a second time, or what is never used. */
+function ignored(files: FileSet, parts: readonly RecipePart[], hdf5: string): Pick<Recipe, 'ignore'> {
+  const used = new Set(parts.map((part) => part.file));
+  const ignore = files
+    .list()
+    .map((file) => file.path)
+    .filter((path) => !used.has(path))
+    .filter((path) => path === hdf5 || /^(h1|eri_packed|mo_energies|.*_full)\.npy$/.test(path));
+  return ignore.length > 0 ? { ignore } : {};
 }
 
 /**
@@ -86,6 +92,7 @@ export function templateRecipe(meta: Json, spinFree: string | null, files: FileS
   const electrons = record.electrons as Record<string, Json> | undefined;
   const orbitals = (record.orbitals as Record<string, Json> | undefined)?.n_active;
   const constants = constantsOf((record.scalars ?? {}) as Record<string, Json>);
+  const parts = templateParts(spinFree, locate);
   const recipe = {
     schema: 'spinwright-recipe/1',
     ...(typeof record.title === 'string' ? { title: record.title } : {}),
@@ -93,7 +100,8 @@ export function templateRecipe(meta: Json, spinFree: string | null, files: FileS
     ...(electrons?.active !== undefined ? { electrons: electrons.active } : {}),
     ...(electrons?.ms2 !== undefined ? { ms2: electrons.ms2 } : {}),
     ...(constants.length > 0 ? { constants } : {}),
-    parts: templateParts(spinFree, locate),
+    ...ignored(files, parts, hdf5),
+    parts,
   } as unknown as Recipe;
   // Numbers in meta.json may be of any type: the recipe made from them is checked like one from a file.
   checkRecipe(recipe, where);

@@ -1,0 +1,122 @@
+import type { Finding, JobContext } from '../../job';
+import type { RawArray } from '../raw';
+import { isTrexio, listNpz, readHdf5Dataset, readNpy, readNpz, sniffFormat } from '../readers';
+import type { ByteSource, FileSet, ReadPlatform } from '../source';
+import { guessConvention, orbitalsOfSquare } from './guess';
+import type { Recipe, RecipePart } from './recipe';
+import { templateParts } from './template';
+import { wholeRole } from './whole';
+
+export interface Suggestion {
+  /** A draft; null where not one file is recognised. */
+  readonly recipe: Recipe | null;
+  /** What was guessed and why it must be checked; what no convention fits. */
+  readonly findings: readonly Finding[];
+}
+
+/**
+ * Drafts a recipe for files that have none: each array gets a role and convention under which it has the
+ * symmetries the role promises, chosen by its name where several would do. Units, ½ and σ against s leave no
+ * trace in an array, so they stand at their defaults and a note says so.
+ */
+export async function suggestRecipe(
+  files: FileSet,
+  platform: ReadPlatform,
+  context: JobContext,
+): Promise<Suggestion> {
+  const parts: RecipePart[] = [];
+  const arrays: { place: Pick<RecipePart, 'file' | 'dataset'>; name: string; raw: RawArray }[] = [];
+  for (const source of files.list()) {
+    await context.checkpoint();
+    const role = await wholeRole(source, platform);
+    if (role !== null) parts.push({ id: uniqueId(role, parts), role, file: source.path });
+    else arrays.push(...(await arraysOf(source, platform, context)));
+  }
+  const orbitals = arrays.map(({ raw }) => orbitalsOfSquare(raw)).find((n) => n !== null) ?? null;
+  const findings: Finding[] = [];
+  for (const { place, name, raw } of arrays) {
+    const spinFree = parts.find((part) => part.role === 'spin-free')?.file ?? null;
+    const known = templateParts(spinFree, (array) => (array === name ? place : null)).filter(
+      (part) => part.file === place.file,
+    );
+    if (known.length > 0) {
+      parts.push(...known.map((part) => ({ ...part, id: uniqueId(part.id, parts) })));
+      continue;
+    }
+    const guess = guessConvention(raw, name, orbitals);
+    findings.push(guess === null ? noConvention(raw) : guessed(raw, guess.role));
+    if (guess !== null) parts.push({ id: uniqueId(name, parts), ...place, ...guess });
+  }
+  const recipe: Recipe | null =
+    parts.length === 0
+      ? null
+      : {
+          schema: 'spinwright-recipe/1',
+          title: files.name.slice(0, 500),
+          ...(orbitals === null ? {} : { orbitals }),
+          parts: parts.slice(0, 64),
+        };
+  return { recipe, findings };
+}
+
+async function arraysOf(source: ByteSource, platform: ReadPlatform, context: JobContext) {
+  const format = await sniffFormat(source);
+  const base = source.path
+    .split('/')
+    .pop()!
+    .replace(/\.\w+$/, '');
+  const place = { file: source.path };
+  if (format === 'npy') return [{ place, name: base, raw: await readNpy(source, context) }];
+  if (format === 'npz') {
+    const found = [];
+    for (const dataset of await listNpz(source, context)) {
+      found.push({
+        place: { ...place, dataset },
+        name: dataset,
+        raw: await readNpz(source, dataset, context),
+      });
+    }
+    return found;
+  }
+  if (format !== 'hdf5') return [];
+  const file = await platform.openHdf5(source);
+  const paths = isTrexio(file) ? [] : file.datasets().filter((path) => file.dataset(path)?.kind !== 'other');
+  file.close();
+  const found = [];
+  for (const dataset of paths) {
+    const raw = await readHdf5Dataset(source, dataset, platform, context);
+    found.push({ place: { ...place, dataset }, name: dataset.split('/').pop()!, raw });
+  }
+  return found;
+}
+
+function uniqueId(name: string, parts: readonly RecipePart[]): string {
+  const plain =
+    name
+      .toLowerCase()
+      .replace(/[^a-z0-9]+/g, '-')
+      .replace(/^[^a-z]+|-+$/g, '')
+      .slice(0, 36) || 'part';
+  for (let suffix = 1; ; suffix++) {
+    const id = suffix === 1 ? plain : `${plain}-${suffix}`;
+    if (parts.every((part) => part.id !== id)) return id;
+  }
+}
+
+const guessed = (raw: RawArray, role: string): Finding => ({
+  severity: 'note',
+  code: 'guessed-role',
+  where: raw.origin,
+  found: `shape ${raw.shape.join('×')}, read as "${role}"`,
+  expected: 'your confirmation',
+  mend: 'Check role, unit, spin (σ or s) and half: an array does not show them.',
+});
+
+const noConvention = (raw: RawArray): Finding => ({
+  severity: 'note',
+  code: 'unknown-array',
+  where: raw.origin,
+  found: `shape ${raw.shape.join('×')}`,
+  expected: 'the shape and symmetry of some role',
+  mend: 'Add a part by hand if the array belongs to the Hamiltonian, else put it under "ignore".',
+});
