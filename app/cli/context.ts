@@ -1,0 +1,35 @@
+import { inlineContext, type JobContext } from '../../core/job';
+import type { TaskPool } from './pool';
+import type { Progress } from './progress';
+
+/** Between two reports of one stage, so that reporting costs nothing. */
+const REPORT_MS = 80;
+
+/**
+ * The job contract inside a worker thread. A stop needs no checkpoint here: the main thread is always free to
+ * end this thread. With a pool `map` runs on it, else in place.
+ */
+export function workerContext(
+  seed: number,
+  pool: TaskPool | null,
+  onProgress: (progress: Progress) => void,
+): JobContext {
+  let lastStage = '';
+  let lastTime = 0;
+  const report = (stage: string, done: number, total: number | null): void => {
+    const now = performance.now();
+    if (stage === lastStage && now - lastTime < REPORT_MS && done !== total) return;
+    lastStage = stage;
+    lastTime = now;
+    onProgress({ stage, done, total });
+  };
+  return {
+    seed,
+    report,
+    async checkpoint() {},
+    map: (task, inputs) =>
+      pool && inputs.length > 1
+        ? pool.map(task, inputs, (done) => report(lastStage, done, inputs.length))
+        : inlineContext(seed).map(task, inputs),
+  };
+}

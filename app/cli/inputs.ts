@@ -1,0 +1,95 @@
+import { stat } from 'node:fs/promises';
+import { basename, dirname } from 'node:path';
+import {
+  type IntegralSet,
+  loadIntegrals,
+  parseRecipe,
+  type ResolvedInputs,
+  resolveInputs,
+  type SelectableTerm,
+  TERMS,
+  type Term,
+} from '../../core/integrals';
+import { InputError, type JobContext } from '../../core/job';
+import { folderFiles, namedFiles } from './files';
+import { nodeReadPlatform } from './hdf5';
+import type { InputFiles } from './request';
+
+/** Finds out what the named files are and how they are to be read. */
+export async function openInputs(
+  { files, recipe }: InputFiles,
+  context: JobContext,
+): Promise<ResolvedInputs> {
+  const [only] = files;
+  const folder = files.length === 1 && (await isFolder(only!)) ? only! : null;
+  if (recipe !== null) {
+    const set = folder === null ? await namedFiles(files) : await folderFiles(folder);
+    return { recipe: await readRecipe(recipe), files: set, origin: 'recipe', recipeName: recipe };
+  }
+  if (folder !== null) return resolveInputs({ files: await folderFiles(folder) }, nodeReadPlatform, context);
+  if (files.length === 1 && only!.endsWith('.recipe.json')) {
+    await namedFiles(files); // says so where it is missing
+    const set = await folderFiles(dirname(only!));
+    return resolveInputs({ files: set, chosen: [basename(only!)] }, nodeReadPlatform, context);
+  }
+  const set = await namedFiles(files);
+  return resolveInputs(
+    { files: set, chosen: files.map((file) => basename(file)) },
+    nodeReadPlatform,
+    context,
+  );
+}
+
+/**
+ * Reads the integrals, only what the terms need.
+ * @param onError - `keep` returns findings of severity error with the set instead of throwing the first
+ */
+export function loadInputs(
+  { recipe, files, recipeName }: ResolvedInputs,
+  terms: readonly SelectableTerm[] | 'all',
+  onError: 'throw' | 'keep',
+  context: JobContext,
+): Promise<IntegralSet> {
+  const options = { recipeName, onError, ...(terms === 'all' ? {} : { terms: neededTerms(terms) }) };
+  return loadIntegrals(recipe, files, nodeReadPlatform, context, options);
+}
+
+/** The computed mean field is made from the two-electron part. */
+function neededTerms(terms: readonly SelectableTerm[]): readonly Term[] {
+  return TERMS.filter((term) => terms.includes(term) || (term === 'so2' && terms.includes('so2mf')));
+}
+
+async function isFolder(path: string): Promise<boolean> {
+  try {
+    return (await stat(path)).isDirectory();
+  } catch {
+    return false; // what is missing is said where it is opened
+  }
+}
+
+async function readRecipe(path: string) {
+  const source = (await namedFiles([path])).list()[0]!;
+  const limit = 4 * 2 ** 20;
+  if (source.size > limit) {
+    throw new InputError({
+      code: 'too-large',
+      where: path,
+      found: `${source.size} bytes`,
+      expected: `a recipe of at most ${limit} bytes`,
+      mend: 'Is it a recipe?',
+    });
+  }
+  let text: string;
+  try {
+    text = new TextDecoder('utf-8', { fatal: true }).decode(await source.read(0, source.size));
+  } catch {
+    throw new InputError({
+      code: 'not-utf8',
+      where: path,
+      found: 'bytes that are no UTF-8',
+      expected: 'a recipe: JSON in UTF-8',
+      mend: 'Save the file as UTF-8.',
+    });
+  }
+  return parseRecipe(text, path);
+}

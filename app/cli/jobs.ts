@@ -1,0 +1,48 @@
+import { SURFACE_CODE_DEFAULTS, whatif } from '../../core/estimate';
+import type { JobContext } from '../../core/job';
+import { inspectIntegrals, runComparison, runVerification } from '../../core/plan';
+import { loadInputs, openInputs } from './inputs';
+import type { CompareRequest, InspectRequest, Request, VerifyRequest } from './request';
+import type { Result } from './result';
+
+/** Does what a request asks for. Runs in the job's thread; writes nothing. */
+export async function answer(request: Request, context: JobContext): Promise<Result> {
+  switch (request.command) {
+    case 'inspect':
+      return inspect(request, context);
+    case 'compare':
+      return compare(request, context);
+    case 'verify':
+      return verify(request, context);
+    case 'whatif':
+      return { command: 'whatif', whatIf: whatif(request.options, SURFACE_CODE_DEFAULTS) };
+    case 'copy-demo':
+      return request;
+  }
+}
+
+async function inspect(request: InspectRequest, context: JobContext): Promise<Result> {
+  const inputs = await openInputs(request, context);
+  const set = await loadInputs(inputs, 'all', 'keep', context);
+  const { writeRecipe } = request;
+  return {
+    command: 'inspect',
+    inspection: await inspectIntegrals(set, context),
+    recipe:
+      writeRecipe === null
+        ? null
+        : { path: writeRecipe, text: `${JSON.stringify(inputs.recipe, null, 2)}\n` },
+  };
+}
+
+async function compare(request: CompareRequest, context: JobContext): Promise<Result> {
+  const { comparison } = request;
+  const set = await loadInputs(await openInputs(request, context), comparison.terms, 'throw', context);
+  const run = await runComparison(set, comparison, context);
+  return { command: 'compare', run, meaning: comparison.target.meaning };
+}
+
+async function verify(request: VerifyRequest, context: JobContext): Promise<Result> {
+  const set = await loadInputs(await openInputs(request, context), request.terms, 'throw', context);
+  return { command: 'verify', evidence: await runVerification(set, request, context) };
+}

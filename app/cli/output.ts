@@ -1,0 +1,64 @@
+import { randomBytes } from 'node:crypto';
+import { cpSync, existsSync, mkdirSync, readdirSync, renameSync, rmSync, writeFileSync } from 'node:fs';
+import { basename, dirname, join, resolve } from 'node:path';
+import { InputError } from '../../core/job';
+
+/** Temporary names in use: removed when the program is interrupted. */
+const pending = new Set<string>();
+
+function temporaryName(target: string): string {
+  return join(dirname(target), `.${basename(target)}.tmp-${process.pid}-${randomBytes(3).toString('hex')}`);
+}
+
+function place(target: string, write: (temporary: string) => void): void {
+  const temporary = temporaryName(target);
+  pending.add(temporary);
+  try {
+    mkdirSync(dirname(target), { recursive: true });
+    write(temporary);
+    renameSync(temporary, target);
+  } catch (error) {
+    throw new InputError({
+      code: 'cannot-write',
+      where: target,
+      found: `the file cannot be written (${(error as NodeJS.ErrnoException).code ?? 'unknown reason'})`,
+      expected: 'a place that can be written to',
+      mend: 'Choose another path or free this one.',
+    });
+  } finally {
+    rmSync(temporary, { recursive: true, force: true });
+    pending.delete(temporary);
+  }
+}
+
+/** Writes a file under a temporary name and renames it, so that no one ever sees half a file. */
+export function writeWhole(path: string, text: string): void {
+  place(resolve(path), (temporary) => writeFileSync(temporary, text));
+}
+
+/**
+ * Copies a folder, whole or not at all. The target must not exist or be an empty folder.
+ * @throws InputError `folder-in-use`, `cannot-write`
+ */
+export function copyFolder(source: string, path: string): readonly string[] {
+  const target = resolve(path);
+  if (existsSync(target)) {
+    if (readdirSync(target).length > 0) {
+      throw new InputError({
+        code: 'folder-in-use',
+        where: path,
+        found: 'the folder holds files',
+        expected: 'a new or an empty folder',
+        mend: 'Name another folder.',
+      });
+    }
+    rmSync(target, { recursive: true });
+  }
+  place(target, (temporary) => cpSync(source, temporary, { recursive: true }));
+  return readdirSync(target).sort();
+}
+
+/** Removes what an interrupted write left. */
+export function removePending(): void {
+  for (const temporary of pending) rmSync(temporary, { recursive: true, force: true });
+}

@@ -1,0 +1,114 @@
+import type { WhatIfResult } from '../../core/estimate';
+import { type ComparisonRun, comparisonDocument } from '../../core/plan';
+import { compareText } from './compare-text';
+import { inspectText } from './inspect-text';
+import { copyFolder, writeWhole } from './output';
+import type { TerminalStream } from './progress';
+import type { Manner } from './request';
+import type { Result } from './result';
+import { verifyText } from './verify-text';
+import { whatIfText } from './whatif-text';
+
+const DONE = 0;
+const BUG = 1;
+const FAILED = 3;
+const CHECK_FAILED = 4;
+/** For files and pipes, which have no width. */
+const DEFAULT_COLUMNS = 140;
+
+/** Writes the answer, and the files it stands for; returns the exit status. */
+export function printResult(
+  result: Result,
+  manner: Manner,
+  out: TerminalStream,
+  err: TerminalStream,
+): number {
+  const columns = out.columns ?? DEFAULT_COLUMNS;
+  const answer = (document: () => object, text: () => string): void => {
+    out.write(manner.json ? `${JSON.stringify(document(), null, 2)}\n` : text());
+  };
+  const note = (text: string): void => {
+    if (!manner.quiet) err.write(`${text}\n`);
+  };
+  switch (result.command) {
+    case 'inspect': {
+      const { inspection, recipe } = result;
+      if (recipe) {
+        writeWhole(recipe.path, recipe.text);
+        note(`Wrote ${recipe.path}.`);
+      }
+      answer(
+        () => inspection,
+        () => inspectText(inspection, columns),
+      );
+      return DONE;
+    }
+    case 'compare': {
+      const { run, meaning } = result;
+      answer(
+        () => comparisonDocument(run.comparison),
+        () => compareText(run, meaning, columns),
+      );
+      if (manner.json) for (const line of outcomeNotes(run)) err.write(`${line}\n`);
+      return compareStatus(run);
+    }
+    case 'verify': {
+      const { evidence } = result;
+      answer(
+        () => evidence,
+        () => verifyText(evidence),
+      );
+      return evidence.checks.every(({ ok }) => ok) ? DONE : CHECK_FAILED;
+    }
+    case 'whatif':
+      answer(
+        () => whatIfDocument(result.whatIf),
+        () => whatIfText(result.whatIf, columns),
+      );
+      return DONE;
+    case 'copy-demo': {
+      const files = copyFolder(result.from, result.out);
+      answer(
+        () => ({ folder: result.out, files }),
+        () =>
+          `Copied ${files.length} files to ${result.out}. Next: spinwright compare ${result.out} --target 5cm-1\n`,
+      );
+      return DONE;
+    }
+  }
+}
+
+/** With JSON on stdout, what is missing from it is said on stderr. */
+function outcomeNotes({ outcomes }: ComparisonRun): string[] {
+  return outcomes.flatMap((outcome) => {
+    if (outcome.status === 'left-out') return [`left out: ${outcome.name}: ${outcome.reason}`];
+    if (outcome.status !== 'failed') return [];
+    const { where, found, expected, mend } = outcome.problem;
+    return [`failed: ${outcome.name}: ${where}: ${found}; expected ${expected}. ${mend}`];
+  });
+}
+
+function compareStatus({ outcomes }: ComparisonRun): number {
+  const failures = outcomes.flatMap((outcome) => (outcome.status === 'failed' ? [outcome.problem] : []));
+  if (failures.length === 0) return DONE;
+  return failures.some(({ code }) => code === 'bug') ? BUG : FAILED;
+}
+
+/** Without the tree of subroutines, which is many times larger than the rest. */
+function whatIfDocument({ step, ...rest }: WhatIfResult): object {
+  const { schema, parameters, bits, logicalQubits, walkSteps, totalToffoli, totalT } = rest;
+  const { toffoli, t, parts } = step;
+  return {
+    schema,
+    parameters,
+    bits,
+    step: { toffoli, t, parts },
+    logicalQubits,
+    walkSteps,
+    totalToffoli,
+    totalT,
+    physical: rest.physical,
+    published: rest.published,
+    difference: rest.difference,
+  };
+}

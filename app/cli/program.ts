@@ -1,0 +1,247 @@
+import { Command, CommanderError, Option } from 'commander';
+import { expandVariants } from '../../core/encode';
+import { MEANINGS, type Meaning } from '../../core/plan';
+import { version } from '../../package.json';
+import type { CompareRequest, Manner, Request } from './request';
+import {
+  parseBits,
+  parseCount,
+  parseOccupations,
+  parseOverlaps,
+  parseTarget,
+  parseTerms,
+  parseThreshold,
+  usageError,
+} from './values';
+import { addWhatIf } from './whatif-command';
+
+/** A call of the command line: what is asked and how to answer. */
+export interface Call {
+  readonly request: Request;
+  readonly manner: Manner;
+}
+
+/** Help or the version was asked for, and written. */
+export class HelpShown extends Error {}
+
+type Flags = Record<string, string | boolean | undefined>;
+const ANY = Number.MAX_SAFE_INTEGER;
+
+/**
+ * Reads the arguments after `spinwright`.
+ * @param demoFolder where the demo's files are
+ * @param write where help and version go
+ * @throws InputError `usage` with the flag, what was found, what is allowed
+ * @throws HelpShown where help or the version was printed instead
+ */
+export function parseCall(args: readonly string[], demoFolder: string, write: (text: string) => void): Call {
+  let call: Call | null = null;
+  const program = buildProgram(demoFolder, (request, flags) => {
+    call = { request, manner: readManner(flags) };
+  });
+  for (const command of [program, ...program.commands]) {
+    command.exitOverride().configureOutput({ writeOut: write, writeErr: () => {} });
+  }
+  try {
+    program.parse([...args], { from: 'user' });
+  } catch (error) {
+    if (error instanceof CommanderError) throw fromCommander(error, args);
+    throw error;
+  }
+  if (!call) throw usageError('spinwright', 'no command', 'one of the commands', 'See spinwright --help.');
+  return call;
+}
+
+type Accept = (request: Request, flags: Flags) => void;
+
+function buildProgram(demoFolder: string, accept: Accept): Command {
+  const program = new Command('spinwright')
+    .description('Plans fault-tolerant phase estimation of relativistic molecules from their integral files.')
+    .version(version)
+    .helpCommand(false)
+    .addHelpText(
+      'after',
+      '\nPlanning estimates only. Exit status: 0 done, 1 a bug, 2 bad input, 3 failed, 4 a check failed.',
+    );
+
+  reading(program.command('inspect'))
+    .description('what the files hold: terms, norms, findings')
+    .argument('<files...>', 'a folder, a recipe, or files')
+    .option('--electrons <n>', 'electrons in the orbitals')
+    .option('--write-recipe <file>', 'write down how the files were read')
+    .action((files: string[], flags: Flags) =>
+      accept(
+        {
+          command: 'inspect',
+          ...inputFiles(files, flags),
+          electrons: electronsOf(flags),
+          writeRecipe: text(flags.writeRecipe),
+        },
+        flags,
+      ),
+    );
+
+  comparing(reading(program.command('compare')))
+    .description('the variants side by side')
+    .argument('<files...>', 'a folder, a recipe, or files')
+    .requiredOption('--target <energy>', 'wanted accuracy with its unit, such as 5cm-1 or 1mEh')
+    .action((files: string[], flags: Flags) => accept(compareRequest(files, flags), flags));
+
+  selecting(reading(program.command('verify')))
+    .description('exact against encoded spectra of a small system')
+    .argument('<files...>', 'a folder, a recipe, or files')
+    .option('--variants <list>', 'variants to check; * stands for every value of an axis')
+    .option('--threshold <hartree>', 'what truncation may drop', '0')
+    .option('--states <n>', 'eigenvalues to show', '6')
+    .action((files: string[], flags: Flags) => {
+      const threshold = parseThreshold(String(flags.threshold));
+      if (threshold === 'auto') {
+        throw usageError(
+          '--threshold',
+          '"auto"',
+          'a number of hartree: verify has no target',
+          'Write e.g. 0.',
+        );
+      }
+      accept(
+        {
+          command: 'verify',
+          ...inputFiles(files, flags),
+          ...selection(flags),
+          variants: variantsOf(flags),
+          threshold,
+          states: parseCount('--states', String(flags.states), 1, 10_000),
+        },
+        flags,
+      );
+    });
+
+  addWhatIf(answering(program.command('whatif')), accept);
+
+  comparing(answering(program.command('demo')))
+    .description('the bundled demo: formaldehyde, a carbonyl chromophore')
+    .option('--target <energy>', 'wanted accuracy with its unit', '5cm-1')
+    .option('--out <dir>', 'copy the demo files there instead of comparing')
+    .action((flags: Flags) => {
+      const out = text(flags.out);
+      if (out !== null) accept({ command: 'copy-demo', from: demoFolder, out }, flags);
+      else accept(compareRequest([demoFolder], flags), flags);
+    });
+  return program;
+}
+
+/** Options of commands that read files. */
+function reading(command: Command): Command {
+  return answering(command).option('--recipe <file>', 'how to read the files');
+}
+
+/** Options of every command. */
+function answering(command: Command): Command {
+  return command
+    .option('--json', 'one JSON document on stdout')
+    .option('--quiet', 'no progress and no notes on stderr')
+    .option('--seed <n>', 'seed of every random choice', '1')
+    .option('--workers <n>', 'processor cores to use', '1')
+    .addOption(new Option('--trace').hideHelp());
+}
+
+function selecting(command: Command): Command {
+  return command
+    .option('--terms <list>', 'terms to keep: all, or of sf,so1,somf,so2,so2mf,ss,scalar,ssc', 'all')
+    .option('--electrons <n>', 'electrons in the orbitals')
+    .option('--occupations <list>', 'reference occupations, 0 to 2 an orbital, for computed mean fields');
+}
+
+function comparing(command: Command): Command {
+  return selecting(command)
+    .addOption(
+      new Option('--meaning <what>', 'what the target is of').choices([...MEANINGS]).default('level'),
+    )
+    .option('--variants <list>', 'variants to compare; * stands for every value of an axis')
+    .option('--threshold <hartree>', 'what truncation may drop, 0 = nothing, or auto', '0')
+    .option('--bits <n>', 'bits of keep values and angles, or auto', 'auto')
+    .option('--overlap <p>', 'squared overlap of the start state, two for a splitting', '1')
+    .option('--qubits-max <n>', 'most logical qubits a run may use');
+}
+
+function compareRequest(files: readonly string[], flags: Flags): CompareRequest {
+  const meaning = String(flags.meaning) as Meaning;
+  const overlaps = parseOverlaps(String(flags.overlap));
+  if (overlaps.length === 2 && meaning !== 'splitting') {
+    throw usageError(
+      '--overlap',
+      'two numbers',
+      'one, as there is one level',
+      'Add --meaning splitting or give one.',
+    );
+  }
+  const cap = text(flags.qubitsMax);
+  return {
+    command: 'compare',
+    ...inputFiles(files, flags),
+    comparison: {
+      ...selection(flags),
+      target: { ...parseTarget(String(flags.target)), meaning },
+      variants: variantsOf(flags),
+      threshold: parseThreshold(String(flags.threshold)),
+      bits: parseBits(String(flags.bits)),
+      overlaps: meaning === 'splitting' && overlaps.length === 1 ? [overlaps[0]!, overlaps[0]!] : overlaps,
+      qubitsMax: cap === null ? null : parseCount('--qubits-max', cap, 1, ANY),
+    },
+  };
+}
+
+function selection(flags: Flags) {
+  const occupations = text(flags.occupations);
+  return {
+    terms: parseTerms(String(flags.terms)),
+    electrons: electronsOf(flags),
+    occupations: occupations === null ? null : parseOccupations(occupations),
+  };
+}
+
+function inputFiles(files: readonly string[], flags: Flags) {
+  return { files, recipe: text(flags.recipe) };
+}
+
+function electronsOf(flags: Flags): number | null {
+  const given = text(flags.electrons);
+  return given === null ? null : parseCount('--electrons', given, 0, 800);
+}
+
+function variantsOf(flags: Flags) {
+  const given = text(flags.variants);
+  return given === null ? null : expandVariants(given);
+}
+
+function readManner(flags: Flags): Manner {
+  return {
+    json: flags.json === true,
+    quiet: flags.quiet === true,
+    seed: parseCount('--seed', String(flags.seed), 0, 2 ** 32 - 1),
+    workers: parseCount('--workers', String(flags.workers), 1, 64),
+    trace: flags.trace === true,
+  };
+}
+
+const text = (flag: string | boolean | undefined): string | null => (typeof flag === 'string' ? flag : null);
+
+/** commander's own message, in our one line. */
+function fromCommander(error: CommanderError, args: readonly string[]): Error {
+  if (error.exitCode === 0) return new HelpShown();
+  const command = args.find((arg) => !arg.startsWith('-')) ?? '';
+  const help = COMMANDS.includes(command) ? `spinwright ${command} --help` : 'spinwright --help';
+  const found = error.message
+    .replace(/^error: /, '')
+    .replace(/\.$/, '')
+    .replace(/\s*\n\s*/g, ' ');
+  const isMissingCommand = error.code === 'commander.help';
+  return usageError(
+    'spinwright',
+    isMissingCommand ? 'no command' : found,
+    'a command with its own options',
+    `See ${help}.`,
+  );
+}
+
+const COMMANDS = ['inspect', 'compare', 'verify', 'whatif', 'demo'];

@@ -1,0 +1,15 @@
+import type { WhatIfResult } from '../../core/estimate';
+import type { ComparisonRun, Evidence, Inspection, Meaning } from '../../core/plan';
+
+/** What a request comes back with; plain data, since it crosses a worker border. */
+export type Result =
+  | {
+      readonly command: 'inspect';
+      readonly inspection: Inspection;
+      /** The recipe to write and where, or null. */
+      readonly recipe: { readonly path: string; readonly text: string } | null;
+    }
+  | { readonly command: 'compare'; readonly run: ComparisonRun; readonly meaning: Meaning }
+  | { readonly command: 'verify'; readonly evidence: Evidence }
+  | { readonly command: 'whatif'; readonly whatIf: WhatIfResult }
+  | { readonly command: 'copy-demo'; readonly from: string; readonly out: string };

@@ -1,0 +1,60 @@
+import { buildEncoding, type Encoding, formatVariant, type VariantName } from '../encode';
+import { type Factorisation, factorise, type Grouping, jointRefusal } from '../factor';
+import type { SpinHamiltonian } from '../hamiltonian';
+import type { JobContext } from '../job';
+
+/**
+ * Encodings of one Hamiltonian at one threshold. What variants have in common is computed once: a factorisation
+ * serves every variant of its grouping, an encoding every way of treating spin in SELECT and every look-up.
+ */
+export class Encodings {
+  readonly #hamiltonian: SpinHamiltonian;
+  readonly #threshold: number;
+  readonly #occupations: readonly number[] | null;
+  readonly #factorisations = new Map<Grouping, Factorisation>();
+  readonly #encodings = new Map<string, Encoding>();
+
+  /**
+   * @param threshold - sum of LCU norms that truncation may drop, hartree
+   * @param occupations - reference of the mean field that stands for dropped factors; null: the default
+   */
+  constructor(hamiltonian: SpinHamiltonian, threshold: number, occupations: readonly number[] | null) {
+    this.#hamiltonian = hamiltonian;
+    this.#threshold = threshold;
+    this.#occupations = occupations;
+  }
+
+  /** Why the variant is left out though its name is sound, or null. */
+  refusal(variant: VariantName): string | null {
+    return variant.grouping === 'joint' && this.#hamiltonian.kind === 'spatial'
+      ? jointRefusal(this.#hamiltonian)
+      : null;
+  }
+
+  async of(variant: VariantName, context: JobContext): Promise<Encoding> {
+    const key = formatVariant({ ...variant, spin: 'index', lookup: 'clean' });
+    let encoding = this.#encodings.get(key);
+    if (!encoding) {
+      const factorisation =
+        variant.grouping === '-' ? null : await this.#factorised(variant.grouping, context);
+      const options = { threshold: this.#threshold };
+      encoding = await buildEncoding(this.#hamiltonian, factorisation, variant, options, context);
+      this.#encodings.set(key, encoding);
+    }
+    return encoding;
+  }
+
+  async #factorised(grouping: Grouping, context: JobContext): Promise<Factorisation> {
+    let found = this.#factorisations.get(grouping);
+    if (!found) {
+      const options = {
+        grouping,
+        threshold: this.#threshold,
+        ...(this.#occupations ? { occupations: this.#occupations } : {}),
+      };
+      found = await factorise(this.#hamiltonian, options, context);
+      this.#factorisations.set(grouping, found);
+    }
+    return found;
+  }
+}

@@ -1,0 +1,36 @@
+/** One check: `ok` where |value − expected| ≤ tolerance. */
+export interface Check {
+  readonly name: string;
+  readonly value: number;
+  readonly expected: number;
+  readonly tolerance: number;
+  /** What the expected value and the tolerance rest on. */
+  readonly source: string;
+  readonly ok: boolean;
+}
+
+/** What `verify --json` prints, keys in this order. Energies in hartree. */
+export interface Evidence {
+  readonly schema: 'spinwright-evidence/1';
+  readonly electrons: number;
+  readonly terms: readonly string[];
+  readonly spectrum: {
+    readonly exact: readonly number[];
+    readonly variants: Readonly<Record<string, readonly number[]>>;
+  };
+  readonly blockEncoding: Readonly<
+    Record<string, { readonly maxError: number; readonly bound: number; readonly columns: number }>
+  >;
+  readonly checks: readonly Check[];
+}
+
+/** Books a check. */
+export function check(
+  name: string,
+  value: number,
+  expected: number,
+  tolerance: number,
+  source: string,
+): Check {
+  return { name, value, expected, tolerance, source, ok: Math.abs(value - expected) <= tolerance };
+}

@@ -1,0 +1,16 @@
+export type { Comparison, Target, TermSummary, VariantEstimate } from './comparison';
+export { comparisonDocument, variantDocument } from './document';
+export type { Check, Evidence } from './evidence';
+export { type Inspection, inspectIntegrals } from './inspection';
+export { recommend } from './recommendation';
+export {
+  type ComparisonRequest,
+  type ComparisonRun,
+  MEANINGS,
+  type Meaning,
+  type VariantOutcome,
+} from './request';
+export { type ComparisonEvents, defaultVariants, hamiltonianOf, runComparison } from './run';
+export { findTask, TASK_NAMES } from './tasks';
+export { termSummaries } from './term-summaries';
+export { runVerification, type VerificationRequest } from './verification';

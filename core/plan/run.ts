@@ -1,0 +1,200 @@
+import { DEFAULT_VARIANTS, type Encoding, formatVariant, parseVariant, type VariantName } from '../encode';
+import {
+  confidenceFactor,
+  errorBudget,
+  estimateVariant,
+  SURFACE_CODE_DEFAULTS,
+  type TargetRequest,
+  targetRequest,
+} from '../estimate';
+import { buildHamiltonian, heldTerms, type SpinHamiltonian } from '../hamiltonian';
+import type { IntegralSet, SelectableTerm } from '../integrals';
+import { Cancelled, InputError, type JobContext, type Problem } from '../job';
+import { toHartree } from '../units';
+import type { VariantEstimate } from './comparison';
+import { Encodings } from './encodings';
+import { Floors } from './floors';
+import { recommend } from './recommendation';
+import type { ComparisonRequest, ComparisonRun, VariantOutcome } from './request';
+import { termSummaries } from './term-summaries';
+
+/** What a run tells while it goes on. */
+export interface ComparisonEvents {
+  readonly onStart?: (name: string) => void;
+  readonly onOutcome?: (outcome: VariantOutcome) => void;
+}
+
+/** Complex spinors have no spin apart from space: spinor factors only. */
+const SPINOR_VARIANTS: readonly VariantName[] = [
+  'spinor/joint/index/median/clean',
+  'spinor/separate/index/median/clean',
+  'spinor/joint/index/none/clean',
+].map(parseVariant);
+
+/** The variants compared where none are named. */
+export function defaultVariants(set: IntegralSet): readonly VariantName[] {
+  return set.kind === 'spinor' ? SPINOR_VARIANTS : DEFAULT_VARIANTS;
+}
+
+/**
+ * Compares variants on one set of integrals, one after the other in the order asked for. A variant that fails
+ * carries its problem and the others go on.
+ *
+ * @throws InputError where the request does not fit the integrals at all; Cancelled
+ */
+export async function runComparison(
+  set: IntegralSet,
+  request: ComparisonRequest,
+  context: JobContext,
+  events: ComparisonEvents = {},
+): Promise<ComparisonRun> {
+  const hamiltonian = hamiltonianOf(set, request);
+  const hartree = toHartree(request.target.value, request.target.unit);
+  const target = targetOf(request, hartree);
+  const terms = hamiltonian.kind === 'spatial' ? hamiltonian.terms : heldTerms(set);
+  const threshold =
+    request.threshold === 'auto'
+      ? errorBudget(target, confidenceFactor(target.accuracy)).truncation
+      : request.threshold;
+  const encodings = new Encodings(hamiltonian, threshold, request.occupations);
+  const floors = new Floors(hamiltonian);
+
+  const variants = request.variants ?? defaultVariants(set);
+  const outcomes: VariantOutcome[] = [];
+  for (const [index, variant] of variants.entries()) {
+    const name = formatVariant(variant);
+    const named = labelled(context, `${index + 1} of ${variants.length}, ${name}`);
+    await named.checkpoint();
+    events.onStart?.(name);
+    const reason = encodings.refusal(variant);
+    const outcome: VariantOutcome = reason
+      ? { status: 'left-out', name, reason }
+      : await attempt(name, async () => {
+          const encoding = await encodings.of(variant, named);
+          return estimateOf(encoding, variant, terms, request, target, floors, named);
+        });
+    outcomes.push(outcome);
+    events.onOutcome?.(outcome);
+  }
+
+  const estimates = outcomes.flatMap((outcome) => (outcome.status === 'done' ? [outcome.estimate] : []));
+  return {
+    comparison: {
+      schema: 'spinwright-comparison/1',
+      hamiltonian: {
+        orbitals: hamiltonian.kind === 'spatial' ? hamiltonian.orbitals : hamiltonian.spinors / 2,
+        electrons: hamiltonian.electrons,
+        constant: hamiltonian.constant,
+        terms: await termSummaries(set, terms, labelled(context, 'terms')),
+      },
+      target: { value: request.target.value, unit: request.target.unit, hartree },
+      variants: estimates,
+      recommendation: recommend(estimates, request.qubitsMax),
+    },
+    outcomes,
+  };
+}
+
+/** The Hamiltonian of a request's terms, electrons and occupations. */
+export function hamiltonianOf(
+  set: IntegralSet,
+  { terms, electrons, occupations }: Pick<ComparisonRequest, 'terms' | 'electrons' | 'occupations'>,
+): SpinHamiltonian {
+  return buildHamiltonian(set, {
+    terms,
+    ...(electrons === null ? {} : { electrons }),
+    ...(occupations === null ? {} : { occupations }),
+  });
+}
+
+function targetOf({ target: { meaning }, overlaps }: ComparisonRequest, hartree: number): TargetRequest {
+  const bare = targetRequest(hartree, { meaning });
+  if (overlaps.length !== bare.levels.length) {
+    throw new InputError({
+      code: 'overlaps',
+      where: 'overlaps',
+      found: `${overlaps.length} numbers`,
+      expected: `${bare.levels.length}, one a level`,
+      mend: 'Give one overlap for a level, two for a splitting.',
+    });
+  }
+  return { ...bare, levels: bare.levels.map((level, i) => ({ ...level, overlap: overlaps[i]! })) };
+}
+
+async function attempt(name: string, work: () => Promise<VariantEstimate>): Promise<VariantOutcome> {
+  try {
+    return { status: 'done', name, estimate: await work() };
+  } catch (error) {
+    if (error instanceof Cancelled) throw error;
+    return { status: 'failed', name, problem: problemOf(error, name) };
+  }
+}
+
+function problemOf(error: unknown, where: string): Problem {
+  if (error instanceof InputError) return error.toProblem();
+  const found = error instanceof Error ? error.message : String(error);
+  return {
+    code: 'bug',
+    where,
+    found,
+    expected: 'no error',
+    mend: 'This is a fault of the program; please report it.',
+  };
+}
+
+/** The same job, its stages named after what they belong to. */
+function labelled(context: JobContext, label: string): JobContext {
+  return {
+    seed: context.seed,
+    report: (stage, done, total) => context.report(`${label}: ${stage}`, done, total),
+    checkpoint: () => context.checkpoint(),
+    map: (task, inputs) => context.map(task, inputs),
+  };
+}
+
+async function estimateOf(
+  encoding: Encoding,
+  variant: VariantName,
+  terms: readonly SelectableTerm[],
+  request: ComparisonRequest,
+  target: TargetRequest,
+  floors: Floors,
+  context: JobContext,
+): Promise<VariantEstimate> {
+  const { lambda, shape, residual, constant } = encoding;
+  const cost = estimateVariant({
+    shape,
+    lambda,
+    variant,
+    target,
+    options: {
+      keepBits: request.bits,
+      rotationBits: request.bits,
+      qubitsMax: request.qubitsMax,
+      surfaceCode: SURFACE_CODE_DEFAULTS,
+    },
+  });
+  return {
+    name: formatVariant(variant),
+    terms,
+    factorisation: variant.factorisation,
+    grouping: variant.grouping,
+    spinInSelect: variant.spin,
+    shift: variant.shift,
+    lookup: variant.lookup,
+    lambda: { oneBody: lambda.oneBody, twoBody: lambda.twoBody, total: lambda.total, parts: lambda.parts },
+    spectralFloor: await floors.of(variant.shift === 'none' ? 'all' : 'eta', lambda.total, context),
+    constant,
+    factors: shape.factors,
+    rows: shape.rows + shape.oneBodyRows,
+    residual: { frobenius: residual.frobenius, oneNormBound: residual.oneNormBound, energyEstimate: null },
+    bits: cost.bits,
+    step: cost.step,
+    logicalQubits: cost.logicalQubits,
+    walkSteps: cost.walkSteps,
+    totalToffoli: cost.totalToffoli,
+    repetitions: cost.repetitions,
+    campaignToffoli: cost.campaignToffoli,
+    physical: cost.physical,
+  };
+}
