@@ -1,4 +1,4 @@
-import type { EncodingShape } from '../encode/encoding';
+import type { EncodingShape } from '../encode';
 import type { ErrorBudget } from './target';
 
 /** One bit width: what is used, and what the two formulas ask for. */

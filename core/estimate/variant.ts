@@ -1,6 +1,5 @@
 import { bitsFor, type LookupPolicy, type Subroutine, sparseStep, spinorStep, tripletStep } from '../circuit';
-import type { EncodingShape, LambdaByPart } from '../encode/encoding';
-import type { VariantName } from '../encode/variant';
+import type { EncodingShape, LambdaByPart, VariantName } from '../encode';
 import { InputError } from '../job';
 import { type BitChoices, chooseBits } from './bits';
 import type { PhysicalEstimate, StepCost, SurfaceCodeAssumptions } from './estimate';

@@ -1,4 +1,4 @@
-import type { EncodingShape } from '../../encode/encoding';
+import type { EncodingShape } from '../../encode';
 import { addition, bitsFor, controlledFermionicSwaps, phaseGradientRotation } from '../formulas';
 import type { Subroutine } from '../recipe';
 import { gate, type LookupPolicy, lookup, scope, unlookup } from './scope';

@@ -1,4 +1,4 @@
-import type { EncodingShape } from '../../encode/encoding';
+import type { EncodingShape } from '../../encode';
 import {
   addition,
   bitsFor,
