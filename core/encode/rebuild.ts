@@ -3,6 +3,7 @@ import type { SpatialHamiltonian, SpinHamiltonian, TwoElectronTensor } from '../
 import { fromProductForm, spinorFromProductForm, toSpinOrbitals } from '../hamiltonian';
 import { numAntisymmetricPairs, numSymmetricPairs, pairsTriangleLength } from '../integrals/integral-set';
 import { InputError } from '../job';
+import type { ComplexMatrix } from '../linalg';
 import type { BlockItems } from './items';
 import type { OneBody } from './one-body';
 
@@ -13,9 +14,9 @@ const MAX_DENSE = 16;
  * The Hamiltonian that an encoding stands for, from κ and the factors alone:
  * constant + κ + ½ Σ w (L' − τ')², L' the shifted factor with trace τ'.
  *
- * @returns the spatial form where the factors add up to such a tensor; truncated joint factors do not (what they leave
- * between two spin components has no place there), so they come as a Hamiltonian over 2N spin orbitals.
- * @throws InputError `too-large-to-rebuild` for truncated joint factors of more than 16 orbitals.
+ * @returns the spatial form where the factors add up to such a tensor. A truncated list of factors over several spin
+ * components does not (the full list cancels what has no place there): it comes as a Hamiltonian over 2N spin orbitals.
+ * @throws InputError `too-large-to-rebuild` for such a list of more than 16 orbitals.
  */
 export function rebuildSpatial(
   h: SpatialHamiltonian,
@@ -56,8 +57,8 @@ export function rebuildSpatial(
   }
   const k = { ...oneBody.kappa, planes };
   const common = { electrons: h.electrons, constant };
-  const joint = factorisation.blocks.some((block) => block.part === 'even' || block.part === 'odd');
-  if (joint && factorisation.residual.dropped > 0) {
+  const mixed = blocks.some(({ block }) => block.kind === 'squares' && block.planes.length > 1);
+  if (mixed && factorisation.residual.dropped > 0) {
     return rebuildDense(n, common, toSpinOrbitals(k), blocks);
   }
   return fromProductForm({ ...common, orbitals: n, terms: h.terms, k, g: tensorOf(n, blocks) });
@@ -174,26 +175,51 @@ function rebuildDense(
     throw new InputError({
       code: 'too-large-to-rebuild',
       where: 'rebuilt Hamiltonian',
-      found: `truncated joint factors of ${n} orbitals`,
+      found: `truncated factors over several spin components, ${n} orbitals`,
       expected: `at most ${MAX_DENSE} orbitals`,
-      mend: 'Use an orbital window, the separate grouping, or threshold 0.',
+      mend: 'Use an orbital window, or threshold 0.',
     });
   }
   const m = 2 * n;
   const size = m * m;
   const re = new Float64Array(size * size);
   const im = new Float64Array(size * size);
+  /** g += w (x ⊗ y). */
+  const addOuter = (x: ComplexMatrix, y: ComplexMatrix, w: number): void => {
+    for (let i = 0; i < size; i++) {
+      for (let j = 0; j < size; j++) {
+        re[i * size + j]! += w * (x.re[i]! * y.re[j]! - x.im[i]! * y.im[j]!);
+        im[i * size + j]! += w * (x.re[i]! * y.im[j]! + x.im[i]! * y.re[j]!);
+      }
+    }
+  };
   for (const entry of blocks) {
-    if (entry.kind === 'triples') throw new RangeError('triples belong to the separate grouping');
+    if (entry.kind === 'triples') {
+      const { block } = entry;
+      entry.items.forEach(({ shift }, t) => {
+        const k = block.component[t]!;
+        const s = block.strengths[t]!;
+        const halves = [
+          [block.sameScale, 'even', k, 0, shift],
+          [block.otherScale, 'odd', 0, k, 0],
+        ] as const;
+        for (const [scale, sector, muX, muY, c] of halves) {
+          if (scale === 0) continue;
+          const x = { sector, n, planes: new Float64Array(4 * n * n) };
+          const y = { sector, n, planes: new Float64Array(4 * n * n) };
+          planeInto(x.planes, muX * n * n, block.antisymmetric, t * numAntisymmetricPairs(n), n, false);
+          planeInto(y.planes, muY * n * n, block.symmetric, t * numSymmetricPairs(n), n, true);
+          if (c !== 0) for (let p = 0; p < n; p++) y.planes[p * n + p]! -= c;
+          const [xs, ys] = [toSpinOrbitals(x), toSpinOrbitals(y)];
+          addOuter(xs, ys, s * scale);
+          addOuter(ys, xs, s * scale);
+        }
+      });
+      continue;
+    }
     entry.items.forEach(({ shift }, t) => {
       const l = toSpinOrbitals(shiftedPlanes(entry.block, t, shift));
-      const w = entry.block.weights[t]!;
-      for (let i = 0; i < size; i++) {
-        for (let j = 0; j < size; j++) {
-          re[i * size + j]! += w * (l.re[i]! * l.re[j]! - l.im[i]! * l.im[j]!);
-          im[i * size + j]! += w * (l.re[i]! * l.im[j]! + l.im[i]! * l.re[j]!);
-        }
-      }
+      addOuter(l, l, entry.block.weights[t]!);
     });
   }
   return spinorFromProductForm({ ...common, spinors: m, k: { re: k.re, im: k.im }, g: { re, im } });
@@ -205,6 +231,6 @@ function shiftedPlanes(block: SquareFactors, t: number, shift: number) {
   for (const slot of sectorLayout(sector, block.planes, n).slots) {
     planeInto(planes, slot.mu * n * n, block.vectors, t * block.dim + slot.offset, n, slot.symmetric);
   }
-  for (let p = 0; p < n; p++) planes[p * n + p]! -= shift;
+  if (shift !== 0) for (let p = 0; p < n; p++) planes[p * n + p]! -= shift;
   return { sector, n, planes };
 }

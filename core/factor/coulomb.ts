@@ -1,8 +1,8 @@
+import { coulombBlock, type TwoElectronTensor } from '../hamiltonian';
 import { numSymmetricPairs } from '../integrals/integral-set';
 import type { JobContext } from '../job';
 import { denseRows, pivotedCholeskyAsync } from '../linalg';
 import { eigenvectors, normalised, type WeightedVectors } from './squares';
-import { chargeMatrix } from './super-matrix';
 import type { Remainder } from './truncate';
 
 /** A remainder that Cholesky leaves above this part of the trace means that the matrix is not positive semidefinite. */
@@ -23,11 +23,11 @@ export interface ChargeFactors extends WeightedVectors {
  */
 export async function chargeFactors(
   n: number,
-  charge: Float64Array,
+  g: TwoElectronTensor,
   threshold: number,
   ctx: JobContext,
 ): Promise<ChargeFactors> {
-  const matrix = chargeMatrix(n, charge);
+  const matrix = coulombBlock(n, g);
   const npair = numSymmetricPairs(n);
   const columns = await choleskyFactors(matrix, npair, threshold, INDEFINITE, ctx);
   if (!columns) return { ...(await eigenvectors(matrix, npair, ctx)), semidefinite: false, remainder: null };

@@ -1,12 +1,10 @@
-import type { SpatialHamiltonian, SpinHamiltonian } from '../hamiltonian/hamiltonian';
-import { numSymmetricPairs } from '../integrals/integral-set';
+import { type SpatialHamiltonian, type SpinHamiltonian, sectorDimension, sectorMatrix } from '../hamiltonian';
 import { InputError, type JobContext } from '../job';
 import { chargeFactors } from './coulomb';
 import type { Factorisation, Grouping, SquareFactors, TripleFactors } from './factors';
 import { jointFactors } from './joint';
 import { spinorFactorisation } from './spinor';
 import { eigenvectors, squareFactors } from './squares';
-import { spinSpinMatrix } from './super-matrix';
 import { spinOrbitTriples } from './triples';
 import { type Remainder, truncate } from './truncate';
 
@@ -65,7 +63,7 @@ async function separateFactors(h: SpatialHamiltonian, threshold: number, ctx: Jo
   let remainder: Remainder | null = null;
   const { charge, spinSpin } = h.g;
   if (charge) {
-    const factors = await chargeFactors(n, charge, (4 * CHOLESKY_SHARE * threshold) / n, ctx);
+    const factors = await chargeFactors(n, h.g, (4 * CHOLESKY_SHARE * threshold) / n, ctx);
     remainder = factors.remainder;
     if (!factors.semidefinite) {
       notes.push(
@@ -76,9 +74,10 @@ async function separateFactors(h: SpatialHamiltonian, threshold: number, ctx: Jo
   }
   blocks.push(...(await spinOrbitTriples(h, ctx)));
   if (spinSpin) {
-    const dim = 3 * numSymmetricPairs(n);
-    const vectors = await eigenvectors(spinSpinMatrix(n, spinSpin), dim, ctx);
-    blocks.push(await squareFactors('spin-spin', 'odd', [1, 2, 3], n, vectors, ctx));
+    const planes = [1, 2, 3] as const;
+    const matrix = sectorMatrix(n, h.g, 'odd', planes);
+    const vectors = await eigenvectors(matrix, sectorDimension(n, 'odd', planes), ctx);
+    blocks.push(await squareFactors('spin-spin', 'odd', planes, n, vectors, ctx));
   }
   return { blocks, notes, remainder };
 }

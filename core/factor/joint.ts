@@ -1,16 +1,22 @@
-import type { SpatialHamiltonian } from '../hamiltonian/hamiltonian';
-import type { Mu } from '../hamiltonian/operators';
+import {
+  coulombBlock,
+  type Mu,
+  otherOrbitBlock,
+  type SpatialHamiltonian,
+  sameOrbitBlock,
+  sectorDimension,
+  sectorMatrix,
+} from '../hamiltonian';
 import { numAntisymmetricPairs, numSymmetricPairs } from '../integrals/integral-set';
 import { InputError, type JobContext } from '../job';
 import { householderQr, multiply, transpose } from '../linalg';
 import type { SquareFactors } from './factors';
 import { eigenvectors, squareFactors } from './squares';
-import { chargeMatrix, otherOrbit, spinOrbitMatrix, spinSpinMatrix } from './super-matrix';
 
 /** Largest dense eigenproblem of the joint grouping. */
 export const MAX_SECTOR = 3000;
 
-const EVEN: readonly Mu[] = [0, 1, 2, 3];
+const ALL: readonly Mu[] = [0, 1, 2, 3];
 
 /** Dimensions of the dense eigenproblems that joint factors take, after the reduction. 0 = nothing to solve. */
 export function jointDimensions(h: SpatialHamiltonian): { readonly even: number; readonly odd: number } {
@@ -62,73 +68,41 @@ export async function jointFactors(h: SpatialHamiltonian, ctx: JobContext): Prom
 async function evenFactors(h: SpatialHamiltonian, ctx: JobContext): Promise<SquareFactors> {
   const n = h.orbitals;
   const npair = numSymmetricPairs(n);
-  const c = h.g.charge ? chargeMatrix(n, h.g.charge) : new Float64Array(npair * npair);
+  const c = coulombBlock(n, h.g);
   if (!h.g.spinOrbit) {
     return squareFactors('even', 'even', [0], n, await eigenvectors(c, npair, ctx), ctx);
   }
-  // Rows: the three antisymmetric planes; columns: symmetric pairs.
-  const long = 3 * numAntisymmetricPairs(n);
-  const w = stacked(h, h.g.spinOrbit.same, 1);
-  const solved = await offDiagonalEigenvectors(c, w, npair, long, ctx);
-  return squareFactors('even', 'even', EVEN, n, solved, ctx);
+  const size = numAntisymmetricPairs(n) * npair;
+  const w = new Float64Array(3 * size);
+  for (const k of [1, 2, 3] as const) w.set(sameOrbitBlock(n, h.g, k), (k - 1) * size);
+  const solved = await offDiagonalEigenvectors(c, w, npair, 3 * numAntisymmetricPairs(n), ctx);
+  return squareFactors('even', 'even', ALL, n, solved, ctx);
 }
 
 async function oddFactors(h: SpatialHamiltonian, ctx: JobContext): Promise<SquareFactors> {
   const n = h.orbitals;
-  const nanti = numAntisymmetricPairs(n);
-  const long = 3 * numSymmetricPairs(n);
   const { spinOrbit, spinSpin } = h.g;
-  if (!spinSpin) {
-    const x = oddCoupling(h);
-    const zero = new Float64Array(nanti * nanti);
-    return squareFactors(
-      'odd',
-      'odd',
-      EVEN,
-      n,
-      await offDiagonalEigenvectors(zero, x, nanti, long, ctx),
-      ctx,
-    );
+  if (spinSpin) {
+    const planes = spinOrbit ? ALL : ([1, 2, 3] as const);
+    const matrix = sectorMatrix(n, h.g, 'odd', planes);
+    const solved = await eigenvectors(matrix, sectorDimension(n, 'odd', planes), ctx);
+    return squareFactors('odd', 'odd', planes, n, solved, ctx);
   }
-  const ss = spinSpinMatrix(n, spinSpin);
-  if (!spinOrbit) {
-    return squareFactors('odd', 'odd', [1, 2, 3], n, await eigenvectors(ss, long, ctx), ctx);
-  }
-  const x = oddCoupling(h);
-  const dim = nanti + long;
-  const full = new Float64Array(dim * dim);
-  for (let i = 0; i < long; i++) {
-    full.set(ss.subarray(i * long, (i + 1) * long), (nanti + i) * dim + nanti);
-    for (let j = 0; j < nanti; j++) {
-      full[(nanti + i) * dim + j] = x[i * nanti + j]!;
-      full[j * dim + nanti + i] = x[i * nanti + j]!;
-    }
-  }
-  return squareFactors('odd', 'odd', EVEN, n, await eigenvectors(full, dim, ctx), ctx);
-}
-
-/** Three components of a spin–orbit array one below the other: 3nanti × npair. */
-function stacked(h: SpatialHamiltonian, w: Float64Array, scale: number): Float64Array {
-  const size = numAntisymmetricPairs(h.orbitals) * numSymmetricPairs(h.orbitals);
-  const out = new Float64Array(3 * size);
-  for (let k = 0; k < 3; k++) out.set(spinOrbitMatrix(h.orbitals, w, k), k * size);
-  if (scale !== 1) for (let i = 0; i < out.length; i++) out[i]! *= scale;
-  return out;
-}
-
-/** Rows: the symmetric pairs of x, y, z; columns: antisymmetric pairs. 3npair × nanti. */
-function oddCoupling(h: SpatialHamiltonian): Float64Array {
-  const n = h.orbitals;
   const nanti = numAntisymmetricPairs(n);
   const npair = numSymmetricPairs(n);
-  const { w, scale } = otherOrbit(h.g.spinOrbit!);
-  const rows = stacked(h, w, scale);
-  const out = new Float64Array(rows.length);
-  for (let k = 0; k < 3; k++) {
-    const from = k * nanti * npair;
-    out.set(transpose(rows.subarray(from, from + nanti * npair), nanti, npair), from);
-  }
-  return out;
+  const size = nanti * npair;
+  const x = new Float64Array(3 * size);
+  for (const k of [1, 2, 3] as const)
+    x.set(transpose(otherOrbitBlock(n, h.g, k), nanti, npair), (k - 1) * size);
+  const zero = new Float64Array(nanti * nanti);
+  return squareFactors(
+    'odd',
+    'odd',
+    ALL,
+    n,
+    await offDiagonalEigenvectors(zero, x, nanti, 3 * npair, ctx),
+    ctx,
+  );
 }
 
 /**

@@ -1,4 +1,4 @@
-import type { SpatialHamiltonian } from '../hamiltonian/hamiltonian';
+import { otherOrbitBlock, type SpatialHamiltonian, sameOrbitBlock } from '../hamiltonian';
 import { numAntisymmetricPairs, numSymmetricPairs } from '../integrals/integral-set';
 import type { JobContext, Task } from '../job';
 import { type SingularValues, singularValues } from '../linalg';
@@ -7,7 +7,6 @@ import { type Block, matrixBlocks, submatrix } from './components';
 import type { TripleFactors } from './factors';
 import { pairSpectra } from './spectra';
 import { ZERO_WEIGHT } from './squares';
-import { spinOrbitMatrix } from './super-matrix';
 
 interface SvdInput {
   readonly rows: number;
@@ -29,24 +28,27 @@ export async function spinOrbitTriples(h: SpatialHamiltonian, ctx: JobContext): 
   const spinOrbit = h.g.spinOrbit;
   if (!spinOrbit) return [];
   const n = h.orbitals;
+  const same = (k: Component) => sameOrbitBlock(n, h.g, k);
   if (!(spinOrbit.other instanceof Float64Array)) {
-    return [await tripleList(n, spinOrbit.same, 1, spinOrbit.other.timesSame, ctx)];
+    return [await tripleList(n, same, 1, spinOrbit.other.timesSame, ctx)];
   }
   const lists = [
-    await tripleList(n, spinOrbit.same, 1, 0, ctx),
-    await tripleList(n, spinOrbit.other, 0, 1, ctx),
+    await tripleList(n, same, 1, 0, ctx),
+    await tripleList(n, (k) => otherOrbitBlock(n, h.g, k), 0, 1, ctx),
   ];
   return lists.filter((list) => list.count > 0);
 }
 
+type Component = 1 | 2 | 3;
+
 interface Piece {
-  readonly k: number;
+  readonly k: Component;
   readonly block: Block;
 }
 
 async function tripleList(
   n: number,
-  w: Float64Array,
+  blockOf: (k: Component) => Float64Array,
   sameScale: number,
   otherScale: number,
   ctx: JobContext,
@@ -55,8 +57,8 @@ async function tripleList(
   const npair = numSymmetricPairs(n);
   const pieces: Piece[] = [];
   const inputs: SvdInput[] = [];
-  for (let k = 0; k < 3; k++) {
-    const matrix = spinOrbitMatrix(n, w, k);
+  for (const k of [1, 2, 3] as const) {
+    const matrix = blockOf(k);
     for (const block of matrixBlocks(matrix, nanti, npair)) {
       pieces.push({ k, block });
       inputs.push({
@@ -71,7 +73,7 @@ async function tripleList(
   const solved = await ctx.map(svdTask, inputs);
   ctx.report('spin–orbit factors', inputs.length, inputs.length);
 
-  const perComponent = [0, 1, 2].map((k) => {
+  const perComponent = [1, 2, 3].map((k) => {
     const merged = mergeBlocks(
       solved.flatMap((svd, i) => (pieces[i]!.k === k ? [{ svd, block: pieces[i]!.block }] : [])),
       nanti,
