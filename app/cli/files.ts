@@ -17,10 +17,15 @@ export class NodeSource implements ByteSource {
   ) {}
 
   async read(offset: number, length: number): Promise<Uint8Array> {
+    const bytes = new Uint8Array(Math.max(0, Math.min(length, this.size - offset)));
+    return bytes.subarray(0, await this.readInto(offset, bytes));
+  }
+
+  async readInto(offset: number, target: Uint8Array): Promise<number> {
     // Opened for each read, so that no handle is left behind: sources have no end of life of their own.
     const handle = await explain(this.path, () => open(this.realPath, 'r'));
     try {
-      return await explain(this.path, () => readFully(handle, offset, Math.min(length, this.size - offset)));
+      return await explain(this.path, () => readFully(handle, offset, target));
     } finally {
       await handle.close();
     }
@@ -87,15 +92,14 @@ async function collect(
   }
 }
 
-async function readFully(handle: FileHandle, offset: number, length: number): Promise<Uint8Array> {
-  const bytes = new Uint8Array(Math.max(0, length));
+async function readFully(handle: FileHandle, offset: number, target: Uint8Array): Promise<number> {
   let done = 0;
-  while (done < bytes.length) {
-    const { bytesRead } = await handle.read(bytes, done, bytes.length - done, offset + done);
+  while (done < target.length) {
+    const { bytesRead } = await handle.read(target, done, target.length - done, offset + done);
     if (bytesRead === 0) break;
     done += bytesRead;
   }
-  return bytes.subarray(0, done);
+  return done;
 }
 
 const REASONS: Readonly<Record<string, string>> = {

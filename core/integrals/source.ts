@@ -8,6 +8,11 @@ export interface ByteSource {
   readonly size: number;
   /** Bytes [offset, offset + length), clipped to the end of the source. */
   read(offset: number, length: number): Promise<Uint8Array>;
+  /**
+   * Fills `target` from `offset` on and returns the number of bytes, fewer only at the end of the source.
+   * Only where it saves a copy; whoever reads must do without.
+   */
+  readInto?(offset: number, target: Uint8Array): Promise<number>;
 }
 
 /** The files of one data set. */

@@ -26,7 +26,18 @@ export function truncated(where: string, expected: number, found: number): Input
   });
 }
 
-/** Hands the bytes [from, to) to `visit`, block by block, with progress and a chance to stop between blocks. */
+/** Fills `target` with the bytes from `offset` on. @throws InputError `truncated` */
+export async function fillExactly(source: ByteSource, offset: number, target: Uint8Array): Promise<void> {
+  if (source.readInto === undefined) target.set(await readExactly(source, offset, target.length));
+  else if ((await source.readInto(offset, target)) < target.length) {
+    throw truncated(source.path, offset + target.length, source.size);
+  }
+}
+
+/**
+ * Hands the bytes [from, to) to `visit`, block by block, with progress and a chance to stop between blocks.
+ * The block is used again for the next one: `visit` must not keep it.
+ */
 export async function forEachChunk(
   source: ByteSource,
   from: number,
@@ -35,12 +46,31 @@ export async function forEachChunk(
   visit: (bytes: Uint8Array) => void | Promise<void>,
 ): Promise<void> {
   const stage = `reading ${source.path}`;
+  const buffer = new Uint8Array(Math.min(CHUNK_BYTES, to - from));
   for (let at = from; at < to; ) {
     const length = Math.min(CHUNK_BYTES, to - at);
-    const done = visit(await readExactly(source, at, length));
+    const bytes = buffer.subarray(0, length);
+    await fillExactly(source, at, bytes);
+    const done = visit(bytes);
     if (done) await done;
     at += length;
     context.report(stage, at - from, to - from);
+    await context.checkpoint();
+  }
+}
+
+/** Fills a large array with the bytes from `offset` on, with progress. */
+export async function fillWithProgress(
+  source: ByteSource,
+  offset: number,
+  target: Uint8Array,
+  context: JobContext,
+): Promise<void> {
+  for (let at = 0; at < target.length; ) {
+    const length = Math.min(4 * CHUNK_BYTES, target.length - at);
+    await fillExactly(source, offset + at, target.subarray(at, at + length));
+    at += length;
+    context.report(`reading ${source.path}`, at, target.length);
     await context.checkpoint();
   }
 }

@@ -19,6 +19,13 @@ export const isReadable = (type: ElementType): boolean => SIZES[type.kind].inclu
 /** Doubles that one element becomes. */
 export const doublesEach = (type: ElementType): number => (type.kind === 'complex' ? 2 : 1);
 
+/**
+ * Whether elements are stored as this machine holds doubles: every platform this runs on is little-endian,
+ * WebAssembly by definition.
+ */
+export const isNative = ({ kind, bytes, littleEndian }: ElementType): boolean =>
+  littleEndian && ((kind === 'float' && bytes === 8) || (kind === 'complex' && bytes === 16));
+
 /** Turns stored elements into doubles as their bytes arrive, in pieces of any length. */
 export class ElementWriter {
   /** Doubles written so far. */
@@ -56,8 +63,7 @@ export class ElementWriter {
     const { type, out } = this;
     const part = type.bytes / doublesEach(type);
     const count = bytes.length / part;
-    if (part === 8 && type.littleEndian && (type.kind === 'float' || type.kind === 'complex')) {
-      // The machine's own layout: every platform this runs on is little-endian, WebAssembly by definition.
+    if (isNative(type)) {
       new Uint8Array(out.buffer, out.byteOffset + this.written * 8, bytes.length).set(bytes);
     } else this.convert(new DataView(bytes.buffer, bytes.byteOffset, bytes.length), part, count);
     this.written += count;

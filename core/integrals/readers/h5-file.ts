@@ -28,21 +28,46 @@ export function openWithModule(
   const log = diagnostics.get(module) ?? new Diagnostics(module);
   diagnostics.set(module, log);
   log.clear();
-  const file = module.open(path, 0, false, -1, -1);
-  if (file < 0n) {
+  try {
+    const file = guarded(log, origin, () => module.open(path, 0, false, -1, -1));
+    if (file < 0n) throw unopened(origin, log);
+    return new OpenFile(module, file, origin, bytes, log, release);
+  } catch (error) {
     release();
-    const cut = log.truncation();
-    if (cut !== null) throw truncated(origin, cut.expected, cut.found);
-    throw new InputError({
-      code: 'not-hdf5',
-      where: origin,
-      found: `no readable HDF5 file${log.cause() ? ` (${log.cause()})` : ''}`,
-      expected: 'an HDF5 file',
-      mend: 'Check that the file was copied as a whole and is the one the recipe means.',
-    });
+    throw error;
   }
-  return new OpenFile(module, file, origin, bytes, log, release);
 }
+
+function unopened(origin: string, log: Diagnostics): InputError {
+  const cut = log.truncation();
+  if (cut !== null) return truncated(origin, cut.expected, cut.found);
+  return new InputError({
+    code: 'not-hdf5',
+    where: origin,
+    found: `no readable HDF5 file${log.cause() ? ` (${log.cause()})` : ''}`,
+    expected: 'an HDF5 file',
+    mend: 'Check that the file was copied as a whole and is the one the recipe means.',
+  });
+}
+
+/** Runs a call into the library, which throws errors of its own kind where damaged bytes lead it astray. */
+function guarded<T>(log: Diagnostics, where: string, call: () => T): T {
+  try {
+    return call();
+  } catch (error) {
+    if (error instanceof InputError) throw error;
+    throw unreadable(where, log);
+  }
+}
+
+const unreadable = (where: string, log: Diagnostics): InputError =>
+  new InputError({
+    code: 'hdf5-unreadable',
+    where,
+    found: `data that cannot be read${log.cause() ? ` (${log.cause()})` : ''}`,
+    expected: 'an undamaged HDF5 file with no filter but gzip, shuffle and checksum',
+    mend: 'Write or copy the file again.',
+  });
 
 class OpenFile implements Hdf5File {
   private readonly paths: readonly string[];
@@ -57,10 +82,12 @@ class OpenFile implements Hdf5File {
     private readonly release: () => void,
   ) {
     // Visits only what the file itself holds, so no link can lead out of it.
-    this.paths = module
-      .get_names(file, '/', true)
-      .map((name) => (name.startsWith('/') ? name : `/${name}`))
-      .filter((name) => module.get_type(file, name) === module.H5G_DATASET);
+    this.paths = guarded(log, origin, () =>
+      module
+        .get_names(file, '/', true)
+        .map((name) => (name.startsWith('/') ? name : `/${name}`))
+        .filter((name) => module.get_type(file, name) === module.H5G_DATASET),
+    );
   }
 
   datasets(): readonly string[] {
@@ -70,10 +97,19 @@ class OpenFile implements Hdf5File {
   dataset(path: string): Hdf5Dataset | undefined {
     const full = path.startsWith('/') ? path : `/${path}`;
     if (!this.paths.includes(full)) return undefined;
-    return new OpenDataset(this, full, this.module.get_dataset_metadata(this.file, full));
+    const { module, file, log, origin } = this;
+    return new OpenDataset(
+      this,
+      full,
+      guarded(log, `${origin}:${full}`, () => module.get_dataset_metadata(file, full)),
+    );
   }
 
   attribute(name: string, group = '/'): number | undefined {
+    return guarded(this.log, `${this.origin}:${group}`, () => this.readAttribute(name, group));
+  }
+
+  private readAttribute(name: string, group: string): number | undefined {
     const { module, file } = this;
     if (group !== '/' && module.get_type(file, group) < 0) return undefined;
     if (!module.get_attribute_names(file, group).includes(name)) return undefined;
@@ -161,23 +197,17 @@ class OpenDataset implements Hdf5Dataset {
     const scalar = extent.length === 0;
     owner.withMemory(bytes, (pointer) => {
       log.clear();
-      const status = module.get_dataset_data(
-        file,
-        path,
-        scalar ? null : extent.map(BigInt),
-        scalar ? null : offset.map(BigInt),
-        scalar ? null : extent.map(() => 1n),
-        BigInt(pointer),
+      const status = guarded(log, where, () =>
+        module.get_dataset_data(
+          file,
+          path,
+          scalar ? null : extent.map(BigInt),
+          scalar ? null : offset.map(BigInt),
+          scalar ? null : extent.map(() => 1n),
+          BigInt(pointer),
+        ),
       );
-      if (status < 0) {
-        throw new InputError({
-          code: 'hdf5-unreadable',
-          where,
-          found: `data that cannot be read${log.cause() ? ` (${log.cause()})` : ''}`,
-          expected: 'a whole dataset',
-          mend: 'The file is damaged or uses a filter other than gzip and shuffle: write or copy it again.',
-        });
-      }
+      if (status < 0) throw unreadable(where, log);
       owner.copy(pointer, bytes, writer);
     });
   }

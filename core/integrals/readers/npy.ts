@@ -1,14 +1,16 @@
 import { InputError, type JobContext } from '../../job';
 import type { RawArray } from '../raw';
 import type { ByteSource } from '../source';
-import { forEachChunk, refuseEmpty, truncated } from './chunks';
-import { doublesEach, ElementWriter } from './elements';
+import { fillWithProgress, forEachChunk, readExactly, refuseEmpty, truncated } from './chunks';
+import { doublesEach, ElementWriter, isNative } from './elements';
 import { countElements, requireFinite } from './limits';
 import { type NpyHeader, parseNpyHeader } from './npy-header';
 import { latin1 } from './text-lines';
 
 /** A header is a few hundred bytes; a longer one is no header. */
 const MAX_HEADER_BYTES = 2 ** 16;
+/** Enough for the header of nearly every file. */
+const FIRST_BYTES = 4096;
 
 /**
  * Reads an `.npy` array, format versions 1.0 to 3.0 (NumPy Enhancement Proposal 1 and its later revisions),
@@ -18,7 +20,13 @@ const MAX_HEADER_BYTES = 2 ** 16;
 export async function readNpy(source: ByteSource, context: JobContext): Promise<RawArray> {
   refuseEmpty(source);
   const assembler = new NpyAssembler(source.path, source.size);
-  await forEachChunk(source, 0, source.size, context, (bytes) => assembler.push(bytes));
+  assembler.push(await readExactly(source, 0, Math.min(source.size, FIRST_BYTES)));
+  const direct = assembler.direct();
+  if (direct !== null) await fillWithProgress(source, source.size - direct.length, direct, context);
+  else {
+    const rest = Math.min(source.size, FIRST_BYTES);
+    await forEachChunk(source, rest, source.size, context, (bytes) => assembler.push(bytes));
+  }
   return assembler.finish();
 }
 
@@ -49,6 +57,12 @@ export class NpyAssembler {
     this.open(from);
     (this.writer as ElementWriter | null)?.push(head.subarray(from));
     this.head = new Uint8Array(0);
+  }
+
+  /** All data bytes, to be filled by the caller, where they are stored as they are used; else null. */
+  direct(): Uint8Array | null {
+    if (this.header === null || !isNative(this.header.type)) return null;
+    return new Uint8Array(this.data.buffer);
   }
 
   finish(): RawArray {
