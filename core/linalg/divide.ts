@@ -20,8 +20,8 @@ export function* divideSteps(arena: Arena, d: number, e: number, n: number, v: n
   const m = arena.f64;
   let scale = 0;
   for (let i = 0; i < n; i++) scale = Math.max(scale, Math.abs(m[d + i]), i < n - 1 ? Math.abs(m[e + i]) : 0);
-  m.fill(0, v, v + n * n);
   if (scale === 0) {
+    m.fill(0, v, v + n * n);
     for (let i = 0; i < n; i++) m[v + i * n + i] = 1;
     return;
   }
@@ -52,8 +52,12 @@ export function* divideSteps(arena: Arena, d: number, e: number, n: number, v: n
   }
 
   function leaf(from: number, size: number): void {
+    const m = arena.f64;
     const at = v + from * n + from;
-    for (let i = 0; i < size; i++) arena.f64[at + i * n + i] = 1;
+    for (let i = 0; i < size; i++) {
+      m.fill(0, at + i * n, at + i * n + size);
+      m[at + i * n + i] = 1;
+    }
     if (arena.kernels.qlSteps(d + from, e + from, size, at, n, size) !== 0) {
       throw new Error(`tridiagonal QL did not converge in rows ${from}…${from + size - 1} of ${n}`);
     }
@@ -62,6 +66,11 @@ export function* divideSteps(arena: Arena, d: number, e: number, n: number, v: n
   function* merge(from: number, middle: number, to: number, rho: number): Steps<void> {
     const size = to - from;
     const work = size ** 3;
+    for (let row = from; row < to; row++) {
+      const left = row < middle;
+      arena.f64.fill(0, v + row * n + (left ? middle : from), v + row * n + (left ? to : middle));
+      if ((row - from) % 512 === 511) yield 0; // fresh pages of memory take their time
+    }
     const joint = deflate(arena, { d, v, n, from, middle, to, rho });
     const { kept, poles, z } = joint;
     const k = kept.length;
@@ -86,12 +95,10 @@ export function* divideSteps(arena: Arena, d: number, e: number, n: number, v: n
       const source = v + (from + row) * n + from;
       m.copyWithin(room + slot * size, source, source + size);
     };
-    order.forEach((i, slot) => {
-      copyRow(kept[i], slot);
-    });
-    joint.done.forEach((row, i) => {
-      copyRow(row, k + i);
-    });
+    for (const [slot, row] of [...order.map((i) => kept[i]), ...joint.done].entries()) {
+      copyRow(row, slot);
+      if (slot % 512 === 511) yield 0;
+    }
     const doneValues = joint.done.map((row) => m[d + from + row]);
 
     const leftCols = middle - from;

@@ -8,7 +8,13 @@ export {
   type RowSource,
 } from './cholesky';
 export { type ClusteredBasis, clusterBasis, clusterTriples } from './cluster';
-export { hermitianEigen, hermitianEigenvalues, hermitianEigenvaluesBatch } from './hermitian';
+export {
+  hermitianEigen,
+  hermitianEigenAsync,
+  hermitianEigenvalues,
+  hermitianEigenvaluesAsync,
+  hermitianEigenvaluesBatch,
+} from './hermitian';
 export {
   extremalEigenvalues,
   type LowestOptions,
@@ -24,6 +30,7 @@ export {
   symmetricEigen,
   symmetricEigenAsync,
   symmetricEigenvalues,
+  symmetricEigenvaluesAsync,
   symmetricEigenvaluesBatch,
 } from './symmetric';
 export type {

@@ -1,9 +1,9 @@
 import type { JobContext } from '../job';
 import { divideSteps, divideWork } from './divide';
 import { type Arena, createArena, put, withArena } from './kernels/arena';
+import { ascending } from './order';
 import { applyReflectorSteps, reduceSteps, reductionWork, reflectorWork } from './reduction';
 import { finish, finishAsync, type Steps } from './steps';
-import { ascending } from './tridiagonal';
 import type { SymmetricEigen } from './types';
 
 /**
@@ -95,10 +95,11 @@ function* eigenSteps(arena: Arena, input: Float64Array, n: number): Steps<Symmet
   const m = arena.f64;
   const values = new Float64Array(n);
   const vectors = new Float64Array(n * n);
-  ascending(m.subarray(d, d + n)).forEach((from, to) => {
+  for (const [to, from] of ascending(m.subarray(d, d + n)).entries()) {
     values[to] = m[d + from];
     vectors.set(m.subarray(v + from * n, v + from * n + n), to * n);
-  });
+    if (to % 512 === 511) yield 0; // fresh pages of memory take their time
+  }
   return { n, values, vectors };
 }
 

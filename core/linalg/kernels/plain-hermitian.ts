@@ -73,7 +73,7 @@ export function plainHermitian(memory: () => Float64Array): HermitianKernels {
 }
 
 /** As the real reflector: (1 − u u†/norm) x = (re + i·im)·e_{i−1}. */
-function complexReflectorInPlace(m: Float64Array, u: number, v: number, i: number) {
+export function complexReflectorInPlace(m: Float64Array, u: number, v: number, i: number) {
   let scale = 0;
   for (let k = 0; k < i - 1; k++) scale += Math.abs(m[u + k]) + Math.abs(m[v + k]);
   const p = u + i - 1;
