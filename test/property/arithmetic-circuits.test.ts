@@ -21,6 +21,7 @@ import {
   gradientWires,
   prepareGradient,
   rotateByGradient,
+  rotateExactly,
   rotationToffoli,
 } from '../../core/circuit/primitives/phase-gradient';
 import { SparseState } from '../../core/circuit/simulate/sparse-state';
@@ -93,8 +94,8 @@ it('rotates by the angle that the gradient register is asked for', () => {
         prepareGradient(machine, gradient);
         machine.gate('H', target);
         rotateByGradient(target, angle, gradient).run(machine);
-        // exp(iφZ): the two branches differ by the phase −2φ.
-        machine.rotateZ(target, (2 * 2 * Math.PI * (x + 0.5)) / 2 ** beta);
+        // Exactly steered rotations take it back, up to a phase common to both branches.
+        rotateExactly(target, angle, beta).runAdjoint(machine);
         machine.gate('H', target);
         // The gradient is an eigenstate: taking it back must leave all its wires in |0⟩.
         for (const [j, wire] of gradient.entries()) {
@@ -157,7 +158,9 @@ it('V γ₀ V† is the Majorana operator of the rotated orbital, on every basis
         prepareGradient(machine, gradient);
         for (const [i, x] of numbers.entries()) write(machine, angles[i]!, x);
         write(machine, system, start);
-        const rotation = majoranaRotation(system, angles, gradient);
+        const rotation = majoranaRotation(system, angles, (target, angle) =>
+          rotateByGradient(target, angle, gradient),
+        );
         rotation.runAdjoint(machine);
         machine.gate('X', system[0]!);
         rotation.run(machine);
@@ -191,13 +194,13 @@ it('V γ₀ V† is the Majorana operator of the rotated orbital, on every basis
     { numRuns: 40 },
   );
   expect(
-    countToffoli((m) =>
-      majoranaRotation(
-        m.allocateRegister(2 * N),
-        [m.allocateRegister(beta), m.allocateRegister(beta)],
-        m.allocateRegister(gradientWires(beta)),
-      ),
-    ),
+    countToffoli((m) => {
+      const gradient = m.allocateRegister(gradientWires(beta));
+      const angles = [m.allocateRegister(beta), m.allocateRegister(beta)];
+      return majoranaRotation(m.allocateRegister(2 * N), angles, (target, angle) =>
+        rotateByGradient(target, angle, gradient),
+      );
+    }),
   ).toBe(majoranaRotationToffoli(N, beta));
 });
 

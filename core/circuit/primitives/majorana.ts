@@ -1,5 +1,8 @@
 import { gate, type Operation, repeat, scratch, sequence, within } from '../gates/operation';
-import { rotateByGradient, rotationToffoli } from './phase-gradient';
+import { rotationToffoli } from './phase-gradient';
+
+/** Rotates a wire by exp(iφZ), φ = 2π(x + ½)/2^β, with x in the angle wires: see phase-gradient.ts. */
+export type Rotate = (target: number, angle: readonly number[]) => Operation;
 
 /**
  * Qubit of mode (orbital, spin) under Jordan–Wigner in orbital-major order: γ_{m,0} = Z_0…Z_{m−1} X_m,
@@ -46,14 +49,14 @@ export function swapLayer(control: number, system: readonly number[]): Operation
 /**
  * V = E_{N−2} … E_1 E_0 (E_0 first), E_p = exp(−θ_p/2 · γ_{p↑0} γ_{p+1,↑0}): V γ_{0↑0} V† = Σ_p u_p γ_{p↑0} with
  * u = (cos θ_0, sin θ_0 cos θ_1, …, sin θ_0 … sin θ_{N−2}). Each E_p is exp(iθ_p/2 · Y Z X) on three neighbouring
- * wires: a basis change to Z, a rotation from the gradient register, and back.
+ * wires: a basis change to Z, a rotation, and back.
  *
  * @param angles - N − 1 registers; the number x in one stands for θ = 4π(x + ½)/2^β.
  */
 export function majoranaRotation(
   system: readonly number[],
   angles: readonly (readonly number[])[],
-  gradient: readonly number[],
+  rotate: Rotate,
 ): Operation {
   return repeat(angles.length, (p) => {
     const [first, between, second] = [system[2 * p]!, system[2 * p + 1]!, system[2 * p + 2]!];
@@ -65,7 +68,7 @@ export function majoranaRotation(
         gate('CX', first, second),
         gate('CX', between, second),
       ),
-      rotateByGradient(second, angles[p]!, gradient),
+      rotate(second, angles[p]!),
     );
   });
 }

@@ -87,3 +87,23 @@ function addPhase(number: readonly number[], gradient: readonly number[]): Opera
     return sequence(gate('Z', top), up, topPhase, down);
   });
 }
+
+/**
+ * The same rotation without a gradient register: each angle bit steers a rotation of its own. Its many arbitrary
+ * rotations make it useless on a machine, but a simulator of larger circuits needs no superposed gradient; that it
+ * equals {@link rotateByGradient} up to a fixed phase is tested.
+ */
+export function rotateExactly(target: number, angle: readonly number[], modulusBits: number): Operation {
+  const turn = (wire: number, phi: number): Operation => ({
+    run: (machine) => machine.rotateZ(wire, -2 * phi),
+    runAdjoint: (machine) => machine.rotateZ(wire, 2 * phi),
+  });
+  const unit = (2 * Math.PI) / 2 ** modulusBits;
+  return sequence(
+    turn(target, unit / 2),
+    repeat(angle.length, (i) => {
+      const half = (unit * 2 ** i) / 2;
+      return sequence(turn(target, half), within(gate('CX', angle[i]!, target), turn(target, -half)));
+    }),
+  );
+}
