@@ -1,6 +1,12 @@
+export {
+  type DeterminantEnergies,
+  determinantEnergies,
+  extremeDeterminant,
+} from './determinant-energy';
 export { binomial, type SectorBasis, sectorBasis } from './determinants';
 export { type Form, fockMatrix, oneBodyFockMatrix, spinorFockMatrix } from './fock';
 export { REFERENCE_LEVELS, referenceEigenvalues } from './reference';
 export { MAX_SECTOR_DIMENSION, type SectorMatrix, type SparseHermitian, sectorMatrix } from './sector-matrix';
 export { multiplySparse } from './sparse';
+export { type SpectralRange, type SpectralRangeOptions, spectralRange } from './spectral-range';
 export { exactSpectrum, type Spectrum, type SpectrumOptions } from './spectrum';
