@@ -128,7 +128,7 @@ export class SpinorSink implements FcidumpSink {
     const { re, im } = this.h;
     for (let i = 0; i < m; i++) {
       for (let j = 0; j < m; j++) {
-        if (this.hListed.has(i * m + j)) continue;
+        if (this.hListed.has(i * m + j) || !this.hListed.has(j * m + i)) continue;
         re[i * m + j] = re[j * m + i];
         im[i * m + j] = -im[j * m + i];
       }
