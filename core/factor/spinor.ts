@@ -1,8 +1,9 @@
 import type { SpinorHamiltonian } from '../hamiltonian/hamiltonian';
 import type { JobContext, Task } from '../job';
-import { hermitianEigenvaluesBatch } from '../linalg';
+import { hermitianEigenvaluesBatch, multiply } from '../linalg';
 import { choleskyFactors } from './coulomb';
 import type { Factorisation, Grouping, SpinorFactors } from './factors';
+import { kramersPhases, tensorInGauge, vectorsFromGauge } from './kramers-phases';
 import { lcuNorms, spinorOneNorms } from './one-norms';
 import { selectFactors } from './select';
 import { hermitianInto, spinorSuperMatrix } from './spinor-elements';
@@ -30,7 +31,8 @@ export async function spinorFactorisation(
 ): Promise<Factorisation> {
   const m = h.spinors;
   const dim = m * m;
-  const { matrix, defect } = spinorSuperMatrix(h);
+  const phases = m % 2 === 0 ? kramersPhases(h) : new Float64Array(m);
+  const { matrix, defect } = spinorSuperMatrix(tensorInGauge(h, phases));
   const notes: string[] = [];
   let largest = 0;
   for (const x of matrix) largest = Math.max(largest, Math.abs(x));
@@ -56,21 +58,22 @@ export async function spinorFactorisation(
         ]
       : [['mixed', everything]];
   const blocks: SpinorFactors[] = [];
-  let left = 2 * square * (decoupled ? 1 : 0) + (defect * dim) ** 2 * (defect > 1e-15 ? 1 : 0);
+  const left = Math.sqrt((decoupled ? 2 * square : 0) + (defect * dim) ** 2);
   for (const [part, combinations] of sectors) {
     const size = combinations.length;
     const sector = project(matrix, dim, combinations, combinations);
     const found = await sectorFactors(sector, size, grouping, ctx);
-    if (grouping === 'separate' && !found.semidefinite) {
+    const noise = found.weights.every((w) => Math.abs(w) <= DECOUPLED * largest);
+    if (grouping === 'separate' && !found.semidefinite && !noise) {
       notes.push(
         `the ${part} part of the two-electron tensor is indefinite: eigenvectors instead of Cholesky columns`,
       );
     }
-    left += found.left ** 2;
-    const vectors = expand(found.vectors, found.weights.length, combinations, dim);
+    const count = found.weights.length;
+    const vectors = vectorsFromGauge(expand(found.vectors, count, combinations, dim), count, m, phases);
     blocks.push(await withSpectra(part, m, { weights: found.weights, vectors }, ctx));
   }
-  return { grouping, notes, ...truncateSpinor(blocks, m, threshold, Math.sqrt(left)) };
+  return { grouping, notes, ...truncateSpinor(blocks, m, threshold, left) };
 }
 
 async function sectorFactors(
@@ -78,12 +81,28 @@ async function sectorFactors(
   size: number,
   grouping: Grouping,
   ctx: JobContext,
-): Promise<WeightedVectors & { readonly semidefinite: boolean; readonly left: number }> {
+): Promise<WeightedVectors & { readonly semidefinite: boolean }> {
   if (grouping === 'separate') {
-    const columns = await choleskyFactors(sector, size, 0, FILE_NOISE, ctx);
-    if (columns) return { ...columns, semidefinite: true, left: columns.residualTrace };
+    let trace = 0;
+    for (let i = 0; i < size; i++) trace += sector[i * size + i]!;
+    // Below the noise pivots are meaningless and would amplify it: what is left then takes its eigenvectors.
+    const columns = await choleskyFactors(sector, size, FILE_NOISE * trace, FILE_NOISE, ctx);
+    if (columns) {
+      const { raw, weights, vectors } = columns;
+      const sum = multiply(raw, raw, size, weights.length, size, { transposeA: true });
+      const rest = await eigenvectors(
+        sector.map((x, i) => x - sum[i]!),
+        size,
+        ctx,
+      );
+      return {
+        weights: Float64Array.of(...weights, ...rest.weights),
+        vectors: Float64Array.from([...vectors, ...rest.vectors]),
+        semidefinite: true,
+      };
+    }
   }
-  return { ...(await eigenvectors(sector, size, ctx)), semidefinite: false, left: 0 };
+  return { ...(await eigenvectors(sector, size, ctx)), semidefinite: false };
 }
 
 interface HermitianInput {
@@ -160,7 +179,7 @@ function truncateSpinor(
   });
   return {
     blocks: blocks.map((block, b) => selectFactors(block, kept[b]!)),
-    // What the sector split and Cholesky left out has one-norm ≤ (m/4)·√rank·Frobenius, rank ≤ m².
+    // What the sector split left out has one-norm ≤ (m/4)·√rank·Frobenius, rank ≤ m².
     residual: {
       frobenius: square + left,
       oneNormBound: sum + 0.25 * m * m * left,
