@@ -1,4 +1,6 @@
 import type { JobContext } from '../job';
+import { type Arena, createArena, withArena } from './kernels/arena';
+import { finish, type Steps } from './steps';
 
 /** A positive semidefinite matrix that is asked for one row at a time. */
 export interface RowSource {
@@ -33,28 +35,28 @@ const PIVOT_TIE = 1e-6;
 const NOISE = 1e-15;
 
 /**
- * Pivoted Cholesky decomposition. Pivot: largest remaining diagonal element; among those within 1e-6 relative
- * the lowest index.
+ * Pivoted Cholesky decomposition of a positive semidefinite matrix: A = Σ_j c_j c_jᵀ + remainder. Pivot: largest
+ * remaining diagonal element; among those within 1e-6 relative the lowest index.
+ *
+ * @remarks Stops at the threshold, at `maxRank`, or once the remaining diagonal is below 1e-15 of the largest element (what is
+ * then left is rounding, and is in `residualTrace`). A negative direction of A is not found: it stays in the
+ * remainder, which is then no longer bounded by its trace.
  */
 export function pivotedCholesky(source: RowSource, options: CholeskyOptions = {}): PivotedCholesky {
-  const steps = choleskySteps(source, options);
-  for (;;) {
-    const step = steps.next();
-    if (step.done) return step.value;
-  }
+  return withArena((arena) => finish(choleskySteps(arena, source, options)));
 }
 
-/** {@link pivotedCholesky} that reports the falling remainder and can be stopped. */
+/** {@link pivotedCholesky} with progress in stage `cholesky` (columns found, of unknown number). */
 export async function pivotedCholeskyAsync(
   source: RowSource,
   options: CholeskyOptions,
   context: JobContext,
 ): Promise<PivotedCholesky> {
-  const steps = choleskySteps(source, options);
-  for (;;) {
+  const steps = choleskySteps(createArena(), source, options);
+  for (let columns = 0; ; columns++) {
     const step = steps.next();
     if (step.done) return step.value;
-    context.report('cholesky', step.value, null);
+    context.report('cholesky', columns + 1, null);
     await context.checkpoint();
   }
 }
@@ -66,49 +68,44 @@ export function denseRows(a: Float64Array, n: number): RowSource {
   return { n, diagonal, rowInto: (out, i) => out.set(a.subarray(i * n, i * n + n)) };
 }
 
-function* choleskySteps(source: RowSource, options: CholeskyOptions): Generator<number, PivotedCholesky> {
+function* choleskySteps(arena: Arena, source: RowSource, options: CholeskyOptions): Steps<PivotedCholesky> {
   const { n } = source;
   const threshold = options.threshold ?? 0;
   const maxRank = Math.min(n, options.maxRank ?? n);
   const d = Float64Array.from(source.diagonal);
-  const floor = NOISE * Math.max(0, ...d);
-  let vectors = new Float64Array(Math.min(maxRank, 64) * n);
+  const floor = NOISE * d.reduce((max, x) => Math.max(max, x), 0);
+  const fresh = new Float64Array(n);
+  const ld = n + (n & 1); // rows taken one after another then lie without gaps
+  const start = arena.mark();
   const pivots: number[] = [];
-  let rank = 0;
   let trace = positiveTrace(d);
-  while (rank < maxRank && trace > threshold) {
+  while (pivots.length < maxRank && trace > threshold) {
     const p = choosePivot(d);
     if (p < 0 || d[p] <= floor) break;
-    if ((rank + 1) * n > vectors.length) {
-      const grown = new Float64Array(Math.min(maxRank, 2 * rank) * n);
-      grown.set(vectors);
-      vectors = grown;
-    }
-    const c = vectors.subarray(rank * n, rank * n + n);
-    source.rowInto(c, p);
-    for (let j = 0; j < rank; j++) {
-      const rj = j * n;
-      const f = vectors[rj + p];
-      for (let k = 0; k < n; k++) c[k] -= f * vectors[rj + k];
-    }
+    source.rowInto(fresh, p);
+    const row = arena.take(n);
+    const m = arena.f64;
+    // −(A_p − Σ_j c_j[p] c_j), then divided by −√d.
+    for (let k = 0; k < n; k++) m[row + k] = -fresh[k];
+    arena.kernels.addRows(start, ld, pivots.length, start + p, ld, row, n);
     const root = Math.sqrt(d[p]);
-    for (let k = 0; k < n; k++) c[k] /= root;
+    const c = m.subarray(row, row + n);
+    for (let k = 0; k < n; k++) c[k] /= -root;
     for (const q of pivots) c[q] = 0;
     c[p] = root;
     for (let k = 0; k < n; k++) d[k] -= c[k] * c[k];
     d[p] = 0;
     pivots.push(p);
-    rank++;
     trace = positiveTrace(d);
-    yield rank;
+    yield 1;
   }
-  return {
-    n,
-    rank,
-    vectors: vectors.slice(0, rank * n),
-    pivots: Int32Array.from(pivots),
-    residualTrace: trace,
-  };
+  const rank = pivots.length;
+  const vectors = new Float64Array(rank * n);
+  for (let j = 0; j < rank; j++) {
+    const row = start + j * ld;
+    vectors.set(arena.f64.subarray(row, row + n), j * n);
+  }
+  return { n, rank, vectors, pivots: Int32Array.from(pivots), residualTrace: trace };
 }
 
 function choosePivot(d: Float64Array): number {

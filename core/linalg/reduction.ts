@@ -1,15 +1,12 @@
 import type { Arena } from './kernels/arena';
 import { reflectorInPlace } from './kernels/plain-triangle';
+import { applyGroup, BAND, buildTriangle, GROUP, groupRoom } from './reflector-group';
 import type { Steps } from './steps';
 
 /** Reflectors collected before the rest of the matrix is updated by one matrix product. Measured best: 16 to 48. */
 const PANEL = 32;
 /** Leading square that is reduced without panels: it fits the cache. */
 const SMALL = 160;
-/** Rows of one rank-2k update, and of the vectors that reflectors are applied to, between two yields. */
-const BAND = 256;
-/** Reflectors applied together. */
-const GROUP = 64;
 
 /** Work units of {@link reduceSteps}. */
 export const reductionWork = (n: number) => (4 / 3) * n ** 3;
@@ -105,7 +102,6 @@ export function* reduceSteps(
 
 /**
  * Rows x of `vectors` (`count` rows, stride n) become Q x, Q = H_{n−1} ⋯ H_1 as left at `a` and `h` by {@link reduceSteps}.
- * Reflectors go in groups as 1 − Uᵀ T U (Schreiber & Van Loan 1989, quoted from memory).
  */
 export function* applyReflectorSteps(
   arena: Arena,
@@ -115,48 +111,25 @@ export function* applyReflectorSteps(
   vectors: number,
   count: number,
 ): Steps<void> {
-  const { kernels } = arena;
   const mark = arena.mark();
   const us = arena.take(GROUP * n);
-  const t = arena.take(GROUP * GROUP);
-  const dots = arena.take(GROUP);
-  const overlap = arena.take(BAND * GROUP);
-  const factors = arena.take(BAND * GROUP);
+  const t = groupRoom(arena);
   for (let from = 1; from < n; from += GROUP) {
     const size = Math.min(GROUP, n - from);
     const length = from + size - 1; // the longest u of the group
-    gather(from, size, length);
+    const m = arena.f64;
+    for (let j = 0; j < size; j++) {
+      const i = from + j;
+      m.fill(0, us + j * n, us + j * n + length);
+      if (m[h + i] !== 0) m.copyWithin(us + j * n, a + i * n, a + i * n + i);
+    }
+    const group = { us, ld: n, size, length, t };
+    buildTriangle(arena, group, (j) => m[h + from + j]);
     for (let first = 0; first < count; first += BAND) {
       const rows = Math.min(BAND, count - first);
-      const x = vectors + first * n;
-      arena.f64.fill(0, overlap, overlap + rows * size);
-      kernels.gemm(rows, size, length, 1, x, n, 1, us, 1, n, overlap, size);
-      arena.f64.fill(0, factors, factors + rows * size);
-      kernels.gemm(rows, size, size, 1, overlap, size, 1, t, size, 1, factors, size);
-      kernels.gemm(rows, length, size, -1, factors, size, 1, us, n, 1, x, n);
+      applyGroup(arena, group, vectors + first * n, n, rows);
       yield 4 * rows * size * (from + size / 2);
     }
   }
   arena.release(mark);
-
-  /** Copies the group's reflectors, padded to `length`, and builds its triangle T (size×size, upper). */
-  function gather(from: number, size: number, length: number): void {
-    const m = arena.f64;
-    m.fill(0, t, t + size * size);
-    for (let j = 0; j < size; j++) {
-      const i = from + j;
-      const u = us + j * n;
-      const norm = m[h + i];
-      m.fill(0, u, u + length);
-      if (norm === 0) continue;
-      m.copyWithin(u, a + i * n, a + i * n + i);
-      kernels.rowDots(us, n, j, u, length, dots);
-      for (let r = 0; r < j; r++) {
-        let s = 0;
-        for (let c = r; c < j; c++) s += m[t + r * size + c] * m[dots + c];
-        m[t + r * size + j] = -s / norm;
-      }
-      m[t + j * size + j] = 1 / norm;
-    }
-  }
 }
