@@ -22,7 +22,8 @@ export interface NormalOrdered {
  *
  * @param up - occupations 0…1 of the ↑ spin orbitals, N numbers.
  * @param down - the same for ↓.
- * @remarks Cost 16·N³ element look-ups; N = 50 takes well under a second.
+ * @remarks Cost at most 32·N³ element look-ups per spin component of the density: about a second for N = 50 with
+ *   every term. The spin–orbit mean field alone has a faster route, spinOrbitMeanField.
  */
 export function normalOrder(
   hamiltonian: SpatialHamiltonian,

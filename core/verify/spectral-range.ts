@@ -1,10 +1,11 @@
 import type { SpinHamiltonian } from '../hamiltonian';
 import type { JobContext } from '../job';
-import { type Block, connectedBlocks } from './blocks';
+import type { Block } from './blocks';
 import { determinantEnergies, extremeDeterminant } from './determinant-energy';
 import { binomial } from './determinants';
 import { lowestLevels } from './levels';
 import { sectorMatrix } from './sector-matrix';
+import { splitSector } from './split';
 
 /** Half the spectral range (E_max − E_min)/2, hartree: the least λ that any block encoding of H can have. */
 export interface SpectralRange {
@@ -44,7 +45,8 @@ export async function spectralRange(
   let max = Number.NEGATIVE_INFINITY;
   for (const [i, eta] of electrons.entries()) {
     context.report('spectral range', i, electrons.length);
-    const blocks = connectedBlocks(await sectorMatrix(hamiltonian, eta, 'product', context));
+    const matrix = await sectorMatrix(hamiltonian, eta, 'product', context);
+    const { blocks } = await splitSector(matrix, context);
     const lowest = await lowestLevels(blocks, 1, context);
     const highest = await lowestLevels(blocks.map(negated), 1, context);
     min = Math.min(min, lowest.values[0]!);

@@ -1,10 +1,9 @@
 import type { SpinHamiltonian } from '../hamiltonian';
 import type { JobContext } from '../job';
-import { connectedBlocks } from './blocks';
 import type { Form } from './fock';
 import { lowestLevels } from './levels';
-import { splitByMirror } from './mirror';
 import { sectorMatrix } from './sector-matrix';
+import { splitSector } from './split';
 
 export interface SpectrumOptions {
   /** @defaultValue those of the Hamiltonian */
@@ -26,9 +25,6 @@ export interface Spectrum {
   readonly errorBound: number;
 }
 
-/** From here on it pays to look for spin reversal in a block. */
-const WORTH_SPLITTING = 600;
-
 /** Lowest eigenvalues of H in the sector of fixed electron number, all spin projections. */
 export async function exactSpectrum(
   hamiltonian: SpinHamiltonian,
@@ -41,14 +37,7 @@ export async function exactSpectrum(
     options.form ?? 'product',
     context,
   );
-  let bound = matrix.droppedBound;
-  const blocks = [];
-  for (const block of connectedBlocks(matrix)) {
-    await context.checkpoint();
-    const split = block.dim >= WORTH_SPLITTING ? splitByMirror(block) : null;
-    blocks.push(...(split?.parts ?? [block]));
-    bound = Math.max(bound, matrix.droppedBound + (split?.bound ?? 0));
-  }
+  const { blocks, bound } = await splitSector(matrix, context);
   const levels = await lowestLevels(blocks, Math.min(options.states ?? 6, matrix.dim), context);
   return {
     values: levels.values,
