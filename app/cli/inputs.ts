@@ -1,8 +1,10 @@
 import { stat } from 'node:fs/promises';
 import { basename, dirname } from 'node:path';
 import {
+  type ByteSource,
   type IntegralSet,
   loadIntegrals,
+  parseJson,
   parseRecipe,
   type ResolvedInputs,
   resolveInputs,
@@ -14,6 +16,9 @@ import { InputError, type JobContext } from '../../core/job';
 import { folderFiles, namedFiles } from './files';
 import { nodeReadPlatform } from './hdf5';
 import type { InputFiles } from './request';
+
+/** Recipes and references are written by hand or hold some hundred numbers. */
+const MOST_JSON = 4 * 2 ** 20;
 
 /** Finds out what the named files are and how they are to be read. */
 export async function openInputs(
@@ -68,28 +73,26 @@ async function isFolder(path: string): Promise<boolean> {
 }
 
 async function readRecipe(path: string) {
-  const source = (await namedFiles([path])).list()[0]!;
-  const limit = 4 * 2 ** 20;
-  if (source.size > limit) {
-    throw new InputError({
-      code: 'too-large',
-      where: path,
-      found: `${source.size} bytes`,
-      expected: `a recipe of at most ${limit} bytes`,
-      mend: 'Is it a recipe?',
-    });
+  const [source] = (await namedFiles([path])).list();
+  return parseRecipe(await readText(source!), path);
+}
+
+/** The data set's levels from elsewhere, if it brings any; null where there are none. */
+export async function readReference({ files }: ResolvedInputs): Promise<unknown> {
+  const source = files.open('reference.json');
+  return source ? parseJson(await readText(source), source.path) : null;
+}
+
+/** @throws InputError `too-large`, `not-utf8` */
+async function readText(source: ByteSource): Promise<string> {
+  const refuse = (code: string, found: string, expected: string): InputError =>
+    new InputError({ code, where: source.path, found, expected, mend: 'Is it the right file?' });
+  if (source.size > MOST_JSON) {
+    throw refuse('too-large', `${source.size} bytes`, `a JSON file of at most ${MOST_JSON} bytes`);
   }
-  let text: string;
   try {
-    text = new TextDecoder('utf-8', { fatal: true }).decode(await source.read(0, source.size));
+    return new TextDecoder('utf-8', { fatal: true }).decode(await source.read(0, source.size));
   } catch {
-    throw new InputError({
-      code: 'not-utf8',
-      where: path,
-      found: 'bytes that are no UTF-8',
-      expected: 'a recipe: JSON in UTF-8',
-      mend: 'Save the file as UTF-8.',
-    });
+    throw refuse('not-utf8', 'bytes that are no UTF-8', 'JSON in UTF-8');
   }
-  return parseRecipe(text, path);
 }

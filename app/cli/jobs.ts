@@ -1,7 +1,7 @@
 import { SURFACE_CODE_DEFAULTS, whatif } from '../../core/estimate';
 import type { JobContext } from '../../core/job';
 import { inspectIntegrals, runComparison, runVerification } from '../../core/plan';
-import { loadInputs, openInputs } from './inputs';
+import { loadInputs, openInputs, readReference } from './inputs';
 import type { CompareRequest, InspectRequest, Request, VerifyRequest } from './request';
 import type { Result } from './result';
 
@@ -43,6 +43,8 @@ async function compare(request: CompareRequest, context: JobContext): Promise<Re
 }
 
 async function verify(request: VerifyRequest, context: JobContext): Promise<Result> {
-  const set = await loadInputs(await openInputs(request, context), request.terms, 'throw', context);
-  return { command: 'verify', evidence: await runVerification(set, request, context) };
+  const inputs = await openInputs(request, context);
+  const set = await loadInputs(inputs, request.terms, 'throw', context);
+  const evidence = await runVerification(set, request, context, await readReference(inputs));
+  return { command: 'verify', evidence };
 }

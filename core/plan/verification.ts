@@ -2,7 +2,7 @@ import { type Encoding, formatVariant, type VariantName } from '../encode';
 import { heldTerms } from '../hamiltonian';
 import type { IntegralSet, SelectableTerm } from '../integrals';
 import type { JobContext } from '../job';
-import { exactSpectrum } from '../verify';
+import { exactSpectrum, referenceEigenvalues } from '../verify';
 import { Encodings } from './encodings';
 import { type Check, check, type Evidence } from './evidence';
 import { defaultVariants, hamiltonianOf } from './run';
@@ -21,21 +21,26 @@ export interface VerificationRequest {
 
 /** Double-precision arithmetic over some thousand determinants, hartree. */
 const ARITHMETIC = 1e-9;
+/** What the data sets' own generator promises for its reference levels, hartree. */
+const REFERENCE = 1e-8;
 /** Levels of a doublet of Kramers agree to this, hartree. */
 const DEGENERACY = 1e-9;
 
 /**
  * Exact levels of H beside those of the Hamiltonian that each encoding stands for, rebuilt from its factors alone,
- * and the checks that follow. Variants that are left out are named on the way and have no entry.
+ * and the checks that follow. A variant that is refused for its size has no entry.
  *
+ * @param reference - parsed `reference.json` of the data set, if it has one: levels computed elsewhere
  * @throws InputError `sector-too-large` where exact diagonalisation is out of reach
  */
 export async function runVerification(
   set: IntegralSet,
   request: VerificationRequest,
   context: JobContext,
+  reference: unknown = null,
 ): Promise<Evidence> {
   const hamiltonian = hamiltonianOf(set, request);
+  const terms = hamiltonian.kind === 'spatial' ? hamiltonian.terms : heldTerms(set);
   const states = { states: request.states };
   const exact = await exactSpectrum(hamiltonian, states, context);
   const stored = await exactSpectrum(hamiltonian, { ...states, form: 'stored' }, context);
@@ -47,6 +52,7 @@ export async function runVerification(
       ARITHMETIC + exact.errorBound + stored.errorBound,
       'two assemblies of H, one without the reordering of operators',
     ),
+    ...againstReference(reference, terms, request.electrons, exact.values, exact.errorBound),
     ...kramers(exact.values, hamiltonian.electrons, exact.dim),
   ];
 
@@ -76,7 +82,7 @@ export async function runVerification(
   return {
     schema: 'spinwright-evidence/1',
     electrons: hamiltonian.electrons,
-    terms: hamiltonian.kind === 'spatial' ? hamiltonian.terms : heldTerms(set),
+    terms,
     spectrum: { exact: Array.from(exact.values), variants: spectra },
     blockEncoding: {},
     checks,
@@ -94,6 +100,26 @@ function encodedCheck(name: string, encoding: Encoding, difference: number, erro
       ? 'nothing was dropped'
       : 'no eigenvalue moves by more than the one-norm of what was dropped (Weyl)',
   );
+}
+
+function againstReference(
+  document: unknown,
+  terms: readonly SelectableTerm[],
+  electrons: number | null,
+  levels: Float64Array,
+  errorBound: number,
+): Check[] {
+  const listed = electrons === null ? referenceEigenvalues(document, terms) : null;
+  if (!listed) return [];
+  return [
+    check(
+      'exact levels against reference.json, largest difference',
+      largestDifference(levels, Float64Array.from(listed)),
+      0,
+      REFERENCE + errorBound,
+      'configuration interaction of the program that made the integrals',
+    ),
+  ];
 }
 
 /** With an odd number of electrons every level of a field-free Hamiltonian is at least twofold (Kramers 1930). */
