@@ -2,7 +2,8 @@ import { coulombBlock, type TwoElectronTensor } from '../hamiltonian';
 import { numSymmetricPairs } from '../integrals/integral-set';
 import type { JobContext } from '../job';
 import { denseRows, pivotedCholeskyAsync } from '../linalg';
-import { eigenvectors, normalised, type WeightedVectors } from './squares';
+import { eigenvectors, type WeightedVectors } from './eigenvectors';
+import { normalised } from './squares';
 import type { Remainder } from './truncate';
 
 /** A remainder that Cholesky leaves above this part of the trace means that the matrix is not positive semidefinite. */

@@ -1,10 +1,11 @@
 import { type SpatialHamiltonian, type SpinHamiltonian, sectorDimension, sectorMatrix } from '../hamiltonian';
 import { InputError, type JobContext } from '../job';
 import { chargeFactors } from './coulomb';
+import { eigenvectors } from './eigenvectors';
 import type { Factorisation, Grouping, SquareFactors, TripleFactors } from './factors';
 import { jointFactors } from './joint';
 import { spinorFactorisation } from './spinor';
-import { eigenvectors, squareFactors } from './squares';
+import { squareFactors } from './squares';
 import { spinOrbitTriples } from './triples';
 import { type Remainder, truncate } from './truncate';
 

@@ -9,9 +9,10 @@ import {
 } from '../hamiltonian';
 import { numAntisymmetricPairs, numSymmetricPairs } from '../integrals/integral-set';
 import { InputError, type JobContext } from '../job';
-import { householderQr, multiply, transpose } from '../linalg';
+import { transpose } from '../linalg';
+import { borderedEigenvectors, eigenvectors } from './eigenvectors';
 import type { SquareFactors } from './factors';
-import { eigenvectors, squareFactors } from './squares';
+import { squareFactors } from './squares';
 
 /** Largest dense eigenproblem of the joint grouping. */
 export const MAX_SECTOR = 3000;
@@ -75,7 +76,10 @@ async function evenFactors(h: SpatialHamiltonian, ctx: JobContext): Promise<Squa
   const size = numAntisymmetricPairs(n) * npair;
   const w = new Float64Array(3 * size);
   for (const k of [1, 2, 3] as const) w.set(sameOrbitBlock(n, h.g, k), (k - 1) * size);
-  const solved = await offDiagonalEigenvectors(c, w, npair, 3 * numAntisymmetricPairs(n), ctx);
+  const solved = await borderedEigenvectors(
+    { d: c, b: w, short: npair, long: 3 * numAntisymmetricPairs(n) },
+    ctx,
+  );
   return squareFactors('even', 'even', ALL, n, solved, ctx);
 }
 
@@ -94,53 +98,7 @@ async function oddFactors(h: SpatialHamiltonian, ctx: JobContext): Promise<Squar
   const x = new Float64Array(3 * size);
   for (const k of [1, 2, 3] as const)
     x.set(transpose(otherOrbitBlock(n, h.g, k), nanti, npair), (k - 1) * size);
-  const zero = new Float64Array(nanti * nanti);
-  return squareFactors(
-    'odd',
-    'odd',
-    ALL,
-    n,
-    await offDiagonalEigenvectors(zero, x, nanti, 3 * npair, ctx),
-    ctx,
-  );
-}
-
-/**
- * Eigenvectors of [[D, Bᵀ],[B, 0]], D short×short and B long×short, in the coordinates (short, long). With
- * B = QR the problem shrinks to [[D, Rᵀ],[R, 0]] where long > short.
- */
-async function offDiagonalEigenvectors(
-  d: Float64Array,
-  b: Float64Array,
-  short: number,
-  long: number,
-  ctx: JobContext,
-) {
-  const qr = long > short ? await householderQr(b, long, short, ctx) : null;
-  const inner = qr ? qr.r : b;
-  const size = qr ? short : long;
-  const dim = short + size;
-  const matrix = new Float64Array(dim * dim);
-  for (let i = 0; i < short; i++) matrix.set(d.subarray(i * short, (i + 1) * short), i * dim);
-  for (let i = 0; i < size; i++) {
-    for (let j = 0; j < short; j++) {
-      matrix[(short + i) * dim + j] = inner[i * short + j]!;
-      matrix[j * dim + short + i] = inner[i * short + j]!;
-    }
-  }
-  return eigenvectors(matrix, dim, ctx, (vectors, count) => {
-    if (!qr) return { vectors, dim };
-    const tails = new Float64Array(count * size);
-    for (let t = 0; t < count; t++) {
-      tails.set(vectors.subarray(t * dim + short, (t + 1) * dim), t * size);
-    }
-    const lifted = multiply(tails, qr.q, count, size, long, { transposeB: true });
-    const full = short + long;
-    const out = new Float64Array(count * full);
-    for (let t = 0; t < count; t++) {
-      out.set(vectors.subarray(t * dim, t * dim + short), t * full);
-      out.set(lifted.subarray(t * long, (t + 1) * long), t * full + short);
-    }
-    return { vectors: out, dim: full };
-  });
+  const d = new Float64Array(nanti * nanti);
+  const solved = await borderedEigenvectors({ d, b: x, short: nanti, long: 3 * npair }, ctx);
+  return squareFactors('odd', 'odd', ALL, n, solved, ctx);
 }

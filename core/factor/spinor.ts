@@ -2,12 +2,12 @@ import type { SpinorHamiltonian } from '../hamiltonian/hamiltonian';
 import type { JobContext, Task } from '../job';
 import { hermitianEigenvaluesBatch, multiply } from '../linalg';
 import { choleskyFactors } from './coulomb';
+import { eigenvectors, type WeightedVectors } from './eigenvectors';
 import type { Factorisation, Grouping, SpinorFactors } from './factors';
 import { kramersPhases, tensorInGauge, vectorsFromGauge } from './kramers-phases';
 import { lcuNorms, spinorOneNorms } from './one-norms';
 import { selectFactors } from './select';
 import { hermitianInto, spinorSuperMatrix } from './spinor-elements';
-import { eigenvectors, type WeightedVectors } from './squares';
 import { type Combination, expand, project, reversalBasis } from './time-reversal';
 import { chooseKept } from './truncate';
 

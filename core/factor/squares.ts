@@ -1,47 +1,9 @@
 import type { Mu, Sector } from '../hamiltonian/operators';
 import type { JobContext } from '../job';
-import { symmetricEigenAsync } from '../linalg';
-import { canonicalVectors } from './clusters';
+import type { WeightedVectors } from './eigenvectors';
 import { sectorLayout } from './elements';
 import type { BlockPart, SquareFactors } from './factors';
 import { planeSpectra } from './spectra';
-
-/** Weights below this are zero whatever the threshold, hartree. */
-export const ZERO_WEIGHT = 1e-13;
-
-/** Weighted vectors before their spectra are known. */
-export interface WeightedVectors {
-  readonly weights: Float64Array;
-  /** One unit row a weight. */
-  readonly vectors: Float64Array;
-}
-
-/**
- * Eigenvectors of a dense symmetric block of the super-matrix, degenerate levels by the cluster rule.
- *
- * @param lift - maps the solved coordinates to those of the sector, where the block was reduced first.
- */
-export async function eigenvectors(
-  matrix: Float64Array,
-  dim: number,
-  ctx: JobContext,
-  lift: (vectors: Float64Array, count: number) => { vectors: Float64Array; dim: number } = (vectors) => ({
-    vectors,
-    dim,
-  }),
-): Promise<WeightedVectors> {
-  const eigen = await symmetricEigenAsync(matrix, dim, ctx);
-  const kept: number[] = [];
-  for (let i = 0; i < dim; i++) if (Math.abs(eigen.values[i]!) > ZERO_WEIGHT) kept.push(i);
-  const values = Float64Array.from(kept, (i) => eigen.values[i]!);
-  const solved = new Float64Array(kept.length * dim);
-  kept.forEach((from, to) => {
-    solved.set(eigen.vectors.subarray(from * dim, (from + 1) * dim), to * dim);
-  });
-  const lifted = lift(solved, kept.length);
-  // After the lift: the pivots of the rule are elements of the sector, not of the reduction.
-  return canonicalVectors(values, lifted.vectors, lifted.dim);
-}
 
 /** Scales rows to unit norm and moves the squared norm into the weight. */
 export function normalised(columns: Float64Array, count: number, dim: number): WeightedVectors {

@@ -4,9 +4,9 @@ import type { JobContext, Task } from '../job';
 import { type SingularValues, singularValues } from '../linalg';
 import { canonicalTriples } from './clusters';
 import { type Block, matrixBlocks, submatrix } from './components';
+import { ZERO_WEIGHT } from './eigenvectors';
 import type { TripleFactors } from './factors';
 import { pairSpectra } from './spectra';
-import { ZERO_WEIGHT } from './squares';
 
 interface SvdInput {
   readonly rows: number;

@@ -1,11 +1,11 @@
 import { zeroOperator } from '../hamiltonian/operators';
 import { antisymmetricNormsBatch, multiply } from '../linalg';
+import { ZERO_WEIGHT } from './eigenvectors';
 import { traceOfPairs } from './elements';
 import type { Factorisation, SquareFactors, TripleFactors } from './factors';
 import { type FoldTarget, foldSquare, foldTriple } from './mean-field';
 import { lcuNorms, squareOneNorms } from './one-norms';
 import { selectFactors } from './select';
-import { ZERO_WEIGHT } from './squares';
 
 type SpatialBlock = SquareFactors | TripleFactors;
 
