@@ -2,6 +2,8 @@
 export interface OpenedFiles {
   readonly name: string;
   readonly files: readonly { readonly path: string; readonly blob: Blob }[];
+  /** True where the user named each file, false where a folder stands for the data set in it. */
+  readonly chosenOneByOne: boolean;
 }
 
 export interface RecentFiles {
@@ -11,7 +13,8 @@ export interface RecentFiles {
 
 /** What a menu outside the page may ask for. */
 export const COMMANDS = [
-  'open',
+  'open-files',
+  'open-folder',
   'demo',
   'copy-table',
   'reckon',
@@ -29,11 +32,11 @@ export type Command = (typeof COMMANDS)[number];
 /** All that differs between the desktop window and a browser's. */
 export interface Shell {
   readonly kind: 'desktop' | 'browser';
-  /** Asks for files or a folder; null where the user thought better of it. */
-  open(): Promise<OpenedFiles | null>;
+  /** Asks for files or for a folder; null where the user thought better of it. */
+  open(what: 'files' | 'folder'): Promise<OpenedFiles | null>;
   /** The bundled demo. */
   demo(): Promise<OpenedFiles>;
-  /** Files named on the command line, or null. */
+  /** What to open by itself at the start: files of the command line, the demo, or nothing. */
   given(): Promise<OpenedFiles | null>;
   /** Saves text under a name the user may change. @returns false where the user thought better of it. */
   save(name: string, text: string): Promise<boolean>;

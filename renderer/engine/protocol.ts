@@ -9,6 +9,8 @@ export interface Source {
   readonly id: number;
   readonly name: string;
   readonly files: readonly { readonly path: string; readonly blob: Blob }[];
+  /** True where the user named each file, false where a folder stands for the data set in it. */
+  readonly chosenOneByOne: boolean;
 }
 
 /** One array (or FCIDUMP) of the set, as Load lists it. */

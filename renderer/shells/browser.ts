@@ -1,9 +1,6 @@
 import type { OpenedFiles, Shell } from '../shell';
 import { fetchListed, fetchListing } from './listing';
 
-/** How often the page tells its server that it is still there; the server ends 10 s after the last one. */
-const HEARTBEAT_MS = 2_000;
-
 /** Paths inside the data set: the folder's own name is not part of them. */
 export function relativePath(path: string): string {
   const parts = path.split('/');
@@ -24,7 +21,7 @@ function askForFiles(folder: boolean): Promise<OpenedFiles | null> {
         blob: file,
       }));
       const name = chosen[0]?.webkitRelativePath.split('/')[0] || (chosen[0]?.name ?? '');
-      resolve(files.length ? { name, files } : null);
+      resolve(files.length ? { name, files, chosenOneByOne: !folder } : null);
     });
     field.click();
   });
@@ -32,15 +29,16 @@ function askForFiles(folder: boolean): Promise<OpenedFiles | null> {
 
 /** The window in an installed browser: file fields, drops and downloads. */
 export function browserShell(): Shell {
-  const beat = () => void fetch('heartbeat', { method: 'POST' }).catch(() => {});
-  beat();
-  setInterval(beat, HEARTBEAT_MS);
+  // Tells the server that the page is still there; it ends 10 s after it was last told.
+  const pulse = new Worker(new URL('./heartbeat-worker.ts', import.meta.url), { type: 'module' });
+  pulse.postMessage(new URL('heartbeat', document.baseURI).href);
   return {
     kind: 'browser',
-    open: () => askForFiles(false),
+    open: (what) => askForFiles(what === 'folder'),
     demo: async () => fetchListed(await fetchListing('demo/listing.json')),
     async given() {
       const listing = await fetchListing('given/listing.json');
+      if (listing.demo) return fetchListed(await fetchListing('demo/listing.json'));
       return listing.files.length ? fetchListed(listing) : null;
     },
     async save(name, text) {

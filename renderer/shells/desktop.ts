@@ -3,7 +3,7 @@ import { fetchListed, fetchListing, type Listing } from './listing';
 
 /** What the preload script puts on `window.desktop`. */
 export interface DesktopBridge {
-  open(): Promise<Listing | null>;
+  open(what: 'files' | 'folder'): Promise<Listing | null>;
   save(name: string, text: string): Promise<boolean>;
   recent(): Promise<readonly { readonly id: string; readonly name: string }[]>;
   openRecent(id: string): Promise<Listing | null>;
@@ -21,10 +21,11 @@ export function desktopShell(bridge: DesktopBridge): Shell {
   const fetched = async (listing: Listing | null) => (listing ? fetchListed(listing) : null);
   return {
     kind: 'desktop',
-    open: async () => fetched(await bridge.open()),
+    open: async (what) => fetched(await bridge.open(what)),
     demo: async () => fetchListed(await fetchListing('demo/listing.json')),
     async given() {
       const listing = await fetchListing('given/listing.json');
+      if (listing.demo) return fetchListed(await fetchListing('demo/listing.json'));
       return listing.files.length ? fetchListed(listing) : null;
     },
     save: (name, text) => bridge.save(name, text),

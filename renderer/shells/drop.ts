@@ -29,5 +29,6 @@ export async function droppedFiles(transfer: DataTransfer): Promise<OpenedFiles>
   const groups = await Promise.all(
     entries.map((entry) => filesBelow(entry, entry.isDirectory && !alone ? `${entry.name}/` : '')),
   );
-  return { name: entries[0]?.name ?? '', files: groups.flat() };
+  const folder = alone && entries[0]!.isDirectory;
+  return { name: entries[0]?.name ?? '', files: groups.flat(), chosenOneByOne: !folder };
 }

@@ -3,6 +3,9 @@ import type { OpenedFiles } from '../shell';
 /** What the shell's server says about a group of files; `href` is relative to the page. */
 export interface Listing {
   readonly name: string;
+  readonly chosenOneByOne: boolean;
+  /** The page should show the demo by itself. */
+  readonly demo?: boolean;
   readonly files: readonly { readonly path: string; readonly href: string }[];
 }
 
@@ -11,7 +14,8 @@ export async function fetchListed(listing: Listing): Promise<OpenedFiles> {
   const files = await Promise.all(
     listing.files.map(async ({ path, href }) => ({ path, blob: await (await fetchOk(href)).blob() })),
   );
-  return { name: listing.name, files };
+  const { name, chosenOneByOne } = listing;
+  return { name, files, chosenOneByOne };
 }
 
 export async function fetchListing(href: string): Promise<Listing> {

@@ -1,4 +1,5 @@
-import { type AXES, formatVariant, type VariantName } from '../../core/encode/variant';
+import { type AXES, DEFAULT_VARIANTS, formatVariant, parseVariant } from '../../core/encode';
+import { InputError } from '../../core/job';
 
 export type Axis = keyof typeof AXES;
 export const AXIS_NAMES = [
@@ -31,73 +32,57 @@ export const OFFERED: Readonly<Record<Axis, readonly string[]>> = {
   lookup: ['plain', 'clean', 'dirty'],
 };
 
-export function parseName(name: string): VariantName {
-  const [factorisation, grouping, spin, shift, lookup] = name.split('/');
-  return { factorisation, grouping, spin, shift, lookup } as VariantName;
-}
+/** The variants that are compared where nothing else was asked for. */
+export const USUAL: readonly string[] = DEFAULT_VARIANTS.map(formatVariant);
 
-/** Why a combination of values is no variant, or null where it is sound. */
-export function whyNot({ factorisation, grouping, spin, shift }: VariantName): string | null {
-  if (factorisation === 'sparse') {
-    if (grouping !== '-') return 'sparse coefficients are not grouped';
-    if (spin !== 'index') return 'sparse + swap layers has no second form';
-    return shift === 'none' ? null : 'the median shift needs factors';
+/** Why a name is no variant, or null where it is sound. */
+export function whyNot(name: string): string | null {
+  try {
+    parseVariant(name);
+    return null;
+  } catch (error) {
+    if (error instanceof InputError) return error.found;
+    throw error;
   }
-  if (grouping === '-') return 'factors are joint or separate';
-  if (factorisation === 'spinor') {
-    if (spin !== 'index') return 'spinor + swap layers has no second form';
-    if (grouping === 'joint') return 'spinor factors are built from the separate blocks';
-  }
-  return null;
 }
-
-const all = (axis: Axis): readonly string[] => OFFERED[axis];
 
 /** Every sound variant with the given values, all offered ones where an axis is not given. */
 export function product(chosen: Readonly<Partial<Record<Axis, readonly string[]>>>): string[] {
   const names = new Set<string>();
-  const pick = (axis: Axis) => chosen[axis] ?? all(axis);
+  const pick = (axis: Axis) => chosen[axis] ?? OFFERED[axis];
   for (const factorisation of pick('factorisation')) {
-    const sparse = factorisation === 'sparse';
     // An axis without meaning for the factorisation takes its only value instead of being crossed.
+    const sparse = factorisation === 'sparse';
     for (const grouping of sparse ? ['-'] : pick('grouping'))
       for (const spin of factorisation === 'triplet' ? pick('spin') : ['index'])
         for (const shift of sparse ? ['none'] : pick('shift'))
           for (const lookup of pick('lookup')) {
-            const name = { factorisation, grouping, spin, shift, lookup } as VariantName;
-            if (whyNot(name) === null) names.add(formatVariant(name));
+            const name = [factorisation, grouping, spin, shift, lookup].join('/');
+            if (whyNot(name) === null) names.add(name);
           }
   }
   return [...names];
 }
 
-/** Values of an axis that occur among the names. */
+const wordOf = (name: string, axis: Axis) => name.split('/')[AXIS_NAMES.indexOf(axis)]!;
+
+/** Values of an axis that occur among the names, in the order they are offered. */
 export function valuesIn(names: readonly string[], axis: Axis): string[] {
-  const used = new Set(names.map((name) => parseName(name)[axis] as string));
-  return all(axis).filter((value) => used.has(value));
+  const used = new Set(names.map((name) => wordOf(name, axis)));
+  return OFFERED[axis].filter((value) => used.has(value));
 }
 
-/** The names after one word of an axis was switched: on adds its combinations with the words in use, off removes them. */
+/**
+ * The names after one word of an axis was switched: on adds its combinations with the words in use, off removes
+ * every name that has it.
+ */
 export function toggled(names: readonly string[], axis: Axis, value: string): string[] {
-  if (valuesIn(names, axis).includes(value)) {
-    return names.filter((name) => parseName(name)[axis] !== value);
-  }
+  if (valuesIn(names, axis).includes(value)) return names.filter((name) => wordOf(name, axis) !== value);
   const chosen: Partial<Record<Axis, readonly string[]>> = {};
   for (const each of AXIS_NAMES) {
     const used = valuesIn(names, each);
     if (used.length) chosen[each] = used;
   }
-  const added = product({ ...chosen, [axis]: [value] });
+  const added = product({ ...chosen, [axis]: [value] }).filter((name) => wordOf(name, axis) === value);
   return [...names, ...added.filter((name) => !names.includes(name))];
 }
-
-/** The variants that are compared where nothing else was asked for. */
-export const USUAL: readonly string[] = [
-  'triplet/joint/index/median/clean',
-  'triplet/joint/swap-layers/median/clean',
-  'triplet/separate/index/median/clean',
-  'triplet/separate/swap-layers/median/clean',
-  'triplet/separate/swap-layers/none/clean',
-  'spinor/separate/index/median/clean',
-  'sparse/-/index/none/clean',
-];

@@ -110,7 +110,8 @@ export class Desk {
   async obey(command: Command): Promise<void> {
     const numbered = /^stop-(\d)$/.exec(command);
     if (numbered) this.goTo(STOPS[Number(numbered[1]) - 1]!);
-    else if (command === 'open') await this.load.choose();
+    else if (command === 'open-files') await this.load.choose('files');
+    else if (command === 'open-folder') await this.load.choose('folder');
     else if (command === 'demo') await this.load.useDemo();
     else if (command === 'reckon') await this.reckon();
     else if (command === 'stop-job') this.stopJob();

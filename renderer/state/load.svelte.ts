@@ -4,7 +4,7 @@ import type { Reading, Source } from '../engine/protocol';
 import { problemOf } from '../engine/serve';
 import { formatBytes, formatCount, formatOneNorm } from '../figures/figures';
 import { type Reckoning, source, strong, words } from '../figures/reckoning';
-import type { Shell } from '../shell';
+import type { OpenedFiles, Shell } from '../shell';
 import type { StopLine } from './stops';
 
 export type LoadPhase = 'empty' | 'reading' | 'ready' | 'failed';
@@ -32,9 +32,9 @@ export class LoadState {
     this.#shell = shell;
   }
 
-  async choose(): Promise<void> {
-    const opened = await this.#shell.open();
-    if (opened) await this.read(opened.name, opened.files);
+  async choose(what: 'files' | 'folder' = 'files'): Promise<void> {
+    const opened = await this.#shell.open(what);
+    if (opened) await this.read(opened);
   }
 
   async useDemo(): Promise<void> {
@@ -46,22 +46,22 @@ export class LoadState {
     await this.#fetch('files of the command line', () => this.#shell.given());
   }
 
-  async #fetch(where: string, get: () => Promise<Omit<Source, 'id'> | null>): Promise<void> {
+  async #fetch(where: string, get: () => Promise<OpenedFiles | null>): Promise<void> {
     try {
       const opened = await get();
-      if (opened) await this.read(opened.name, opened.files);
+      if (opened) await this.read(opened);
     } catch (error) {
       this.phase = 'failed';
       this.problem = problemOf(error, where);
     }
   }
 
-  async read(name: string, files: Source['files']): Promise<void> {
-    if (files.length === 0) return;
+  async read(given: OpenedFiles): Promise<void> {
+    if (given.files.length === 0) return;
     this.#stop?.abort();
     const stop = new AbortController();
     this.#stop = stop;
-    const opened: Source = { id: this.#nextId++, name, files };
+    const opened: Source = { id: this.#nextId++, ...given };
     this.phase = 'reading';
     this.source = opened;
     this.reading = null;
@@ -92,7 +92,7 @@ export class LoadState {
         return;
       }
       this.phase = 'failed';
-      this.problem = error instanceof InputError ? error.toProblem() : problemOf(error, name);
+      this.problem = error instanceof InputError ? error.toProblem() : problemOf(error, given.name);
     }
   }
 
@@ -100,9 +100,11 @@ export class LoadState {
     this.#stop?.abort();
   }
 
+  readonly errors = $derived(this.reading?.findings.filter((f) => f.severity === 'error').length ?? 0);
+
   /** Integrals that other stops can work on. */
   readonly ready = $derived(
-    this.phase === 'ready' && this.source && this.reading
+    this.phase === 'ready' && this.errors === 0 && this.source && this.reading
       ? { source: this.source, reading: this.reading }
       : null,
   );
@@ -114,6 +116,12 @@ export class LoadState {
     if (this.phase === 'reading') return { mark: 'half', fact: 'reading', knows: false };
     if (this.phase === 'failed') return { mark: 'error', fact: 'not readable', knows: false };
     if (!reading) return { mark: 'empty', fact: 'no integrals yet', knows: false };
+    if (this.errors > 0)
+      return {
+        mark: 'error',
+        fact: `${this.errors} ${this.errors === 1 ? 'error' : 'errors'} in the files`,
+        knows: false,
+      };
     const arrays = `${reading.parts.length} ${reading.parts.length === 1 ? 'array' : 'arrays'}`;
     return {
       mark: this.warnings > 0 ? 'half' : 'full',

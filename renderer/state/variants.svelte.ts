@@ -1,3 +1,4 @@
+import { parseVariant } from '../../core/encode';
 import { Cancelled, type Problem } from '../../core/job';
 import type { Comparison } from '../../core/plan/comparison';
 import type { Engine } from '../engine/engine';
@@ -5,7 +6,7 @@ import type { Ask, VariantNews } from '../engine/protocol';
 import { problemOf } from '../engine/serve';
 import { type Reckoning, strong, words } from '../figures/reckoning';
 import type { Entry } from '../ledger/columns';
-import { type Axis, parseName, toggled, USUAL } from './axes';
+import { type Axis, toggled, USUAL } from './axes';
 import type { LoadState } from './load.svelte';
 import { Remaining } from './remaining';
 import type { StopLine } from './stops';
@@ -108,7 +109,8 @@ export class VariantsState {
           },
           onProgress: (stage, done, total) => {
             const fraction = total ? Math.min(1, done / total) : null;
-            this.#progress(source, stage, fraction);
+            // The job names its place in the list and the variant first; the row says both already.
+            this.#progress(source, stage.replace(/^\d+ of \d+, [^:]*: /, ''), fraction);
             this.remaining = remaining.words();
           },
         },
@@ -210,7 +212,7 @@ export class VariantsState {
 
 /** A variant in words. */
 export function describe(name: string): string {
-  const { factorisation, grouping, spin, shift, lookup } = parseName(name);
+  const { factorisation, grouping, spin, shift, lookup } = parseVariant(name);
   const how = grouping === '-' ? '' : `, ${grouping} blocks`;
   const where =
     spin === 'swap-layers' ? 'spin taken out of the index by swap layers' : 'spin in the select index';

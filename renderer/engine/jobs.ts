@@ -1,0 +1,128 @@
+import { parseVariant } from '../../core/encode';
+import { confidenceFactor, errorBudget, targetRequest } from '../../core/estimate';
+import { type IntegralSet, loadIntegrals, resolveInputs, throwFirstError } from '../../core/integrals';
+import type { JobContext } from '../../core/job';
+import { inspectIntegrals, runComparison, runVerification } from '../../core/plan';
+import { toHartree } from '../../core/units';
+import { blobFileSet } from './files';
+import { webReadPlatform } from './hdf5';
+import { listParts } from './parts';
+import type { Ask, JobName, Jobs, Source } from './protocol';
+
+/** The set read last: the jobs of one window are nearly always about the same files. */
+let held: { readonly id: number; readonly set: IntegralSet } | null = null;
+
+async function integralsOf(source: Source, context: JobContext): Promise<IntegralSet> {
+  if (held?.id === source.id) return held.set;
+  held = null; // two large sets at once might not fit
+  const files = blobFileSet(source.name, source.files);
+  const chosen = source.chosenOneByOne ? { chosen: source.files.map((f) => f.path) } : {};
+  const {
+    recipe,
+    recipeName,
+    files: resolved,
+  } = await resolveInputs({ files, ...chosen }, webReadPlatform, context);
+  const set = await loadIntegrals(recipe, resolved, webReadPlatform, context, {
+    recipeName,
+    onError: 'keep',
+  });
+  held = { id: source.id, set };
+  return set;
+}
+
+async function read({ source }: Jobs['read']['input'], context: JobContext): Promise<Jobs['read']['output']> {
+  const set = await integralsOf(source, context);
+  const { title, kind, orbitals, electrons, constant, terms, findings, files } = await inspectIntegrals(
+    set,
+    context,
+  );
+  return {
+    title,
+    kind,
+    orbitals,
+    electrons,
+    constant,
+    terms,
+    findings,
+    parts: listParts(set),
+    bytes: files.reduce((sum, f) => sum + f.bytes, 0),
+    meanFieldCoversActive: set.kind === 'spatial' && set.meanFieldCoversActive,
+  };
+}
+
+async function reckon(
+  { source, ask, variants }: Jobs['reckon']['input'],
+  context: JobContext,
+  tell: (news: Jobs['reckon']['news']) => void,
+): Promise<Jobs['reckon']['output']> {
+  const set = await integralsOf(source, context);
+  throwFirstError(set.findings);
+  const request = { ...ask, variants: variants.map(parseVariant) };
+  const { comparison } = await runComparison(set, request, context, {
+    onStart: (name) => tell({ status: 'started', name }),
+    onOutcome: tell,
+  });
+  return { hamiltonian: comparison.hamiltonian, recommendation: comparison.recommendation };
+}
+
+/** What truncation may drop: the same as in the reckoning, so that the same encodings are checked. */
+function thresholdOf(ask: Ask): number {
+  if (ask.threshold !== 'auto') return ask.threshold;
+  const request = targetRequest(toHartree(ask.target.value, ask.target.unit), {
+    meaning: ask.target.meaning,
+  });
+  return errorBudget(request, confidenceFactor(request.accuracy)).truncation;
+}
+
+const STATES = 8;
+
+async function prove(
+  { source, ask, variants }: Jobs['prove']['input'],
+  context: JobContext,
+): Promise<Jobs['prove']['output']> {
+  const set = await integralsOf(source, context);
+  throwFirstError(set.findings);
+  const { terms, electrons, occupations } = ask;
+  const evidence = await runVerification(
+    set,
+    {
+      terms,
+      electrons,
+      occupations,
+      variants: variants.map(parseVariant),
+      threshold: thresholdOf(ask),
+      states: STATES,
+    },
+    context,
+  );
+  const levels = evidence.spectrum.variants;
+  return {
+    electrons: evidence.electrons,
+    terms: evidence.terms,
+    exact: evidence.spectrum.exact,
+    variants: Object.entries(levels).map(([name, values]) => ({ name, levels: values })),
+    checks: evidence.checks,
+    notRun: [
+      ...variants
+        .filter((name) => !levels[name])
+        .map((name) => ({ name, reason: 'the variant is left out for this set' })),
+      ...(Object.keys(evidence.blockEncoding).length === 0
+        ? [
+            {
+              name: 'gate counts against an emitted circuit',
+              reason: 'the counts are closed formulas; walk steps are not emitted yet',
+            },
+          ]
+        : []),
+    ],
+  };
+}
+
+/** Every job by its name. */
+export const jobs: {
+  readonly [K in JobName]: (
+    input: Jobs[K]['input'],
+    context: JobContext,
+    tell: (news: Jobs[K]['news']) => void,
+  ) => Promise<Jobs[K]['output']>;
+} = { read, reckon, prove };
