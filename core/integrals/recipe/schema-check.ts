@@ -12,7 +12,7 @@ import { nearest } from './nearest';
 export function checkSchema(document: Json, schema: object, file: string): void {
   const { valid, errors } = new Validator(schema as Schema, '2020-12', false).validate(document);
   if (valid) return;
-  const leaves = errors.filter((unit) => unit.keyword in RANK);
+  const leaves = errors.filter((unit) => unit.keyword in RANK && !isPassedOn(unit, schema as Schema));
   // An unknown key usually explains the required key that is missing, so it comes first.
   leaves.sort((a, b) => RANK[a.keyword]! - RANK[b.keyword]!);
   const worst = leaves[0] ?? errors[0]!;
@@ -29,7 +29,7 @@ export function checkSchema(document: Json, schema: object, file: string): void 
 
 /** Keywords that say something about one place; those that only pass on a child's failure are left out. */
 const RANK: Readonly<Record<string, number>> = {
-  false: 0,
+  additionalProperties: 0,
   type: 1,
   enum: 2,
   const: 2,
@@ -48,22 +48,27 @@ const RANK: Readonly<Record<string, number>> = {
   not: 5,
 };
 
+/** An additionalProperties that is a schema only reports what its own keywords report more exactly. */
+const isPassedOn = (unit: OutputUnit, schema: Schema): boolean =>
+  unit.keyword === 'additionalProperties' &&
+  resolveSchema(schema, pointerTokens(unit.keywordLocation)) !== false;
+
 function explain(unit: OutputUnit, document: Json, schema: Schema) {
   const tokens = pointerTokens(unit.instanceLocation);
-  const where = tokens.length === 0 ? '/' : unit.instanceLocation.replace(/^#/, '');
+  const place = unit.instanceLocation.replace(/^#/, '');
+  const where = place === '' ? '/' : place;
   const value = resolvePointer(document, tokens);
   const rule = resolveSchema(schema, pointerTokens(unit.keywordLocation));
   const found = shorten(value);
-  const keyword = unit.keyword;
-  if (keyword === 'false') {
-    // keywordLocation ends in /additionalProperties; its parent lists the known keys.
+  const { keyword } = unit;
+  if (keyword === 'additionalProperties') {
     const parent = resolveSchema(schema, pointerTokens(unit.keywordLocation).slice(0, -1)) as Schema;
-    const known = Object.keys(parent?.properties ?? {});
-    const key = tokens[tokens.length - 1] ?? '';
+    const known = Object.keys(parent.properties ?? {});
+    const key = Object.keys(value as object).find((name) => !known.includes(name)) ?? '';
     const near = nearest(key, known);
     return {
-      where,
-      found: `unknown key "${key}"`,
+      where: `${place}/${key.replaceAll('~', '~0').replaceAll('/', '~1')}`,
+      found: `unknown key ${JSON.stringify(key)}`,
       expected: `one of ${known.join(', ')}`,
       mend: near === null ? 'Remove the key.' : `The nearest known key is "${near}".`,
     };
@@ -88,7 +93,11 @@ function explain(unit: OutputUnit, document: Json, schema: Schema) {
     };
   }
   if (keyword === 'not') {
-    const keys = (rule as Schema)?.required ?? [];
+    if ((rule as Schema).const !== undefined) {
+      const mend = 'Choose another value.';
+      return { where, found, expected: `anything but ${JSON.stringify((rule as Schema).const)}`, mend };
+    }
+    const keys = (rule as Schema).required ?? [];
     return { where, found: `both ${keys.join(' and ')}`, expected: 'only one of them', mend: 'Remove one.' };
   }
   return { where, found, expected: expectation(keyword, rule), mend: 'Correct this value.' };
