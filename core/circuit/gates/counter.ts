@@ -23,7 +23,13 @@ const T_GATE: ReadonlySet<GateKind> = new Set(['T', 'TDG']);
 /** Counts gates as they stream by; memory grows with the number of distinct subroutines only. */
 export class GateCounter implements GateSink {
   readonly root: GateCount = emptyCount('circuit', undefined);
+  readonly skipsClifford: boolean;
   readonly #stack: GateCount[] = [this.root];
+
+  /** @param options - `toffoliOnly`: leave out table contents, which hold Clifford gates only. */
+  constructor(options: { readonly toffoliOnly?: boolean } = {}) {
+    this.skipsClifford = options.toffoliOnly ?? false;
+  }
 
   gate(kind: GateKind): void {
     const top = this.#stack[this.#stack.length - 1]!;

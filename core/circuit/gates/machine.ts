@@ -25,6 +25,11 @@ export type GateKind = (typeof GATE_KINDS)[number];
 
 /** Where gates go: a counter, a simulator, a text. Wires and classical bits are small integers. */
 export interface GateSink {
+  /**
+   * True where the sink has no use for the CNOTs and conditioned phases that write and erase table contents: the
+   * bulk of a large circuit, without a single Toffoli.
+   */
+  readonly skipsClifford?: boolean;
   /** `condition` is the classical bit the gate depends on, or −1. Unused wires are −1. */
   gate(kind: GateKind, a: number, b: number, c: number, condition: number): void;
   /** exp(−i·angle/2·Z) on a wire; radians. */
@@ -57,6 +62,11 @@ export class Machine {
   /** Most wires that were live at once. */
   get peak(): number {
     return this.#peak;
+  }
+
+  /** See {@link GateSink.skipsClifford}. */
+  get skipsClifford(): boolean {
+    return this.#sink.skipsClifford === true;
   }
 
   get live(): number {

@@ -1,6 +1,6 @@
 import type { Machine } from '../gates/machine';
 import type { Operation } from '../gates/operation';
-import { unaryIteration, unaryIterationToffoli } from './unary-iteration';
+import { unaryIteration, unaryIterationToffoli, unaryIterationWires } from './unary-iteration';
 
 /** A table whose rows stand at ascending addresses, gaps allowed. */
 export interface Table {
@@ -45,7 +45,18 @@ export function countBlocks(addresses: Uint32Array, block: number): number {
   return blockAddresses(addresses, block).length;
 }
 
-function blockAddresses(addresses: Uint32Array, block: number): Uint32Array {
+/** Wires lent while a look-up runs, besides its k·b output wires. */
+export function lookUpWires(addresses: Uint32Array, block: number, controlled = false): number {
+  return unaryIterationWires(blockAddresses(addresses, block), controlled);
+}
+
+/** Wires lent while an erasure runs: the flags of the low address bits and the iteration. */
+export function erasureWires(addresses: Uint32Array, block: number, controlled = false): number {
+  return (block === 1 ? 0 : block) + lookUpWires(addresses, block, controlled);
+}
+
+/** Addresses of the blocks of k that hold any of the ascending addresses. */
+export function blockAddresses(addresses: Uint32Array, block: number): Uint32Array {
   const shift = Math.log2(block);
   const found = new Uint32Array(addresses.length);
   let count = 0;
@@ -102,6 +113,7 @@ function read(
   const lowBits = Math.log2(block);
   const listed = new Set(addresses);
   unaryIteration(register.slice(lowBits), blockAddresses(addresses, block), control, (m, high, flag) => {
+    if (m.skipsClifford) return;
     for (let j = 0; j < block; j++) {
       const address = high * block + j;
       if (!listed.has(address)) continue;
@@ -164,6 +176,7 @@ export function erase(
   const flags = low.begin(machine);
   const listed = new Set(addresses);
   unaryIteration(register.slice(lowBits), blockAddresses(addresses, block), control, (m, high, flag) => {
+    if (m.skipsClifford) return;
     for (let j = 0; j < block; j++) {
       const address = high * block + j;
       if (!listed.has(address)) continue;

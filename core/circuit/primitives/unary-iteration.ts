@@ -21,6 +21,38 @@ export function unaryIterationToffoli(count: number, controlled: boolean): numbe
   return controlled ? count - 1 : Math.max(0, count - 2);
 }
 
+/**
+ * Wires that unary iteration lends at the deepest point: the branchings above a leaf, one less without a control,
+ * or the constant wire of a table with one row.
+ */
+export function unaryIterationWires(addresses: Uint32Array, controlled: boolean): number {
+  if (addresses.length === 1) return controlled ? 0 : 1;
+  const depth = (bit: number, from: number, to: number): number => {
+    let level = bit;
+    while (to - from > 1) {
+      const middle = firstWithBit(addresses, level, from, to);
+      if (middle > from && middle < to) {
+        return 1 + Math.max(depth(level - 1, from, middle), depth(level - 1, middle, to));
+      }
+      level--;
+    }
+    return 0;
+  };
+  return depth(31, 0, addresses.length) - (controlled ? 0 : 1);
+}
+
+/** Position of the first of addresses[from…to) whose bit is set: they are sorted and agree above it. */
+function firstWithBit(addresses: Uint32Array, bit: number, from: number, to: number): number {
+  let low = from;
+  let high = to;
+  while (low < high) {
+    const middle = (low + high) >> 1;
+    if ((addresses[middle]! >>> bit) & 1) high = middle;
+    else low = middle + 1;
+  }
+  return low;
+}
+
 /** What happens at one address; `flag` is 1 exactly when the register holds it (and the control is 1). */
 export type Leaf = (machine: Machine, address: number, flag: number) => void;
 
@@ -68,7 +100,7 @@ class Walk {
     const machine = this.#machine;
     const count = this.#addresses.length;
     for (let level = this.#register.length; level > 0; level--) {
-      const middle = this.#firstWithBit(level - 1, 0, count);
+      const middle = firstWithBit(this.#addresses, level - 1, 0, count);
       if (middle === 0 || middle === count) continue;
       const bit = this.#register[level - 1]!;
       machine.gate('X', bit);
@@ -91,7 +123,7 @@ class Walk {
       this.#leaf(this.#machine, this.#addresses[from]!, flag);
       return;
     }
-    const middle = this.#firstWithBit(level - 1, from, to);
+    const middle = firstWithBit(this.#addresses, level - 1, from, to);
     if (middle === from || middle === to) {
       this.branch(level - 1, from, to, flag);
       return;
@@ -108,17 +140,5 @@ class Walk {
     this.branch(level - 1, middle, to, child);
     machine.gate('UNAND', flag, bit, child);
     machine.release(child);
-  }
-
-  /** Position of the first address in from…to−1 whose bit is set: they are sorted and agree above it. */
-  #firstWithBit(bit: number, from: number, to: number): number {
-    let low = from;
-    let high = to;
-    while (low < high) {
-      const middle = (low + high) >> 1;
-      if ((this.#addresses[middle]! >>> bit) & 1) high = middle;
-      else low = middle + 1;
-    }
-    return low;
   }
 }
