@@ -1,6 +1,7 @@
 // Brings a checkout into a state in which it can run: dependencies, kernels, bundles. Only what is missing or
 // stale is done, silently; what fails is shown. Node built-ins only, since nothing is installed at first.
-import { existsSync, mkdirSync, renameSync, rmSync, statSync, utimesSync } from 'node:fs';
+import { existsSync, mkdirSync, readdirSync, renameSync, rmSync, statSync, utimesSync } from 'node:fs';
+import { dirname, join, relative, sep } from 'node:path';
 import { setTimeout as sleep } from 'node:timers/promises';
 import { pathToFileURL } from 'node:url';
 import { inRoot, packageCommand, run, runNode } from './process.mjs';
@@ -74,14 +75,31 @@ async function buildOne(name) {
     'warn',
   ];
   await must(`the bundle "${name}"`, runNode(vite, args, { quiet: true, env: { NODE_ENV: 'production' } }));
-  // A running program keeps its old files until this moment, and sees either the old or the new bundle whole.
-  const old = inRoot(`dist/.old-${name}`);
-  rmSync(old, { recursive: true, force: true });
-  if (existsSync(inRoot('dist', name))) renameSync(inRoot('dist', name), old);
-  renameSync(fresh, inRoot('dist', name));
-  rmSync(old, { recursive: true, force: true });
+  replaceFiles(fresh, inRoot('dist', name));
   writeStamp(stampOf(name), print);
 }
+
+/**
+ * Moves a fresh bundle over the old one, file by file, so that a program that starts meanwhile finds every file:
+ * first what is named after its contents (chunks, assets), then the rest, and last goes what is left of the old.
+ */
+function replaceFiles(fresh, target) {
+  const files = readdirSync(fresh, { recursive: true, withFileTypes: true })
+    .filter((entry) => entry.isFile())
+    .map((entry) => relative(fresh, join(entry.parentPath, entry.name)))
+    .sort((a, b) => depth(b) - depth(a));
+  for (const file of files) {
+    mkdirSync(dirname(join(target, file)), { recursive: true });
+    renameSync(join(fresh, file), join(target, file));
+  }
+  for (const entry of readdirSync(target, { recursive: true, withFileTypes: true })) {
+    const file = relative(target, join(entry.parentPath, entry.name));
+    if (entry.isFile() && !files.includes(file)) rmSync(join(target, file));
+  }
+  rmSync(fresh, { recursive: true, force: true });
+}
+
+const depth = (file) => file.split(sep).length;
 
 const stampOf = (name) => inRoot('dist/.stamps', name);
 

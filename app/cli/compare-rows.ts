@@ -86,10 +86,9 @@ function counted(
   return { label, number, text: (v) => format(number(v)) };
 }
 
-/** `*`: the floor of all electron numbers; a bracket's ends where the floor itself is not known. */
-function floorRatio({ lambda, spectralFloor: { value, low, high, sector } }: VariantEstimate): string {
+/** `*`: the floor of all electron numbers; `≤` where only a lower bound of the floor is known. */
+function floorRatio({ lambda, spectralFloor: { value, low, sector } }: VariantEstimate): string {
   const mark = sector === 'all' ? '*' : '';
   if (value !== null) return value === 0 ? NOT_APPLICABLE : formatRatio(lambda.total / value) + mark;
-  if (low && high) return `${formatRatio(lambda.total / high)}–${formatRatio(lambda.total / low)}${mark}`;
-  return low ? `< ${formatRatio(lambda.total / low)}${mark}` : NOT_APPLICABLE;
+  return low ? `≤ ${formatRatio(lambda.total / low)}${mark}` : NOT_APPLICABLE;
 }

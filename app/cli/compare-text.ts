@@ -27,7 +27,7 @@ export function compareText(
     for (const block of blocks(pairUp(comparison.variants, sharesLookup(comparison)), rows, columns))
       lines.push(...block, '');
   }
-  if (comparison.variants.some((v) => v.spectralFloor.sector === 'all' && v.spectralFloor.kind === 'exact')) {
+  if (comparison.variants.some((v) => v.spectralFloor.sector === 'all')) {
     lines.push('* over the floor for all electron numbers, since the encoding is not shifted', '');
   }
   lines.push(...recommendation(comparison, columns));

@@ -24,6 +24,9 @@ export interface ComparisonEvents {
   readonly onOutcome?: (outcome: VariantOutcome) => void;
 }
 
+/** A floor explains λ and should not take longer than λ: sectors above this are bracketed. */
+const MAX_DETERMINANTS = 13_000;
+
 /** Complex spinors have no spin apart from space: spinor factors only. */
 const SPINOR_VARIANTS: readonly VariantName[] = [
   'spinor/joint/index/median/clean',
@@ -57,7 +60,7 @@ export async function runComparison(
       ? errorBudget(target, confidenceFactor(target.accuracy)).truncation
       : request.threshold;
   const encodings = new Encodings(hamiltonian, threshold, request.occupations);
-  const floors = new Floors(hamiltonian);
+  const floors = new Floors(hamiltonian, MAX_DETERMINANTS);
 
   const variants = request.variants ?? defaultVariants(set);
   const outcomes: VariantOutcome[] = [];
