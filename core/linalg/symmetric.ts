@@ -26,8 +26,7 @@ export async function symmetricEigenAsync(
 ): Promise<SymmetricEigen> {
   checkLength(a, n);
   // A memory of its own: other work may use the shared one between two steps.
-  const total = reductionWork(n) + divideWork(n) + reflectorWork(n, n);
-  return finishAsync(eigenSteps(createArena(), a, n), 'eigen', total, context);
+  return finishAsync(eigenSteps(createArena(), a, n), 'eigen', eigenWork(n), context);
 }
 
 /** Eigenvalues only, ascending. */
@@ -84,14 +83,7 @@ export const notConverged = (n: number) =>
   new Error(`the eigenvalues of a matrix of order ${n} did not converge; are all its elements finite?`);
 
 function* eigenSteps(arena: Arena, input: Float64Array, n: number): Steps<SymmetricEigen> {
-  const a = put(arena, input.subarray(0, n * n));
-  const d = arena.take(n);
-  const e = arena.take(n);
-  const h = arena.take(n);
-  yield* reduceSteps(arena, a, n, d, e, h);
-  const v = arena.take(n * n);
-  yield* divideSteps(arena, d, e, n, v);
-  yield* applyReflectorSteps(arena, a, h, n, v, n);
+  const { values: d, vectors: v } = yield* eigenInArena(arena, put(arena, input.subarray(0, n * n)), n);
   const m = arena.f64;
   const values = new Float64Array(n);
   const vectors = new Float64Array(n * n);
@@ -102,6 +94,28 @@ function* eigenSteps(arena: Arena, input: Float64Array, n: number): Steps<Symmet
   }
   return { n, values, vectors };
 }
+
+/**
+ * Eigenpairs of the matrix at `a` (lower triangle, rows of n; overwritten), in no order: values at `values`, their vectors in
+ * the rows at `vectors`. Both stay taken in the arena.
+ */
+export function* eigenInArena(
+  arena: Arena,
+  a: number,
+  n: number,
+): Steps<{ readonly values: number; readonly vectors: number }> {
+  const vectors = arena.take(n * n);
+  const d = arena.take(n);
+  const e = arena.take(n);
+  const h = arena.take(n);
+  yield* reduceSteps(arena, a, n, d, e, h);
+  yield* divideSteps(arena, d, e, n, vectors);
+  yield* applyReflectorSteps(arena, a, h, n, vectors, n);
+  return { values: d, vectors };
+}
+
+/** Work units of {@link eigenInArena}. */
+export const eigenWork = (n: number) => reductionWork(n) + divideWork(n) + reflectorWork(n, n);
 
 function* valueSteps(arena: Arena, input: Float64Array, n: number): Steps<Float64Array> {
   const a = put(arena, input.subarray(0, n * n));
