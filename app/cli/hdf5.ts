@@ -15,8 +15,16 @@ import { NodeSource } from './files';
 let loading: Promise<H5Module> | null = null;
 
 async function loadModule(): Promise<H5Module> {
-  const library = await import('h5wasm/node');
-  return (await library.ready) as unknown as H5Module;
+  // While it is evaluated the library takes hold of console.error, to which it would later tell in its own words
+  // what the error for the user says.
+  const { error } = console;
+  console.error = () => {};
+  try {
+    const library = await import('h5wasm/node');
+    return (await library.ready) as unknown as H5Module;
+  } finally {
+    console.error = error;
+  }
 }
 
 /** HDF5 over the real file system; other sources are copied to a temporary file until they are closed. */

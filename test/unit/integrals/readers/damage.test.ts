@@ -81,7 +81,7 @@ describe('damaged files', () => {
           expect((error as InputError).message).toMatch(/^F[:\s]?/);
           expect((error as InputError).message).not.toContain('\n');
         }),
-        { numRuns: Number(process.env.DAMAGE_RUNS ?? numRuns) },
+        { numRuns },
       );
     },
   );
