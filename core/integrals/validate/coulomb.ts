@@ -93,7 +93,7 @@ function swapped(values: Float64Array, n: number, where: string): Finding[] {
       where,
       found: `${element([p, p, q, q])} = ${triangleElement(values, p, p, q, q)} below ${element([p, q, p, q])} = ${triangleElement(values, p, q, p, q)} Eh, and so for ${violations} of ${distinct} pairs`,
       expected: 'Coulomb integrals (pp|qq) no smaller than exchange integrals (pq|pq)',
-      mend: 'The numbers may be ⟨pq|rs⟩ read as (pq|rs): set "order": "physicists" (an FCIDUMP must be in chemists’ order).',
+      mend: 'Coulomb and exchange integrals change places between ⟨pq|rs⟩ and (pq|rs): the "order" is the other one, "physicists" where nothing was said (an FCIDUMP must be in chemists’ order).',
     },
   ];
 }

@@ -4,8 +4,8 @@ import { maxAbs, originsOf, sumParts, type Unchecked } from './sums';
 
 /** No spin–orbit element between valence or semicore orbitals reaches this; common practice, no source. */
 const LARGE_SPIN_ORBIT = 1;
-/** 2e-4 cm⁻¹, below what a light atom has by far; common practice, no source. */
-const SMALL_SPIN_ORBIT = 1e-9;
+/** 2e-3 cm⁻¹, far below what any atom but hydrogen has; common practice, no source. */
+const SMALL_SPIN_ORBIT = 1e-8;
 /** (1s1s|1s1s) = 5Z/8 of the heaviest elements is about 70 Eh. */
 const LARGE_REPULSION = 200;
 
