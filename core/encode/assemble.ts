@@ -5,10 +5,11 @@ import type { JobContext } from '../job';
 import { hermitianEigenvalues } from '../linalg';
 import type { Encoding, EncodingShape, LambdaByPart } from './encoding';
 import { type BlockItems, itemsOf } from './items';
-import { type OneBody, oneBodyPart, oneBodyTriplet } from './one-body';
+import { KAPPA_ROUNDING, type OneBody, oneBodyPart, oneBodyTriplet } from './one-body';
 import { rebuildSpatial } from './rebuild';
 import { countAbove, shiftedNorm } from './shift';
 import { squareSpinorNorms, tripleSpinorNorms } from './spinor-norms';
+import { tripletProgram } from './triplet-program';
 import type { VariantName } from './variant';
 
 /** Sizes and weights of the two-body items. */
@@ -127,7 +128,7 @@ function oneBodySpinor(part: OneBody) {
   const values = hermitianEigenvalues(toSpinOrbitals(part.kappa));
   const total = 0.5 * shiftedNorm(values, 0, 2 * n, 0);
   const largest = Math.max(Math.abs(values[0]!), Math.abs(values[2 * n - 1]!));
-  const rows = Math.ceil(countAbove(values, 0, 2 * n, 0, 1e-13 * largest) / 2);
+  const rows = Math.ceil(countAbove(values, 0, 2 * n, 0, KAPPA_ROUNDING * largest) / 2);
   return { charge, spin: Math.max(0, total - charge), rows, pairRows: 0 };
 }
 
@@ -158,13 +159,15 @@ export async function encodeSpatial(
     maxRowsPerFactor: Math.max(two.maxRows, one.rows),
     spinDependent: two.spin || oneBody.spinNorms.some((a) => a > 0),
   };
+  const constant = oneBody.constant + trace + two.identity;
   return {
     variant,
     shape,
     lambda,
-    constant: oneBody.constant + trace + two.identity,
+    constant,
     residual: factorisation.residual,
     rebuild: () => rebuildSpatial(h, factorisation, blocks, oneBody),
+    ...(triplet ? { program: () => tripletProgram(constant, blocks, oneBody) } : {}),
   };
 }
 

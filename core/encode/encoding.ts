@@ -1,5 +1,6 @@
 import type { Residual } from '../factor/factors';
 import type { SpinHamiltonian } from '../hamiltonian/hamiltonian';
+import type { TripletProgram } from './program';
 import type { VariantName } from './variant';
 
 /** λ in hartree, by part; the parts sum to `total`. Keys: design interfaces, "lambda.parts". */
@@ -47,4 +48,6 @@ export interface Encoding {
    * encoding gives the same operator in the η-electron sector only.
    */
   rebuild(): SpinHamiltonian;
+  /** Triplet form only: all rows with their vectors, for circuits and exported tables. Made anew at each call. */
+  readonly program?: () => TripletProgram;
 }

@@ -1,5 +1,6 @@
 export { buildEncoding, type EncodingOptions } from './build';
 export type { Encoding, EncodingShape, LambdaByPart } from './encoding';
+export type { RowFace, TripletItem, TripletProgram, TripletRow } from './program';
 export { encodeTasks } from './tasks';
 export {
   AXES,

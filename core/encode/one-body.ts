@@ -7,7 +7,7 @@ import type { BlockItems } from './items';
 import { countAbove, median, shiftedNorm } from './shift';
 
 /** κ carries spin planes 1e-5 and less of its charge plane, so only rounding counts as zero here. */
-const ROUNDING = 1e-13;
+export const KAPPA_ROUNDING = 1e-13;
 
 /** The one-body item of an encoding and the constants that belong to it. */
 export interface OneBody {
@@ -90,7 +90,7 @@ export function oneBodyTriplet(part: OneBody) {
   let largest = 0;
   for (const x of part.chargeValues) largest = Math.max(largest, Math.abs(x));
   for (const x of part.spinNorms) largest = Math.max(largest, x);
-  const zero = ROUNDING * largest;
+  const zero = KAPPA_ROUNDING * largest;
   const pairRows = countAbove(part.spinNorms, 0, part.spinNorms.length, 0, zero);
   return { charge, spin, rows: countAbove(part.chargeValues, 0, n, 0, zero) + pairRows, pairRows };
 }

@@ -70,6 +70,7 @@ function tripleBatch({ n, antisymmetric, symmetric, shifts, balances }: TripleBa
   for (let t = 0; t < count; t++) {
     const at = t * n * n;
     const c = balances[t]!;
+    if (c === 0) continue; // Y is the identity, which the shift took out: nothing is left
     planeInto(im, at, antisymmetric, t * numAntisymmetricPairs(n), n, false);
     planeInto(re, at, symmetric, t * numSymmetricPairs(n), n, true);
     for (let p = 0; p < n; p++) re[at + p * n + p]! -= shifts[t]!;

@@ -51,12 +51,15 @@ export function weightSizes(block: SpatialBlock): Float64Array {
   return block.kind === 'triples' ? block.strengths : block.weights.map(Math.abs);
 }
 
+/** Budgets tried until the replacement's share fits into the threshold. */
+const TRIES = 6;
+
 /**
- * Truncation: factors are dropped in ascending order of their LCU norm while the sum stays ≤ `threshold` (hartree).
+ * Truncation: factors are dropped in ascending order of their LCU norm while the bound stays ≤ `threshold` (hartree).
  *
  * Dropped are the unitaries, ½w(M² − ½Λ²) with M = L − τ; the one-body part and the constant of a factor stay, except
- * that its spin components become the mean field over `occupations` (mean-field.ts). The bound is the sum dropped plus
- * the one-norm of that replacement, so it may exceed the threshold by the latter.
+ * that its spin components become the mean field over `occupations` (mean-field.ts). The bound is the sum of the
+ * dropped norms plus the one-norm of that replacement, which is small beside it.
  */
 export function truncate(
   blocks: readonly SpatialBlock[],
@@ -68,17 +71,50 @@ export function truncate(
   // Nuclear norm ≤ √n · Frobenius norm, so the remainder's one-norm is at most ¼ n · trace.
   const leftOut = remainder ? 0.25 * n * remainder.trace : 0;
   const norms = blocks.map(lcuNorms);
-  const choice = chooseKept(norms, blocks.map(weightSizes), Math.max(0, threshold - leftOut));
+  const sizes = blocks.map(weightSizes);
+  const allowed = Math.max(0, threshold - leftOut);
+  let budget = allowed;
+  let choice = chooseKept(norms, sizes, budget);
+  let fold = foldDropped(blocks, choice.dropped, n, occupations);
+  for (let i = 0; choice.sum + fold.replacement > allowed && i < TRIES; i++) {
+    budget = i === TRIES - 1 ? 0 : Math.max(0, Math.min(budget, choice.sum) - fold.replacement);
+    choice = chooseKept(norms, sizes, budget);
+    fold = foldDropped(blocks, choice.dropped, n, occupations);
+  }
+  const { folded } = fold;
+  let { constant } = fold;
+  if (remainder) {
+    addPairs(folded.planes, remainder.oneBody, n);
+    constant += leftOut - 0.5 * remainder.traceSquare;
+  }
+  const count = choice.dropped.reduce((sum, list) => sum + list.length, 0);
+  const square = blocks.reduce((sum, block, b) => sum + frobeniusSquareOf(block, choice.dropped[b]!), 0);
+  return {
+    blocks: blocks.map((block, b) =>
+      choice.kept[b]!.length === block.count ? block : selectFactors(block, choice.kept[b]!),
+    ),
+    residual: {
+      frobenius: Math.sqrt(square) + (remainder?.trace ?? 0),
+      oneNormBound: choice.sum + leftOut + fold.replacement,
+      dropped: count,
+    },
+    foldedMeanField: count > 0 || remainder ? folded : null,
+    foldedConstant: constant,
+  };
+}
+
+/** One-body part, constant and one-norm of the replacement for the dropped factors. */
+function foldDropped(
+  blocks: readonly SpatialBlock[],
+  dropped: readonly (readonly number[])[],
+  n: number,
+  occupations: ArrayLike<number>,
+) {
   const target: FoldTarget = { folded: zeroOperator('even', n), difference: new Float64Array(3 * n * n) };
   let constant = 0;
-  let frobeniusSquare = 0;
-  let count = 0;
   blocks.forEach((block, b) => {
-    const dropped = choice.dropped[b]!;
-    count += dropped.length;
-    frobeniusSquare += frobeniusSquareOf(block, dropped);
     const lambdas = block.kind === 'squares' ? squareOneNorms(block) : null;
-    for (const t of dropped) {
+    for (const t of dropped[b]!) {
       if (block.kind === 'triples') {
         foldTriple(target, block, t, occupations);
         continue;
@@ -89,23 +125,8 @@ export function truncate(
       constant += block.weights[t]! * (0.25 * lambdas![t]! ** 2 - 0.5 * tau ** 2);
     }
   });
-  if (remainder) {
-    addPairs(target.folded.planes, remainder.oneBody, n);
-    constant += leftOut - 0.5 * remainder.traceSquare;
-  }
-  const replacement = antisymmetricNormsBatch(target.difference, 3, n).reduce((sum, a) => sum + 2 * a, 0);
-  return {
-    blocks: blocks.map((block, b) =>
-      choice.kept[b]!.length === block.count ? block : selectFactors(block, choice.kept[b]!),
-    ),
-    residual: {
-      frobenius: Math.sqrt(frobeniusSquare) + (remainder?.trace ?? 0),
-      oneNormBound: choice.sum + leftOut + replacement,
-      dropped: count,
-    },
-    foldedMeanField: count > 0 || remainder ? target.folded : null,
-    foldedConstant: constant,
-  };
+  const norms = antisymmetricNormsBatch(target.difference, 3, n);
+  return { folded: target.folded, constant, replacement: norms.reduce((sum, a) => sum + 2 * a, 0) };
 }
 
 function addPairs(plane: Float64Array, pairs: Float64Array, n: number): void {
