@@ -7,6 +7,7 @@ export type {
   SpinorHamiltonian,
   TwoElectronTensor,
 } from './hamiltonian';
+export { hamiltonianDefect } from './hermiticity';
 export { spinOrbitMeanField } from './mean-field';
 export { type NormalOrdered, normalOrder } from './normal-order';
 export {

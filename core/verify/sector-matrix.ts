@@ -1,4 +1,5 @@
 import {
+  hamiltonianDefect,
   type SpinHamiltonian,
   type SpinorHamiltonian,
   spinorForm,
@@ -38,7 +39,7 @@ export const MAX_SECTOR_DIMENSION = 20_000;
  * H among the determinants of η electrons, by the Slater–Condon rules over 2N spin orbitals.
  *
  * @param form - `product` starts from k alone (its own reordering gives h), `stored` from h.
- * @throws InputError `sector-too-large` above {@link MAX_SECTOR_DIMENSION} determinants.
+ * @throws InputError `not-hermitian` where the integrals are not, `sector-too-large` above {@link MAX_SECTOR_DIMENSION} determinants.
  */
 export async function sectorMatrix(
   hamiltonian: SpinHamiltonian,
@@ -58,8 +59,29 @@ export async function sectorMatrix(
     });
   }
   const spinor = hamiltonian.kind === 'spatial' ? spinorForm(hamiltonian) : hamiltonian;
+  // Only one triangle of the matrix is built, which would hide it.
+  refuseNotHermitian(spinor);
   const h = form === 'stored' ? spinor.h : spinorFromProductForm(spinor).h;
   return fill(integralsOf(spinor, h), sectorBasis(modes, electrons), hamiltonian.constant, context);
+}
+
+/** Deviation from Hermiticity that rounding in a file explains, relative to the largest integral. */
+const HERMITIAN = 1e-7;
+
+function refuseNotHermitian(spinor: SpinorHamiltonian): void {
+  let largest = 0;
+  for (const plane of [spinor.k.re, spinor.g.re]) {
+    for (let i = 0; i < plane.length; i++) largest = Math.max(largest, Math.abs(plane[i]!));
+  }
+  const defect = hamiltonianDefect(spinor);
+  if (defect <= HERMITIAN * largest) return;
+  throw new InputError({
+    code: 'not-hermitian',
+    where: 'exact diagonalisation',
+    found: `integrals that miss H = H† or (PQ|RS) = (RS|PQ) by ${defect.toExponential(1)} Eh`,
+    expected: `at most ${(HERMITIAN * largest).toExponential(1)} Eh`,
+    mend: 'Look at the findings of "inspect" for these files.',
+  });
 }
 
 /** Antisymmetrised integrals, arranged for the loops below. */

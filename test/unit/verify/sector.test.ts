@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest';
-import { spinorForm } from '../../../core/hamiltonian';
+import { type SpinorHamiltonian, spinorForm } from '../../../core/hamiltonian';
 import { inlineContext } from '../../../core/job';
 import { binomial, exactSpectrum, fockMatrix, sectorBasis, sectorMatrix } from '../../../core/verify';
 import { connectedBlocks } from '../../../core/verify/blocks';
@@ -70,6 +70,18 @@ describe('matrix of a sector', () => {
     for (let i = 0; i < 8; i++) expect(few.values[i]).toBeCloseTo(all.values[i]!, 10);
     // Kramers pairs of an odd electron number: degenerate to rounding.
     for (let i = 0; i < 252; i += 2) expect(all.values[i]).toBeCloseTo(all.values[i + 1]!, 10);
+  });
+
+  it.each([
+    ['k', (h: SpinorHamiltonian) => h.k.im, 1],
+    ['g against its conjugate', (h: SpinorHamiltonian) => h.g.im, 17],
+    ['g against its exchange', (h: SpinorHamiltonian) => h.g.re, 300],
+  ])('refuses integrals that are not Hermitian: %s', async (_, plane, at) => {
+    const spinor = spinorForm(randomHamiltonian(3, 2, ALL_KINDS, 3));
+    plane(spinor)[at]! += 1e-3;
+    await expect(sectorMatrix(spinor, 3, 'product', inlineContext())).rejects.toThrow(
+      /miss H = H† .* by 1\.0e-3 Eh/,
+    );
   });
 
   it('refuses a sector that does not fit, with the cure', async () => {
