@@ -80,13 +80,13 @@ async function loadSpatial(
   const progress = progressOver(parts, files, context);
   const contents = new Map<ResolvedPart, PartContents>();
   const wholes: SpinFreeContents[] = [];
-  let fileConstant = 0;
+  let fileConstant: number | null = null;
   for (const part of parts.filter(({ facts }) => facts.numIndices === 0)) {
     const read = await readPart(part, null, files, platform, context);
     if (read.kind !== 'spin-free') throw notSpinFree(part, read);
     contents.set(part, read);
     wholes.push(read);
-    fileConstant += part.factor * read.constant;
+    fileConstant = (fileConstant ?? 0) + part.factor * read.constant;
     progress(part);
   }
   const orbitals = await agreedOrbitals(recipe, name, parts, wholes, files, platform, context);
@@ -151,6 +151,15 @@ async function agreedOrbitals(
   platform: ReadPlatform,
   context: JobContext,
 ): Promise<number> {
+  if (recipe.spinors !== undefined) {
+    throw new InputError({
+      code: 'orbitals',
+      where: `${name}: /spinors`,
+      found: `${recipe.spinors} spinors, but no part over spinors`,
+      expected: '"orbitals", the number of spatial orbitals',
+      mend: 'Use "orbitals" instead.',
+    });
+  }
   let orbitals = recipe.orbitals ?? null;
   let source = `${name}: /orbitals`;
   for (const whole of wholes) {

@@ -4,7 +4,7 @@ import { isTrexio, listNpz, readHdf5Dataset, readNpy, readNpz, sniffFormat } fro
 import type { ByteSource, FileSet, ReadPlatform } from '../source';
 import { guessConvention, orbitalsOfSquare } from './guess';
 import type { Recipe, RecipePart } from './recipe';
-import { templateParts } from './template';
+import { isSecondCopy, isTemplateName, templateParts } from './template';
 import { wholeRole } from './whole';
 
 export interface Suggestion {
@@ -32,32 +32,40 @@ export async function suggestRecipe(
     if (role !== null) parts.push({ id: uniqueId(role, parts), role, file: source.path });
     else arrays.push(...(await arraysOf(source, platform, context)));
   }
+  // Plain arrays first: a container often repeats them, and of equal arrays the first is kept.
+  arrays.sort((a, b) => Number(a.place.dataset !== undefined) - Number(b.place.dataset !== undefined));
   const orbitals = arrays.map(({ raw }) => orbitalsOfSquare(raw)).find((n) => n !== null) ?? null;
+  const spinFree = parts.find((part) => part.role === 'spin-free')?.file ?? null;
+  const isTemplateSet = arrays.some(({ name }) => isTemplateName(name));
   const findings: Finding[] = [];
-  for (const { place, name, raw } of arrays) {
-    const spinFree = parts.find((part) => part.role === 'spin-free')?.file ?? null;
-    const known = templateParts(spinFree, (array) => (array === name ? place : null)).filter(
-      (part) => part.file === place.file,
-    );
+  for (const [index, { place, name, raw }] of arrays.entries()) {
+    const isRepeated = arrays.slice(0, index).some((other) => isSame(other.raw, raw));
+    if (isRepeated || (isTemplateSet && isSecondCopy(name) && (spinFree !== null || !isTemplateName(name))))
+      continue;
+    const known = templateParts(null, (array) => (array === name ? place : null));
     if (known.length > 0) {
-      parts.push(...known.map((part) => ({ ...part, id: uniqueId(part.id, parts) })));
+      for (const part of known) parts.push({ ...part, id: uniqueId(part.id, parts) });
       continue;
     }
     const guess = guessConvention(raw, name, orbitals);
     findings.push(guess === null ? noConvention(raw) : guessed(raw, guess.role));
     if (guess !== null) parts.push({ id: uniqueId(name, parts), ...place, ...guess });
   }
-  const recipe: Recipe | null =
-    parts.length === 0
-      ? null
-      : {
-          schema: 'spinwright-recipe/1',
-          title: files.name.slice(0, 500),
-          ...(orbitals === null ? {} : { orbitals }),
-          parts: parts.slice(0, 64),
-        };
+  if (parts.length === 0) return { recipe: null, findings };
+  const used = new Set(parts.map((part) => part.file));
+  const ignore = [...new Set(arrays.map(({ place }) => place.file))].filter((file) => !used.has(file));
+  const recipe: Recipe = {
+    schema: 'spinwright-recipe/1',
+    title: files.name.slice(0, 500),
+    ...(orbitals === null ? {} : { orbitals }),
+    ...(ignore.length > 0 ? { ignore } : {}),
+    parts: parts.slice(0, 64),
+  };
   return { recipe, findings };
 }
+
+const isSame = (a: RawArray, b: RawArray): boolean =>
+  a.data.length === b.data.length && a.data.every((value, i) => value === b.data[i]);
 
 async function arraysOf(source: ByteSource, platform: ReadPlatform, context: JobContext) {
   const format = await sniffFormat(source);

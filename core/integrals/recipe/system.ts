@@ -17,7 +17,7 @@ export interface SystemFacts {
 /**
  * Electrons, spin, occupations and constants from recipe and files together.
  *
- * @param fileConstant - sum of the constants inside spin-free files, hartree; 0 = none there.
+ * @param fileConstant - sum of the constants inside spin-free files, hartree; null where there is no such file.
  * @throws InputError `electrons`, `occupations`, `constant` where recipe and file contradict each other.
  */
 export function systemFacts(
@@ -25,7 +25,7 @@ export function systemFacts(
   file: string,
   orbitals: number,
   wholes: readonly SpinFreeContents[],
-  fileConstant: number,
+  fileConstant: number | null,
 ): SystemFacts {
   const electrons = agreedElectrons(recipe, file, wholes);
   if (electrons > 2 * orbitals) {
@@ -126,13 +126,13 @@ function occupations(
 export function sumConstants(
   recipe: Recipe,
   file: string,
-  fileConstant: number,
+  fileConstant: number | null,
 ): Partial<Record<Term, number>> {
   const constants: Partial<Record<Term, number>> = {};
   for (const { term, value, unit } of recipe.constants ?? []) {
     constants[term] = (constants[term] ?? 0) + toHartree(value, unit ?? 'hartree');
   }
-  if (fileConstant === 0) return constants;
+  if (fileConstant === null) return constants;
   const stated = constants.sf;
   if (stated !== undefined && Math.abs(stated - fileConstant) > CONSTANT_TOLERANCE) {
     throw new InputError({

@@ -55,6 +55,9 @@ export function templateParts(
   return parts;
 }
 
+/** Array names that only repeat what an FCIDUMP or a packed array of the set holds, or that are never used. */
+export const isSecondCopy = (name: string): boolean => /^(h1|eri_packed|mo_energies|.*_full)$/.test(name);
+
 /** Files that hold arrays of the set a second time, or what is never used. */
 function ignored(files: FileSet, parts: readonly RecipePart[], hdf5: string): Pick<Recipe, 'ignore'> {
   const used = new Set(parts.map((part) => part.file));
@@ -62,7 +65,7 @@ function ignored(files: FileSet, parts: readonly RecipePart[], hdf5: string): Pi
     .list()
     .map((file) => file.path)
     .filter((path) => !used.has(path))
-    .filter((path) => path === hdf5 || /^(h1|eri_packed|mo_energies|.*_full)\.npy$/.test(path));
+    .filter((path) => path === hdf5 || isSecondCopy(path.replace(/\.npy$/, '')));
   return ignore.length > 0 ? { ignore } : {};
 }
 
