@@ -25,6 +25,7 @@ export {
   toSpinOrbitals,
   zeroOperator,
 } from './operators';
+export { rotateOrbitals, rotateSpin } from './rotate';
 export { spinorForm } from './spinor-form';
 export {
   coulombBlock,

@@ -9,6 +9,7 @@ import {
   numSymmetricPairs,
   pairsTriangleLength,
 } from '../../../core/integrals/integral-set';
+import { symmetricEigen } from '../../../core/linalg';
 
 /** Small deterministic generator (mulberry32, public domain), uniform in −1…1. */
 export function uniform(seed: number): () => number {
@@ -23,6 +24,18 @@ export function uniform(seed: number): () => number {
 
 export function randomArray(length: number, random: () => number): Float64Array {
   return Float64Array.from({ length }, random);
+}
+
+/** Random n×n orthogonal matrix, row-major: eigenvectors of a random symmetric one. */
+export function randomOrthogonal(n: number, random: () => number): Float64Array {
+  const symmetric = new Float64Array(n * n);
+  for (let p = 0; p < n; p++) {
+    for (let q = 0; q <= p; q++) {
+      symmetric[p * n + q] = random();
+      symmetric[q * n + p] = symmetric[p * n + q]!;
+    }
+  }
+  return symmetricEigen(symmetric, n).vectors;
 }
 
 export interface RandomKinds {
