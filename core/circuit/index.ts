@@ -1,4 +1,8 @@
 export * from './formulas';
+export { type GateCount, GateCounter } from './gates/counter';
+export { GATE_KINDS, type GateKind, type GateSink, Machine } from './gates/machine';
+export type { Operation } from './gates/operation';
+export { addressBits } from './primitives/unary-iteration';
 export { STEP_PARTS, type StepPart, type Subroutine } from './recipe';
 export { type DoubleFactorised, doubleFactorisedStep } from './recipes/double-factorised';
 export { type Hypercontracted, hypercontractedStep } from './recipes/hypercontracted';
@@ -7,3 +11,10 @@ export { type SingleFactorised, singleFactorisedStep } from './recipes/single-fa
 export { type SparseSizes, sparseStep } from './recipes/sparse';
 export { spinorStep } from './recipes/spinor';
 export { type FactorisedBits, tripletStep } from './recipes/triplet';
+export { SparseState } from './simulate/sparse-state';
+export { chooseBlocks } from './triplet/blocks';
+export type { SpinTreatment } from './triplet/product';
+export { tripletRecipe } from './triplet/recipe';
+export { sizesOf, type TripletSizes, tripletLayout } from './triplet/sizes';
+export { encodedProgram, type TripletBits, type TripletTables, tripletTables } from './triplet/tables';
+export { ancillaWires, type WalkBlocks, walkStep, walkWires, withItemData } from './triplet/walk';

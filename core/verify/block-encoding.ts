@@ -1,5 +1,13 @@
 import type { SpinTreatment, TripletTables, WalkBlocks } from '../circuit';
-import { addressBits, ancillaWires, Machine, SparseState, walkWires, withItemData } from '../circuit';
+import {
+  addressBits,
+  ancillaWires,
+  GateCounter,
+  Machine,
+  SparseState,
+  walkWires,
+  withItemData,
+} from '../circuit';
 import type { JobContext } from '../job';
 import type { ComplexMatrix } from '../linalg';
 import type { SectorBasis } from './determinants';
@@ -33,13 +41,21 @@ export async function simulatedBlock(
       })),
     ),
   );
+  const wires = peakWires(tables, spin, blocks) + addressBits(dim);
   for (const [done, outer] of outerStates.entries()) {
     context.report('simulating the circuit', done, outerStates.length);
     await context.checkpoint();
-    if (outer.probability > 0) addItemBlock(block, tables, spin, blocks, basis, outer, context.seed);
+    if (outer.probability > 0) addItemBlock(block, tables, spin, blocks, basis, outer, wires, context.seed);
   }
   context.report('simulating the circuit', outerStates.length, outerStates.length);
   return block;
+}
+
+/** A basis state takes as many words as it has wires, so the simulator is given no more than are used. */
+function peakWires(tables: TripletTables, spin: SpinTreatment, blocks: WalkBlocks): number {
+  const machine = new Machine(new GateCounter({ toffoliOnly: true }));
+  withItemData(tables, walkWires(tables, machine, 'exact'), spin, blocks).run(machine);
+  return machine.peak;
 }
 
 interface OuterState {
@@ -56,10 +72,11 @@ function addItemBlock(
   blocks: WalkBlocks,
   basis: SectorBasis,
   outer: OuterState,
+  maxWires: number,
   seed: number,
 ): void {
   const { dim, modes, states } = basis;
-  const state = new SparseState({ maxWires: 512, seed });
+  const state = new SparseState({ maxWires, seed });
   const machine = new Machine(state);
   const column = machine.allocateRegister(addressBits(dim));
   const wires = walkWires(tables, machine, 'exact');

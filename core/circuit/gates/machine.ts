@@ -36,6 +36,8 @@ export interface GateSink {
   rotateZ(wire: number, angle: number): void;
   /** Measures in the X basis into classical bit `bit`; the wire is |0⟩ afterwards. */
   measureX(wire: number, bit: number): void;
+  /** Measures several wires into consecutive bits from `firstBit`; sinks without it get them one by one. */
+  measureRegisterX?(wires: readonly number[], firstBit: number): void;
   allocate(wire: number): void;
   /** The wire must be |0⟩: a simulator checks it. */
   release(wire: number): void;
@@ -108,6 +110,15 @@ export class Machine {
     const bit = this.#bits++;
     this.#sink.measureX(wire, bit);
     return bit;
+  }
+
+  /** @returns the classical bits with the outcomes, one a wire. */
+  measureRegisterX(wires: readonly number[]): number[] {
+    const first = this.#bits;
+    this.#bits += wires.length;
+    if (this.#sink.measureRegisterX) this.#sink.measureRegisterX(wires, first);
+    else for (const [i, wire] of wires.entries()) this.#sink.measureX(wire, first + i);
+    return wires.map((_, i) => first + i);
   }
 
   enter(name: string, part?: StepPart): void {

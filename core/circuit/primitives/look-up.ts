@@ -170,7 +170,7 @@ export function erase(
   block: number,
   control: number | null,
 ): void {
-  const outcomes = output.map((wire) => machine.measureX(wire));
+  const outcomes = machine.measureRegisterX(output);
   const lowBits = Math.log2(block);
   const low = oneHot(register.slice(0, lowBits));
   const flags = low.begin(machine);

@@ -62,6 +62,21 @@ export class SparseState implements GateSink {
     return this.#count;
   }
 
+  /** Replaces the state by a superposition; each entry lists the wires that are 1. Not normalised here. */
+  load(entries: readonly { readonly ones: readonly number[]; readonly amplitude: number }[]): void {
+    this.#reserve(entries.length);
+    this.#count = entries.length;
+    this.#keys.fill(0);
+    for (const [i, { ones, amplitude }] of entries.entries()) {
+      for (const wire of ones) {
+        const { word, mask } = this.#locate(wire);
+        this.#keys[i * this.#words + word]! |= mask;
+      }
+      this.#re[i] = amplitude;
+      this.#im[i] = 0;
+    }
+  }
+
   gate(kind: GateKind, a: number, b: number, c: number, condition: number): void {
     if (condition >= 0 && !this.#bits[condition]) return;
     switch (kind) {
@@ -108,7 +123,38 @@ export class SparseState implements GateSink {
   }
 
   measureX(wire: number, bit: number): void {
-    this.#bits[bit] = this.#measureX(wire);
+    this.measureRegisterX([wire], bit);
+  }
+
+  measureRegisterX(wires: readonly number[], firstBit: number): void {
+    if (!this.#areFunctions(wires)) {
+      for (const [i, wire] of wires.entries()) {
+        this.#hadamard(wire);
+        this.#bits[firstBit + i] = this.#measure(wire);
+      }
+      return;
+    }
+    // The wires are functions of the others: every outcome is equally likely and only signs change.
+    const clear = new Uint32Array(this.#words);
+    const odd = new Uint32Array(this.#words);
+    for (const [i, wire] of wires.entries()) {
+      const outcome = this.#outcomes === 'random' ? this.#nextRandom() < 0.5 : this.#outcomes === 1;
+      this.#bits[firstBit + i] = outcome;
+      const { word, mask } = this.#locate(wire);
+      clear[word]! |= mask;
+      if (outcome) odd[word]! |= mask;
+    }
+    for (let i = 0, at = 0; i < this.#count; i++, at += this.#words) {
+      let parity = 0;
+      for (let w = 0; w < this.#words; w++) {
+        parity ^= this.#keys[at + w]! & odd[w]!;
+        this.#keys[at + w]! &= ~clear[w]!;
+      }
+      if (isOdd(parity)) {
+        this.#re[i] = -this.#re[i]!;
+        this.#im[i] = -this.#im[i]!;
+      }
+    }
   }
 
   allocate(wire: number): void {
@@ -189,7 +235,8 @@ export class SparseState implements GateSink {
 
   #unAnd(a: number, b: number, target: number): void {
     if (this.#outcomes === 'random' && this.#clearProduct(a, b, target)) return;
-    if (this.#measureX(target)) this.#phase(a, b, -1, -1, 0);
+    this.#hadamard(target);
+    if (this.#measure(target)) this.#phase(a, b, -1, -1, 0);
   }
 
   /**
@@ -212,35 +259,26 @@ export class SparseState implements GateSink {
     return true;
   }
 
-  /** H, then a measurement in the Z basis; the wire is left |0⟩. */
-  #measureX(wire: number): boolean {
-    const { word, mask } = this.#locate(wire);
-    const words = this.#words;
-    const pairs = new PairTable(this.#count, words);
-    for (let i = 0, at = 0; i < this.#count && pairs.size === i; i++, at += words) {
-      pairs.find(this.#keys, at, word, mask);
+  /** Whether no two basis states agree in all other wires. */
+  #areFunctions(wires: readonly number[]): boolean {
+    const keep = new Uint32Array(this.#words).fill(0xffffffff);
+    for (const wire of wires) {
+      const { word, mask } = this.#locate(wire);
+      keep[word]! &= ~mask;
     }
-    if (pairs.size < this.#count) {
-      this.#hadamard(wire);
-      return this.#measure(wire);
+    const others = new KeyTable(this.#count, keep);
+    for (let i = 0; i < this.#count; i++) {
+      if (others.find(this.#keys, i * this.#words) !== i) return false;
     }
-    // No two basis states differ in this wire alone: both outcomes have probability ½ and only signs change.
-    const outcome = this.#outcomes === 'random' ? this.#nextRandom() < 0.5 : this.#outcomes === 1;
-    for (let i = 0, at = word; i < this.#count; i++, at += words) {
-      if ((this.#keys[at]! & mask) === 0) continue;
-      this.#keys[at]! &= ~mask;
-      if (outcome) {
-        this.#re[i] = -this.#re[i]!;
-        this.#im[i] = -this.#im[i]!;
-      }
-    }
-    return outcome;
+    return true;
   }
 
   #hadamard(wire: number): void {
     const { word, mask } = this.#locate(wire);
     const words = this.#words;
-    const pairs = new PairTable(this.#count, words);
+    const keep = new Uint32Array(words).fill(0xffffffff);
+    keep[word]! &= ~mask;
+    const pairs = new KeyTable(this.#count, keep);
     const oldKeys = this.#keys;
     const zeroRe = new Float64Array(this.#count);
     const zeroIm = new Float64Array(this.#count);
@@ -248,7 +286,7 @@ export class SparseState implements GateSink {
     const oneIm = new Float64Array(this.#count);
     for (let i = 0, at = 0; i < this.#count; i++, at += words) {
       const isOne = (oldKeys[at + word]! & mask) !== 0;
-      const slot = pairs.find(oldKeys, at, word, mask);
+      const slot = pairs.find(oldKeys, at);
       if (isOne) {
         oneRe[slot]! += this.#re[i]!;
         oneIm[slot]! += this.#im[i]!;
@@ -339,53 +377,59 @@ export class SparseState implements GateSink {
   }
 }
 
-/** Open-addressing table from basis state without one wire to a dense slot number. */
-class PairTable {
-  readonly #words: number;
+function isOdd(bits: number): boolean {
+  let x = bits ^ (bits >>> 16);
+  x ^= x >>> 8;
+  x ^= x >>> 4;
+  x ^= x >>> 2;
+  x ^= x >>> 1;
+  return (x & 1) === 1;
+}
+
+/** Open-addressing table from basis state, some wires left out, to a slot number in order of first appearance. */
+class KeyTable {
+  readonly #keep: Uint32Array;
   readonly #mask: number;
   readonly #slots: Int32Array;
   readonly #keys: Uint32Array;
   size = 0;
 
-  constructor(entries: number, words: number) {
+  /** @param keep - masks of the wires that count, one a word */
+  constructor(entries: number, keep: Uint32Array) {
     let buckets = 16;
     while (buckets < 2 * entries) buckets *= 2;
-    this.#words = words;
+    this.#keep = keep;
     this.#mask = buckets - 1;
     this.#slots = new Int32Array(buckets).fill(-1);
-    this.#keys = new Uint32Array(entries * words);
+    this.#keys = new Uint32Array(entries * keep.length);
   }
 
-  find(keys: Uint32Array, at: number, word: number, mask: number): number {
-    const words = this.#words;
+  find(keys: Uint32Array, at: number): number {
+    const keep = this.#keep;
+    const words = keep.length;
     let hash = 0x811c9dc5;
     for (let w = 0; w < words; w++) {
-      const key = w === word ? keys[at + w]! & ~mask : keys[at + w]!;
-      hash = Math.imul(hash ^ key, 0x9e3779b1);
+      hash = Math.imul(hash ^ (keys[at + w]! & keep[w]!), 0x9e3779b1);
       hash ^= hash >>> 15;
     }
     for (let bucket = hash & this.#mask; ; bucket = (bucket + 1) & this.#mask) {
       const slot = this.#slots[bucket]!;
       if (slot < 0) {
         this.#slots[bucket] = this.size;
-        const to = this.size * words;
-        for (let w = 0; w < words; w++) {
-          this.#keys[to + w] = w === word ? keys[at + w]! & ~mask : keys[at + w]!;
-        }
+        for (let w = 0; w < words; w++) this.#keys[this.size * words + w] = keys[at + w]! & keep[w]!;
         return this.size++;
       }
-      const from = slot * words;
       let equal = true;
       for (let w = 0; w < words && equal; w++) {
-        const key = w === word ? keys[at + w]! & ~mask : keys[at + w]!;
         // Typed arrays hold unsigned words, the masked value is signed.
-        equal = this.#keys[from + w] === key >>> 0;
+        equal = this.#keys[slot * words + w] === (keys[at + w]! & keep[w]!) >>> 0;
       }
       if (equal) return slot;
     }
   }
 
   copyKey(slot: number, keys: Uint32Array, at: number): void {
-    for (let w = 0; w < this.#words; w++) keys[at + w] = this.#keys[slot * this.#words + w]!;
+    const words = this.#keep.length;
+    for (let w = 0; w < words; w++) keys[at + w] = this.#keys[slot * words + w]!;
   }
 }

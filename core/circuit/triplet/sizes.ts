@@ -6,7 +6,7 @@ import type { TripletBits } from './tables';
 /** All of a program that the cost of its walk depends on, besides the bits. The one-body item comes last. */
 export interface TripletSizes {
   readonly orbitals: number;
-  /** Rows of each item; its A rows come first. */
+  /** Rows of each item; the tables put its A rows first. */
   readonly rows: Uint32Array;
   /** Of these, A rows. */
   readonly pairRows: Uint32Array;

@@ -43,7 +43,11 @@ export interface TripletTables {
 export function tripletTables(program: TripletProgram, bits: TripletBits): TripletTables {
   const oneBodyWeight = program.oneBody.reduce((sum, row) => sum + row.faces[0]!.weight, 0);
   const oneBody: TripletItem = { sign: 1, paired: false, lambda: [oneBodyWeight], rows: program.oneBody };
-  const items = [...program.items, oneBody];
+  // A rows first: their addresses then have no gaps within an item, which makes for fewer blocks.
+  const items = [...program.items, oneBody].map((item) => ({
+    ...item,
+    rows: [...item.rows.filter((row) => row.kind === 'A'), ...item.rows.filter((row) => row.kind === 'S')],
+  }));
   const itemBits = Math.max(1, addressBits(items.length));
   const hasFaces = items.some((item) => item.lambda.length > 1);
   const sizeBits = Uint8Array.from(items, (item) => addressBits(item.rows.length));
