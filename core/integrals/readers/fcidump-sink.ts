@@ -1,4 +1,4 @@
-import { InputError } from '../../job';
+import { InputError, type JobContext } from '../../job';
 import type { SpinFreeContents, SpinorContents } from '../raw';
 import type { EntryParser } from './fcidump-entry';
 
@@ -16,7 +16,7 @@ export interface FcidumpSink {
   /** A number that is the same for two entries exactly if they give the same integral. */
   slotOf(entry: EntryParser): number;
   clash(): Clash | null;
-  finish(): SpinFreeContents | SpinorContents;
+  finish(context: JobContext): Promise<SpinFreeContents | SpinorContents>;
 }
 
 /** The core energy, and what is wrong with it; shared by both kinds of file. */
@@ -63,10 +63,47 @@ export class CoreEnergy {
   }
 }
 
-/** Orbitals (1-based) that no entry names, as a note, or nothing. */
-export function unusedNote(used: Uint8Array, what: string): string[] {
-  const missing = [...used.keys()].filter((i) => i > 0 && used[i] === 0);
-  if (missing.length === 0) return [];
-  const shown = missing.length > 8 ? `${missing.slice(0, 8).join(', ')}, …` : missing.join(', ');
-  return [`No entry names ${what} ${shown}: is NORB too large?`];
+/** Counts, as entries arrive, what a careful reader should be told at the end. */
+export class Tally {
+  hMax = 0;
+  gMax = 0;
+  lastLine = 0;
+  private energies = 0;
+  private trailing = 0;
+  private readonly used: Uint8Array;
+
+  constructor(orbitals: number) {
+    this.used = new Uint8Array(orbitals + 1);
+  }
+
+  /** @param size - magnitude of the value. */
+  add({ kind, i, j, k, l, trailing }: EntryParser, size: number, line: number): void {
+    const { used } = this;
+    this.lastLine = line;
+    if (trailing) this.trailing++;
+    if (kind === 'two-electron') {
+      used[i] = used[j] = used[k] = used[l] = 1;
+      if (size > this.gMax) this.gMax = size;
+    } else if (kind === 'one-electron') {
+      used[i] = used[j] = 1;
+      if (size > this.hMax) this.hMax = size;
+    } else if (kind === 'orbital-energy') this.energies++;
+  }
+
+  /** @param what - `orbital` or `spinor`. */
+  notes(what: string): string[] {
+    const notes: string[] = [];
+    const unused = [...this.used.keys()].filter((i) => i > 0 && this.used[i] === 0);
+    if (unused.length > 0) {
+      const shown = unused.slice(0, 8).join(', ') + (unused.length > 8 ? ', …' : '');
+      notes.push(`No entry names ${what} ${shown}: is NORB too large?`);
+    }
+    if (this.hMax === 0) notes.push('The file has no one-electron entries.');
+    if (this.gMax === 0) notes.push('The file has no two-electron entries.');
+    if (this.energies > 0) notes.push(`${this.energies} orbital energies (i 0 0 0) were not needed.`);
+    if (this.trailing > 0) {
+      notes.push(`${this.trailing} lines have more than five fields; the rest was not read.`);
+    }
+    return notes;
+  }
 }

@@ -2,7 +2,7 @@ import { numSymmetricPairs, pairsTriangleLength, symmetricPair } from '../integr
 import type { SpinFreeContents } from '../raw';
 import type { EntryParser } from './fcidump-entry';
 import type { FcidumpHeader } from './fcidump-header';
-import { type Clash, CoreEnergy, type FcidumpSink, unusedNote } from './fcidump-sink';
+import { type Clash, CoreEnergy, type FcidumpSink, Tally } from './fcidump-sink';
 import { Disagreement, SlotSet } from './listed';
 
 /** Bytes of the arrays that {@link SpatialSink} builds: n⁴ for the two-electron part. */
@@ -16,13 +16,8 @@ export class SpatialSink implements FcidumpSink {
   private readonly gListed: SlotSet;
   private readonly hClash = new Disagreement();
   private readonly gClash = new Disagreement();
-  private hMax = 0;
-  private gMax = 0;
-  private readonly used: Uint8Array;
+  private readonly tally: Tally;
   private readonly core: CoreEnergy;
-  private energies = 0;
-  private trailing = 0;
-  private lastLine = 0;
 
   constructor(
     private readonly path: string,
@@ -33,18 +28,15 @@ export class SpatialSink implements FcidumpSink {
     this.g = new Float64Array(pairsTriangleLength(n));
     this.hListed = new SlotSet(this.h.length);
     this.gListed = new SlotSet(this.g.length);
-    this.used = new Uint8Array(n + 1);
+    this.tally = new Tally(n);
     this.core = new CoreEnergy(path);
   }
 
   add(entry: EntryParser, line: number): void {
     const { kind, re } = entry;
-    this.lastLine = line;
-    if (entry.trailing) this.trailing++;
+    this.tally.add(entry, Math.abs(re), line);
     if (kind === 'two-electron') {
       const slot = twoElectronSlot(entry);
-      this.used[entry.i] = this.used[entry.j] = this.used[entry.k] = this.used[entry.l] = 1;
-      this.gMax = Math.max(this.gMax, Math.abs(re));
       if (this.gListed.has(slot)) this.gClash.note(slot, Math.abs(this.g[slot] - re), line);
       else {
         this.gListed.add(slot);
@@ -52,15 +44,12 @@ export class SpatialSink implements FcidumpSink {
       }
     } else if (kind === 'one-electron') {
       const slot = symmetricPair(entry.i - 1, entry.j - 1);
-      this.used[entry.i] = this.used[entry.j] = 1;
-      this.hMax = Math.max(this.hMax, Math.abs(re));
       if (this.hListed.has(slot)) this.hClash.note(slot, Math.abs(this.h[slot] - re), line);
       else {
         this.hListed.add(slot);
         this.h[slot] = re;
       }
     } else if (kind === 'constant') this.core.add(re, entry.im, line);
-    else this.energies++;
   }
 
   slotOf(entry: EntryParser): number {
@@ -69,24 +58,18 @@ export class SpatialSink implements FcidumpSink {
   }
 
   clash(): Clash | null {
-    const h = this.hClash.beyond(this.hMax);
-    return h ? { ...h, slot: -1 - h.slot } : this.gClash.beyond(this.gMax);
+    const h = this.hClash.beyond(this.tally.hMax);
+    return h ? { ...h, slot: -1 - h.slot } : this.gClash.beyond(this.tally.gMax);
   }
 
-  finish(): SpinFreeContents {
-    const { header, h, used } = this;
-    this.core.require(this.lastLine);
+  async finish(): Promise<SpinFreeContents> {
+    const { header, h } = this;
+    this.core.require(this.tally.lastLine);
     const n = header.orbitals;
     const full = new Float64Array(n * n);
     for (let p = 0, slot = 0; p < n; p++) {
       for (let q = 0; q <= p; q++, slot++) full[p * n + q] = full[q * n + p] = h[slot];
     }
-    const notes = [...header.notes, ...unusedNote(used, 'orbital')];
-    if (this.hMax === 0) notes.push('The file has no one-electron entries.');
-    if (this.gMax === 0) notes.push('The file has no two-electron entries.');
-    if (this.energies > 0) notes.push(`${this.energies} orbital energies (i 0 0 0) were not needed.`);
-    if (this.trailing > 0)
-      notes.push(`${this.trailing} lines have more than five fields; the rest was not read.`);
     return {
       kind: 'spin-free',
       origin: this.path,
@@ -96,7 +79,7 @@ export class SpatialSink implements FcidumpSink {
       constant: this.core.value,
       oneElectron: full,
       twoElectron: this.g,
-      notes,
+      notes: [...header.notes, ...this.tally.notes('orbital')],
     };
   }
 }

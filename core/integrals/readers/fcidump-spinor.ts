@@ -1,8 +1,8 @@
-import { InputError } from '../../job';
+import { InputError, type JobContext } from '../../job';
 import type { SpinorContents } from '../raw';
 import type { EntryParser } from './fcidump-entry';
 import type { FcidumpHeader } from './fcidump-header';
-import { type Clash, CoreEnergy, type FcidumpSink, unusedNote } from './fcidump-sink';
+import { type Clash, CoreEnergy, type FcidumpSink, Tally } from './fcidump-sink';
 import { Disagreement, SlotSet } from './listed';
 
 /** Bytes of the arrays that {@link SpinorSink} builds: two planes of M⁴. */
@@ -20,13 +20,8 @@ export class SpinorSink implements FcidumpSink {
   private readonly gListed: SlotSet;
   private readonly hClash = new Disagreement();
   private readonly gClash = new Disagreement();
-  private hMax = 0;
-  private gMax = 0;
-  private readonly used: Uint8Array;
+  private readonly tally: Tally;
   private readonly core: CoreEnergy;
-  private energies = 0;
-  private trailing = 0;
-  private lastLine = 0;
 
   constructor(
     private readonly path: string,
@@ -46,30 +41,26 @@ export class SpinorSink implements FcidumpSink {
     this.g = { re: new Float64Array(m ** 4), im: new Float64Array(m ** 4) };
     this.hListed = new SlotSet(m * m);
     this.gListed = new SlotSet(m ** 4);
-    this.used = new Uint8Array(m + 1);
+    this.tally = new Tally(m);
     this.core = new CoreEnergy(path);
   }
 
   add(entry: EntryParser, line: number): void {
     const { kind, re, im } = entry;
-    this.lastLine = line;
-    if (entry.trailing) this.trailing++;
+    this.tally.add(entry, Math.hypot(re, im), line);
     if (kind === 'two-electron') {
       const slot = this.twoElectronSlot(entry);
       const { re: gr, im: gi } = this.g;
-      this.used[entry.i] = this.used[entry.j] = this.used[entry.k] = this.used[entry.l] = 1;
-      this.gMax = Math.max(this.gMax, Math.hypot(re, im));
       if (this.gListed.has(slot)) this.gClash.note(slot, Math.hypot(gr[slot] - re, gi[slot] - im), line);
       else {
         this.gListed.add(slot);
-        gr[slot] = re;
-        gi[slot] = im;
+        const mirror = this.mirror(slot);
+        gr[slot] = gr[mirror] = re;
+        gi[slot] = gi[mirror] = im;
       }
     } else if (kind === 'one-electron') {
       const slot = (entry.i - 1) * this.header.orbitals + entry.j - 1;
       const { re: hr, im: hi } = this.h;
-      this.used[entry.i] = this.used[entry.j] = 1;
-      this.hMax = Math.max(this.hMax, Math.hypot(re, im));
       if (this.hListed.has(slot)) this.hClash.note(slot, Math.hypot(hr[slot] - re, hi[slot] - im), line);
       else {
         this.hListed.add(slot);
@@ -77,7 +68,6 @@ export class SpinorSink implements FcidumpSink {
         hi[slot] = im;
       }
     } else if (kind === 'constant') this.core.add(re, im, line);
-    else this.energies++;
   }
 
   slotOf(entry: EntryParser): number {
@@ -88,21 +78,15 @@ export class SpinorSink implements FcidumpSink {
   }
 
   clash(): Clash | null {
-    const h = this.hClash.beyond(this.hMax);
-    return h ? { ...h, slot: -1 - h.slot } : this.gClash.beyond(this.gMax);
+    const h = this.hClash.beyond(this.tally.hMax);
+    return h ? { ...h, slot: -1 - h.slot } : this.gClash.beyond(this.tally.gMax);
   }
 
-  finish(): SpinorContents {
+  async finish(context: JobContext): Promise<SpinorContents> {
     const { header, h, g } = this;
-    this.core.require(this.lastLine);
+    this.core.require(this.tally.lastLine);
     this.fillOneElectron();
-    this.fillTwoElectron();
-    const notes = [...header.notes, ...unusedNote(this.used, 'spinor')];
-    if (this.hMax === 0) notes.push('The file has no one-electron entries.');
-    if (this.gMax === 0) notes.push('The file has no two-electron entries.');
-    if (this.energies > 0) notes.push(`${this.energies} orbital energies (i 0 0 0) were not needed.`);
-    if (this.trailing > 0)
-      notes.push(`${this.trailing} lines have more than five fields; the rest was not read.`);
+    await this.fillTwoElectron(context);
     return {
       kind: 'spinor',
       origin: this.path,
@@ -111,7 +95,7 @@ export class SpinorSink implements FcidumpSink {
       constant: this.core.value,
       h,
       g,
-      notes,
+      notes: [...header.notes, ...this.tally.notes('spinor')],
     };
   }
 
@@ -135,28 +119,29 @@ export class SpinorSink implements FcidumpSink {
     }
   }
 
-  private fillTwoElectron(): void {
+  /** The slot of (kl|ij), given that of (ij|kl). */
+  private mirror(slot: number): number {
+    const pairs = this.header.orbitals ** 2;
+    const bra = Math.floor(slot / pairs);
+    return (slot - bra * pairs) * pairs + bra;
+  }
+
+  private async fillTwoElectron(context: JobContext): Promise<void> {
     const m = this.header.orbitals;
     const pairs = m * m;
     const { re, im } = this.g;
-    // First the conjugate partners of what is listed, among the slots bra ≤ ket; then the other half.
-    for (let bra = 0; bra < pairs; bra++) {
-      const braT = (bra % m) * m + Math.floor(bra / m);
-      for (let ket = bra; ket < pairs; ket++) {
-        const slot = bra * pairs + ket;
-        if (this.gListed.has(slot)) continue;
-        const ketT = (ket % m) * m + Math.floor(ket / m);
-        const partner = braT <= ketT ? braT * pairs + ketT : ketT * pairs + braT;
-        if (!this.gListed.has(partner)) continue;
-        re[slot] = re[partner];
-        im[slot] = -im[partner];
-      }
-    }
-    for (let bra = 1; bra < pairs; bra++) {
-      for (let ket = 0; ket < bra; ket++) {
-        re[bra * pairs + ket] = re[ket * pairs + bra];
-        im[bra * pairs + ket] = im[ket * pairs + bra];
-      }
+    const transposed = Int32Array.from({ length: pairs }, (_, pair) => (pair % m) * m + Math.floor(pair / m));
+    let seen = 0;
+    for (const slot of this.gListed.members()) {
+      if (++seen % 65536 === 0) await context.checkpoint();
+      const bra = Math.floor(slot / pairs);
+      const braT = transposed[bra];
+      const ketT = transposed[slot - bra * pairs];
+      const partner = braT <= ketT ? braT * pairs + ketT : ketT * pairs + braT;
+      if (this.gListed.has(partner)) continue;
+      const mirror = this.mirror(partner);
+      re[partner] = re[mirror] = re[slot];
+      im[partner] = im[mirror] = -im[slot];
     }
   }
 }

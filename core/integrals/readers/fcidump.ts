@@ -46,7 +46,7 @@ export async function readFcidump(
   if (sink === undefined) throw noEntries(source.path, lastLine);
   const clash = sink.clash();
   if (clash) throw await describe(clash, source, header, sink, context);
-  return sink.finish();
+  return sink.finish(context);
 }
 
 function openSink(source: ByteSource, header: FcidumpHeader, complex: boolean): FcidumpSink {

@@ -13,6 +13,14 @@ export class SlotSet {
   add(slot: number): void {
     this.words[Math.floor(slot / 32)] |= 1 << (slot & 31);
   }
+
+  /** Ascending. */
+  *members(): Generator<number> {
+    const { words } = this;
+    for (let w = 0; w < words.length; w++) {
+      for (let rest = words[w]; rest !== 0; rest &= rest - 1) yield w * 32 + 31 - Math.clz32(rest & -rest);
+    }
+  }
 }
 
 /** Two entries for one integral are the same if they differ by no more than this, relative to the largest. */

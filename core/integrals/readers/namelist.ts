@@ -2,6 +2,8 @@ import { InputError } from '../../job';
 import { latin1 } from './text-lines';
 
 const MAX_HEADER_BYTES = 2 ** 20;
+/** Blank and comment lines that may come before the header. */
+const MAX_LEADING_LINES = 1000;
 /** A line of integrals where the header should go on: a number with a decimal point comes first. */
 const DATA_LINE = /^\s*\(?\s*[-+]?\d*\.\d/;
 
@@ -25,15 +27,11 @@ export class NamelistCollector {
   add(bytes: Uint8Array, start: number, end: number, line: number): boolean {
     let text = latin1(bytes.subarray(start, end));
     if (!this.opened) {
-      if (text.trim() === '' || text.trimStart().startsWith('!')) return false;
+      if (line <= MAX_LEADING_LINES && (text.trim() === '' || text.trimStart().startsWith('!'))) return false;
       const opening = new RegExp(`^\\s*[&$]\\s*${this.group}\\b`, 'i').exec(text);
       if (opening === null) {
-        throw this.problem(
-          'bad-header',
-          line,
-          `"${excerpt(text)}"`,
-          `a header that opens with &${this.group}`,
-        );
+        const found = text.trim() === '' ? 'blank lines only' : `"${excerpt(text)}"`;
+        throw this.problem('bad-header', line, found, `a header that opens with &${this.group}`);
       }
       this.opened = true;
       this.firstLine = line;

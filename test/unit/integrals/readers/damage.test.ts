@@ -33,18 +33,18 @@ const READERS: [string, () => Promise<Uint8Array>, (source: ByteSource) => Promi
   ['list', () => textBytes('1 1 0.5\n2 1 0.25\n'), (source) => readIndexList(source, LIST, context), 200],
   ['npy', () => fixtureBytes('c16_fortran.npy'), (source) => readNpy(source, context), 400],
   ['npz', () => fixtureBytes('stored.npz'), (source) => readNpz(source, 'small', context), 400],
-  ['deflated npz', () => fixtureBytes('deflated.npz'), (source) => readNpz(source, 'long', context), 100],
+  ['deflated npz', () => fixtureBytes('deflated.npz'), (source) => readNpz(source, 'long', context), 40],
   [
     'HDF5',
     () => fixtureBytes('arrays.h5'),
     (source) => readHdf5Dataset(source, '/chunked', nodeReadPlatform, context),
-    100,
+    40,
   ],
   [
     'TREXIO',
     () => fixtureBytes('trexio_int64.h5'),
     (source) => readTrexio(source, nodeReadPlatform, context),
-    100,
+    40,
   ],
 ];
 
