@@ -1,5 +1,4 @@
 import { builtinModules } from 'node:module';
-import { existsSync } from 'node:fs';
 import { defineConfig } from 'vite';
 
 // Everything that runs under Node: the command line with its worker, the loopback shell and the desktop's
@@ -12,14 +11,12 @@ export default defineConfig({
     target: 'node20',
     minify: false,
     rolldownOptions: {
-      input: Object.fromEntries(
-        Object.entries({
-          cli: 'app/cli/main.ts',
-          worker: 'app/cli/worker.ts',
-          shell: 'app/web/main.ts',
-          desktop: 'app/desktop/main.ts',
-        }).filter(([, path]) => existsSync(path)),
-      ),
+      input: {
+        cli: 'app/cli/main.ts',
+        worker: 'app/cli/worker.ts',
+        shell: 'app/web/main.ts',
+        desktop: 'app/desktop/main.ts',
+      },
       output: { format: 'es', entryFileNames: '[name].js', chunkFileNames: 'chunks/[name]-[hash].js' },
       external: ['electron', /^h5wasm/, ...builtinModules, ...builtinModules.map((m) => `node:${m}`)],
     },

@@ -22,7 +22,8 @@ export function run(command, args, { quiet = false, cwd = ROOT, env = {} } = {})
   return new Promise((resolve, reject) => {
     const child = spawn(command, args, {
       cwd,
-      env: { ...process.env, ...env },
+      // Collected output is shown as plain text, wherever it ends up.
+      env: { ...process.env, ...(quiet ? { NO_COLOR: '1', FORCE_COLOR: '0' } : {}), ...env },
       stdio: quiet ? ['ignore', 'pipe', 'pipe'] : 'inherit',
     });
     const chunks = [];

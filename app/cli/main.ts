@@ -26,16 +26,16 @@ process.exitCode = await main(process.argv.slice(2));
 async function main(args: readonly string[]): Promise<number> {
   let call: Call | null = null;
   let line: ProgressLine | null = null;
+  process.once('SIGINT', () => {
+    line?.clear();
+    removePending();
+    process.exit(INTERRUPTED);
+  });
   try {
     call = parseCall(args, DEMO_FOLDER, (text) => process.stdout.write(text));
     const { request, manner } = call;
     const progress = new ProgressLine(process.stderr, manner.quiet);
     line = progress;
-    process.once('SIGINT', () => {
-      progress.clear();
-      removePending();
-      process.exit(INTERRUPTED);
-    });
     const { seed, workers } = manner;
     const result = await runInThread({ request, seed, workers }, (state) => progress.show(state));
     progress.clear();

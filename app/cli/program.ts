@@ -1,12 +1,13 @@
 import { Command, CommanderError, Option } from 'commander';
 import { expandVariants } from '../../core/encode';
-import { MEANINGS, type Meaning } from '../../core/plan';
+import { MEANINGS, type Meaning, type OrbitalChoice } from '../../core/plan';
 import { version } from '../../package.json';
 import type { CompareRequest, Manner, Request } from './request';
 import {
   parseBits,
   parseCount,
   parseOccupations,
+  parseOrbitals,
   parseOverlaps,
   parseTarget,
   parseTerms,
@@ -149,7 +150,9 @@ function selecting(command: Command): Command {
   return command
     .option('--terms <list>', 'terms to keep: all, or of sf,so1,somf,so2,so2mf,ss,scalar,ssc', 'all')
     .option('--electrons <n>', 'electrons in the orbitals')
-    .option('--occupations <list>', 'reference occupations, 0 to 2 an orbital, for computed mean fields');
+    .option('--occupations <list>', 'reference occupations, 0 to 2 an orbital, for mean fields')
+    .option('--window <orbitals>', 'keep these orbitals, such as 3-6,9; the others become a mean field')
+    .option('--window-electrons <n>', 'electrons in the window; else what the occupations leave there');
 }
 
 function comparing(command: Command): Command {
@@ -197,7 +200,26 @@ function selection(flags: Flags) {
     terms: parseTerms(String(flags.terms)),
     electrons: electronsOf(flags),
     occupations: occupations === null ? null : parseOccupations(occupations),
+    window: windowOf(flags),
   };
+}
+
+function windowOf(flags: Flags): OrbitalChoice | null {
+  const orbitals = text(flags.window);
+  const electrons = text(flags.windowElectrons);
+  if (orbitals !== null) {
+    return {
+      orbitals: parseOrbitals(orbitals),
+      electrons: electrons === null ? null : parseCount('--window-electrons', electrons, 0, 800),
+    };
+  }
+  if (electrons === null) return null;
+  throw usageError(
+    '--window-electrons',
+    'no window',
+    'the orbitals too',
+    'Add --window, such as --window 3-6.',
+  );
 }
 
 function inputFiles(files: readonly string[], flags: Flags) {

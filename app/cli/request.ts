@@ -1,7 +1,5 @@
-import type { VariantName } from '../../core/encode';
 import type { WhatIfOptions } from '../../core/estimate';
-import type { SelectableTerm } from '../../core/integrals';
-import type { ComparisonRequest } from '../../core/plan';
+import type { ComparisonRequest, VerificationRequest } from '../../core/plan';
 
 /** Which files a command reads. */
 export interface InputFiles {
@@ -22,14 +20,8 @@ export interface CompareRequest extends InputFiles {
   readonly comparison: ComparisonRequest;
 }
 
-export interface VerifyRequest extends InputFiles {
+export interface VerifyRequest extends InputFiles, VerificationRequest {
   readonly command: 'verify';
-  readonly terms: readonly SelectableTerm[] | 'all';
-  readonly electrons: number | null;
-  readonly occupations: readonly number[] | null;
-  readonly variants: readonly VariantName[] | null;
-  readonly threshold: number;
-  readonly states: number;
 }
 
 export interface CopyDemoRequest {

@@ -100,3 +100,23 @@ export function parseOccupations(text: string): number[] {
       ),
     );
 }
+
+/** Orbitals counted from 1, as a list of numbers and ranges; returned ascending, each once. */
+export function parseOrbitals(text: string): number[] {
+  const found = new Set<number>();
+  for (const word of text.split(',')) {
+    const match = /^\s*([1-9]\d{0,2})(?:-([1-9]\d{0,2}))?\s*$/.exec(word);
+    const first = Number(match?.[1]);
+    const last = Number(match?.[2] ?? match?.[1]);
+    if (!match || last < first) {
+      throw usageError(
+        '--window',
+        `"${word}"`,
+        'orbitals counted from 1, single or as ranges',
+        'Write e.g. --window 3-6,9.',
+      );
+    }
+    for (let orbital = first; orbital <= last; orbital++) found.add(orbital);
+  }
+  return [...found].sort((a, b) => a - b);
+}

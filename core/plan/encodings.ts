@@ -16,7 +16,7 @@ export class Encodings {
 
   /**
    * @param threshold - sum of LCU norms that truncation may drop, hartree
-   * @param occupations - reference of the mean field that stands for dropped factors; null: the default
+   * @param occupations - reference of the mean field that stands for dropped factors; null: none
    */
   constructor(hamiltonian: SpinHamiltonian, threshold: number, occupations: readonly number[] | null) {
     this.#hamiltonian = hamiltonian;

@@ -10,7 +10,8 @@ export {
   type Meaning,
   type VariantOutcome,
 } from './request';
-export { type ComparisonEvents, defaultVariants, hamiltonianOf, runComparison } from './run';
+export { type ComparisonEvents, defaultVariants, runComparison } from './run';
+export { hamiltonianOf, type OrbitalChoice, type SystemRequest } from './system';
 export { findTask, TASK_NAMES } from './tasks';
 export { termSummaries } from './term-summaries';
 export { runVerification, type VerificationRequest } from './verification';

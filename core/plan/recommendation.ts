@@ -62,7 +62,7 @@ function largestPart({ step }: VariantEstimate): string {
   const [part, toffoli] = (Object.entries(step.parts) as [StepPart, number][]).reduce((a, b) =>
     b[1] > a[1] ? b : a,
   );
-  return `${PART_WORDS[part]} is the largest part of its step: ${formatShare(toffoli / step.toffoli)}`;
+  return `largest part of its step: ${PART_WORDS[part]}, ${formatShare(toffoli / step.toffoli)}`;
 }
 
 function isPair(a: VariantEstimate, b: VariantEstimate): boolean {

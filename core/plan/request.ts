@@ -1,21 +1,15 @@
 import type { VariantName } from '../encode/variant';
-import type { SelectableTerm } from '../integrals/terms';
 import type { Problem } from '../job';
 import type { EnergyUnit } from '../units';
 import type { Comparison, VariantEstimate } from './comparison';
+import type { SystemRequest } from './system';
 
 /** What the wanted accuracy is of. */
 export const MEANINGS = ['level', 'splitting', 'matrix-element'] as const;
 export type Meaning = (typeof MEANINGS)[number];
 
 /** Everything that decides a comparison beside the integrals. Plain data: crosses worker borders. */
-export interface ComparisonRequest {
-  /** Terms of H to keep, or every term the files hold. */
-  readonly terms: readonly SelectableTerm[] | 'all';
-  /** Electrons in the orbitals; null: as the files say. */
-  readonly electrons: number | null;
-  /** Reference occupations for computed mean fields, 0…2 each; null: as the files say. */
-  readonly occupations: readonly number[] | null;
+export interface ComparisonRequest extends SystemRequest {
   readonly target: {
     readonly value: number;
     readonly unit: EnergyUnit;

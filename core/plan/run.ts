@@ -1,4 +1,11 @@
-import { DEFAULT_VARIANTS, type Encoding, formatVariant, parseVariant, type VariantName } from '../encode';
+import {
+  DEFAULT_VARIANTS,
+  type Encoding,
+  type EncodingShape,
+  formatVariant,
+  parseVariant,
+  type VariantName,
+} from '../encode';
 import {
   confidenceFactor,
   errorBudget,
@@ -7,7 +14,7 @@ import {
   type TargetRequest,
   targetRequest,
 } from '../estimate';
-import { buildHamiltonian, heldTerms, type SpinHamiltonian } from '../hamiltonian';
+import { heldTerms } from '../hamiltonian';
 import type { IntegralSet, SelectableTerm } from '../integrals';
 import { Cancelled, InputError, type JobContext, type Problem } from '../job';
 import { toHartree } from '../units';
@@ -16,11 +23,14 @@ import { Encodings } from './encodings';
 import { Floors } from './floors';
 import { recommend } from './recommendation';
 import type { ComparisonRequest, ComparisonRun, VariantOutcome } from './request';
+import { hamiltonianOf, occupationsOf } from './system';
 import { termSummaries } from './term-summaries';
 
 /** What a run tells while it goes on. */
 export interface ComparisonEvents {
   readonly onStart?: (name: string) => void;
+  /** The sizes of the variant's encoding: with λ all that its costs depend on, so that they can be counted anew. */
+  readonly onEncoded?: (name: string, shape: EncodingShape) => void;
   readonly onOutcome?: (outcome: VariantOutcome) => void;
 }
 
@@ -59,7 +69,7 @@ export async function runComparison(
     request.threshold === 'auto'
       ? errorBudget(target, confidenceFactor(target.accuracy)).truncation
       : request.threshold;
-  const encodings = new Encodings(hamiltonian, threshold, request.occupations);
+  const encodings = new Encodings(hamiltonian, threshold, occupationsOf(set, request));
   const floors = new Floors(hamiltonian, MAX_DETERMINANTS);
 
   const variants = request.variants ?? defaultVariants(set);
@@ -74,6 +84,7 @@ export async function runComparison(
       ? { status: 'left-out', name, reason }
       : await attempt(name, async () => {
           const encoding = await encodings.of(variant, named);
+          events.onEncoded?.(name, encoding.shape);
           return estimateOf(encoding, variant, terms, request, target, floors, named);
         });
     outcomes.push(outcome);
@@ -88,7 +99,7 @@ export async function runComparison(
         orbitals: hamiltonian.kind === 'spatial' ? hamiltonian.orbitals : hamiltonian.spinors / 2,
         electrons: hamiltonian.electrons,
         constant: hamiltonian.constant,
-        terms: await termSummaries(set, terms, labelled(context, 'terms')),
+        terms: await termSummaries(set, terms, labelled(context, 'terms'), request),
       },
       target: { value: request.target.value, unit: request.target.unit, hartree },
       variants: estimates,
@@ -96,18 +107,6 @@ export async function runComparison(
     },
     outcomes,
   };
-}
-
-/** The Hamiltonian of a request's terms, electrons and occupations. */
-export function hamiltonianOf(
-  set: IntegralSet,
-  { terms, electrons, occupations }: Pick<ComparisonRequest, 'terms' | 'electrons' | 'occupations'>,
-): SpinHamiltonian {
-  return buildHamiltonian(set, {
-    terms,
-    ...(electrons === null ? {} : { electrons }),
-    ...(occupations === null ? {} : { occupations }),
-  });
 }
 
 function targetOf({ target: { meaning }, overlaps }: ComparisonRequest, hartree: number): TargetRequest {

@@ -1,10 +1,13 @@
 import { buildEncoding, parseVariant } from '../encode';
-import { buildHamiltonian, type SpinHamiltonian } from '../hamiltonian';
+import type { SpinHamiltonian } from '../hamiltonian';
 import type { IntegralSet, SelectableTerm } from '../integrals';
 import type { JobContext } from '../job';
 import type { TermSummary } from './comparison';
+import { hamiltonianOf, type SystemRequest } from './system';
 
 const TERM_BY_TERM = parseVariant('sparse/-/index/none/clean');
+
+const WHOLE = { electrons: null, occupations: null };
 
 /**
  * What each term weighs alone: its one-norm as a linear combination of unitaries term by term, and its largest
@@ -14,10 +17,11 @@ export async function termSummaries(
   set: IntegralSet,
   terms: readonly SelectableTerm[],
   context: JobContext,
+  system: Omit<SystemRequest, 'terms'> = WHOLE,
 ): Promise<TermSummary[]> {
   const summaries: TermSummary[] = [];
   for (const name of terms) {
-    const alone = buildHamiltonian(set, { terms: [name] });
+    const alone = hamiltonianOf(set, { ...system, terms: [name] });
     summaries.push({ name, oneNorm: await oneNorm(alone, context), maxAbs: largest(alone) });
     await context.checkpoint();
   }

@@ -2,15 +2,13 @@ import { type Encoding, formatVariant, type VariantName } from '../encode';
 import { heldTerms } from '../hamiltonian';
 import type { IntegralSet, SelectableTerm } from '../integrals';
 import type { JobContext } from '../job';
-import { exactSpectrum, referenceEigenvalues } from '../verify';
+import { exactSpectrum, referenceEigenvalues, type Spectrum } from '../verify';
 import { Encodings } from './encodings';
 import { type Check, check, type Evidence } from './evidence';
-import { defaultVariants, hamiltonianOf } from './run';
+import { defaultVariants } from './run';
+import { hamiltonianOf, occupationsOf, type SystemRequest } from './system';
 
-export interface VerificationRequest {
-  readonly terms: readonly SelectableTerm[] | 'all';
-  readonly electrons: number | null;
-  readonly occupations: readonly number[] | null;
+export interface VerificationRequest extends SystemRequest {
   /** null: the default set of `compare`. */
   readonly variants: readonly VariantName[] | null;
   /** Sum of LCU norms that truncation may drop, hartree. */
@@ -28,7 +26,7 @@ const DEGENERACY = 1e-9;
 
 /**
  * Exact levels of H beside those of the Hamiltonian that each encoding stands for, rebuilt from its factors alone,
- * and the checks that follow. A variant that is refused for its size has no entry.
+ * and the checks that follow.
  *
  * @param reference - parsed `reference.json` of the data set, if it has one: levels computed elsewhere
  * @throws InputError `sector-too-large` where exact diagonalisation is out of reach
@@ -52,16 +50,15 @@ export async function runVerification(
       ARITHMETIC + exact.errorBound + stored.errorBound,
       'two assemblies of H, one without the reordering of operators',
     ),
-    ...againstReference(reference, terms, request.electrons, exact.values, exact.errorBound),
+    ...againstReference(reference, terms, request, exact),
     ...kramers(exact.values, hamiltonian.electrons, exact.dim),
   ];
 
-  const encodings = new Encodings(hamiltonian, request.threshold, request.occupations);
+  const encodings = new Encodings(hamiltonian, request.threshold, occupationsOf(set, request));
   const spectra: Record<string, number[]> = {};
   const known = new Map<Encoding, Float64Array>();
   for (const variant of request.variants ?? defaultVariants(set)) {
     const name = formatVariant(variant);
-    if (encodings.refusal(variant)) continue;
     const encoding = await encodings.of(variant, context);
     let levels = known.get(encoding);
     if (!levels) {
@@ -105,11 +102,10 @@ function encodedCheck(name: string, encoding: Encoding, difference: number, erro
 function againstReference(
   document: unknown,
   terms: readonly SelectableTerm[],
-  electrons: number | null,
-  levels: Float64Array,
-  errorBound: number,
+  { electrons, window }: SystemRequest,
+  { values: levels, errorBound }: Spectrum,
 ): Check[] {
-  const listed = electrons === null ? referenceEigenvalues(document, terms) : null;
+  const listed = electrons === null && !window ? referenceEigenvalues(document, terms) : null;
   if (!listed) return [];
   return [
     check(

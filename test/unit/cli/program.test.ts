@@ -26,6 +26,7 @@ describe('the command line', () => {
           terms: 'all',
           electrons: null,
           occupations: null,
+          window: null,
           target: { value: 5, unit: 'cm-1', meaning: 'level' },
           variants: null,
           threshold: 0,
@@ -42,7 +43,7 @@ describe('the command line', () => {
     const { request, manner } = parse(
       'compare a b --target 0.5meV --meaning splitting --overlap 0.8,0.7 --terms so2,sf --threshold auto ' +
         '--bits 12 --qubits-max 2000 --electrons 8 --occupations 2,2,1.5 --recipe r.json --json --quiet --seed 7 --workers 2 ' +
-        '--variants sparse/-/index/none/*',
+        '--variants sparse/-/index/none/* --window 6,3-4 --window-electrons 2',
     );
     expect(request).toMatchObject({
       files: ['a', 'b'],
@@ -51,6 +52,7 @@ describe('the command line', () => {
         terms: ['sf', 'so2'],
         electrons: 8,
         occupations: [2, 2, 1.5],
+        window: { orbitals: [3, 4, 6], electrons: 2 },
         target: { value: 0.5, unit: 'meV', meaning: 'splitting' },
         threshold: 'auto',
         bits: 12,
@@ -110,6 +112,9 @@ describe('the command line', () => {
     ['compare data --target 5cm-1 --workers 0', '"0"'],
     ['compare data --target 5cm-1 --variants triplet/joint/index', '3 parts'],
     ['compare data --target 5cm-1 --occupations 2,3', '"3"'],
+    ['compare data --target 5cm-1 --window 0-3', '"0-3"'],
+    ['compare data --target 5cm-1 --window 6-3', '"6-3"'],
+    ['verify data --window-electrons 3', 'no window'],
     ['verify data --threshold auto', '"auto"'],
     ['verify data --states 0', '"0"'],
     ['whatif --method magic --spin-orbitals 4 --lambda 1 --target 1mEh', 'magic'],

@@ -151,3 +151,29 @@ describe('a verification', () => {
     ]);
   });
 });
+
+describe('an orbital window', () => {
+  it('gives the same ground state as all orbitals where the frozen ones are inert', async () => {
+    // H₂ and, far away, a closed shell that couples to nothing: the window must return H₂ with a shifted constant.
+    const inputs = await openInputs(
+      { files: ['test/fixtures/cli/h2-and-core'], recipe: null },
+      inlineContext(),
+    );
+    const three = await loadInputs(inputs, 'all', 'throw', inlineContext());
+    const asked = {
+      terms: 'all',
+      electrons: null,
+      occupations: [2, 2, 0],
+      variants: expandVariants('triplet/joint/index/median/clean'),
+      threshold: 0,
+      states: 2,
+    } as const;
+    const whole = await runVerification(three, asked, inlineContext());
+    const window = { orbitals: [2, 3], electrons: null };
+    const part = await runVerification(three, { ...asked, window }, inlineContext());
+    expect(part.electrons).toBe(2);
+    expect(part.spectrum.exact[0]).toBeCloseTo(whole.spectrum.exact[0]!, 9);
+    // 2·(−10) + 5 of the closed shell, and the H₂ energy of the other fixture.
+    expect(part.spectrum.exact[0]).toBeCloseTo(-15 - 1.1373, 3);
+  });
+});
