@@ -3,7 +3,7 @@ import type { SpatialHamiltonian } from '../hamiltonian';
 import { toSpinOrbitals } from '../hamiltonian';
 import type { JobContext } from '../job';
 import { hermitianEigenvalues } from '../linalg';
-import type { Encoding, EncodingShape, LambdaByPart } from './encoding';
+import type { Encoding, EncodingShape, ItemSizes, LambdaByPart } from './encoding';
 import { type BlockItems, itemsOf } from './items';
 import { KAPPA_ROUNDING, type OneBody, oneBodyPart, oneBodyTriplet } from './one-body';
 import { rebuildSpatial } from './rebuild';
@@ -158,6 +158,7 @@ export async function encodeSpatial(
     oneBodyPairRows: one.pairRows,
     maxRowsPerFactor: Math.max(two.maxRows, one.rows),
     spinDependent: two.spin || oneBody.spinNorms.some((a) => a > 0),
+    ...(triplet ? { items: itemSizes(h.orbitals, blocks, one) } : {}),
   };
   const constant = oneBody.constant + trace + two.identity;
   return {
@@ -168,6 +169,26 @@ export async function encodeSpatial(
     residual: factorisation.residual,
     rebuild: () => rebuildSpatial(h, factorisation, blocks, oneBody),
     ...(triplet ? { program: () => tripletProgram(constant, blocks, oneBody) } : {}),
+  };
+}
+
+/** Sizes of the items in the order of the program: blocks as they come, the one-body item last. */
+function itemSizes(
+  orbitals: number,
+  blocks: readonly BlockItems[],
+  one: { readonly rows: number; readonly pairRows: number },
+): ItemSizes {
+  const items = blocks.flatMap((entry) => {
+    const faced = entry.kind === 'triples' && entry.block.sameScale !== 0 && entry.block.otherScale !== 0;
+    return entry.items.map(({ rows, pairRows }) => ({ rows, pairRows, faced }));
+  });
+  const all = [...items, { rows: one.rows, pairRows: one.pairRows, faced: false }];
+  return {
+    orbitals,
+    rows: Uint32Array.from(all, (item) => item.rows),
+    pairRows: Uint32Array.from(all, (item) => item.pairRows),
+    twoFaced: Uint8Array.from(all, (item) => (item.faced ? 1 : 0)),
+    hasPaired: blocks.some((entry) => entry.kind === 'triples' && entry.items.length > 0),
   };
 }
 

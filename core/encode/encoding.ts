@@ -33,6 +33,21 @@ export interface EncodingShape {
   readonly maxRowsPerFactor: number;
   /** True where any row or coefficient carries spin (μ ≠ 0) or an antisymmetric plane. */
   readonly spinDependent: boolean;
+  /** Triplet form only: the sizes item by item. */
+  readonly items?: ItemSizes;
+}
+
+/** Sizes of the items of a triplet encoding, the one-body item last: what its tables and their costs depend on. */
+export interface ItemSizes {
+  readonly orbitals: number;
+  /** Rows of each item. */
+  readonly rows: Uint32Array;
+  /** Of these, A rows. */
+  readonly pairRows: Uint32Array;
+  /** 1 where the item has two faces. */
+  readonly twoFaced: Uint8Array;
+  /** Whether any item is a pair of squares. */
+  readonly hasPaired: boolean;
 }
 
 /** One variant's encoding, ready for counting and for rebuilding H. */

@@ -1,5 +1,5 @@
 export { buildEncoding, type EncodingOptions } from './build';
-export type { Encoding, EncodingShape, LambdaByPart } from './encoding';
+export type { Encoding, EncodingShape, ItemSizes, LambdaByPart } from './encoding';
 export type { RowFace, TripletItem, TripletProgram, TripletRow } from './program';
 export { encodeTasks } from './tasks';
 export {

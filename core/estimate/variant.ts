@@ -1,4 +1,12 @@
-import { bitsFor, type LookupPolicy, type Subroutine, sparseStep, spinorStep, tripletStep } from '../circuit';
+import {
+  bitsFor,
+  type LookupPolicy,
+  type Subroutine,
+  sparseStep,
+  spinorStep,
+  tripletStep,
+  tripletStepByFormula,
+} from '../circuit';
 import type { EncodingShape, LambdaByPart, VariantName } from '../encode';
 import { InputError } from '../job';
 import { type BitChoices, chooseBits } from './bits';
@@ -157,7 +165,10 @@ function recipeOf(
   const widths = { keepBits: bits.keep, rotationBits: bits.rotation, phaseBits };
   switch (shape.kind) {
     case 'triplet':
-      return tripletStep(shape, spin, widths, policy);
+      // Borrowed (dirty) look-ups are not emitted yet: closed formulas stand in for them.
+      return shape.items && policy.mode !== 'dirty'
+        ? tripletStep(shape.items, spin, widths, policy).recipe
+        : tripletStepByFormula(shape, spin, widths, policy);
     case 'spinor':
       return spinorStep(shape, widths, policy);
     case 'sparse':

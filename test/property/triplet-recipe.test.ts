@@ -91,7 +91,7 @@ it('the recipe counts the emitted walk step, part by part, and its peak of wires
 
         const controls = controlled ? 1 : 0;
         const recipe: Subroutine = tripletRecipe(sizes, layout, bits, spin, blocks, {
-          qubits: controls,
+          registers: [{ name: 'control', qubits: controls }],
           controls,
         });
         const emitted = GateCounter.total(counter.root);

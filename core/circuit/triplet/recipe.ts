@@ -1,3 +1,4 @@
+import type { ItemSizes } from '../../encode';
 import { aliasSamplingToffoli } from '../primitives/alias-sampling';
 import {
   type Blocks,
@@ -13,7 +14,7 @@ import { reflectionToffoli } from '../primitives/reflection';
 import type { StepPart, Subroutine } from '../recipe';
 import type { SpinTreatment } from './product';
 import { FACE_FLAGS } from './rounded-row';
-import type { TripletLayout, TripletSizes } from './sizes';
+import type { TripletLayout } from './sizes';
 import type { TripletBits } from './tables';
 import type { WalkBlocks } from './walk';
 
@@ -22,6 +23,13 @@ const BERRY = 'D. W. Berry et al., Quantum 3, 208 (2019)';
 const BABBUSH = 'R. Babbush et al., Phys. Rev. X 8, 041015 (2018)';
 const GIDNEY = 'C. Gidney, Quantum 2, 74 (2018)';
 const DERIVED = 'derived; equal to the emitted circuit, see DEVELOPERS';
+
+/** What phase estimation adds to a walk step. */
+export interface PhaseEstimationPart {
+  readonly registers: readonly { readonly name: string; readonly qubits: number }[];
+  /** Toffoli a step: controls of the last reflection. */
+  readonly controls: number;
+}
 
 interface Leaf {
   readonly name: string;
@@ -87,16 +95,16 @@ const eraseLeaf = (
 
 /**
  * The walk step of the triplet form as a tree of counts, Toffoli by Toffoli that of the circuit which `walkStep`
- * emits, and with the same peak of wires. `phaseBits` adds the phase register, which the step only meets as a
- * control of its last reflection.
+ * emits, and with the same peak of wires. The step meets phase estimation only as controls: its registers are
+ * carried along, and each control costs one Toffoli.
  */
 export function tripletRecipe(
-  sizes: TripletSizes,
+  sizes: ItemSizes,
   layout: TripletLayout,
   bits: TripletBits,
   spin: SpinTreatment,
   blocks: WalkBlocks,
-  phaseRegister: { readonly qubits: number; readonly controls: number },
+  phase: PhaseEstimationPart,
 ): Subroutine {
   const { orbitals } = sizes;
   const { itemBits, rowBits, hasFaces } = layout;
@@ -117,7 +125,7 @@ export function tripletRecipe(
     registers: [
       { name: 'system', qubits: 2 * orbitals },
       { name: 'phase gradient', qubits: gradientWires(modulusBits) },
-      ...(phaseRegister.qubits > 0 ? [{ name: 'phase estimation', qubits: phaseRegister.qubits }] : []),
+      ...phase.registers.filter((register) => register.qubits > 0),
       ...ancillas,
     ],
     children: [
@@ -129,14 +137,14 @@ export function tripletRecipe(
         formula: 'n − 2',
         inputs: { n: reflected },
         source: 'common practice, no source',
-        scratch: Math.max(0, reflected + phaseRegister.controls - 2),
+        scratch: Math.max(0, reflected + phase.controls - 2),
       }),
       leaf({
         name: 'control by the phase register',
         part: 'control',
-        toffoli: phaseRegister.controls,
+        toffoli: phase.controls,
         formula: 'one AND for each control of the reflection',
-        inputs: { controls: phaseRegister.controls },
+        inputs: { controls: phase.controls },
         source: BABBUSH,
       }),
     ],
@@ -144,7 +152,7 @@ export function tripletRecipe(
 }
 
 function blockEncodingRecipe(
-  sizes: TripletSizes,
+  sizes: ItemSizes,
   layout: TripletLayout,
   bits: TripletBits,
   spin: SpinTreatment,
@@ -221,7 +229,7 @@ function samplingLeaves(
 
 /** Both uses of the rows and the reflection between them. */
 function squareRecipe(
-  sizes: TripletSizes,
+  sizes: ItemSizes,
   layout: TripletLayout,
   bits: TripletBits,
   spin: SpinTreatment,
@@ -259,7 +267,7 @@ function squareRecipe(
 
 /** SELECT: one product of two rotated Majorana operators. */
 function productRecipe(
-  sizes: TripletSizes,
+  sizes: ItemSizes,
   layout: TripletLayout,
   spin: SpinTreatment,
   blocks: WalkBlocks,

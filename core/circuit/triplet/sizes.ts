@@ -1,21 +1,10 @@
-import type { TripletItem, TripletProgram } from '../../encode/program';
+import type { ItemSizes, TripletItem, TripletProgram } from '../../encode';
 import { addressBits, firstAddresses } from '../primitives/unary-iteration';
 import { FACE_FLAGS, ROW_FLAGS } from './rounded-row';
 import type { TripletBits } from './tables';
 
-/** All of a program that the cost of its walk depends on, besides the bits. The one-body item comes last. */
-export interface TripletSizes {
-  readonly orbitals: number;
-  /** Rows of each item; the tables put its A rows first. */
-  readonly rows: Uint32Array;
-  /** Of these, A rows. */
-  readonly pairRows: Uint32Array;
-  /** 1 where the item has two faces. */
-  readonly twoFaced: Uint8Array;
-  readonly hasPaired: boolean;
-}
-
-export function sizesOf(program: TripletProgram): TripletSizes {
+/** Sizes of a program's items. */
+export function sizesOf(program: TripletProgram): ItemSizes {
   const oneBody: Pick<TripletItem, 'rows' | 'lambda'> = { rows: program.oneBody, lambda: [0] };
   const items = [...program.items, oneBody];
   return {
@@ -49,7 +38,7 @@ export interface TripletLayout {
   readonly pairAddresses: Uint32Array;
 }
 
-export function tripletLayout(sizes: TripletSizes, bits: Pick<TripletBits, 'rotation'>): TripletLayout {
+export function tripletLayout(sizes: ItemSizes, bits: Pick<TripletBits, 'rotation'>): TripletLayout {
   const { rows, pairRows, twoFaced, orbitals } = sizes;
   const itemBits = Math.max(1, addressBits(rows.length));
   const sizeBits = Uint8Array.from(rows, (count) => addressBits(count));

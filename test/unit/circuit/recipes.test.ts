@@ -4,7 +4,7 @@ import {
   type Subroutine,
   sparseStep,
   spinorStep,
-  tripletStep,
+  tripletStepByFormula as tripletStep,
 } from '../../../core/circuit';
 import type { EncodingShape } from '../../../core/encode';
 import { peakOf, stepCost } from '../../../core/estimate';
