@@ -1,6 +1,6 @@
 import type { ChartConfiguration, Plugin } from 'chart.js';
 import { formatCount } from '../figures/figures';
-import { drawText, FONT, type Palette } from './palette';
+import { drawText, FONT, type Palette, tickWords } from './palette';
 
 export interface FrontPoint {
   readonly name: string;
@@ -29,6 +29,23 @@ export function stair(
   }
   return corners;
 }
+
+interface Box {
+  readonly left: number;
+  readonly right: number;
+  readonly top: number;
+  readonly bottom: number;
+}
+
+const boxAround = (x: number, y: number, dx: number, dy: number): Box => ({
+  left: x - dx,
+  right: x + dx,
+  top: y - dy,
+  bottom: y + dy,
+});
+
+const overlap = (a: Box, b: Box): boolean =>
+  a.left < b.right && b.left < a.right && a.top < b.bottom && b.top < a.bottom;
 
 /** Least and largest of the values with room at both ends of a logarithmic axis. */
 function range(values: readonly number[], room: number): { min: number; max: number } {
@@ -123,17 +140,26 @@ export function frontChart(model: FrontModel, palette: Palette): ChartConfigurat
       const px = (v: number) => scales.x!.getPixelForValue(v);
       const py = (v: number) => scales.y!.getPixelForValue(v);
       const ink = { colour: palette('--ink'), halo: palette('--sheet') };
-      const placed: { x: number; y: number }[] = [];
+      ctx.font = `480 12.5px ${FONT}`;
+      const marks = model.points.map((p) => boxAround(px(p.qubits), py(p.toffoli), 5, 5));
+      const taken: Box[] = [...marks];
       for (const { word, members } of model.groups) {
-        const first = model.points[members[0]!]!;
-        const at0 = px(first.qubits);
-        const overCap = model.cap !== null && first.qubits > model.cap && at0 < chartArea.right - 90;
-        const right = overCap || at0 < chartArea.left + 110;
-        const at = { x: px(first.qubits), y: py(first.toffoli) };
-        // Two names at one height would cover each other: the later one moves down a line.
-        while (placed.some((p) => Math.abs(p.y - at.y) < 12 && Math.abs(p.x - at.x) < 110)) at.y += 12;
-        placed.push({ ...at });
-        drawText(ctx, word, at.x + (right ? 9 : -9), at.y, { ...ink, align: right ? 'left' : 'right' });
+        const width = ctx.measureText(word).width;
+        const places = members.flatMap((m) => {
+          const { qubits, toffoli } = model.points[m]!;
+          const at = { x: px(qubits), y: py(toffoli) };
+          return [
+            boxAround(at.x - 9 - width / 2, at.y, width / 2, 6),
+            boxAround(at.x + 9 + width / 2, at.y, width / 2, 6),
+            boxAround(at.x - 9 - width / 2, at.y - 9, width / 2, 6),
+            boxAround(at.x + 9 + width / 2, at.y + 9, width / 2, 6),
+          ];
+        });
+        const inside = (b: Box) =>
+          b.left >= chartArea.left && b.right <= chartArea.right && b.bottom <= chartArea.bottom;
+        const place = places.find((b) => inside(b) && !taken.some((t) => overlap(t, b))) ?? places[0]!;
+        taken.push(place);
+        drawText(ctx, word, place.left, (place.top + place.bottom) / 2, ink);
       }
       if (model.cap !== null)
         drawText(ctx, `cap ${formatCount(model.cap)}`, px(model.cap) + 5, chartArea.top + 7, ink);
@@ -168,7 +194,7 @@ export function frontChart(model: FrontModel, palette: Palette): ChartConfigurat
 }
 
 /** A logarithmic axis with few round ticks. */
-function logAxis({ min, max }: { min: number; max: number }, palette: Palette, side: 'x' | 'y') {
+export function logAxis({ min, max }: { min: number; max: number }, palette: Palette, side: 'x' | 'y') {
   return {
     type: 'logarithmic' as const,
     min,
@@ -183,7 +209,7 @@ function logAxis({ min, max }: { min: number; max: number }, palette: Palette, s
       font: { family: FONT, size: 12 },
       maxRotation: 0,
       autoSkip: false,
-      callback: (value: string | number) => formatCount(Number(value)),
+      callback: (value: string | number) => tickWords(Number(value)),
     },
   };
 }

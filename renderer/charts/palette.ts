@@ -1,3 +1,5 @@
+import { formatSignificant } from '../figures/figures';
+
 /** Colours of the page as the charts need them: resolved, because a canvas knows no custom properties. */
 export type Palette = (name: string) => string;
 
@@ -34,4 +36,10 @@ export function drawText(
   ctx.fillStyle = options.colour;
   ctx.fillText(text, x, y);
   ctx.restore();
+}
+
+/** A tick of a logarithmic axis with no more digits than it needs: 800, 5×10⁹, 1.5×10¹⁰. */
+export function tickWords(value: number): string {
+  if (value < 1e6) return formatSignificant(value, value < 1 ? 1 : 6).replace(/\.0+$/, '');
+  return formatSignificant(value, 2).replace('.0×', '×');
 }

@@ -114,6 +114,7 @@ function marks(model: StepModel, palette: Palette): Plugin {
 
 /** Stacked cost of one step, each bar exactly under its column: the plot's pixels are the table's. */
 export function stepChart(model: StepModel, palette: Palette): ChartConfiguration {
+  const known = model.bars.some((b) => b.parts);
   const highest = Math.max(1, ...model.bars.map((b) => (b.parts ? sum(b.parts) : 0)));
   const config: ChartConfiguration<'bar', { x: number; y: number }[]> = {
     type: 'bar',
@@ -139,13 +140,14 @@ export function stepChart(model: StepModel, palette: Palette): ChartConfiguratio
           // Room for the words above the selected pair.
           max: highest * 1.14,
           border: { display: false },
-          grid: { color: palette('--rule'), tickLength: 0 },
+          grid: { display: known, color: palette('--rule'), tickLength: 0 },
           ticks: {
             color: palette('--ink2'),
             font: { family: FONT, size: 12 },
             padding: 6,
             maxTicksLimit: 5,
             includeBounds: false,
+            display: known,
             callback: (value) => formatCount(Number(value)),
           },
           afterFit: (axis) => {

@@ -60,6 +60,7 @@ async function reckon(
   const request = { ...ask, variants: variants.map(parseVariant) };
   const { comparison } = await runComparison(set, request, context, {
     onStart: (name) => tell({ status: 'started', name }),
+    onEncoded: (name, shape) => tell({ status: 'sized', name, shape }),
     onOutcome: tell,
   });
   return { hamiltonian: comparison.hamiltonian, recommendation: comparison.recommendation };

@@ -1,3 +1,4 @@
+import type { EncodingShape } from '../../core/encode';
 import type { Term } from '../../core/integrals/terms';
 import type { Finding, Problem } from '../../core/job';
 import type { Comparison, TermSummary } from '../../core/plan/comparison';
@@ -43,7 +44,10 @@ export interface Ask extends Omit<ComparisonRequest, 'variants'> {
 }
 
 /** What a reckoning says while it runs: which variant is at work, and what became of it. */
-export type VariantNews = { readonly status: 'started'; readonly name: string } | VariantOutcome;
+export type VariantNews =
+  | { readonly status: 'started'; readonly name: string }
+  | { readonly status: 'sized'; readonly name: string; readonly shape: EncodingShape }
+  | VariantOutcome;
 
 /** One check of Proof. */
 export interface ProofCheck {

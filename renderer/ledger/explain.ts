@@ -57,14 +57,15 @@ const EXPLAIN: Readonly<Record<RowId, Explain>> = {
     ],
   ],
   floor: (e) => {
-    const { value, kind, sector, low, high } = e.spectralFloor;
-    if (value === null) return [[words(': the floor is not known for this size.')], []];
+    const { value, sector, low, high } = e.spectralFloor;
+    const floor = value ?? low;
+    if (!floor) return [[words(': the floor is not known for this size.')], []];
+    const where = sector === 'eta' ? 'at this electron number' : 'over all electron numbers';
+    const known = value === null ? `between ${eh(floor)} and ${high === null ? 'λ' : eh(high)}` : 'exact';
     return [
-      [words(' = λ '), input(eh(e.lambda.total)), words(' / floor '), input(eh(value)), words('. ')],
+      [words(' = λ '), input(eh(e.lambda.total)), words(' / floor '), input(eh(floor)), words('. ')],
       [
-        words(
-          `The floor is half the width of the spectrum ${sector === 'eta' ? 'at this electron number' : 'over all electron numbers'}, ${kind === 'exact' ? 'exact' : `between ${low === null ? '?' : eh(low)} and ${high === null ? '?' : eh(high)}`}. `,
-        ),
+        words(`The floor is half the width of the spectrum ${where}, ${known}. `),
         source('No block encoding of the same operator can have a smaller λ.'),
       ],
     ];

@@ -1,10 +1,15 @@
+import type { EncodingShape } from '../../core/encode';
+import { fromHartree, toHartree } from '../../core/units';
 import type { FrontModel, FrontPoint } from '../charts/front-chart';
 import type { PartsModel, TotalsModel } from '../charts/lambda-charts';
 import type { StepBar, StepModel } from '../charts/step-chart';
-import { signedCount } from '../figures/figures';
+import type { TargetModel } from '../charts/target-chart';
+import type { Ask } from '../engine/protocol';
+import { signedCount, targetWords, UNIT_WORDS } from '../figures/figures';
 import type { Column, Entry } from './columns';
 import { gridOf } from './geometry';
 import { lambdaParts, SERIES, seriesToffoli } from './parts';
+import { overTargets } from './reprice';
 
 /** Short name of a column in a chart, with the shift only where two columns differ by nothing else. */
 export function shortWord(column: Column, columns: readonly Column[]): string {
@@ -96,4 +101,45 @@ export function frontModel(
     if (members.length) groups.push({ word: shortWord(column, columns), members });
   }
   return { points, groups, cap, focused };
+}
+
+/** Chemical accuracy by the usual reading, 1 kcal/mol: common practice, no source. */
+const CHEMICAL_ACCURACY = toHartree(1, 'kcal/mol');
+const POINTS = 49;
+
+/**
+ * Toffoli of one run over the target from about 1 cm⁻¹ to beyond chemical accuracy, the encoding as it was reckoned.
+ * One line a column: its better side, since the two sides of a pair would lie on each other.
+ */
+export function targetModel(
+  columns: readonly Column[],
+  selected: string | null,
+  ask: Ask,
+  shapeOf: (name: string) => EncodingShape | null,
+): TargetModel {
+  const own = toHartree(ask.target.value, ask.target.unit);
+  const low = Math.min(own / 5, CHEMICAL_ACCURACY / 351);
+  const high = Math.max(own * 5, CHEMICAL_ACCURACY * 1.6);
+  const hartrees = Array.from({ length: POINTS }, (_, i) => low * (high / low) ** (i / (POINTS - 1)));
+  const lines = columns.flatMap((column) => {
+    const sides = column.sides.filter((s) => s.estimate && s.stale === null && shapeOf(s.name));
+    const best = sides.reduce<Entry | null>(
+      (a, b) => (a && a.estimate!.totalToffoli <= b.estimate!.totalToffoli ? a : b),
+      null,
+    );
+    if (!best) return [];
+    const points = overTargets(best.estimate!, shapeOf(best.name)!, ask, hartrees).map(
+      ({ hartree, toffoli }) => ({
+        x: fromHartree(hartree, ask.target.unit),
+        y: toffoli,
+      }),
+    );
+    return [{ word: shortWord(column, columns), selected: column.key === selected, points }];
+  });
+  return {
+    unit: UNIT_WORDS[ask.target.unit],
+    lines,
+    own: { value: ask.target.value, words: `target ${targetWords(ask.target)}` },
+    chemical: fromHartree(CHEMICAL_ACCURACY, ask.target.unit),
+  };
 }

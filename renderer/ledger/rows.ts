@@ -49,10 +49,14 @@ export type RowId =
   | 'physical'
   | 'distance';
 
-/** λ over the least λ any block encoding of the same operator can have; null where the floor is 0 or unknown. */
-export function overFloor(e: VariantEstimate): number | null {
-  const { value } = e.spectralFloor;
-  return value === null || value === 0 ? null : e.lambda.total / value;
+/**
+ * λ over the least λ any block encoding of the same operator can have, and whether that is a bound only because the
+ * floor itself is known from below; null where the floor is 0 or unknown.
+ */
+export function overFloor(e: VariantEstimate): { readonly ratio: number; readonly bound: boolean } | null {
+  const { value, low } = e.spectralFloor;
+  const floor = value ?? low;
+  return floor ? { ratio: e.lambda.total / floor, bound: value === null } : null;
 }
 
 export const ROWS: readonly Row[] = [
@@ -68,12 +72,12 @@ export const ROWS: readonly Row[] = [
     id: 'floor',
     label: 'λ over its floor',
     figure: (e) => {
-      const value = overFloor(e);
-      return value === null ? null : figures.formatRatio(value);
+      const over = overFloor(e);
+      return over && `${over.bound ? '≤ ' : ''}${figures.formatRatio(over.ratio)}`;
     },
-    value: overFloor,
+    value: (e) => overFloor(e)?.ratio ?? null,
     mark: (e) =>
-      e.spectralFloor.sector === 'all' && overFloor(e) !== null
+      e.spectralFloor.sector === 'all' && overFloor(e)
         ? { sign: '*', words: 'against the floor of all electron numbers' }
         : null,
   },

@@ -27,7 +27,7 @@ export class Desk {
     this.load = new LoadState(engine, shell);
     this.terms = new TermsState(this.load);
     const ask = () => this.ask;
-    this.variants = new VariantsState(engine, this.load, ask);
+    this.variants = new VariantsState(engine, this.load, ask, () => this.target.surface);
     this.ledger = new LedgerState(this.variants, this.target, this.load);
     this.proof = new ProofState(engine, this.load, this.variants, ask);
   }
@@ -38,7 +38,7 @@ export class Desk {
       electrons: null,
       occupations: null,
       target: { ...this.target.target, meaning: this.target.meaning },
-      threshold: 'auto',
+      threshold: this.variants.threshold.value,
       bits: 'auto',
       overlaps: this.target.overlaps,
       qubitsMax: this.target.cap.value,
@@ -114,7 +114,10 @@ export class Desk {
     else if (command === 'open-folder') await this.load.choose('folder');
     else if (command === 'demo') await this.load.useDemo();
     else if (command === 'reckon') await this.reckon();
-    else if (command === 'stop-job') this.stopJob();
+    else if (command === 'copy-table') {
+      this.goTo('ledger');
+      this.ledger.panel = 'copy';
+    } else if (command === 'stop-job') this.stopJob();
     else if (command === 'keys') this.keysOpen = true;
   }
 }

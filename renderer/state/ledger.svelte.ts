@@ -38,6 +38,8 @@ export class LedgerState {
   /** Set by the window where it is too low for all rows. */
   low = $state(false);
   #cursor = $state.raw<Cursor | null>(null);
+  /** What is open under the heading. */
+  panel = $state<'none' | 'columns' | 'order' | 'copy'>('none');
   /** The full slip over the lower charts. */
   slipOpen = $state(false);
   readonly #variants: VariantsState;

@@ -1,12 +1,16 @@
-import { parseVariant } from '../../core/encode';
+import { type EncodingShape, parseVariant } from '../../core/encode';
+import type { SurfaceCodeAssumptions } from '../../core/estimate';
 import { Cancelled, type Problem } from '../../core/job';
 import type { Comparison } from '../../core/plan/comparison';
+import { parseEnergy, toHartree } from '../../core/units';
 import type { Engine } from '../engine/engine';
 import type { Ask, VariantNews } from '../engine/protocol';
 import { problemOf } from '../engine/serve';
 import { type Reckoning, strong, words } from '../figures/reckoning';
 import type { Entry } from '../ledger/columns';
+import { canRecount, onMachine, recount } from '../ledger/reprice';
 import { type Axis, toggled, USUAL } from './axes';
+import { Field, type Parsed, parseNumber } from './field.svelte';
 import type { LoadState } from './load.svelte';
 import { Remaining } from './remaining';
 import type { StopLine } from './stops';
@@ -16,6 +20,8 @@ interface Answered {
   readonly entry: Omit<Entry, 'stale'>;
   readonly source: number;
   readonly ask: Ask | null;
+  /** Sizes of the encoding, from which costs can be counted anew. */
+  readonly shape: EncodingShape | null;
 }
 
 const fresh = (name: string): Omit<Entry, 'stale'> => ({
@@ -31,6 +37,8 @@ const fresh = (name: string): Omit<Entry, 'stale'> => ({
 /** The chosen variants and what became of each. */
 export class VariantsState {
   names = $state.raw<readonly string[]>(USUAL);
+  /** Sum of LCU norms that truncation may leave out, hartree; `auto`: the error budget's share. */
+  readonly threshold = new Field<number | 'auto'>('0', parseThreshold);
   #answers = $state.raw<ReadonlyMap<string, Answered>>(new Map());
   /** Name of the variant at work, or null. */
   running = $state<string | null>(null);
@@ -42,12 +50,14 @@ export class VariantsState {
   readonly #engine: Engine;
   readonly #load: LoadState;
   readonly #ask: () => Ask;
+  readonly #machine: () => SurfaceCodeAssumptions;
   #stop: AbortController | null = null;
 
-  constructor(engine: Engine, load: LoadState, ask: () => Ask) {
+  constructor(engine: Engine, load: LoadState, ask: () => Ask, machine: () => SurfaceCodeAssumptions) {
     this.#engine = engine;
     this.#load = load;
     this.#ask = ask;
+    this.#machine = machine;
   }
 
   toggle(axis: Axis, value: string): void {
@@ -69,9 +79,19 @@ export class VariantsState {
     return this.names.map((name) => {
       const answer = this.#answers.get(name);
       if (!answer || answer.source !== source) return { ...fresh(name), stale: null };
-      return { ...answer.entry, stale: answer.entry.estimate ? staleWords(answer.ask, ask) : null };
+      const { entry, shape } = answer;
+      if (!entry.estimate || !answer.ask) return { ...entry, stale: null };
+      if (shape && canRecount(answer.ask, ask)) {
+        const estimate = onMachine(recount(entry.estimate, shape, ask), this.#machine());
+        return { ...entry, estimate, stale: null };
+      }
+      return { ...entry, stale: staleWords(answer.ask, ask) };
     });
   });
+
+  shapeOf(name: string): EncodingShape | null {
+    return this.#answers.get(name)?.shape ?? null;
+  }
 
   readonly done = $derived.by(
     () => this.entries.filter((e) => e.status === 'done' && e.stale === null).length,
@@ -95,7 +115,7 @@ export class VariantsState {
     this.#stop = stop;
     this.busy = true;
     this.problem = null;
-    for (const name of todo) this.#put(name, source, null, fresh(name));
+    for (const name of todo) this.#put(name, fresh(name), { source });
     const remaining = new Remaining(todo.length);
     try {
       const { recommendation } = await this.#engine.run(
@@ -105,7 +125,7 @@ export class VariantsState {
           signal: stop.signal,
           onNews: (news) => {
             this.#hear(news, source, ask);
-            if (news.status !== 'started') remaining.finished();
+            if (news.status !== 'started' && news.status !== 'sized') remaining.finished();
           },
           onProgress: (stage, done, total) => {
             const fraction = total ? Math.min(1, done / total) : null;
@@ -122,11 +142,15 @@ export class VariantsState {
       for (const name of todo) {
         const entry = this.#answers.get(name)?.entry;
         if (entry?.status === 'running' || (cancelled && entry?.status === 'waiting'))
-          this.#put(name, source, null, {
-            ...entry,
-            status: cancelled ? 'stopped' : 'failed',
-            problem: cancelled ? null : this.problem,
-          });
+          this.#put(
+            name,
+            {
+              ...entry,
+              status: cancelled ? 'stopped' : 'failed',
+              problem: cancelled ? null : this.problem,
+            },
+            { source },
+          );
       }
     } finally {
       this.busy = false;
@@ -141,33 +165,36 @@ export class VariantsState {
   }
 
   #hear(news: VariantNews, source: number, ask: Ask): void {
-    const before = this.#answers.get(news.name)?.entry ?? fresh(news.name);
+    const { name } = news;
+    const before = this.#answers.get(name);
+    const entry = before?.entry ?? fresh(name);
     if (news.status === 'started') {
-      this.running = news.name;
-      this.#put(news.name, source, null, { ...before, status: 'running', fraction: null, stage: 'starting' });
+      this.running = name;
+      this.#put(name, { ...entry, status: 'running', fraction: null, stage: 'starting' }, { source });
+    } else if (news.status === 'sized') {
+      this.#put(name, entry, { source, shape: news.shape });
     } else if (news.status === 'done') {
-      this.#put(news.name, source, ask, {
-        ...fresh(news.name),
-        status: 'done',
-        fraction: 1,
-        estimate: news.estimate,
-      });
+      const done = { ...fresh(name), status: 'done' as const, fraction: 1, estimate: news.estimate };
+      this.#put(name, done, { source, ask, shape: before?.shape ?? null });
     } else if (news.status === 'left-out') {
-      this.#put(news.name, source, ask, { ...fresh(news.name), status: 'left-out', reason: news.reason });
+      this.#put(name, { ...fresh(name), status: 'left-out', reason: news.reason }, { source, ask });
     } else {
-      this.#put(news.name, source, ask, { ...before, status: 'failed', problem: news.problem });
+      this.#put(name, { ...entry, status: 'failed', problem: news.problem }, { source, ask });
     }
   }
 
   #progress(source: number, stage: string, fraction: number | null): void {
-    const name = this.running;
-    const entry = name === null ? undefined : this.#answers.get(name)?.entry;
-    if (name === null || entry?.status !== 'running') return;
-    this.#put(name, source, null, { ...entry, stage, fraction });
+    const answer = this.running === null ? undefined : this.#answers.get(this.running);
+    if (answer?.entry.status !== 'running') return;
+    this.#put(answer.entry.name, { ...answer.entry, stage, fraction }, { source, shape: answer.shape });
   }
 
-  #put(name: string, source: number, ask: Ask | null, entry: Omit<Entry, 'stale'>): void {
-    this.#answers = new Map(this.#answers).set(name, { entry, source, ask });
+  #put(
+    name: string,
+    entry: Omit<Entry, 'stale'>,
+    { source, ask = null, shape = null }: { source: number; ask?: Ask | null; shape?: EncodingShape | null },
+  ): void {
+    this.#answers = new Map(this.#answers).set(name, { entry, source, ask, shape });
   }
 
   readonly line = $derived.by((): StopLine => {
@@ -208,6 +235,13 @@ export class VariantsState {
       ],
     ];
   });
+}
+
+function parseThreshold(text: string): Parsed<number | 'auto'> {
+  if (text.trim().toLowerCase() === 'auto') return { value: 'auto' };
+  const energy = parseEnergy(text);
+  const hartree = energy ? toHartree(energy.value, energy.unit) : parseNumber(text);
+  return hartree >= 0 ? { value: hartree } : { problem: 'expected 0, auto, or an energy such as 1e-4 Eh' };
 }
 
 /** A variant in words. */
