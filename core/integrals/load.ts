@@ -95,7 +95,7 @@ async function loadSpatial(
   const findings: Finding[] = [];
   for (const part of parts) {
     const read = contents.get(part) ?? (await readPart(part, orbitals, files, platform, context));
-    const built = buildPart(part, read, orbitals);
+    const built = await buildPart(part, read, orbitals, context);
     oneElectron.push(...built.oneElectron);
     twoElectron.push(...built.twoElectron);
     findings.push(...built.findings);
@@ -117,14 +117,19 @@ async function loadSpatial(
   return { ...set, findings };
 }
 
-function buildPart(part: ResolvedPart, read: PartContents, orbitals: number): BuiltPart {
+async function buildPart(
+  part: ResolvedPart,
+  read: PartContents,
+  orbitals: number,
+  context: JobContext,
+): Promise<BuiltPart> {
   switch (read.kind) {
     case 'spin-free':
       return buildSpinFree(part, read);
     case 'list':
-      return buildList(part, read.list, orbitals);
+      return buildList(part, read.list, orbitals, context);
     case 'array':
-      return buildArray(part, read.raw, orbitals);
+      return buildArray(part, read.raw, orbitals, context);
     case 'spinor':
       throw notSpinFree(part, read);
   }

@@ -1,4 +1,4 @@
-import type { Finding } from '../../job';
+import type { Finding, JobContext } from '../../job';
 import { type OneElectronPart, pairsTriangleLength, type TwoElectronPart } from '../integral-set';
 import type { RawArray, SpinFreeContents } from '../raw';
 import type { IndexList } from '../readers';
@@ -43,14 +43,19 @@ export function fileNote(origin: string, note: string): Finding {
 }
 
 /** An array part; `raw.data` may become part of the result. */
-export function buildArray(part: ResolvedPart, raw: RawArray, n: number): BuiltPart {
+export async function buildArray(
+  part: ResolvedPart,
+  raw: RawArray,
+  n: number,
+  context: JobContext,
+): Promise<BuiltPart> {
   const stored = storedArray(raw, part, n);
   if (part.facts.numIndices === 2) {
     const { values, findings } = convertTwoIndex(stored, part, n);
     return oneElectronPart(part, raw.origin, values, findings);
   }
   if (part.facts.components === 'vector') {
-    const { arrays, findings } = convertSpinOrbit(stored, part, n);
+    const { arrays, findings } = await convertSpinOrbit(stored, part, n, context);
     const { id, role, term } = part;
     const { origin } = raw;
     return {
@@ -59,14 +64,19 @@ export function buildArray(part: ResolvedPart, raw: RawArray, n: number): BuiltP
       findings,
     };
   }
-  const { values, findings } = convertEightfold(stored, part, n);
+  const { values, findings } = await convertEightfold(stored, part, n, context);
   return eightfoldPart(part, raw.origin, values, n, findings);
 }
 
 /** A part given as an index–value list. */
-export function buildList(part: ResolvedPart, list: IndexList, n: number): BuiltPart {
-  if (part.role === 'two-electron spin-orbit summed') return buildSummedList(part, list, n);
-  const { values, findings } = convertList(list, part, n);
+export async function buildList(
+  part: ResolvedPart,
+  list: IndexList,
+  n: number,
+  context: JobContext,
+): Promise<BuiltPart> {
+  if (part.role === 'two-electron spin-orbit summed') return buildSummedList(part, list, n, context);
+  const { values, findings } = await convertList(list, part, n, context);
   if (part.facts.numIndices === 2) return oneElectronPart(part, list.origin, values, findings);
   if (part.facts.components !== 'vector') return eightfoldPart(part, list.origin, values, n, findings);
   const { id, role, term } = part;
@@ -78,7 +88,12 @@ export function buildList(part: ResolvedPart, list: IndexList, n: number): Built
   };
 }
 
-function buildSummedList(part: ResolvedPart, list: IndexList, n: number): BuiltPart {
+function buildSummedList(
+  part: ResolvedPart,
+  list: IndexList,
+  n: number,
+  context: JobContext,
+): Promise<BuiltPart> {
   const count = part.components.length;
   const shape = count > 1 ? [count, n, n, n, n] : [n, n, n, n];
   const data = expandSummedList(list, part, n);
@@ -89,7 +104,7 @@ function buildSummedList(part: ResolvedPart, list: IndexList, n: number): BuiltP
     physicists: false,
     componentLast: false,
   };
-  return buildArray(full, { origin: list.origin, shape, complex: false, data }, n);
+  return buildArray(full, { origin: list.origin, shape, complex: false, data }, n, context);
 }
 
 function oneElectronPart(

@@ -1,4 +1,4 @@
-import type { Finding } from '../../job';
+import type { Finding, JobContext } from '../../job';
 import { numSymmetricPairs, pairsTriangleLength } from '../integral-set';
 import type { ResolvedPart } from './part';
 import type { Component, TensorComponent } from './recipe';
@@ -20,11 +20,12 @@ export function tensorIndex(name: Component): number {
  *
  * @returns `values`: one pairs-triangle, or six one after the other for the role spin-spin, in hartree.
  */
-export function convertEightfold(
+export async function convertEightfold(
   stored: StoredArray,
   part: ResolvedPart,
   n: number,
-): { values: Float64Array; findings: Finding[] } {
+  context: JobContext,
+): Promise<{ values: Float64Array; findings: Finding[] }> {
   const tensor = part.facts.components === 'tensor';
   const size = pairsTriangleLength(n);
   const names: readonly (Component | null)[] = tensor ? part.components : [null];
@@ -44,19 +45,24 @@ export function convertEightfold(
     const earlier = filled.get(slot);
     const out =
       earlier === undefined ? values.subarray(slot * size, (slot + 1) * size) : new Float64Array(size);
-    fillTriangle(out, stored, part, n, c, name, deviation);
+    await fillTriangle(out, stored, part, n, c, name, deviation, context);
     if (earlier !== undefined) compareTriangles(values.subarray(slot * size), out, n, earlier, transposed);
     filled.set(slot, name!);
     if (stored.otherPlane !== null) findings.push(...checkOtherPlane(stored, part, n, c, deviation.max));
   }
   transposed.max = deviation.max;
+  const mend = deviation.isBroken ? await cure(stored, part, n, context) : '';
   return {
     values,
     findings: [
-      ...symmetryFinding(part, stored.origin, deviation, expectation(part), () => cure(stored, part, n)),
-      ...symmetryFinding(part, stored.origin, transposed, 'equal components kl and lk', () => {
-        return 'Components are in another order than the recipe says.';
-      }),
+      ...symmetryFinding(part, stored.origin, deviation, expectation(part), mend),
+      ...symmetryFinding(
+        part,
+        stored.origin,
+        transposed,
+        'equal components kl and lk',
+        'Components are in another order than the recipe says.',
+      ),
       ...findings,
     ],
   };
@@ -77,7 +83,7 @@ export function fullStrides(part: ResolvedPart, n: number, stride: number): [num
   return part.momentumSecond ? [third, fourth, first, second] : [first, second, third, fourth];
 }
 
-function fillTriangle(
+async function fillTriangle(
   out: Float64Array,
   stored: StoredArray,
   part: ResolvedPart,
@@ -85,9 +91,10 @@ function fillTriangle(
   c: number,
   name: Component | null,
   deviation: Deviation,
-): void {
+  context: JobContext,
+): Promise<void> {
   const start = stored.plane + c * stored.componentStride;
-  if (part.layout === 'full') fillFromFull(out, stored, part, n, start, name, deviation);
+  if (part.layout === 'full') await fillFromFull(out, stored, part, n, start, name, deviation, context);
   else if (part.layout === 'pairs') fillFromPairs(out, stored, part, n, start, name, deviation);
   else {
     const { data, stride } = stored;
@@ -98,7 +105,8 @@ function fillTriangle(
   }
 }
 
-function fillFromFull(
+/** One of the eight orders is used; how far the other seven are off is noted. */
+async function fillFromFull(
   out: Float64Array,
   stored: StoredArray,
   part: ResolvedPart,
@@ -106,44 +114,53 @@ function fillFromFull(
   start: number,
   name: Component | null,
   deviation: Deviation,
-): void {
+  context: JobContext,
+): Promise<void> {
   const { data } = stored;
   const { factor } = part;
   const [dp, dq, dr, ds] = fullStrides(part, n, stored.stride);
-  let max = deviation.max;
-  let worst = deviation.worst;
+  const at = new Int32Array(8);
   let position = 0;
   for (let p = 0; p < n; p++) {
+    await context.checkpoint();
     for (let q = 0; q <= p; q++) {
+      const [pq, qp] = [start + p * dp + q * dq, start + q * dp + p * dq];
+      const [pqSecond, qpSecond] = [start + p * dr + q * ds, start + q * dr + p * ds];
       for (let r = 0; r <= p; r++) {
         const lastS = r === p ? q : r;
         for (let s = 0; s <= lastS; s++) {
-          const value = factor * data[start + p * dp + q * dq + r * dr + s * ds]!;
+          const [rs, sr] = [r * dr + s * ds, s * dr + r * ds];
+          const [rsFirst, srFirst] = [r * dp + s * dq, s * dp + r * dq];
+          at[0] = pq + rs;
+          at[1] = qp + rs;
+          at[2] = pq + sr;
+          at[3] = qp + sr;
+          at[4] = pqSecond + rsFirst;
+          at[5] = qpSecond + rsFirst;
+          at[6] = pqSecond + srFirst;
+          at[7] = qpSecond + srFirst;
+          const value = factor * data[at[0]]!;
           out[position++] = value;
-          if (Math.abs(value) > max) max = Math.abs(value);
+          if (Math.abs(value) > deviation.max) deviation.max = Math.abs(value);
           for (let k = 1; k < 8; k++) {
-            // The other seven orders: k's bits swap p↔q, r↔s and the two pairs.
-            const [a, b] = k & 1 ? [q, p] : [p, q];
-            const [d, e] = k & 2 ? [s, r] : [r, s];
-            const at = k & 4 ? d * dp + e * dq + a * dr + b * ds : a * dp + b * dq + d * dr + e * ds;
-            const partner = factor * data[start + at]!;
-            if (Math.abs(partner) > max) max = Math.abs(partner);
-            if (Math.abs(partner - value) > worst) {
-              worst = Math.abs(partner - value);
-              deviation.note(
-                worst,
-                [p, q, r, s],
-                k & 4 ? [d, e, a, b] : [a, b, d, e],
-                [value, partner],
-                name,
-              );
+            const partner = factor * data[at[k]!]!;
+            if (Math.abs(partner) > deviation.max) deviation.max = Math.abs(partner);
+            const off = Math.abs(partner - value);
+            if (off > deviation.worst) {
+              deviation.note(off, [p, q, r, s], permuted(p, q, r, s, k), [value, partner], name);
             }
           }
         }
       }
     }
   }
-  deviation.max = max;
+}
+
+/** Bits of k: p↔q, r↔s, and the two pairs. */
+function permuted(p: number, q: number, r: number, s: number, k: number): number[] {
+  const first = k & 1 ? [q, p] : [p, q];
+  const second = k & 2 ? [s, r] : [r, s];
+  return k & 4 ? [...second, ...first] : [...first, ...second];
 }
 
 function fillFromPairs(
@@ -214,12 +231,18 @@ export function storedIndices(at: number, part: ResolvedPart, n: number): number
   return [Math.floor(at / n ** 3), Math.floor(at / n ** 2) % n, Math.floor(at / n) % n, at % n];
 }
 
-/** Tries the other reading orders of a full array: the one that gives the symmetry names the mistake. */
-function cure(stored: StoredArray, part: ResolvedPart, n: number): string {
+/** Tries the other reading order of a full array: if it gives the symmetry, it names the mistake. */
+async function cure(
+  stored: StoredArray,
+  part: ResolvedPart,
+  n: number,
+  context: JobContext,
+): Promise<string> {
   if (part.layout === 'full') {
     const trial = new Deviation();
     const swapped = { ...part, physicists: !part.physicists };
-    fillFromFull(new Float64Array(pairsTriangleLength(n)), stored, swapped, n, stored.plane, null, trial);
+    const out = new Float64Array(pairsTriangleLength(n));
+    await fillFromFull(out, stored, swapped, n, stored.plane, null, trial, context);
     if (!trial.isBroken && trial.max > 0) {
       return `The symmetry holds with "order": "${swapped.physicists ? 'physicists' : 'chemists'}".`;
     }

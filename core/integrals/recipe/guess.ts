@@ -1,3 +1,4 @@
+import type { JobContext } from '../../job';
 import type { RawArray } from '../raw';
 import { buildArray } from './build-part';
 import { resolvePart } from './part';
@@ -24,11 +25,17 @@ const NAMES: readonly [RegExp, Role][] = [
  * The role and convention under which an array keeps all the symmetries its role promises, or null where there is
  * none. Among several the one that the array's name suggests, then the most usual.
  */
-export function guessConvention(raw: RawArray, name: string, orbitals: number | null): Guess | null {
+export async function guessConvention(
+  raw: RawArray,
+  name: string,
+  orbitals: number | null,
+  context: JobContext,
+): Promise<Guess | null> {
   const hinted = NAMES.find(([pattern]) => pattern.test(name.toLowerCase()))?.[1];
   const candidates = candidatesFor(raw, name);
   candidates.sort((a, b) => Number(b.role === hinted) - Number(a.role === hinted));
-  return candidates.find((guess) => holds(raw, guess, orbitals)) ?? null;
+  for (const guess of candidates) if (await holds(raw, guess, orbitals, context)) return guess;
+  return null;
 }
 
 /** Number of orbitals an array has under some convention; only square shapes are taken, which cannot be misread. */
@@ -95,12 +102,17 @@ function spinOrbitGuesses(common: Pick<RecipePart, 'components' | 'componentAxis
 }
 
 /** Whether shape, number type and symmetries fit. Works on a copy, since packed arrays are converted in place. */
-function holds(raw: RawArray, guess: Guess, orbitals: number | null): boolean {
+async function holds(
+  raw: RawArray,
+  guess: Guess,
+  orbitals: number | null,
+  context: JobContext,
+): Promise<boolean> {
   const recipe = { schema: 'spinwright-recipe/1' as const, parts: [{ id: 'a', file: 'a', ...guess }] };
   const part = resolvePart(recipe, 0, '');
   if (raw.complex !== (part.value === 'complex')) return false;
   const n = orbitalsOfShape(raw, part, orbitals ?? undefined);
   if (n === null || (orbitals !== null && n !== orbitals)) return false;
-  const { findings } = buildArray(part, { ...raw, data: Float64Array.from(raw.data) }, n);
+  const { findings } = await buildArray(part, { ...raw, data: Float64Array.from(raw.data) }, n, context);
   return findings.every((finding) => finding.severity !== 'error');
 }

@@ -1,4 +1,4 @@
-import type { Finding } from '../../job';
+import type { Finding, JobContext } from '../../job';
 import { numAntisymmetricPairs, numSymmetricPairs, type SpinOrbitPart, symmetricPair } from '../integral-set';
 import { fullStrides, storedIndices } from './eightfold';
 import type { ResolvedPart } from './part';
@@ -17,14 +17,15 @@ const AXES: readonly Component[] = ['x', 'y', 'z'];
  * @returns arrays of 3 × nanti × npair, in hartree. A packed array in canonical order is scaled in place and used
  *   as it is: no second copy of the largest array of a set.
  */
-export function convertSpinOrbit(
+export async function convertSpinOrbit(
   stored: StoredArray,
   part: ResolvedPart,
   n: number,
-): { arrays: SpinOrbitArrays; findings: Finding[] } {
-  if (part.role === 'two-electron spin-orbit summed') return convertSummed(stored, part, n);
+  context: JobContext,
+): Promise<{ arrays: SpinOrbitArrays; findings: Finding[] }> {
+  if (part.role === 'two-electron spin-orbit summed') return convertSummed(stored, part, n, context);
   const { values, findings } =
-    part.layout === 'full' ? fromFull(stored, part, n) : fromPacked(stored, part, n);
+    part.layout === 'full' ? await fromFull(stored, part, n, context) : fromPacked(stored, part, n);
   return { arrays: asRole(part, values), findings };
 }
 
@@ -63,32 +64,34 @@ function fromPacked(stored: StoredArray, part: ResolvedPart, n: number) {
   return { values, findings };
 }
 
-function fromFull(stored: StoredArray, part: ResolvedPart, n: number) {
+async function fromFull(stored: StoredArray, part: ResolvedPart, n: number, context: JobContext) {
   const [anti, sym] = [numAntisymmetricPairs(n), numSymmetricPairs(n)];
   const values = new Float64Array(3 * anti * sym);
   const findings: Finding[] = [];
   const deviation = new Deviation();
   for (const [c, name] of part.components.entries()) {
     const out = values.subarray(AXES.indexOf(name) * anti * sym);
-    fillFromFull(out, stored, part, n, c, deviation);
+    await fillFromFull(out, stored, part, n, c, deviation, context);
   }
   for (let c = 0; c < part.components.length; c++) {
     findings.push(...checkOtherPlane(stored, part, n, c, deviation.max));
   }
   const expected = 'an array antisymmetric in its momentum pair and symmetric in the other';
-  findings.push(...symmetryFinding(part, stored.origin, deviation, expected, () => cure(stored, part, n)));
+  const mend = deviation.isBroken ? await cure(stored, part, n, context) : '';
+  findings.push(...symmetryFinding(part, stored.origin, deviation, expected, mend));
   return { values, findings };
 }
 
 /** Fills one component, nanti × npair, and notes how far the other three orders and the diagonal p = q are off. */
-function fillFromFull(
+async function fillFromFull(
   out: Float64Array,
   stored: StoredArray,
   part: ResolvedPart,
   n: number,
   c: number,
   deviation: Deviation,
-): void {
+  context: JobContext,
+): Promise<void> {
   const { data } = stored;
   const { factor } = part;
   const name = part.components[c]!;
@@ -98,6 +101,7 @@ function fillFromFull(
   let worst = deviation.worst;
   let position = 0;
   for (let p = 0; p < n; p++) {
+    await context.checkpoint();
     for (let q = 0; q <= p; q++) {
       for (let r = 0; r < n; r++) {
         for (let s = 0; s <= r; s++) {
@@ -127,7 +131,7 @@ function fillFromFull(
  * A = Im g^{k0} with A_pqrs = −A_qpsr. Its part antisymmetric in pq is S, symmetric in rs; the part symmetric in
  * pq is O_rs,pq, antisymmetric in rs.
  */
-function convertSummed(stored: StoredArray, part: ResolvedPart, n: number) {
+async function convertSummed(stored: StoredArray, part: ResolvedPart, n: number, context: JobContext) {
   const [anti, sym] = [numAntisymmetricPairs(n), numSymmetricPairs(n)];
   const same = new Float64Array(3 * anti * sym);
   const other = new Float64Array(3 * anti * sym);
@@ -141,6 +145,7 @@ function convertSummed(stored: StoredArray, part: ResolvedPart, n: number) {
     const get = (p: number, q: number, r: number, s: number) =>
       part.factor * data[start + p * dp + q * dq + r * dr + s * ds]!;
     for (let p = 0; p < n; p++) {
+      await context.checkpoint();
       for (let q = 0; q <= p; q++) {
         for (let r = 0; r < n; r++) {
           for (let s = 0; s < n; s++) {
@@ -169,7 +174,11 @@ function convertSummed(stored: StoredArray, part: ResolvedPart, n: number) {
   }
   const expected = 'A_pqrs = −A_qpsr for the imaginary part of g^{k0}';
   findings.push(
-    ...symmetryFinding(part, stored.origin, deviation, expected, () =>
+    ...symmetryFinding(
+      part,
+      stored.origin,
+      deviation,
+      expected,
       part.physicists
         ? 'The order may be chemists’.'
         : 'The order may be physicists’, or the array is real symmetric and no spin–orbit array.',
@@ -198,7 +207,12 @@ function checkOtherPlane(
 }
 
 /** Reads the array in the other conventions; the one whose symmetry holds names the mistake. */
-function cure(stored: StoredArray, part: ResolvedPart, n: number): string {
+async function cure(
+  stored: StoredArray,
+  part: ResolvedPart,
+  n: number,
+  context: JobContext,
+): Promise<string> {
   const trials: readonly [Partial<ResolvedPart>, string][] = [
     [{ momentumSecond: !part.momentumSecond }, `"momentum": "${part.momentumSecond ? 'first' : 'second'}"`],
     [{ physicists: !part.physicists }, `"order": "${part.physicists ? 'chemists' : 'physicists'}"`],
@@ -210,11 +224,11 @@ function cure(stored: StoredArray, part: ResolvedPart, n: number): string {
   const out = new Float64Array(numAntisymmetricPairs(n) * numSymmetricPairs(n));
   for (const [change, text] of trials) {
     const trial = new Deviation();
-    fillFromFull(out, stored, { ...part, ...change }, n, 0, trial);
+    await fillFromFull(out, stored, { ...part, ...change }, n, 0, trial, context);
     if (trial.max > 0 && trial.worst <= SYMMETRY_TOLERANCE * trial.max)
       return `The symmetry holds with ${text}.`;
   }
-  const summed = convertSummed(stored, { ...part, components: [part.components[0]!] }, n);
+  const summed = await convertSummed(stored, { ...part, components: [part.components[0]!] }, n, context);
   if (summed.findings.every((finding) => finding.code !== 'symmetry')) {
     return 'It is antisymmetric under p↔q with r↔s together: its role may be "two-electron spin-orbit summed".';
   }

@@ -47,7 +47,7 @@ export async function suggestRecipe(
       for (const part of known) parts.push({ ...part, id: uniqueId(part.id, parts) });
       continue;
     }
-    const guess = guessConvention(raw, name, orbitals);
+    const guess = await guessConvention(raw, name, orbitals, context);
     findings.push(guess === null ? noConvention(raw) : guessed(raw, guess.role));
     if (guess !== null) parts.push({ id: uniqueId(name, parts), ...place, ...guess });
   }

@@ -38,6 +38,9 @@ export class Deviation {
   describe(): string {
     const [a, b] = this.#values;
     const name = this.#component === null ? '' : `${this.#component} `;
+    const isSelf = this.#indices.every((index, i) => index === this.#partner[i]);
+    // Its own partner, so antisymmetry makes it zero.
+    if (isSelf && a === b) return `${name}${element(this.#indices)} = ${a} where 0 is due`;
     return `${name}${element(this.#indices)} = ${a} but ${name}${element(this.#partner)} = ${b}`;
   }
 }
@@ -48,13 +51,13 @@ export function element(indices: readonly number[]): string {
   return text.length === 4 ? `(${text[0]} ${text[1]}|${text[2]} ${text[3]})` : `(${text.join(', ')})`;
 }
 
-/** The finding for a broken symmetry, or nothing. `cure` is only asked for where it is needed. */
+/** The finding for a broken symmetry, or nothing. */
 export function symmetryFinding(
   part: ResolvedPart,
   origin: string,
   deviation: Deviation,
   expected: string,
-  cure: () => string,
+  mend: string,
 ): Finding[] {
   if (!deviation.isBroken) return [];
   return [
@@ -64,7 +67,7 @@ export function symmetryFinding(
       where: `${origin} (part "${part.id}")`,
       found: `${deviation.describe()} Eh`,
       expected: `${expected} to ${SYMMETRY_TOLERANCE} of the largest element, ${deviation.max.toExponential(3)} Eh`,
-      mend: cure(),
+      mend,
     },
   ];
 }

@@ -46,11 +46,12 @@ export function convertTwoIndex(
       }
     }
   }
+  const mend = deviation.isBroken ? cure(stored, part, n, sign) : '';
   const expected = vector ? 'a real antisymmetric array (A of iA)' : 'a real symmetric array';
   return {
     values,
     findings: [
-      ...symmetryFinding(part, stored.origin, deviation, expected, () => cure(stored, part, n, sign)),
+      ...symmetryFinding(part, stored.origin, deviation, expected, mend),
       ...sectorFinding(part, stored.origin, otherDeviation.max, deviation.max, otherDeviation.at),
     ],
   };
