@@ -1,0 +1,74 @@
+import { describe, expect, it } from 'vitest';
+import { DEFAULT_VARIANTS, expandVariants, formatVariant, parseVariant } from '../../../core/encode';
+import { InputError } from '../../../core/job';
+
+const names = (list: string) => expandVariants(list).map(formatVariant);
+
+describe('variant names', () => {
+  it('read back as they are written', () => {
+    for (const variant of DEFAULT_VARIANTS) expect(parseVariant(formatVariant(variant))).toEqual(variant);
+  });
+
+  it('default to the seven of the design', () => {
+    expect(DEFAULT_VARIANTS.map(formatVariant)).toEqual([
+      'triplet/joint/index/median/clean',
+      'triplet/joint/swap-layers/median/clean',
+      'triplet/separate/index/median/clean',
+      'triplet/separate/swap-layers/median/clean',
+      'triplet/separate/swap-layers/none/clean',
+      'spinor/separate/index/median/clean',
+      'sparse/-/index/none/clean',
+    ]);
+  });
+
+  it('expand * over the values that make sense together', () => {
+    expect(names('triplet/joint/*/median/clean')).toEqual([
+      'triplet/joint/index/median/clean',
+      'triplet/joint/swap-layers/median/clean',
+    ]);
+    expect(names('*/*/swap-layers/none/plain')).toEqual([
+      'triplet/joint/swap-layers/none/plain',
+      'triplet/separate/swap-layers/none/plain',
+    ]);
+    expect(names('sparse/*/*/*/*')).toEqual([
+      'sparse/-/index/none/plain',
+      'sparse/-/index/none/clean',
+      'sparse/-/index/none/dirty',
+    ]);
+    // 2 groupings × 2 spins × 2 shifts × 3 look-ups, half of the spins for spinors, and 3 sparse ones.
+    expect(names('*/*/*/*/*')).toHaveLength(24 + 12 + 3);
+  });
+
+  it('come once each, in the order of first mention', () => {
+    expect(
+      names('sparse/-/index/none/clean, triplet/*/index/none/clean ,triplet/joint/index/none/clean'),
+    ).toEqual([
+      'sparse/-/index/none/clean',
+      'triplet/joint/index/none/clean',
+      'triplet/separate/index/none/clean',
+    ]);
+  });
+
+  it.each([
+    ['triplet/joint/index/median', 'five parts'],
+    ['triplets/joint/index/median/clean', 'one of sparse, triplet'],
+    ['triplet/-/index/median/clean', 'joint or separate'],
+    ['sparse/joint/index/none/clean', 'no factors to group'],
+    ['sparse/-/swap-layers/none/clean', 'swap layers with the sparse form'],
+    ['sparse/-/index/median/clean', 'median shift acts on the eigenvalues'],
+    ['spinor/joint/swap-layers/none/clean', 'mix both spins'],
+    ['compressed/joint/index/none/clean', 'does not make yet'],
+    ['triplet/joint/index/optimised/clean', 'does not make yet'],
+  ])('%s is refused with the reason', (name, reason) => {
+    for (const read of [parseVariant, expandVariants]) {
+      expect(() => read(name)).toThrow(InputError);
+      expect(() => read(name)).toThrow(reason);
+    }
+  });
+
+  it('a pattern that leaves nothing is refused, and so is * for one variant', () => {
+    expect(() => expandVariants('sparse/joint/*/*/*')).toThrow('no factors to group');
+    expect(() => expandVariants(' , ')).toThrow('no name');
+    expect(() => parseVariant('triplet/joint/*/none/clean')).toThrow('one value for each axis');
+  });
+});
