@@ -2,9 +2,13 @@ const MAX_SWEEPS = 60;
 
 /**
  * One-sided Jacobi (Hestenes): rotates the `count` rows of `x` (each `width` long) until they are orthogonal to
- * 4·2⁻⁵² relative; the same rotations go to the rows of `y` (count×count).
+ * 4·2⁻⁵² relative; the same rotations go to the rows of `y` (count×count). Rows shorter than 4·2⁻⁵² of the whole are
+ * rounding noise: they cannot be made orthogonal to that measure and are held to the length of the noise instead.
  */
 export function jacobiInPlace(x: Float64Array, y: Float64Array, count: number, width: number): void {
+  let total = 0;
+  for (let i = 0; i < count * width; i++) total += x[i] * x[i];
+  const noise = (4 * Number.EPSILON) ** 2 * total;
   for (let sweep = 0; sweep < MAX_SWEEPS; sweep++) {
     let rotated = false;
     for (let p = 0; p < count; p++) {
@@ -19,7 +23,8 @@ export function jacobiInPlace(x: Float64Array, y: Float64Array, count: number, w
           qq += x[rq + k] * x[rq + k];
           pq += x[rp + k] * x[rq + k];
         }
-        if (Math.abs(pq) <= 4 * Number.EPSILON * Math.sqrt(pp * qq)) continue;
+        if (Math.abs(pq) <= 4 * Number.EPSILON * Math.sqrt(Math.max(pp, noise) * Math.max(qq, noise)))
+          continue;
         rotated = true;
         const z = (qq - pp) / (2 * pq);
         const t = (z >= 0 ? 1 : -1) / (Math.abs(z) + Math.hypot(1, z));
