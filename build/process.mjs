@@ -4,6 +4,7 @@ import { existsSync } from 'node:fs';
 import { createRequire } from 'node:module';
 import { dirname, join } from 'node:path';
 import { fileURLToPath } from 'node:url';
+import { stripVTControlCharacters } from 'node:util';
 
 /** Root of the checkout. */
 export const ROOT = join(dirname(fileURLToPath(import.meta.url)), '..');
@@ -16,21 +17,24 @@ export const inRoot = (...parts) => join(ROOT, ...parts);
  * @param {string[]} args
  * @param {{ quiet?: boolean, cwd?: string, env?: Record<string, string> }} [options] quiet: collect the output
  *   instead of showing it.
- * @returns {Promise<{ code: number, output: string }>} code 128 + n where signal n ended the program.
+ * @returns {Promise<{ code: number, output: string }>} code 130 where a signal ended the program.
  */
 export function run(command, args, { quiet = false, cwd = ROOT, env = {} } = {}) {
   return new Promise((resolve, reject) => {
     const child = spawn(command, args, {
       cwd,
-      // Collected output is shown as plain text, wherever it ends up.
-      env: { ...process.env, ...(quiet ? { NO_COLOR: '1', FORCE_COLOR: '0' } : {}), ...env },
+      env: { ...process.env, ...env },
       stdio: quiet ? ['ignore', 'pipe', 'pipe'] : 'inherit',
     });
     const chunks = [];
     child.stdout?.on('data', (chunk) => chunks.push(chunk));
     child.stderr?.on('data', (chunk) => chunks.push(chunk));
     child.on('error', reject);
-    child.on('close', (code) => resolve({ code: code ?? 130, output: Buffer.concat(chunks).toString() }));
+    child.on('close', (code) => {
+      // Colours are dropped: some tools give them whether or not anyone can see them.
+      const output = stripVTControlCharacters(Buffer.concat(chunks).toString());
+      resolve({ code: code ?? 130, output });
+    });
   });
 }
 

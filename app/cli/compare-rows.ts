@@ -36,8 +36,10 @@ export const unitText = (unit: EnergyUnit): string => UNIT_TEXT[unit] ?? unit;
 /** The rows in the order of the table, without those that are empty in every column. */
 export function compareRows({ target, variants }: Comparison): CompareRow[] {
   const unit = unitText(target.unit);
-  const energy = (hartree: number): string =>
-    hartree === 0 ? '0' : formatSignificant(fromHartree(hartree, target.unit), 3);
+  const energy = (hartree: number): string => {
+    const value = fromHartree(hartree, target.unit);
+    return value > 0 && value < 0.001 ? '< 0.001' : formatSignificant(value, 3);
+  };
   const used = (part: StepPart): boolean => variants.some((v) => v.step.parts[part] !== 0);
   const rows: CompareRow[] = [
     counted(
