@@ -37,8 +37,8 @@ export function fileNote(origin: string, note: string): Finding {
     code: 'file-note',
     where: origin,
     found: note.replace(/\.$/, ''),
-    expected: 'nothing else',
-    mend: 'No action needed if this is intended.',
+    expected: 'your confirmation',
+    mend: 'No action is needed if this is what you mean.',
   };
 }
 

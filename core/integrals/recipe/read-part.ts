@@ -2,6 +2,7 @@ import { InputError, type JobContext } from '../../job';
 import type { Provenance } from '../integral-set';
 import type { RawArray, SpinFreeContents, SpinorContents } from '../raw';
 import {
+  type Format,
   type IndexList,
   readFcidump,
   readHdf5Dataset,
@@ -11,6 +12,7 @@ import {
   readTrexio,
   sniffFormat,
 } from '../readers';
+import { refuseEmpty } from '../readers/chunks';
 import type { ByteSource, FileSet, ReadPlatform } from '../source';
 import { nearest } from './nearest';
 import type { ResolvedPart } from './part';
@@ -57,9 +59,12 @@ export async function readPart(
   context: JobContext,
 ): Promise<PartContents> {
   const source = openFile(files, part.file);
+  refuseEmpty(source);
   const format = await sniffFormat(source);
   if (part.facts.numIndices === 0) {
-    if (format === 'fcidump') return readFcidump(source, context);
+    if (part.physicists && format !== 'hdf5') throw chemistsOnly(part);
+    // Of other text its reader says which line is no header.
+    if (format === 'fcidump' || format === 'text') return readFcidump(source, context);
     if (format === 'hdf5') return readTrexio(source, platform, context);
     throw wrongFormat(part, format, 'an FCIDUMP or a TREXIO file');
   }
@@ -108,6 +113,17 @@ export async function orbitalsFromArrays(
   return null;
 }
 
+/** A FCIDUMP lists each integral once, under any of its permutations: read in another order it loses some. */
+function chemistsOnly(part: ResolvedPart): InputError {
+  return new InputError({
+    code: 'index-order',
+    where: part.file,
+    found: `"order": "physicists" in part "${part.id}"`,
+    expected: 'chemists’ order, (pq|rs), which the FCIDUMP format fixes',
+    mend: 'Give ⟨pq|rs⟩ as an index-list with the role "two-electron", or write the FCIDUMP again.',
+  });
+}
+
 function requiredDataset(part: ResolvedPart): string {
   if (part.dataset !== null) return part.dataset;
   throw new InputError({
@@ -119,15 +135,30 @@ function requiredDataset(part: ResolvedPart): string {
   });
 }
 
-function wrongFormat(part: ResolvedPart, format: string, expected: string): InputError {
+const FORMATS: Readonly<Record<Format, string>> = {
+  fcidump: 'an FCIDUMP',
+  npy: 'a NumPy array (.npy)',
+  npz: 'a NumPy archive (.npz)',
+  hdf5: 'an HDF5 file',
+  json: 'a JSON file',
+  text: 'plain text',
+  compressed: 'a compressed file',
+  'utf-16': 'text in UTF-16',
+  unknown: 'no format known here',
+};
+
+const MENDS: Readonly<Partial<Record<Format, string>>> = {
+  text: 'For a text list set "layout": "index-list"; an array comes from numpy.save.',
+  compressed: 'Unpack it first.',
+  'utf-16': 'Save it as plain text or UTF-8.',
+};
+
+function wrongFormat(part: ResolvedPart, format: Format, expected: string): InputError {
   return new InputError({
     code: 'wrong-format',
     where: part.file,
-    found: format === 'unknown' ? 'no format known here' : `a file of format ${format}`,
+    found: FORMATS[format],
     expected: `${expected} for part "${part.id}" (role "${part.role}")`,
-    mend:
-      format === 'text'
-        ? 'For a text list set "layout": "index-list".'
-        : 'Correct role or file in the recipe.',
+    mend: MENDS[format] ?? 'Correct role or file in the recipe, or write the file again.',
   });
 }

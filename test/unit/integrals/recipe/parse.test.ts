@@ -255,7 +255,7 @@ describe('JSON as RFC 8259 has it', () => {
     ['cut short', '{"a": [1, 2', 'f:1:12', /end of the file/],
     ['text after the value', '{} {}', 'f:1:4', /nothing after/],
     ['bad escape', '["\\x"]', 'f:1:2', /valid escapes/],
-    ['nothing', '', 'f:1:1', /an empty file/],
+    ['nothing', '', 'f:1:1', /end of the file/],
     ['nested too deep', '['.repeat(70), 'f:1:66', /64 levels/],
   ])('%s', (_, text, where, message) => {
     let error: unknown;

@@ -201,6 +201,29 @@ describe('complex arrays', () => {
     expect(codes(set)).toEqual(['error time-reversal']);
   });
 
+  test.each<[string, number, Partial<RecipePart>]>([
+    ['Coulomb', 1, { role: 'two-electron' }],
+    ['two-electron spin–orbit', 0, { role: 'two-electron spin-orbit', components: ['z'] }],
+    ['their sum', 0, { role: 'two-electron spin-orbit summed', components: ['z'] }],
+  ])('four indices: the other sector in a %s array', async (_, wrongPlane, conventions) => {
+    const data = new Array<number>(2 * 2 ** 4).fill(0);
+    data[2 * 5 + wrongPlane] = 1e-3; // element (1 2|1 2)
+    const g: RecipePart = { id: 'g', role: 'two-electron', file: 'g.npy', value: 'complex', ...conventions };
+    const recipe = { orbitals: 2, electrons: 2 };
+    const set = await loadParts([g], recipe, { 'g.npy': npy([2, 2, 2, 2], data, true) }, null);
+    const finding = set.findings.find(({ code }) => code === 'time-reversal')!;
+    expect(finding.severity).toBe('error');
+    expect(finding.found).toContain('(1 2|1 2)');
+  });
+
+  test('a list with a real part in a spin–orbit array', async () => {
+    const text = '1e-5 1e-4 1 2\n';
+    const list = { columns: ['re', 'im', 'p', 'q'] } as const;
+    const so: RecipePart = { ...part, file: 'so.txt', layout: 'index-list', list };
+    const set = await loadParts([so], { orbitals: 2, electrons: 2 }, { 'so.txt': text }, null);
+    expect(codes(set)).toContain('error time-reversal');
+  });
+
   test('complex numbers under a real value are refused', async () => {
     await expect(
       loadParts([fcidump, { ...part, value: 'imaginary' }], {}, { 'c.npy': withReal(0) }),
@@ -230,6 +253,12 @@ describe('lists', () => {
       found: expect.stringContaining('on line 3'),
     });
     await expect(load(`${listed}1 1 2 2 0.5\n`)).resolves.toBeDefined();
+  });
+
+  test('a FCIDUMP is in chemists’ order by its format', async () => {
+    await expect(loadParts([{ ...fcidump, order: 'physicists' }])).rejects.toMatchObject({
+      code: 'index-order',
+    });
   });
 
   test('a partner with another value', async () => {
