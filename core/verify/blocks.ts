@@ -1,4 +1,7 @@
-import type { SectorMatrix, SparseHermitian } from './sector-matrix';
+import type { JobContext } from '../job';
+import { adjacencyOf } from './adjacency';
+import type { SectorMatrix } from './sector-matrix';
+import type { SparseHermitian } from './sparse-hermitian';
 
 /** An unconnected part of a sector's matrix, with the determinants it lives on. */
 export interface Block extends SparseHermitian {
@@ -12,7 +15,7 @@ export interface Block extends SparseHermitian {
  *
  * @returns blocks in ascending order of their first determinant; together they have the matrix' spectrum.
  */
-export function connectedBlocks(matrix: SectorMatrix): Block[] {
+export async function connectedBlocks(matrix: SectorMatrix, context: JobContext): Promise<Block[]> {
   const { dim, start, row } = matrix;
   const parent = Uint32Array.from({ length: dim }, (_, i) => i);
   const root = (i: number): number => {
@@ -37,7 +40,14 @@ export function connectedBlocks(matrix: SectorMatrix): Block[] {
     position[i] = list.length;
     list.push(i);
   }
-  return [...members.values()].map((list) => extract(matrix, list, position));
+  const blocks: Block[] = [];
+  for (const list of members.values()) {
+    await context.checkpoint();
+    const block = extract(matrix, list, position);
+    await context.checkpoint();
+    blocks.push(block.im.length > 0 ? madeReal(block) : block);
+  }
+  return blocks;
 }
 
 function extract(matrix: SectorMatrix, list: readonly number[], position: Uint32Array): Block {
@@ -60,8 +70,7 @@ function extract(matrix: SectorMatrix, list: readonly number[], position: Uint32
   }
   const diagonal = Float64Array.from(list, (i) => matrix.diagonal[i]!);
   const states = Uint32Array.from(list, (i) => matrix.basis.states[i]!);
-  const block = { dim, states, diagonal, start, row, re, im };
-  return complex ? madeReal(block) : block;
+  return { dim, states, diagonal, start, row, re, im };
 }
 
 /**
@@ -71,25 +80,18 @@ function extract(matrix: SectorMatrix, list: readonly number[], position: Uint32
 function madeReal(block: Block): Block {
   const { dim, start, row, re, im } = block;
   for (let e = 0; e < row.length; e++) if (re[e] !== 0 && im[e] !== 0) return block;
-  const neighbours: number[][] = Array.from({ length: dim }, () => []);
-  for (let j = 0; j < dim; j++) {
-    for (let e = start[j]!; e < start[j + 1]!; e++) {
-      const turned = im[e] !== 0 ? 1 : 0;
-      neighbours[j]!.push(2 * row[e]! + turned);
-      neighbours[row[e]!]!.push(2 * j + turned);
-    }
-  }
+  const links = adjacencyOf(block);
   const turns = new Int8Array(dim).fill(-1);
   turns[0] = 0;
-  const queue = [0];
-  for (let i = queue.pop(); i !== undefined; i = queue.pop()) {
-    for (const code of neighbours[i]!) {
-      const expected = turns[i]! ^ (code & 1);
-      const other = code >> 1;
-      if (turns[other] === -1) {
-        turns[other] = expected;
-        queue.push(other);
-      } else if (turns[other] !== expected) return block;
+  const stack = [0];
+  for (let j = stack.pop(); j !== undefined; j = stack.pop()) {
+    for (let at = links.start[j]!; at < links.start[j + 1]!; at++) {
+      const expected = turns[j]! ^ (im[links.element[at]!] !== 0 ? 1 : 0);
+      const i = links.row[at]!;
+      if (turns[i] === -1) {
+        turns[i] = expected;
+        stack.push(i);
+      } else if (turns[i] !== expected) return block;
     }
   }
   // Element (i, j) times (−i)^t_i i^t_j: an imaginary y becomes y where the row is turned, −y where the column is.

@@ -1,3 +1,4 @@
+export { simulatedBlock } from './block-encoding';
 export {
   type DeterminantEnergies,
   determinantEnergies,
@@ -6,7 +7,9 @@ export {
 export { binomial, type SectorBasis, sectorBasis } from './determinants';
 export { type Form, fockMatrix, oneBodyFockMatrix, spinorFockMatrix } from './fock';
 export { REFERENCE_LEVELS, referenceEigenvalues } from './reference';
-export { MAX_SECTOR_DIMENSION, type SectorMatrix, type SparseHermitian, sectorMatrix } from './sector-matrix';
+export { MAX_SECTOR_DIMENSION, type SectorMatrix, sectorMatrix } from './sector-matrix';
 export { multiplySparse } from './sparse';
+export type { SparseHermitian } from './sparse-hermitian';
 export { type SpectralRange, type SpectralRangeOptions, spectralRange } from './spectral-range';
 export { exactSpectrum, type Spectrum, type SpectrumOptions } from './spectrum';
+export { programOperator } from './program-operator';

@@ -7,8 +7,8 @@ import {
   symmetricEigen,
   symmetricEigenvalues,
 } from '../linalg';
-import type { SparseHermitian } from './sector-matrix';
 import { denseMatrix, denseSubmatrix, multiplySparse } from './sparse';
+import type { SparseHermitian } from './sparse-hermitian';
 
 /** Up to here all eigenvalues of a block are computed at once; above, the lowest by iteration. */
 const DENSE_REAL = 500;

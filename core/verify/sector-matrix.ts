@@ -6,22 +6,9 @@ import {
   spinorFromProductForm,
 } from '../hamiltonian';
 import { InputError, type JobContext } from '../job';
-import { binomial, countBits, type SectorBasis, sectorBasis } from './determinants';
+import { binomial, type SectorBasis, sectorBasis } from './determinants';
 import type { Form } from './fock';
-
-/**
- * Hermitian matrix by its diagonal and the elements below it, column by column: column j holds the rows
- * `row[start[j]…start[j+1])`, all larger than j.
- */
-export interface SparseHermitian {
-  readonly dim: number;
-  readonly diagonal: Float64Array;
-  readonly start: Uint32Array;
-  readonly row: Uint32Array;
-  readonly re: Float64Array;
-  /** Length 0 for a real matrix. */
-  readonly im: Float64Array;
-}
+import { Columns, type SparseHermitian } from './sparse-hermitian';
 
 export interface SectorMatrix extends SparseHermitian {
   readonly basis: SectorBasis;
@@ -89,7 +76,7 @@ interface Integrals {
   readonly m: number;
   readonly h: SpinorHamiltonian['h'];
   readonly g: SpinorHamiltonian['g'];
-  /** For annihilated Q < S: the disjoint created P < R with V = g_PQRS − g_PSRQ not zero. */
+  /** For annihilated Q < S: the other created P < R, R > S, with ±(g_PQRS − g_PSRQ) not zero. */
   readonly doubles: readonly {
     readonly p: Uint8Array;
     readonly r: Uint8Array;
@@ -110,8 +97,8 @@ function integralsOf(spinor: SpinorHamiltonian, h: SpinorHamiltonian['h']): Inte
   for (let S = 0; S < m; S++) {
     for (let Q = 0; Q < S; Q++) {
       const [p, r, re, im]: [number[], number[], number[], number[]] = [[], [], [], []];
-      for (let R = 0; R < m; R++) {
-        if (R === Q || R === S) continue;
+      // R > S makes the new state the larger one: the lower triangle of the matrix is enough.
+      for (let R = S + 1; R < m; R++) {
         for (let P = 0; P < R; P++) {
           if (P === Q || P === S) continue;
           const direct = ((P * m + Q) * m + R) * m + S;
@@ -119,10 +106,12 @@ function integralsOf(spinor: SpinorHamiltonian, h: SpinorHamiltonian['h']): Inte
           const x = g.re[direct]! - g.re[exchange]!;
           const y = g.im[direct]! - g.im[exchange]!;
           if (Math.abs(x) <= cut && Math.abs(y) <= cut) continue;
+          // Sign of a†_P a†_R a_S a_Q over the signs of the four modes in the untouched state.
+          const sign = Q < P === S < P ? -1 : 1;
           p.push(P);
           r.push(R);
-          re.push(x);
-          im.push(y);
+          re.push(sign * x);
+          im.push(sign * y);
         }
       }
       doubles.push({
@@ -136,9 +125,6 @@ function integralsOf(spinor: SpinorHamiltonian, h: SpinorHamiltonian['h']): Inte
   return { m, h, g, doubles, cut };
 }
 
-/** (−1)^(electrons in modes below P). */
-const signBelow = (state: number, P: number): number => 1 - 2 * (countBits(state & ((1 << P) - 1)) & 1);
-
 async function fill(
   integrals: Integrals,
   basis: SectorBasis,
@@ -150,21 +136,24 @@ async function fill(
   const out = new Columns(dim);
   const diagonal = new Float64Array(dim);
   const occupied = new Uint8Array(electrons);
+  const sign = new Int8Array(m);
   for (let column = 0; column < dim; column++) {
     if (column % 64 === 0) {
       context.report('determinants', column, dim);
       await context.checkpoint();
     }
     const state = states[column]!;
-    for (let P = 0, i = 0; P < m; P++) if ((state >>> P) & 1) occupied[i++] = P;
+    // sign[P] = (−1)^(electrons below P).
+    for (let P = 0, i = 0; P < m; P++) {
+      sign[P] = 1 - 2 * (i & 1);
+      if ((state >>> P) & 1) occupied[i++] = P;
+    }
     diagonal[column] = constant + diagonalElement(integrals, occupied);
     // Singles Q → P, with the field of the other electrons.
     for (let i = 0; i < electrons; i++) {
       const Q = occupied[i]!;
       const rest = state ^ (1 << Q);
-      const signQ = signBelow(state, Q);
       for (let P = Q + 1; P < m; P++) {
-        // A larger state only: the lower triangle is enough.
         if ((state >>> P) & 1) continue;
         let x = h.re[P * m + Q]!;
         let y = h.im[P * m + Q]!;
@@ -176,8 +165,9 @@ async function fill(
           x += g.re[direct]! - g.re[exchange]!;
           y += g.im[direct]! - g.im[exchange]!;
         }
-        const sign = signQ * signBelow(rest, P);
-        out.push(basis.rank(rest | (1 << P)), sign * x, sign * y, cut);
+        // The electron taken from Q < P no longer counts below P.
+        const phase = -sign[Q]! * sign[P]!;
+        out.push(basis.rank((rest | (1 << P)) >>> 0), phase * x, phase * y, cut);
       }
     }
     // Doubles Q, S → P, R.
@@ -186,18 +176,15 @@ async function fill(
       for (let i = 0; i < j; i++) {
         const Q = occupied[i]!;
         const list = doubles[(S * (S - 1)) / 2 + Q]!;
-        const less = state ^ (1 << Q);
-        const rest = less ^ (1 << S);
-        const signQS = signBelow(state, Q) * signBelow(less, S);
+        const rest = state ^ (1 << Q) ^ (1 << S);
+        const signQS = sign[Q]! * sign[S]!;
         for (let d = 0; d < list.p.length; d++) {
           const P = list.p[d]!;
           const R = list.r[d]!;
           if ((rest >>> P) & 1 || (rest >>> R) & 1) continue;
-          const withR = rest | (1 << R);
-          const target = (withR | (1 << P)) >>> 0;
-          if (target < state) continue;
-          const sign = signQS * signBelow(rest, R) * signBelow(withR, P);
-          out.push(basis.rank(target), sign * list.re[d]!, sign * list.im[d]!, cut);
+          const phase = signQS * sign[P]! * sign[R]!;
+          const target = (rest | (1 << P) | (1 << R)) >>> 0;
+          out.push(basis.rank(target), phase * list.re[d]!, phase * list.im[d]!, cut);
         }
       }
     }
@@ -220,61 +207,4 @@ function diagonalElement({ m, h, g }: Integrals, occupied: Uint8Array): number {
     }
   }
   return sum;
-}
-
-/** Growing store of the elements below the diagonal. */
-class Columns {
-  private readonly start: Uint32Array;
-  private row: Uint32Array<ArrayBuffer>;
-  private re: Float64Array<ArrayBuffer>;
-  private im: Float64Array<ArrayBuffer>;
-  private size = 0;
-  private real = true;
-
-  constructor(private readonly dim: number) {
-    this.start = new Uint32Array(dim + 1);
-    const first = Math.max(16, 32 * dim);
-    this.row = new Uint32Array(first);
-    this.re = new Float64Array(first);
-    this.im = new Float64Array(first);
-  }
-
-  push(row: number, x: number, y: number, cut: number): void {
-    const re = Math.abs(x) > cut ? x : 0;
-    const im = Math.abs(y) > cut ? y : 0;
-    if (re === 0 && im === 0) return;
-    if (this.size === this.row.length) this.grow();
-    this.row[this.size] = row;
-    this.re[this.size] = re;
-    this.im[this.size] = im;
-    if (im !== 0) this.real = false;
-    this.size++;
-  }
-
-  closeColumn(column: number): void {
-    this.start[column + 1] = this.size;
-  }
-
-  finish(diagonal: Float64Array): SparseHermitian {
-    const { dim, start, size } = this;
-    return {
-      dim,
-      diagonal,
-      start,
-      row: this.row.slice(0, size),
-      re: this.re.slice(0, size),
-      im: this.real ? new Float64Array(0) : this.im.slice(0, size),
-    };
-  }
-
-  private grow(): void {
-    const length = Math.ceil(1.5 * this.row.length);
-    const copy = <T extends Uint32Array | Float64Array>(from: T, to: T): T => {
-      to.set(from);
-      return to;
-    };
-    this.row = copy(this.row, new Uint32Array(length));
-    this.re = copy(this.re, new Float64Array(length));
-    this.im = copy(this.im, new Float64Array(length));
-  }
 }

@@ -1,5 +1,5 @@
 import type { Planes } from '../linalg';
-import type { SparseHermitian } from './sector-matrix';
+import type { SparseHermitian } from './sparse-hermitian';
 
 /** y = H x. */
 export function multiplySparse(matrix: SparseHermitian, x: Planes, y: Planes): void {

@@ -16,9 +16,8 @@ export async function splitSector(
 ): Promise<{ readonly blocks: readonly Block[]; readonly bound: number }> {
   const blocks: Block[] = [];
   let rounding = 0;
-  for (const block of connectedBlocks(matrix)) {
-    await context.checkpoint();
-    const split = block.dim >= WORTH_SPLITTING ? splitByMirror(block) : null;
+  for (const block of await connectedBlocks(matrix, context)) {
+    const split = block.dim >= WORTH_SPLITTING ? await splitByMirror(block, context) : null;
     blocks.push(...(split?.parts ?? [block]));
     rounding = Math.max(rounding, split?.bound ?? 0);
   }

@@ -19,14 +19,14 @@ async function realBlocks(): Promise<Block[]> {
     planes.fill(0, 16, 32);
     planes.fill(0, 48, 64);
   }
-  return connectedBlocks(await sectorMatrix(hamiltonian, 4, 'product', inlineContext()));
+  return connectedBlocks(await sectorMatrix(hamiltonian, 4, 'product', inlineContext()), inlineContext());
 }
 
 describe('spin reversal', () => {
   it('splits a real block into two without changing its spectrum', async () => {
     const blocks = await realBlocks();
     expect(blocks.map(({ dim, im }) => [dim, im.length])).toEqual([[70, 0]]);
-    const split = splitByMirror(blocks[0]!)!;
+    const split = (await splitByMirror(blocks[0]!, inlineContext()))!;
     expect(split.parts).toHaveLength(2);
     expect(split.parts[0]!.dim + split.parts[1]!.dim).toBe(70);
     expect(Math.min(split.parts[0]!.dim, split.parts[1]!.dim)).toBeGreaterThan(20);
@@ -40,6 +40,6 @@ describe('spin reversal', () => {
     // Not the first: its image is another determinant.
     const lone = block!.states.findIndex((state) => (state & 0x55) << 1 !== (state & 0xaa));
     diagonal[lone]! += 1e-6;
-    expect(splitByMirror({ ...block!, diagonal })).toBeNull();
+    expect(await splitByMirror({ ...block!, diagonal }, inlineContext())).toBeNull();
   });
 });
