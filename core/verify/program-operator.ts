@@ -1,0 +1,117 @@
+import type { RowFace, TripletProgram, TripletRow } from '../encode';
+import {
+  isSymmetricPlane,
+  type Sector,
+  type TripletOperator,
+  toSpinOrbitals,
+  zeroOperator,
+} from '../hamiltonian';
+import type { ComplexMatrix } from '../linalg';
+import type { SectorBasis } from './determinants';
+import { oneBodyFockMatrix } from './fock';
+
+/**
+ * H − constant that a triplet program stands for, on the determinants of a sector: dense, from the meaning of rows
+ * and squares on the whole Fock space, so that emitted circuits can be held against it. N ≤ 4.
+ */
+export function programOperator(program: TripletProgram, basis: SectorBasis): ComplexMatrix {
+  const n = program.orbitals;
+  const total = zeros(basis.dim);
+  addScaled(total, rowsOperator(n, program.oneBody, 0, 1, basis), 1);
+  for (const item of program.items) {
+    for (const [face, lambda] of item.lambda.entries()) {
+      const norm = item.rows.reduce((sum, row) => sum + row.faces[face]!.weight, 0);
+      for (const square of item.paired ? [1, -1] : [1]) {
+        const m = rowsOperator(n, item.rows, face, item.paired ? square : 1, basis);
+        const share = (item.sign * square * lambda) / (item.paired ? 2 : 1);
+        addScaled(total, adjointTimes(m), (2 * share) / norm ** 2);
+        for (let i = 0; i < basis.dim; i++) total.re[i * basis.dim + i]! -= share;
+      }
+    }
+  }
+  return total;
+}
+
+/**
+ * Σ rows weight·op. Rows hold traceless Majorana products only: an S row of charge lacks the identity, and an A row
+ * of charge has the scalar i u·v where rounding left its vectors not quite orthogonal.
+ *
+ * @param pairSign - sign of the A rows: −1 in the second square of a pair
+ */
+function rowsOperator(
+  n: number,
+  rows: readonly TripletRow[],
+  face: number,
+  pairSign: number,
+  basis: SectorBasis,
+): ComplexMatrix {
+  const sectors: Record<Sector, TripletOperator> = {
+    even: zeroOperator('even', n),
+    odd: zeroOperator('odd', n),
+  };
+  let re = 0;
+  let im = 0;
+  for (const row of rows) {
+    const { mu, weight, sign } = row.faces[face] as RowFace;
+    const scale = weight * sign * (row.kind === 'A' ? pairSign : 1);
+    const sector: Sector = isSymmetricPlane('even', mu) === (row.kind === 'S') ? 'even' : 'odd';
+    const { planes } = sectors[sector];
+    for (let p = 0; p < n; p++) {
+      for (let q = 0; q < n; q++) {
+        planes[(mu * n + p) * n + q]! +=
+          row.kind === 'S'
+            ? scale * row.u[p]! * row.u[q]!
+            : (scale / 2) * (row.u[p]! * row.v[q]! - row.v[p]! * row.u[q]!);
+      }
+    }
+    if (mu !== 0) continue;
+    if (row.kind === 'S') re -= scale;
+    else im += scale * row.u.reduce((sum, x, p) => sum + x * row.v[p]!, 0);
+  }
+  const out = zeros(basis.dim);
+  for (const operator of Object.values(sectors))
+    addScaled(out, restrict(oneBodyFockMatrix(toSpinOrbitals(operator)), basis), 1);
+  for (let i = 0; i < basis.dim; i++) {
+    out.re[i * basis.dim + i]! += re;
+    out.im[i * basis.dim + i]! += im;
+  }
+  return out;
+}
+
+function restrict(full: ComplexMatrix, { dim, states }: SectorBasis): ComplexMatrix {
+  const out = zeros(dim);
+  for (let i = 0; i < dim; i++) {
+    for (let j = 0; j < dim; j++) {
+      out.re[i * dim + j] = full.re[states[i]! * full.n + states[j]!]!;
+      out.im[i * dim + j] = full.im[states[i]! * full.n + states[j]!]!;
+    }
+  }
+  return out;
+}
+
+/** M†M. */
+function adjointTimes(m: ComplexMatrix): ComplexMatrix {
+  const { n } = m;
+  const out = zeros(n);
+  for (let i = 0; i < n; i++) {
+    for (let j = 0; j < n; j++) {
+      for (let k = 0; k < n; k++) {
+        const [a, b, c, d] = [m.re[k * n + i]!, -m.im[k * n + i]!, m.re[k * n + j]!, m.im[k * n + j]!];
+        out.re[i * n + j]! += a * c - b * d;
+        out.im[i * n + j]! += a * d + b * c;
+      }
+    }
+  }
+  return out;
+}
+
+function zeros(n: number): ComplexMatrix {
+  return { n, re: new Float64Array(n * n), im: new Float64Array(n * n) };
+}
+
+function addScaled(target: ComplexMatrix, a: ComplexMatrix, scale: number): void {
+  for (let i = 0; i < a.re.length; i++) {
+    target.re[i]! += scale * a.re[i]!;
+    target.im[i]! += scale * a.im[i]!;
+  }
+}

@@ -1,0 +1,160 @@
+import fc from 'fast-check';
+import { expect, it } from 'vitest';
+import { GateCounter } from '../../core/circuit/gates/counter';
+import { Machine } from '../../core/circuit/gates/machine';
+import {
+  type AliasTable,
+  aliasSampling,
+  aliasSamplingToffoli,
+  aliasTable,
+} from '../../core/circuit/primitives/alias-sampling';
+import { countBlocks } from '../../core/circuit/primitives/look-up';
+import {
+  controlledHadamard,
+  flipZeros,
+  hadamards,
+  reflectionToffoli,
+} from '../../core/circuit/primitives/reflection';
+import { firstAddresses } from '../../core/circuit/primitives/unary-iteration';
+import { SparseState } from '../../core/circuit/simulate/sparse-state';
+
+const read = (isSet: (w: number) => boolean, wires: readonly number[]) =>
+  wires.reduce((sum, w, i) => sum + (isSet(w) ? 2 ** i : 0), 0);
+
+const weightLists = fc.array(fc.double({ min: 0, max: 1, noNaN: true }), { minLength: 1, maxLength: 13 });
+
+function build(machine: Machine, table: AliasTable, read: number, erase: number) {
+  const { indexBits: n, keepBits } = table;
+  const index = machine.allocateRegister(n);
+  const wires = {
+    uniform: machine.allocateRegister(keepBits),
+    output: machine.allocateRegister((n + keepBits) * read),
+    carries: machine.allocateRegister(keepBits),
+  };
+  const source = {
+    address: index,
+    addresses: firstAddresses(2 ** n),
+    alternate: (a: number) => table.alternate[a]!,
+    keep: (a: number) => table.keep[a]!,
+  };
+  return { index, wires, operation: aliasSampling(index, wires, source, { read, erase }) };
+}
+
+it('an alias table rounds weights to its grid: off by less than one unit, and exact in sum', () => {
+  fc.assert(
+    fc.property(weightLists, fc.integer({ min: 1, max: 8 }), (weights, keepBits) => {
+      fc.pre(weights.some((w) => w > 1e-9));
+      const table = aliasTable(weights, 4, keepBits);
+      const sum = weights.reduce((a, b) => a + b, 0);
+      const unit = 2 ** -(4 + keepBits);
+      expect(table.probabilities.reduce((a, b) => a + b, 0)).toBe(1);
+      weights.forEach((w, i) => {
+        expect(Math.abs(table.probabilities[i]! - w / sum)).toBeLessThan(unit * 1.0001);
+      });
+      // What the buckets hand out is what is listed.
+      const out = new Float64Array(16);
+      for (let i = 0; i < 16; i++) {
+        const kept = table.alternate[i] === i ? 2 ** keepBits : table.keep[i]!;
+        out[i]! += kept * unit;
+        out[table.alternate[i]!]! += (2 ** keepBits - kept) * unit;
+      }
+      for (let i = 0; i < 16; i++) expect(out[i]).toBeCloseTo(table.probabilities[i]!, 14);
+    }),
+  );
+});
+
+it('the circuit samples the table, comes back to zero, and costs what the formula says', () => {
+  fc.assert(
+    fc.property(
+      weightLists,
+      fc.integer({ min: 1, max: 4 }),
+      fc.constantFrom(1, 2, 4),
+      fc.constantFrom(1, 2, 4),
+      fc.constantFrom<'random' | 0 | 1>('random', 0, 1),
+      (weights, keepBits, readBlock, eraseBlock, outcomes) => {
+        fc.pre(weights.some((w) => w > 1e-9));
+        const table = aliasTable(weights, 4, keepBits);
+        const state = new SparseState({ maxWires: 96, outcomes });
+        const machine = new Machine(state);
+        const { index, wires, operation } = build(machine, table, readBlock, eraseBlock);
+        hadamards(index).run(machine);
+        operation.run(machine);
+        const probability = new Float64Array(16);
+        state.visit((isSet, re, im) => {
+          probability[read(isSet, index)]! += re * re + im * im;
+        });
+        for (let i = 0; i < 16; i++) expect(probability[i]).toBeCloseTo(table.probabilities[i]!, 12);
+        operation.runAdjoint(machine);
+        hadamards(index).run(machine);
+        for (const register of [index, wires.uniform, wires.output, wires.carries]) {
+          machine.releaseRegister(register);
+        }
+        state.visit((_, re) => {
+          expect(re).toBeCloseTo(1, 12);
+        });
+
+        const all = firstAddresses(16);
+        const expected = aliasSamplingToffoli(
+          { read: countBlocks(all, readBlock), erase: countBlocks(all, eraseBlock) },
+          4,
+          keepBits,
+          { read: readBlock, erase: eraseBlock },
+        );
+        for (const [direction, cost] of [
+          ['run', expected.prepare],
+          ['runAdjoint', expected.unprepare],
+        ] as const) {
+          const counter = new GateCounter();
+          const counting = new Machine(counter);
+          build(counting, table, readBlock, eraseBlock).operation[direction](counting);
+          expect(GateCounter.total(counter.root).toffoli).toBe(cost);
+        }
+      },
+    ),
+    { numRuns: 60 },
+  );
+});
+
+it('flips the sign of the all-zero state only, where it is switched on', () => {
+  for (let n = 1; n <= 5; n++) {
+    for (const ones of [0, 1]) {
+      const counter = new GateCounter();
+      const counting = new Machine(counter);
+      flipZeros(counting.allocateRegister(n), counting.allocateRegister(ones)).run(counting);
+      expect(GateCounter.total(counter.root).toffoli).toBe(reflectionToffoli(n + ones));
+      const state = new SparseState();
+      const machine = new Machine(state);
+      const zeros = machine.allocateRegister(n);
+      const switches = machine.allocateRegister(ones);
+      hadamards([...zeros, ...switches]).run(machine);
+      flipZeros(zeros, switches).run(machine);
+      state.visit((isSet, re) => {
+        const flipped = read(isSet, zeros) === 0 && switches.every((w) => isSet(w));
+        expect(Math.sign(re)).toBe(flipped ? -1 : 1);
+      });
+    }
+  }
+});
+
+it('a controlled Hadamard is one, with two T gates', () => {
+  for (const on of [0, 1]) {
+    for (const start of [0, 1]) {
+      const state = new SparseState();
+      const machine = new Machine(state);
+      const [control, target] = machine.allocateRegister(2) as [number, number];
+      if (on) machine.gate('X', control);
+      if (start) machine.gate('X', target);
+      controlledHadamard(control, target).run(machine);
+      if (on) machine.gate('H', target);
+      state.visit((isSet, re, im) => {
+        expect(isSet(target)).toBe(start === 1);
+        expect(re).toBeCloseTo(1, 12);
+        expect(im).toBeCloseTo(0, 12);
+      });
+    }
+  }
+  const counter = new GateCounter();
+  const machine = new Machine(counter);
+  controlledHadamard(machine.allocate(), machine.allocate()).run(machine);
+  expect(GateCounter.total(counter.root)).toMatchObject({ toffoli: 0, t: 2 });
+});
