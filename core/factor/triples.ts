@@ -17,7 +17,13 @@ interface SvdInput {
 /** Singular triples of one block of one Cartesian component. */
 export const svdTask: Task<SvdInput, SingularValues> = {
   name: 'factor.svd',
-  run: ({ rows, cols, a }, ctx) => singularValues(a, rows, cols, ctx, { tolerance: 0 }),
+  run({ rows, cols, a }, ctx) {
+    // The tolerance is relative to the largest s, which the Frobenius norm bounds from above.
+    let square = 0;
+    for (const x of a) square += x * x;
+    const tolerance = square > 0 ? ZERO_WEIGHT / Math.sqrt(square) : 0;
+    return singularValues(a, rows, cols, ctx, { tolerance });
+  },
 };
 
 /**
