@@ -4,6 +4,15 @@ import { FIELD, FieldScanner } from './field-scanner';
 /** What the four indices of a line say the value is. */
 export type EntryKind = 'two-electron' | 'one-electron' | 'orbital-energy' | 'constant';
 
+const CUT_SHORT = 'Correct this line; if it is the last one, the file was cut short: write or copy it again.';
+const TOO_NARROW =
+  'Fortran writes stars where a field is too narrow: write the file again with a wider format.';
+const MENDS: Readonly<Record<string, string>> = {
+  'index-out-of-range': 'Correct NORB in the header or this line.',
+  'bad-indices': 'Indices count from 1 and 0 stands for none: correct this line, or write the file again.',
+  'not-finite': 'Compute the integrals again: the program that wrote them divided by zero or overflowed.',
+};
+
 /**
  * One line of integrals: `value i j k l`, or `(re,im) i j k l`. Fields are overwritten by each line; indices
  * are 1-based, 0 where the line has none.
@@ -78,7 +87,7 @@ export class EntryParser {
       throw this.problem('bad-index', line, `"${scanner.text()}"`, 'a whole number as index');
     }
     if (scanner.value < 0 || scanner.value > this.orbitals) {
-      const expected = `an index from 0 to NORB=${this.orbitals}`;
+      const expected = `an index from 1 to NORB=${this.orbitals}, or 0 for none`;
       throw this.problem('index-out-of-range', line, `index ${scanner.text()}`, expected);
     }
     return scanner.value;
@@ -89,10 +98,7 @@ export class EntryParser {
   }
 
   private problem(code: string, line: number, found: string, expected: string): InputError {
-    const mend =
-      code === 'index-out-of-range'
-        ? 'Correct NORB in the header or this line.'
-        : 'Correct this line; if it is the last one, the file was cut short: write or copy it again.';
+    const mend = MENDS[code] ?? (found.startsWith('"**') ? TOO_NARROW : CUT_SHORT);
     return new InputError({ code, where: `${this.path}:${line}`, found, expected, mend });
   }
 }

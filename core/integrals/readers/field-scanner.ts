@@ -47,7 +47,7 @@ export class FieldScanner {
   text(): string {
     const { bytes, end, start } = this;
     let stop = start;
-    while (stop < end && !isBlank(bytes[stop])) stop++;
+    while (stop < end && !(stop > start ? isEnd(bytes[stop]) : isBlank(bytes[stop]))) stop++;
     const clipped = bytes.subarray(start, Math.min(stop, start + 40));
     const shown = Array.from(clipped, (c) =>
       c >= 32 && c < 127 ? String.fromCharCode(c) : `\\x${c.toString(16).padStart(2, '0')}`,

@@ -56,7 +56,12 @@ export async function readNumbers(
   });
 }
 
-export function noSuchDataset(file: Hdf5File, origin: string, path: string): InputError {
+export function noSuchDataset(
+  file: Hdf5File,
+  origin: string,
+  path: string,
+  mend = 'Correct the dataset in the recipe, or name another file.',
+): InputError {
   const known = file.datasets();
   const shown = known.length > 12 ? `${known.slice(0, 12).join(', ')}, …` : known.join(', ');
   return new InputError({
@@ -64,6 +69,6 @@ export function noSuchDataset(file: Hdf5File, origin: string, path: string): Inp
     where: `${origin}:${path}`,
     found: 'no such dataset',
     expected: known.length === 0 ? 'a file with datasets' : `one of ${shown}`,
-    mend: 'Correct the dataset in the recipe, or name another file.',
+    mend,
   });
 }

@@ -54,6 +54,15 @@ type Column =
   | { readonly kind: 'component' | 're' | 'im' }
   | { readonly kind: 'index'; readonly position: number; readonly name: string };
 
+const MENDS: Readonly<Record<string, string>> = {
+  'index-out-of-range': 'Correct this line, or the number of orbitals in the recipe.',
+  'index-zero':
+    'If the list counts from 0, set "base": 0 under "list" in the recipe; else correct this line.',
+  'too-few-fields':
+    'Correct this line, or the columns in the recipe; if it is the last line, the file was cut short.',
+  'not-finite': 'Compute the integrals again: the program that wrote them divided by zero or overflowed.',
+};
+
 class ListReader {
   private readonly scanner = new FieldScanner();
   private readonly columns: readonly Column[];
@@ -143,7 +152,8 @@ class ListReader {
     const limit = format.orbitals ?? 400;
     if (index >= 0 && index < limit) return index;
     const expected = `an index from ${format.base} to ${limit - 1 + format.base}`;
-    throw this.problem('index-out-of-range', line, `index ${name} = ${scanner.text()}`, expected);
+    const mend = scanner.value === 0 ? MENDS['index-zero'] : MENDS['index-out-of-range'];
+    throw this.problem('index-out-of-range', line, `index ${name} = ${scanner.text()}`, expected, mend);
   }
 
   private component(line: number): number {
@@ -178,11 +188,13 @@ class ListReader {
     return `lines "${this.format.columns.join(' ')}"`;
   }
 
-  private problem(code: string, line: number, found: string, expected: string): InputError {
-    const mend =
-      code === 'index-out-of-range'
-        ? 'Correct this line, or the base or the number of orbitals in the recipe.'
-        : 'Correct this line, or the columns in the recipe.';
+  private problem(
+    code: string,
+    line: number,
+    found: string,
+    expected: string,
+    mend = MENDS[code] ?? 'Correct this line, or the columns in the recipe.',
+  ): InputError {
     return new InputError({ code, where: `${this.path}:${line}`, found, expected, mend });
   }
 }

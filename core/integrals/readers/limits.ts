@@ -39,7 +39,13 @@ export function refuseTraps(where: string, packed: number, unfolded: number): vo
   });
 }
 
-/** @throws InputError `not-finite` naming the first element that is NaN or infinite. */
+/** A product with this overflows for what no unit makes of an integral: |x| > 1.8e28. */
+const OVERFLOWING = 1e280;
+
+/**
+ * @throws InputError `not-finite` naming the first element that is NaN or infinite, or `byte-order` for one so
+ *   large that the bytes must be those of something else.
+ */
 export function requireFinite(
   where: string,
   data: Float64Array,
@@ -48,9 +54,10 @@ export function requireFinite(
 ): void {
   // A sum is finite only if every term is: one pass without a branch settles the usual case.
   let sum = 0;
-  for (let i = 0; i < data.length; i++) sum += data[i] * 0;
+  for (let i = 0; i < data.length; i++) sum += data[i] * OVERFLOWING * 0;
   if (sum === 0) return;
-  const at = data.findIndex((value) => !Number.isFinite(value));
+  const at = data.findIndex((value) => !Number.isFinite(value * OVERFLOWING));
+  const huge = Number.isFinite(data[at]);
   let rest = complex ? Math.floor(at / 2) : at;
   const index: number[] = [];
   for (let axis = shape.length - 1; axis >= 0; axis--) {
@@ -58,10 +65,12 @@ export function requireFinite(
     rest = Math.floor(rest / shape[axis]);
   }
   throw new InputError({
-    code: 'not-finite',
+    code: huge ? 'byte-order' : 'not-finite',
     where: `${where}[${index.join(', ')}]`,
-    found: String(data[at]),
-    expected: 'a finite number',
-    mend: 'Compute the integrals again; the program that wrote them divided by zero or overflowed.',
+    found: huge ? data[at].toExponential(3) : String(data[at]),
+    expected: huge ? 'the size of an integral in any unit' : 'a finite number',
+    mend: huge
+      ? 'The file states another byte order or number type than it has: save the array again.'
+      : 'Compute the integrals again; the program that wrote them divided by zero or overflowed.',
   });
 }

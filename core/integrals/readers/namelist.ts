@@ -7,6 +7,10 @@ const MAX_LEADING_LINES = 1000;
 /** A line of integrals where the header should go on: a number with a decimal point comes first. */
 const DATA_LINE = /^\s*\(?\s*[-+]?\d*\.\d/;
 
+const MENDS: Readonly<Record<string, string>> = {
+  'unclosed-header': 'Close the header with a line "&END"; if the file was cut short, copy it again.',
+};
+
 /** The keys of a Fortran namelist group, upper case, each with its values as written and its line. */
 export type Namelist = ReadonlyMap<string, { readonly values: readonly string[]; readonly line: number }>;
 
@@ -68,20 +72,33 @@ export class NamelistCollector {
       const earlier = keys.get(key)?.values;
       if (earlier && earlier.join(' ') !== values.join(' ')) {
         const both = `${earlier.join(' ')} and ${values.join(' ')}`;
-        throw this.problem('bad-header', line, `${key} twice, ${both}`, 'one value');
+        throw this.problem(
+          'bad-header',
+          line,
+          `${key} twice, ${both}`,
+          'one value',
+          'Remove one of the two.',
+        );
       }
       keys.set(key, { values, line });
     });
     return keys;
   }
 
-  private problem(code: string, line: number, found: string, expected: string): InputError {
+  private problem(
+    code: string,
+    line: number,
+    found: string,
+    expected: string,
+    mend = MENDS[code] ??
+      `Give a file that starts with a namelist such as "&${this.group} NORB=8,NELEC=8,MS2=0, &END".`,
+  ): InputError {
     return new InputError({
       code,
       where: `${this.path}:${line}`,
       found,
       expected,
-      mend: `Give a file that starts with a namelist such as "&${this.group} NORB=8,NELEC=8,MS2=0, &END".`,
+      mend,
     });
   }
 }

@@ -65,9 +65,17 @@ function choose(source: ByteSource, members: readonly ZipMember[], name: string 
   throw new InputError({
     code: 'no-such-array',
     where: wanted === undefined ? source.path : `${source.path}:${wanted}`,
-    found: fitting.length === 0 ? 'no such array' : `${fitting.length} arrays`,
+    found:
+      names.length === 0
+        ? 'an archive without arrays'
+        : fitting.length === 0
+          ? 'no such array'
+          : `${fitting.length} arrays`,
     expected: names.length === 0 ? 'at least one array' : `one of ${names.slice(0, 12).join(', ')}`,
-    mend: 'Name the array as the recipe\'s "dataset".',
+    mend:
+      names.length === 0
+        ? 'Write it again with numpy.savez.'
+        : 'Name the array as "dataset" of the part in the recipe.',
   });
 }
 

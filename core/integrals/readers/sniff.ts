@@ -1,9 +1,21 @@
 import type { ByteSource } from '../source';
 import { latin1 } from './text-lines';
 
-export type Format = 'fcidump' | 'npy' | 'npz' | 'hdf5' | 'json' | 'text' | 'unknown';
+export type Format =
+  | 'fcidump'
+  | 'npy'
+  | 'npz'
+  | 'hdf5'
+  | 'json'
+  | 'text'
+  | 'compressed'
+  | 'utf-16'
+  | 'unknown';
 
 const HDF5_SIGNATURE = '\x89HDF\r\n\x1a\n';
+/** gzip, bzip2, xz, Zstandard. */
+const COMPRESSED = ['\x1f\x8b', 'BZh', '\xfd7zXZ\0', '\x28\xb5\x2f\xfd'];
+const UTF16_MARKS = ['\xff\xfe', '\xfe\xff'];
 
 /** What a file holds, by its content alone; names are not looked at. */
 export async function sniffFormat(source: ByteSource): Promise<Format> {
@@ -12,6 +24,8 @@ export async function sniffFormat(source: ByteSource): Promise<Format> {
   if (start.startsWith('\x93NUMPY')) return 'npy';
   if (start.startsWith('PK\x03\x04') || start.startsWith('PK\x05\x06')) return 'npz';
   if (await hasHdf5Signature(source)) return 'hdf5';
+  if (COMPRESSED.some((mark) => start.startsWith(mark))) return 'compressed';
+  if (UTF16_MARKS.some((mark) => start.startsWith(mark))) return 'utf-16';
   if (head.length === 0 || head.some((c) => c < 32 && c !== 9 && c !== 10 && c !== 12 && c !== 13)) {
     return 'unknown';
   }

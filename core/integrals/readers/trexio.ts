@@ -63,8 +63,11 @@ class TrexioReader {
       countElements(`${this.origin}:/mo`, [pairsTriangleLength(orbitals)], 8);
       return orbitals;
     }
-    const found = orbitals === undefined ? 'no number of orbitals (mo_num)' : `mo_num = ${orbitals}`;
-    throw this.problem('bad-header', '/mo', found, '1 to 400 molecular orbitals', 'Is this a TREXIO file?');
+    const [found, mend] =
+      orbitals === undefined
+        ? ['no number of orbitals (mo_num)', 'Is this a TREXIO file?']
+        : [`mo_num = ${orbitals}`, 'Choose an active space, or write the file again.'];
+    throw this.problem('bad-header', '/mo', found, '1 to 400 molecular orbitals', mend);
   }
 
   private async refuseOtherOrbitals(): Promise<void> {
@@ -91,7 +94,13 @@ class TrexioReader {
       }
       const found = `${up} + ${down} electrons${all === undefined ? '' : ` of ${all}`} in ${orbitals} orbitals`;
       const mend = 'Correct the numbers of electrons.';
-      throw this.problem('electron-count', '/electron', found, 'counts that fit', mend);
+      throw this.problem(
+        'electron-count',
+        '/electron',
+        found,
+        `at most ${orbitals} of each spin, and their sum`,
+        mend,
+      );
     }
     this.notes.push('The file does not say how many electrons have which spin.');
     return { electrons: all ?? null, ms2: (all ?? 0) % 2 };
@@ -158,8 +167,9 @@ class TrexioReader {
       for (let q = 0; q < p; q++) {
         const difference = Math.abs(sum[p * n + q] - sum[q * n + p]);
         if (difference > SYMMETRY_TOLERANCE * largest) {
-          const found = `elements (${p},${q}) and (${q},${p}) that differ by ${difference}`;
-          throw this.problem('asymmetric', name(parts[0]), found, 'a symmetric matrix', 'Write it again.');
+          const found = `elements (${p},${q}) and (${q},${p}) that differ by ${difference.toPrecision(3)}`;
+          const mend = 'Write the file again; the orbitals may be complex, which is not handled here.';
+          throw this.problem('asymmetric', name(parts[0]), found, 'a symmetric matrix', mend);
         }
         sum[q * n + p] = sum[p * n + q];
       }
@@ -202,14 +212,17 @@ class TrexioReader {
     const worst = clash.beyond(largest);
     if (worst === null) return out;
     const shown = indices.subarray(4 * worst.line, 4 * worst.line + 4).join(' ');
-    const found = `entry ${worst.line} (${shown}), which differs by ${worst.difference} from an earlier one`;
+    const found = `entry ${worst.line} (${shown}), which differs by ${worst.difference.toPrecision(3)} from an earlier one`;
     const mend = 'Remove one of the two, or write the file again.';
     throw this.problem('duplicate-entry', path, found, 'equal values for equal integrals', mend);
   }
 
   private async numbers(path: string, count?: number): Promise<Float64Array> {
     const dataset = this.file.dataset(path);
-    if (dataset === undefined) throw noSuchDataset(this.file, this.origin, path);
+    if (dataset === undefined) {
+      const mend = 'Write the file again with all its molecular-orbital integrals and nuclei.';
+      throw noSuchDataset(this.file, this.origin, path, mend);
+    }
     const total = dataset.shape.reduce((product, extent) => product * extent, 1);
     if (dataset.kind === 'complex' || (count !== undefined && total !== count)) {
       const found = dataset.kind === 'complex' ? 'complex numbers' : `shape (${dataset.shape.join(', ')})`;

@@ -15,13 +15,31 @@ const MAX_DEPTH = 64;
 export function parseJson(text: string, file: string): Json {
   let pos = text.charCodeAt(0) === 0xfeff ? 1 : 0;
 
-  function fail(found: string, expected: string, mend = 'Correct the JSON at this place'): never {
+  function fail(found: string, expected: string, cure?: string): never {
+    const isCut = pos >= text.length;
+    const mend =
+      cure ??
+      (isCut ? 'Was the file cut short? Copy it again or complete it' : 'Correct the JSON at this place');
     const before = text.slice(0, pos).split('\n');
     const where = `${file}:${before.length}:${before[before.length - 1]!.length + 1}`;
     throw new InputError({ code: 'not-json', where, found, expected, mend: `${mend} (RFC 8259).` });
   }
   function here(): string {
-    return pos >= text.length ? 'the end of the file' : JSON.stringify(text.slice(pos, pos + 12));
+    return pos >= text.length
+      ? 'the end of the file'
+      : JSON.stringify(/.{0,12}/.exec(text.slice(pos, pos + 12))![0]);
+  }
+  /** The cure where the text is what other notations allow and JSON does not. */
+  function habit(): string | undefined {
+    const c = text[pos];
+    if (text.startsWith('//', pos) || text.startsWith('/*', pos) || c === '#')
+      return 'Remove the comment: JSON has none';
+    if (c === "'") return 'Use double quotes';
+    if ((c === ']' || c === '}') && /,\s*$/.test(text.slice(Math.max(0, pos - 200), pos)))
+      return 'Remove the comma before it';
+    if (/^[+-]?(NaN|Inf)/i.test(text.slice(pos, pos + 4)))
+      return 'JSON has no NaN or infinity: give a number';
+    return undefined;
   }
   function skipSpace(): void {
     while (pos < text.length && ' \t\n\r'.includes(text[pos]!)) pos++;
@@ -44,12 +62,7 @@ export function parseJson(text: string, file: string): Json {
         return meaning;
       }
     }
-    const isComment = text.startsWith('//', pos) || text.startsWith('/*', pos) || c === '#';
-    return fail(
-      here(),
-      'a JSON value',
-      isComment ? 'Remove the comment: JSON has none' : 'Correct the JSON at this place',
-    );
+    return fail(here(), 'a JSON value', habit());
   }
   function object(depth: number): Json {
     const result: { [key: string]: Json } = {};
@@ -61,7 +74,7 @@ export function parseJson(text: string, file: string): Json {
     }
     for (;;) {
       skipSpace();
-      if (text[pos] !== '"') fail(here(), 'a key in double quotes');
+      if (text[pos] !== '"') fail(here(), 'a key in double quotes', habit());
       const start = pos;
       const key = string();
       if (Object.hasOwn(result, key)) {
@@ -130,6 +143,8 @@ export function parseJson(text: string, file: string): Json {
   }
 
   skipSpace();
+  if (pos >= text.length)
+    fail('the end of the file', 'a JSON document', 'The file is empty: write or copy it again');
   const result = value(0);
   skipSpace();
   if (pos < text.length) fail(here(), 'nothing after the JSON value');

@@ -4,7 +4,8 @@ export function nearest(word: string, candidates: readonly string[]): string | n
   let bestDistance = Math.max(2, Math.ceil(word.length / 2)) + 1;
   for (const candidate of candidates) {
     const distance = editDistance(word.toLowerCase(), candidate.toLowerCase());
-    if (distance < bestDistance) {
+    // Words that share no letter are not near, however short.
+    if (distance < bestDistance && distance < Math.min(word.length, candidate.length)) {
       best = candidate;
       bestDistance = distance;
     }

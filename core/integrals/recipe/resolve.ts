@@ -209,7 +209,8 @@ function nothing(files: FileSet, listed: readonly ByteSource[]): InputError {
   return new InputError({
     code: 'no-recipe',
     where: files.name,
-    found: names.length === 0 ? 'no files' : some,
+    found:
+      names.length === 0 ? 'no files' : some === files.name ? 'a file that does not say what it holds' : some,
     expected: 'a *.recipe.json, a meta.json with "arrays", or one FCIDUMP or TREXIO file',
     mend:
       names.length === 0

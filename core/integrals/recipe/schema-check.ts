@@ -100,8 +100,23 @@ function explain(unit: OutputUnit, document: Json, schema: Schema) {
     const keys = (rule as Schema).required ?? [];
     return { where, found: `both ${keys.join(' and ')}`, expected: 'only one of them', mend: 'Remove one.' };
   }
-  return { where, found, expected: expectation(keyword, rule), mend: 'Correct this value.' };
+  return { where, found, expected: expectation(keyword, rule), mend: cure(keyword, rule, value) };
 }
+
+function cure(keyword: string, rule: unknown, value: unknown): string {
+  const isNumber = rule === 'integer' || rule === 'number';
+  if (keyword === 'type' && isNumber && typeof value === 'string') return 'Write a number, without quotes.';
+  if (keyword === 'minItems') return 'Add what is missing.';
+  if (keyword === 'maxItems') return 'Remove what is too much.';
+  if (keyword === 'uniqueItems') return 'Remove what stands twice.';
+  if (keyword === 'pattern' && isPathRule(rule)) {
+    return 'Put the file beside the recipe or in a folder below, and write its path from there.';
+  }
+  return 'Correct this value.';
+}
+
+/** The one pattern that starts by refusing an absolute path. */
+const isPathRule = (rule: unknown): boolean => String(rule).startsWith('^(?!/)');
 
 function expectation(keyword: string, rule: unknown): string {
   switch (keyword) {
@@ -128,7 +143,7 @@ function expectation(keyword: string, rule: unknown): string {
     case 'uniqueItems':
       return 'entries that differ from each other';
     case 'pattern':
-      return String(rule).startsWith('^(?!/)')
+      return isPathRule(rule)
         ? 'a path relative to the recipe, "/" between folders, no "..", no drive, no backslash'
         : `a text that matches ${rule}`;
     default:
