@@ -1,18 +1,11 @@
 #!/usr/bin/env node
 import { fileURLToPath } from 'node:url';
-import { Cancelled, InputError } from '../../core/job';
 import { runInThread } from './job-thread';
 import { removePending } from './output';
 import { printResult } from './print';
-import { type Call, HelpShown, parseCall } from './program';
+import { type Call, parseCall } from './program';
 import { ProgressLine } from './progress';
-
-/** Exit statuses, see the manual: the command line's contract with scripts. */
-const DONE = 0;
-const BUG = 1;
-const BAD_INPUT = 2;
-const FAILED = 3;
-const INTERRUPTED = 130;
+import { DONE, INTERRUPTED, reportError } from './status';
 
 /** Beside the bundle, dist/node/cli.js, in a checkout and in an installed app alike. */
 const DEMO_FOLDER = fileURLToPath(new URL('../../app/demo/carbonyl', import.meta.url));
@@ -42,19 +35,6 @@ async function main(args: readonly string[]): Promise<number> {
     return printResult(result, manner, process.stdout, process.stderr);
   } catch (error) {
     line?.clear();
-    return report(error, call?.manner.trace ?? args.includes('--trace'));
+    return reportError(error, call?.manner.trace ?? args.includes('--trace'), process.stderr);
   }
-}
-
-/** One line on stderr, and the status that goes with the kind of error. */
-function report(error: unknown, trace: boolean): number {
-  if (error instanceof HelpShown) return DONE;
-  const { message, stack } = error instanceof Error ? error : new Error(String(error));
-  if (error instanceof InputError) process.stderr.write(`${message}\n`);
-  else if (error instanceof Cancelled) process.stderr.write('stopped on request\n');
-  else
-    process.stderr.write(`spinwright: a bug: ${message.replace(/\s*\n\s*/g, ' ')}; --trace shows where.\n`);
-  if (trace && stack) process.stderr.write(`${stack}\n`);
-  if (error instanceof InputError) return BAD_INPUT;
-  return error instanceof Cancelled ? FAILED : BUG;
 }

@@ -1,4 +1,5 @@
 import type { WhatIfResult } from '../../core/estimate';
+import { throwFirstError } from '../../core/integrals';
 import { type ComparisonRun, comparisonDocument } from '../../core/plan';
 import { compareText } from './compare-text';
 import { inspectText } from './inspect-text';
@@ -6,13 +7,10 @@ import { copyFolder, writeWhole } from './output';
 import type { TerminalStream } from './progress';
 import type { Manner } from './request';
 import type { Result } from './result';
+import { BUG, CHECK_FAILED, DONE, FAILED } from './status';
 import { verifyText } from './verify-text';
 import { whatIfText } from './whatif-text';
 
-const DONE = 0;
-const BUG = 1;
-const FAILED = 3;
-const CHECK_FAILED = 4;
 /** For files and pipes, which have no width. */
 const DEFAULT_COLUMNS = 140;
 
@@ -41,6 +39,8 @@ export function printResult(
         () => inspection,
         () => inspectText(inspection, columns),
       );
+      // All is listed by now; the status still tells scripts that the set cannot be used.
+      throwFirstError(inspection.findings);
       return DONE;
     }
     case 'compare': {
