@@ -1,0 +1,110 @@
+import { describe, expect, it } from 'vitest';
+import { answer } from '../../../app/cli/jobs';
+import { printResult } from '../../../app/cli/print';
+import { type Call, parseCall } from '../../../app/cli/program';
+import { reportError } from '../../../app/cli/status';
+import { InputError, inlineContext } from '../../../core/job';
+import type { Inspection } from '../../../core/plan';
+import { manifest, type Row, wordsOf } from './manifest';
+
+interface Answer {
+  readonly status: number;
+  readonly stdout: string;
+  readonly stderr: string;
+  readonly error: unknown;
+}
+
+/** A call of the command line within this process: the same steps, without the thread of its own. */
+async function spinwright(words: readonly string[]): Promise<Answer> {
+  const out = {
+    text: '',
+    write: (text: string) => {
+      out.text += text;
+    },
+  };
+  const err = {
+    text: '',
+    write: (text: string) => {
+      err.text += text;
+    },
+  };
+  let call: Call | null = null;
+  try {
+    call = parseCall(words, '', out.write);
+    const result = await answer(call.request, inlineContext(call.manner.seed));
+    const status = printResult(result, call.manner, out, err);
+    return { status, stdout: out.text, stderr: err.text, error: null };
+  } catch (error) {
+    const status = reportError(error, false, err);
+    return { status, stdout: out.text, stderr: err.text, error };
+  }
+}
+
+/** Four times the limit: only a run-away job meets it, never a busy machine. */
+const WATCHDOG_MS = 4 * 1000 * manifest.limits.seconds;
+
+const named = (rows: readonly Row[]) => rows.map((row) => [`${row.path}: ${row.damage}`, row] as const);
+
+describe('malformed files in the terminal', () => {
+  it.each(named(manifest.errors))(
+    '%s',
+    async (_name, row) => {
+      const { status, stdout, stderr, error } = await spinwright(wordsOf(row));
+      expect(error, stderr).toBeInstanceOf(InputError);
+      expect({ status, stdout, code: (error as InputError).code }).toEqual({
+        status: row.exit,
+        stdout: '',
+        code: row.code,
+      });
+      const { where, found, expected, mend } = error as InputError;
+      for (const part of [where, found, expected, mend]) expect(part.trim()).not.toBe('');
+      expect(where).toContain(row.where);
+      expect(`${where}: ${found}`).toContain(row.what);
+      expect(`${expected}. ${mend}`).toContain(row.cure);
+      // One line, all four parts in it, and nothing that tells of the machine it ran on.
+      expect(stderr).toBe(`${(error as InputError).message}\n`);
+      expect(stderr.trimEnd()).not.toContain('\n');
+      expect(stderr).not.toContain(process.cwd());
+      expect(stderr).not.toMatch(/\bat \S+ \(|undefined|\[object|NaN MiB/);
+    },
+    WATCHDOG_MS,
+  );
+
+  it.each(named(manifest.errors.filter(({ code }) => isFinding(code))))(
+    'inspect lists what compare refuses, and ends with the same status: %s',
+    async (_name, row) => {
+      const words = ['inspect', wordsOf(row)[1]!, '--json'];
+      const { status, stdout, stderr } = await spinwright(words);
+      expect({ status, lines: stderr.trimEnd().split('\n').length }).toEqual({ status: 2, lines: 1 });
+      const { findings } = JSON.parse(stdout) as Inspection;
+      const found = findings.find(({ code, severity }) => code === row.code && severity === 'error');
+      expect(found?.where).toContain(row.where);
+      expect(found?.found).toContain(row.what);
+      expect(found?.mend).toContain(row.cure);
+    },
+    WATCHDOG_MS,
+  );
+});
+
+/** Problems that are noticed in arrays that can be read, and so listed. */
+const isFinding = (code: string): boolean =>
+  ['symmetry', 'time-reversal', 'unit', 'index-order', 'coulomb-not-positive', 'missing-element'].includes(
+    code,
+  );
+
+describe('files with something to note', () => {
+  it.each(manifest.findings.map((row) => [`${row.path}: ${row.damage}`, row] as const))(
+    '%s',
+    async (_name, row) => {
+      const { status, stdout, stderr } = await spinwright(wordsOf(row));
+      expect({ status, stderr }).toEqual({ status: row.exit, stderr: '' });
+      const { findings } = JSON.parse(stdout) as Inspection;
+      const found = findings.find(({ code, where }) => code === row.code && where.includes(row.where));
+      expect(found, stdout).toMatchObject({ severity: row.severity });
+      expect(found!.found).toContain(row.what);
+      expect(found!.mend).toContain(row.cure);
+      expect(findings.filter(({ severity }) => severity === 'error')).toEqual([]);
+    },
+    WATCHDOG_MS,
+  );
+});
