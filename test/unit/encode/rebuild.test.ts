@@ -70,25 +70,18 @@ describe.each(Object.entries(HAMILTONIANS))('H rebuilt from its encoding: %s', (
     expect(sum).toBeCloseTo(lambda.total, 10);
   });
 
-  it.each([0.02, 0.2, 2, 20])(
-    'truncation at %d Eh moves no eigenvalue by more than the bound',
-    async (threshold) => {
-      for (const name of FORMS) {
-        for (const occupations of [
-          undefined,
-          [2, 0.5, 1.5].slice(0, h.kind === 'spatial' ? h.orbitals : 0),
-        ]) {
-          const encoding = await encode(h, name, threshold, occupations);
-          const shift = operatorNorm(difference(matrixOf(encoding.rebuild()), exact));
-          expect(shift).toBeLessThanOrEqual(encoding.residual.oneNormBound + 1e-10);
-          if (encoding.residual.dropped === 0) expect(shift).toBeLessThan(1e-10);
-          // Without a reference of its own the replacement costs nothing.
-          if (!occupations)
-            expect(encoding.residual.oneNormBound).toBeLessThanOrEqual(threshold * (1 + 1e-12));
-        }
+  it.each([0.2, 4])('truncation at %d Eh moves no eigenvalue by more than the bound', async (threshold) => {
+    for (const name of FORMS) {
+      for (const occupations of [undefined, [2, 0.5, 1.5].slice(0, h.kind === 'spatial' ? h.orbitals : 0)]) {
+        const encoding = await encode(h, name, threshold, occupations);
+        const shift = operatorNorm(difference(matrixOf(encoding.rebuild()), exact));
+        expect(shift).toBeLessThanOrEqual(encoding.residual.oneNormBound + 1e-10);
+        if (encoding.residual.dropped === 0) expect(shift).toBeLessThan(1e-10);
+        // Without a reference of its own the replacement costs nothing.
+        if (!occupations) expect(encoding.residual.oneNormBound).toBeLessThanOrEqual(threshold * (1 + 1e-12));
       }
-    },
-  );
+    }
+  });
 });
 
 describe('median shift', () => {
