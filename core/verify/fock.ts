@@ -171,3 +171,26 @@ export function spinorFockMatrix(hamiltonian: SpinorHamiltonian, form: Form): Co
   }
   return target;
 }
+
+/**
+ * Second-quantised one-body operator Σ_PQ M_PQ a†_P a_Q on the whole Fock space, dense.
+ * @param matrix - M×M over spin orbitals, M ≤ 8.
+ */
+export function oneBodyFockMatrix(matrix: ComplexMatrix): ComplexMatrix {
+  const m = matrix.n;
+  const target = accumulator(m, 0);
+  for (let P = 0; P < m; P++) {
+    for (let Q = 0; Q < m; Q++) {
+      addProduct(
+        target,
+        [
+          [true, P],
+          [false, Q],
+        ],
+        matrix.re[P * m + Q]!,
+        matrix.im[P * m + Q]!,
+      );
+    }
+  }
+  return target;
+}

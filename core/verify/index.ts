@@ -5,7 +5,7 @@ export {
   extremeDeterminant,
 } from './determinant-energy';
 export { binomial, type SectorBasis, sectorBasis } from './determinants';
-export { type Form, fockMatrix, spinorFockMatrix } from './fock';
+export { type Form, fockMatrix, oneBodyFockMatrix, spinorFockMatrix } from './fock';
 export { programOperator } from './program-operator';
 export { REFERENCE_LEVELS, referenceEigenvalues } from './reference';
 export { MAX_SECTOR_DIMENSION, type SectorMatrix, sectorMatrix } from './sector-matrix';
