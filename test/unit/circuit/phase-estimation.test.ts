@@ -101,8 +101,7 @@ describe('on an emitted walk of one orbital', () => {
         const { state, ancillas } = run(determinant, (machine, walk) => {
           for (let step = 0; step < n; step++) {
             walk.blockEncoding.run(machine);
-            // R = 2|0⟩⟨0| − 1 by hand: the sign of everything but the zero state.
-            state0(machine, walk.ancillas);
+            reflect(machine, walk.ancillas);
           }
         });
         let overlap = 0;
