@@ -53,7 +53,7 @@ export async function factorise(
       ? { blocks: await jointFactors(hamiltonian, ctx), notes: [], remainder: null }
       : await separateFactors(hamiltonian, threshold, ctx);
   await ctx.checkpoint();
-  const kept = truncate(blocks, hamiltonian.orbitals, threshold, occupations, remainder);
+  const kept = await truncate(blocks, hamiltonian.orbitals, threshold, occupations, remainder, ctx);
   return { grouping, notes, ...kept };
 }
 

@@ -92,8 +92,6 @@ export interface Residual {
   readonly dropped: number;
 }
 
-export const NO_RESIDUAL: Residual = { frobenius: 0, oneNormBound: 0, dropped: 0 };
-
 export interface Factorisation {
   readonly grouping: Grouping;
   readonly blocks: readonly FactorBlock[];

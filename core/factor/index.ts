@@ -1,15 +1,14 @@
 export { type PlaneSlot, planeInto, type SectorLayout, sectorLayout } from './elements';
 export { type FactoriseOptions, factorise } from './factorise';
-export {
-  type BlockPart,
-  type FactorBlock,
-  type Factorisation,
-  type Grouping,
-  NO_RESIDUAL,
-  type Residual,
-  type SpinorFactors,
-  type SquareFactors,
-  type TripleFactors,
+export type {
+  BlockPart,
+  FactorBlock,
+  Factorisation,
+  Grouping,
+  Residual,
+  SpinorFactors,
+  SquareFactors,
+  TripleFactors,
 } from './factors';
 export { jointDimensions, jointRefusal, MAX_SECTOR } from './joint';
 export { lcuNorms } from './one-norms';

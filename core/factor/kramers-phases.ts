@@ -24,24 +24,33 @@ interface Equation {
  */
 export function kramersPhases(h: SpinorHamiltonian): Float64Array {
   const pairs = h.spinors / 2;
-  const equations = collect(h);
   const phase = new Float64Array(pairs);
   const known = new Uint8Array(pairs);
-  for (let left = pairs; left > 0; left--) {
-    const found = solvable(equations, known, 1) ?? solvable(equations, known, 2);
-    if (found) {
-      let angle = found.equation.angle;
-      for (const [m, c] of found.equation.coefficients) if (m !== found.pair) angle -= c * phase[m]!;
-      phase[found.pair] = angle / found.equation.coefficients.get(found.pair)!;
-      known[found.pair] = 1;
-    } else {
-      known[known.indexOf(0)] = 1;
+  known[0] = 1;
+  // The one-body part nearly always suffices; the tensor has M⁴ elements.
+  const oneBody = reliable(equationsOf(h.h, 2, h.spinors, known));
+  while (fixOne(oneBody, phase, known));
+  if (known.includes(0)) {
+    const twoBody = reliable([...oneBody, ...equationsOf(h.g, 4, h.spinors, known)]);
+    while (known.includes(0)) {
+      if (!fixOne(twoBody, phase, known)) known[known.indexOf(0)] = 1;
     }
   }
   return Float64Array.from({ length: h.spinors }, (_, p) => (p % 2 === 1 ? phase[p >> 1]! : 0));
 }
 
-/** The largest equation whose only unknown has the coefficient ±`times`, where at least one phase is known. */
+/** Uses the largest equation with one unknown of coefficient ±1, else ±2 (either of the two roots will do). */
+function fixOne(equations: readonly Equation[], phase: Float64Array, known: Uint8Array): boolean {
+  const found = solvable(equations, known, 1) ?? solvable(equations, known, 2);
+  if (!found) return false;
+  let { angle } = found.equation;
+  for (const [m, c] of found.equation.coefficients) if (m !== found.pair) angle -= c * phase[m]!;
+  phase[found.pair] = angle / found.equation.coefficients.get(found.pair)!;
+  known[found.pair] = 1;
+  return true;
+}
+
+/** The largest equation whose only unknown has the coefficient ±`times`. */
 function solvable(equations: readonly Equation[], known: Uint8Array, times: number) {
   for (const equation of equations) {
     let unknown = -1;
@@ -56,38 +65,47 @@ function solvable(equations: readonly Equation[], known: Uint8Array, times: numb
   return null;
 }
 
-function collect(h: SpinorHamiltonian): Equation[] {
-  const m = h.spinors;
-  const equations: Equation[] = [];
-  const add = (re: Float64Array, im: Float64Array, indices: readonly number[], signs: readonly number[]) => {
-    const place = (bar: number) => indices.reduce((at, p) => at * m + (p ^ bar), 0);
-    const [a, b] = [place(0), place(1)];
-    const size = Math.min(Math.hypot(re[a]!, im[a]!), Math.hypot(re[b]!, im[b]!));
-    const coefficients = new Map<number, number>();
-    let s = 1;
-    indices.forEach((p, i) => {
-      if (p & 1) s = -s;
-      const sum = (coefficients.get(p >> 1) ?? 0) + signs[i]!;
-      if (sum === 0) coefficients.delete(p >> 1);
-      else coefficients.set(p >> 1, sum);
-    });
-    if (coefficients.size === 0 || size === 0) return;
-    // arg(partner · element · s)
-    const x = s * (re[a]! * re[b]! - im[a]! * im[b]!);
-    const y = s * (re[a]! * im[b]! + im[a]! * re[b]!);
-    equations.push({ coefficients, angle: Math.atan2(y, x), size });
-  };
-  for (let p = 0; p < m; p += 2) for (let q = 0; q < m; q++) add(h.h.re, h.h.im, [p, q], [1, -1]);
-  for (let p = 0; p < m; p += 2) {
-    for (let q = 0; q < m; q++) {
-      for (let r = 0; r < m; r++) {
-        for (let s = 0; s < m; s++) add(h.g.re, h.g.im, [p, q, r, s], [1, -1, 1, -1]);
-      }
-    }
-  }
+function reliable(equations: Equation[]): Equation[] {
   equations.sort((a, b) => b.size - a.size);
   const least = RELIABLE * (equations[0]?.size ?? 0);
   return equations.filter(({ size }) => size > least);
+}
+
+/** Equations of all elements of a tensor of the given rank that involve an unknown phase. */
+function equationsOf(
+  { re, im }: SpinorHamiltonian['h'],
+  rank: 2 | 4,
+  m: number,
+  known: Uint8Array,
+): Equation[] {
+  let largest = 0;
+  for (let i = 0; i < re.length; i++) largest = Math.max(largest, Math.abs(re[i]!), Math.abs(im[i]!));
+  const least = RELIABLE * largest;
+  const equations: Equation[] = [];
+  for (let a = 0; a < re.length; a++) {
+    if (Math.abs(re[a]!) + Math.abs(im[a]!) <= least) continue;
+    const coefficients = new Map<number, number>();
+    let partner = 0;
+    let sign = 1;
+    let open = false;
+    // Indices from the last to the first: annihilated, created, annihilated, created.
+    for (let d = 0, rest = a, stride = 1; d < rank; d++, rest = Math.floor(rest / m), stride *= m) {
+      const p = rest % m;
+      partner += (p ^ 1) * stride;
+      if (p & 1) sign = -sign;
+      const sum = (coefficients.get(p >> 1) ?? 0) + (d % 2 === 0 ? -1 : 1);
+      if (sum === 0) coefficients.delete(p >> 1);
+      else coefficients.set(p >> 1, sum);
+      open ||= !known[p >> 1];
+    }
+    const size = Math.min(Math.hypot(re[a]!, im[a]!), Math.hypot(re[partner]!, im[partner]!));
+    if (!open || coefficients.size === 0 || size === 0) continue;
+    // arg(partner · element · s)
+    const x = sign * (re[a]! * re[partner]! - im[a]! * im[partner]!);
+    const y = sign * (re[a]! * im[partner]! + im[a]! * re[partner]!);
+    equations.push({ coefficients, angle: Math.atan2(y, x), size });
+  }
+  return equations;
 }
 
 /** The two-electron tensor over ψ'_P = e^{iφ_P} ψ_P. */

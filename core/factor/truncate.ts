@@ -1,4 +1,5 @@
 import { zeroOperator } from '../hamiltonian/operators';
+import type { JobContext } from '../job';
 import { antisymmetricNormsBatch, multiply } from '../linalg';
 import { ZERO_WEIGHT } from './eigenvectors';
 import { traceOfPairs } from './elements';
@@ -51,6 +52,8 @@ export function weightSizes(block: SpatialBlock): Float64Array {
   return block.kind === 'triples' ? block.strengths : block.weights.map(Math.abs);
 }
 
+/** Factors between two checkpoints: some 10 ms for 50 orbitals. */
+const FOLDED_AT_ONCE = 16;
 /** Budgets tried until the replacement's share fits into the threshold. */
 const TRIES = 6;
 
@@ -61,13 +64,16 @@ const TRIES = 6;
  * that its spin components become the mean field over `occupations` (mean-field.ts). The bound is the sum of the
  * dropped norms plus the one-norm of that replacement, which is small beside it.
  */
-export function truncate(
+export async function truncate(
   blocks: readonly SpatialBlock[],
   n: number,
   threshold: number,
   occupations: ArrayLike<number>,
   remainder: Remainder | null,
-): Pick<Factorisation, 'residual' | 'foldedMeanField' | 'foldedConstant'> & { blocks: SpatialBlock[] } {
+  ctx: JobContext,
+): Promise<
+  Pick<Factorisation, 'residual' | 'foldedMeanField' | 'foldedConstant'> & { blocks: SpatialBlock[] }
+> {
   // Nuclear norm ≤ √n · Frobenius norm, so the remainder's one-norm is at most ¼ n · trace.
   const leftOut = remainder ? 0.25 * n * remainder.trace : 0;
   const norms = blocks.map(lcuNorms);
@@ -75,11 +81,11 @@ export function truncate(
   const allowed = Math.max(0, threshold - leftOut);
   let budget = allowed;
   let choice = chooseKept(norms, sizes, budget);
-  let fold = foldDropped(blocks, choice.dropped, n, occupations);
+  let fold = await foldDropped(blocks, choice.dropped, n, occupations, ctx);
   for (let i = 0; choice.sum + fold.replacement > allowed && i < TRIES; i++) {
     budget = i === TRIES - 1 ? 0 : Math.max(0, Math.min(budget, choice.sum) - fold.replacement);
     choice = chooseKept(norms, sizes, budget);
-    fold = foldDropped(blocks, choice.dropped, n, occupations);
+    fold = await foldDropped(blocks, choice.dropped, n, occupations, ctx);
   }
   const { folded } = fold;
   let { constant } = fold;
@@ -104,17 +110,19 @@ export function truncate(
 }
 
 /** One-body part, constant and one-norm of the replacement for the dropped factors. */
-function foldDropped(
+async function foldDropped(
   blocks: readonly SpatialBlock[],
   dropped: readonly (readonly number[])[],
   n: number,
   occupations: ArrayLike<number>,
+  ctx: JobContext,
 ) {
   const target: FoldTarget = { folded: zeroOperator('even', n), difference: new Float64Array(3 * n * n) };
   let constant = 0;
-  blocks.forEach((block, b) => {
+  for (const [b, block] of blocks.entries()) {
     const lambdas = block.kind === 'squares' ? squareOneNorms(block) : null;
-    for (const t of dropped[b]!) {
+    for (const [i, t] of dropped[b]!.entries()) {
+      if (i % FOLDED_AT_ONCE === 0) await ctx.checkpoint();
       if (block.kind === 'triples') {
         foldTriple(target, block, t, occupations);
         continue;
@@ -124,7 +132,7 @@ function foldDropped(
       const tau = charged ? traceOfPairs(block.vectors, t * block.dim, n) : 0;
       constant += block.weights[t]! * (0.25 * lambdas![t]! ** 2 - 0.5 * tau ** 2);
     }
-  });
+  }
   const norms = antisymmetricNormsBatch(target.difference, 3, n);
   return { folded: target.folded, constant, replacement: norms.reduce((sum, a) => sum + 2 * a, 0) };
 }
