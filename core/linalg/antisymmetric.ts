@@ -37,7 +37,7 @@ export function antisymmetricPairs(
     const u = new Float64Array(count * n);
     const v = new Float64Array(count * n);
     kept.forEach((j, to) => {
-      for (let k = 0; k < rest; k++) u[to * n + 2 * k] = left[j * rest + k] / size[j];
+      for (let k = 0; k < rest; k++) u[to * n + 2 * k] = left[j * rest + k];
       for (let k = 0; k < half; k++) v[to * n + 2 * k + 1] = right[j * half + k];
     });
     for (const rows of [u, v]) reflectRows(rows, count, n, m, at, h);
@@ -60,16 +60,17 @@ export function antisymmetricNormsBatch(matrices: Float64Array, count: number, n
   return norms;
 }
 
-/** B = Σ_j left_j right_jᵀ, left rows orthogonal of length size[j], right rows orthonormal; e[i] = T_{i+1,i}. */
+/** B = Σ_j size_j left_j right_jᵀ with orthonormal rows (zero rows of `left` for size 0); e[i] = T_{i+1,i}. */
 function bidiagonalTriples(e: Float64Array, n: number) {
   const half = n >> 1;
   const rest = n - half;
+  const scale = e.subarray(0, Math.max(0, n - 1)).reduce((max, x) => Math.max(max, Math.abs(x)), 0) || 1;
   const left = new Float64Array(half * rest);
   const right = new Float64Array(half * half);
   for (let j = 0; j < half; j++) {
     // Column j of B: T_{2j,2j+1} and T_{2j+2,2j+1}.
-    left[j * rest + j] = -e[2 * j];
-    if (2 * j + 2 < n) left[j * rest + j + 1] = e[2 * j + 1];
+    left[j * rest + j] = -e[2 * j] / scale;
+    if (2 * j + 2 < n) left[j * rest + j + 1] = e[2 * j + 1] / scale;
     right[j * half + j] = 1;
   }
   jacobiInPlace(left, right, half, rest);
@@ -78,6 +79,8 @@ function bidiagonalTriples(e: Float64Array, n: number) {
     let s = 0;
     for (let k = 0; k < rest; k++) s += left[j * rest + k] ** 2;
     size[j] = Math.sqrt(s);
+    for (let k = 0; k < rest; k++) left[j * rest + k] /= size[j] || 1;
+    size[j] *= scale;
   }
   return { left, right, size, half, rest };
 }

@@ -1,4 +1,5 @@
 import type { Arena } from './kernels/arena';
+import { TINY } from './kernels/plain-triangle';
 import { type SecularRoots, solveSecular } from './secular';
 import type { Steps } from './steps';
 
@@ -20,7 +21,7 @@ export function* divideSteps(arena: Arena, d: number, e: number, n: number, v: n
   const m = arena.f64;
   let scale = 0;
   for (let i = 0; i < n; i++) scale = Math.max(scale, Math.abs(m[d + i]), i < n - 1 ? Math.abs(m[e + i]) : 0);
-  if (scale === 0) {
+  if (scale < TINY) {
     m.fill(0, v, v + n * n);
     for (let i = 0; i < n; i++) m[v + i * n + i] = 1;
     return;

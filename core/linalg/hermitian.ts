@@ -8,6 +8,7 @@ import {
   reduceHermitianSteps,
 } from './hermitian-reduction';
 import { type Arena, createArena, put, withArena } from './kernels/arena';
+import { TINY } from './kernels/plain-triangle';
 import { ascending } from './order';
 import { finish, finishAsync, type Steps } from './steps';
 import { batchSize, notConverged } from './symmetric';
@@ -135,8 +136,9 @@ function removePhases(m: Float64Array, { n, tr, ti }: HermitianPlaces) {
   const im = new Float64Array(n);
   for (let i = 1; i < n; i++) {
     const size = Math.hypot(m[tr + i], m[ti + i]);
-    const pr = size === 0 ? 1 : m[tr + i] / size;
-    const pi = size === 0 ? 0 : m[ti + i] / size;
+    const none = size < TINY;
+    const pr = none ? 1 : m[tr + i] / size;
+    const pi = none ? 0 : m[ti + i] / size;
     re[i] = re[i - 1] * pr - im[i - 1] * pi;
     im[i] = re[i - 1] * pi + im[i - 1] * pr;
     m[tr + i - 1] = size;

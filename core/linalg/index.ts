@@ -17,6 +17,7 @@ export {
 } from './hermitian';
 export {
   extremalEigenvalues,
+  type LowestEigenpairs,
   type LowestOptions,
   lowestEigenpairs,
   type Operator,

@@ -1,5 +1,6 @@
 import type { JobContext } from '../job';
 import { type Arena, createArena, takeZeros } from './kernels/arena';
+import { TINY } from './kernels/plain-triangle';
 import { applyGroup, BAND, buildTriangle, groupRoom } from './reflector-group';
 import { finishAsync, type Steps } from './steps';
 
@@ -76,7 +77,10 @@ function* qrSteps(arena: Arena, a: Float64Array, rows: number, cols: number): St
     for (let k = 0; k <= j; k++) r[k * cols + j] = m[x + k];
     let scale = 0;
     for (let k = j; k < rows; k++) scale = Math.max(scale, Math.abs(m[x + k]));
-    if (scale === 0) return;
+    if (scale < TINY) {
+      r[j * cols + j] = m[x + j];
+      return;
+    }
     let sum = 0;
     for (let k = j; k < rows; k++) {
       m[x + k] /= scale;

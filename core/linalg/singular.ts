@@ -17,8 +17,8 @@ export interface SingularOptions {
 
 /** A level of the recursion keeps the triples down to this part of its largest one. */
 const LEVEL = 1e-3;
-/** Part of the largest row that a vanishing row of the same level may hold: 2⁻⁵²/LEVEL with some room. */
-const BLUR = 1e-12;
+/** Rows below this part of a level's largest are mixtures of each other: the root of 2⁻⁵², with some room. */
+const BLUR = 2e-8;
 
 /**
  * Singular values (descending) and vectors of a rows×cols matrix: A = Σ_i s_i u_i v_iᵀ. Progress in stage `singular`.
@@ -64,12 +64,15 @@ function* tripleSteps(
   cols: number,
   tolerance: number,
 ): Steps<SingularValues> {
+  const scale = a.reduce((max, x) => Math.max(max, Math.abs(x)), 0);
+  // Squares of very large or small numbers would leave the number range.
+  const input = a.subarray(0, rows * cols).map((x) => x / (scale || 1));
   const found: { readonly level: Level; readonly count: number }[] = [];
-  let level = yield* diagonalise(arena, null, put(arena, a.subarray(0, rows * cols)), rows, rows, cols);
+  let level = yield* diagonalise(arena, null, put(arena, input), rows, rows, cols);
   const least = tolerance * (level.s[0] ?? 0);
   for (;;) {
     const { s } = level;
-    // Rows of a level carry up to BLUR·s_0 of their larger sisters, so that a row of zeros shows only further down.
+    // Nothing is dropped while a row may still hold a part of what is to be kept.
     const small = BLUR * s[0] <= least ? s.findIndex((x) => x <= least) : -1;
     const count = small < 0 ? s.length : small;
     if (count === 0) break;
@@ -81,22 +84,24 @@ function* tripleSteps(
     level = yield* diagonalise(arena, u + cut * rows, w + cut * cols, count - cut, rows, cols);
   }
 
-  const rank = found.reduce((sum, { count }) => sum + count, 0);
+  const triples = found.flatMap(({ level, count }) =>
+    Array.from({ length: count }, (_, i) => ({
+      u: level.u + i * rows,
+      w: level.w + i * cols,
+      s: rowNorm(arena.f64, level.w + i * cols, cols), // separating the levels may have changed it a little
+    })),
+  );
+  triples.sort((x, y) => y.s - x.s);
+  const rank = triples.length;
   const out = {
     s: new Float64Array(rank),
     u: new Float64Array(rank * rows),
     v: new Float64Array(rank * cols),
   };
-  let to = 0;
-  for (const { level, count } of found) {
-    const w = arena.f64.subarray(level.w, level.w + count * cols);
-    out.u.set(arena.f64.subarray(level.u, level.u + count * rows), to * rows);
-    for (let i = 0; i < count; i++, to++) {
-      const s = rowNorm(w, i * cols, cols);
-      out.s[to] = s;
-      for (let k = 0; k < cols; k++) out.v[to * cols + k] = w[i * cols + k] / s;
-    }
-    yield 0;
+  for (const [to, { u, w, s }] of triples.entries()) {
+    out.s[to] = s * scale;
+    out.u.set(arena.f64.subarray(u, u + rows), to * rows);
+    for (let k = 0; k < cols; k++) out.v[to * cols + k] = arena.f64[w + k] / s;
   }
   return { rows, cols, rank, ...out };
 }

@@ -1,6 +1,8 @@
 // Complex Householder reduction of Hermitian matrices in two planes, and batches of it.
 import { qlSteps } from './ql.asm';
 
+const TINY: f64 = 1e-290; // less than this is no content, and its reciprocal would overflow
+
 // @ts-ignore: decorator
 @inline
 function madd(sum: v128, x: v128, y: v128): v128 {
@@ -92,7 +94,7 @@ export function reduceHermitian(ar: i32, ai: i32, ld: i32, n: i32, d: i32, tr: i
       if (k < last) scale += abs(load<f64>(row + k)) + abs(x);
     }
     const fr = load<f64>(row + last), fi = load<f64>(col + last);
-    if (scale == 0) {
+    if (scale < TINY) {
       store<f64>(ptr, fr);
       store<f64>(pti, -fi);
       store<f64>(size, 0);
@@ -110,7 +112,9 @@ export function reduceHermitian(ar: i32, ai: i32, ld: i32, n: i32, d: i32, tr: i
     // x becomes −phase·‖x‖·e_{i−1}: no cancellation in u = x + phase·‖x‖·e_{i−1}.
     const x = load<f64>(row + last), y = load<f64>(col + last);
     const root = sqrt(sum), modulus = sqrt(x * x + y * y);
-    const pr = modulus == 0 ? 1 : x / modulus, pi = modulus == 0 ? 0 : y / modulus;
+    // A phase from numbers that all but underflow would not have modulus 1; none is needed then.
+    const none = modulus < 1e-150;
+    const pr = none ? 1 : x / modulus, pi = none ? 0 : y / modulus;
     store<f64>(ptr, -scale * root * pr);
     store<f64>(pti, scale * root * pi);
     store<f64>(row + last, x + root * pr);

@@ -1,5 +1,5 @@
 import type { Kernels } from './kernels';
-import { plainTriangle } from './plain-triangle';
+import { plainTriangle, TINY } from './plain-triangle';
 
 type HermitianKernels = Pick<Kernels, 'hermitianTimes' | 'reduceHermitian' | 'hermitianValuesOfMany'>;
 
@@ -78,7 +78,7 @@ export function complexReflectorInPlace(m: Float64Array, u: number, v: number, i
   for (let k = 0; k < i - 1; k++) scale += Math.abs(m[u + k]) + Math.abs(m[v + k]);
   const p = u + i - 1;
   const q = v + i - 1;
-  if (scale === 0) return { re: m[p], im: m[q], norm: 0 };
+  if (scale < TINY) return { re: m[p], im: m[q], norm: 0 };
   scale += Math.abs(m[p]) + Math.abs(m[q]);
   let sum = 0;
   for (let k = 0; k < i; k++) {
@@ -88,8 +88,10 @@ export function complexReflectorInPlace(m: Float64Array, u: number, v: number, i
   }
   const root = Math.sqrt(sum);
   const modulus = Math.hypot(m[p], m[q]);
-  const pr = modulus === 0 ? 1 : m[p] / modulus;
-  const pi = modulus === 0 ? 0 : m[q] / modulus;
+  // A phase from numbers that all but underflow would not have modulus 1; none is needed then.
+  const none = modulus < 1e-150;
+  const pr = none ? 1 : m[p] / modulus;
+  const pi = none ? 0 : m[q] / modulus;
   m[p] += root * pr;
   m[q] += root * pi;
   return { re: -scale * root * pr, im: -scale * root * pi, norm: sum + root * modulus };

@@ -5,6 +5,9 @@ type TriangleKernels = Pick<
   'triangleTimes' | 'triangleRankTwo' | 'reduceTriangle' | 'eigenvaluesOfMany' | 'qlSteps'
 >;
 
+/** Less than this is no content, and its reciprocal would overflow. */
+export const TINY = 1e-290;
+
 /** Real symmetric and antisymmetric reductions and the QL iteration. */
 export function plainTriangle(memory: () => Float64Array): TriangleKernels {
   const kernels: TriangleKernels = {
@@ -66,6 +69,7 @@ export function plainTriangle(memory: () => Float64Array): TriangleKernels {
       if (n > 0) m[e + n - 1] = 0;
       let scale = 0;
       for (let i = 0; i < n; i++) scale = Math.max(scale, Math.abs(m[d + i]), Math.abs(m[e + i]));
+      if (scale < TINY) return 0;
       for (let l = 0; l < n; l++) {
         for (let step = 0; ; step++) {
           let end = l;
@@ -92,7 +96,7 @@ export function reflectorInPlace(m: Float64Array, row: number, i: number): { bet
   const last = row + i - 1;
   let scale = 0;
   for (let p = row; p < last; p++) scale += Math.abs(m[p]);
-  if (scale === 0) return { beta: m[last], norm: 0 };
+  if (scale < TINY) return { beta: m[last], norm: 0 };
   scale += Math.abs(m[last]);
   let sum = 0;
   for (let p = row; p <= last; p++) {

@@ -14,7 +14,7 @@ export function qlSteps(d: i32, e: i32, n: i32, z: i32, ld: i32, width: i32): i3
   store<f64>(pe + (<usize>(n - 1) << 3), 0);
   let scale: f64 = 0;
   for (let i: usize = 0; i < <usize>n << 3; i += 8) scale = max(scale, max(abs(load<f64>(pd + i)), abs(load<f64>(pe + i))));
-  if (scale == 0) return 0;
+  if (scale < 1e-290) return 0; // nothing but rounding beside zeros, and the reciprocal would overflow
   // Largest element 1: squares cannot overflow, and what underflows is far below the accuracy.
   scaleBoth(pd, pe, n, 1 / scale);
   for (let l = 0; l < n; l++) {

@@ -2,6 +2,8 @@
 import { qlSteps } from './ql.asm';
 import { triangleRankTwo, triangleTimes } from './rows.asm';
 
+const TINY: f64 = 1e-290; // less than this is no content, and its reciprocal would overflow
+
 /**
  * Lower triangle of A (n×n), sign = ±1 for symmetric or antisymmetric. d: diagonal (0 for antisymmetric); e[i] = T_{i+1,i}, i < n − 1;
  * h[i]: ‖u‖²/2 of the reflector left in row i, 0 for none. w: n numbers of room.
@@ -12,7 +14,7 @@ export function reduceTriangle(a: i32, ld: i32, n: i32, sign: f64, d: i32, e: i3
     const offDiagonal = (<usize>(e + i) << 3) - 8, size = <usize>(h + i) << 3;
     let scale: f64 = 0;
     for (let p = row; p < last; p += 8) scale += abs(load<f64>(p));
-    if (scale == 0) {
+    if (scale < TINY) {
       store<f64>(offDiagonal, load<f64>(last));
       store<f64>(size, 0);
       continue;
