@@ -10,6 +10,9 @@ interface Column {
   readonly head: readonly string[];
 }
 
+/** What the figures mean where an element is wanted instead of an energy. */
+const MATRIX_ELEMENT =
+  'Reckoned as phase estimation of one level; estimating matrix elements directly is not reckoned.';
 const GAP = '   ';
 const SEAM = 9;
 const LEAST_CELL = 11;
@@ -56,6 +59,7 @@ function title(comparison: Comparison, meaning: string): string[] {
     `${hamiltonian.orbitals} orbitals, ${hamiltonian.electrons} electrons, ${terms}; ` +
       `${wanted ?? meaning} to ${value} ${unitText(target.unit)} rms. ` +
       `${sharesLookup(comparison) ? `Table look-up: ${variants[0]!.lookup}. ` : ''}Planning estimate.`,
+    ...(meaning === 'matrix-element' ? [MATRIX_ELEMENT] : []),
     ...(variants.length === 0 ? ['No variant was computed.'] : []),
   ];
 }

@@ -1,19 +1,18 @@
 import { Command, CommanderError, Option } from 'commander';
-import { expandVariants } from '../../core/encode';
-import { MEANINGS, type Meaning, type OrbitalChoice } from '../../core/plan';
+import { MEANINGS } from '../../core/plan';
 import { version } from '../../package.json';
-import type { CompareRequest, Manner, Request } from './request';
 import {
-  parseBits,
-  parseCount,
-  parseOccupations,
-  parseOrbitals,
-  parseOverlaps,
-  parseTarget,
-  parseTerms,
-  parseThreshold,
-  usageError,
-} from './values';
+  compareRequest,
+  electronsOf,
+  type Flags,
+  inputFiles,
+  readManner,
+  selection,
+  textOf,
+  variantsOf,
+} from './flags';
+import type { Manner, Request } from './request';
+import { parseCount, parseThreshold, usageError } from './values';
 import { addWhatIf } from './whatif-command';
 
 /** A call of the command line: what is asked and how to answer. */
@@ -24,9 +23,6 @@ export interface Call {
 
 /** Help or the version was asked for, and written. */
 export class HelpShown extends Error {}
-
-type Flags = Record<string, string | boolean | undefined>;
-const ANY = Number.MAX_SAFE_INTEGER;
 
 /**
  * Reads the arguments after `spinwright`.
@@ -76,7 +72,7 @@ function buildProgram(demoFolder: string, accept: Accept): Command {
           command: 'inspect',
           ...inputFiles(files, flags),
           electrons: electronsOf(flags),
-          writeRecipe: text(flags.writeRecipe),
+          writeRecipe: textOf(flags.writeRecipe),
         },
         flags,
       ),
@@ -124,7 +120,7 @@ function buildProgram(demoFolder: string, accept: Accept): Command {
     .option('--target <energy>', 'wanted accuracy with its unit', '5cm-1')
     .option('--out <dir>', 'copy the demo files there instead of comparing')
     .action((flags: Flags) => {
-      const out = text(flags.out);
+      const out = textOf(flags.out);
       if (out !== null) accept({ command: 'copy-demo', from: demoFolder, out }, flags);
       else accept(compareRequest([demoFolder], flags), flags);
     });
@@ -166,87 +162,6 @@ function comparing(command: Command): Command {
     .option('--overlap <p>', 'squared overlap of the start state, two for a splitting', '1')
     .option('--qubits-max <n>', 'most logical qubits a run may use');
 }
-
-function compareRequest(files: readonly string[], flags: Flags): CompareRequest {
-  const meaning = String(flags.meaning) as Meaning;
-  const overlaps = parseOverlaps(String(flags.overlap));
-  if (overlaps.length === 2 && meaning !== 'splitting') {
-    throw usageError(
-      '--overlap',
-      'two numbers',
-      'one, as there is one level',
-      'Add --meaning splitting or give one.',
-    );
-  }
-  const cap = text(flags.qubitsMax);
-  return {
-    command: 'compare',
-    ...inputFiles(files, flags),
-    comparison: {
-      ...selection(flags),
-      target: { ...parseTarget(String(flags.target)), meaning },
-      variants: variantsOf(flags),
-      threshold: parseThreshold(String(flags.threshold)),
-      bits: parseBits(String(flags.bits)),
-      overlaps: meaning === 'splitting' && overlaps.length === 1 ? [overlaps[0]!, overlaps[0]!] : overlaps,
-      qubitsMax: cap === null ? null : parseCount('--qubits-max', cap, 1, ANY),
-    },
-  };
-}
-
-function selection(flags: Flags) {
-  const occupations = text(flags.occupations);
-  return {
-    terms: parseTerms(String(flags.terms)),
-    electrons: electronsOf(flags),
-    occupations: occupations === null ? null : parseOccupations(occupations),
-    window: windowOf(flags),
-  };
-}
-
-function windowOf(flags: Flags): OrbitalChoice | null {
-  const orbitals = text(flags.window);
-  const electrons = text(flags.windowElectrons);
-  if (orbitals !== null) {
-    return {
-      orbitals: parseOrbitals(orbitals),
-      electrons: electrons === null ? null : parseCount('--window-electrons', electrons, 0, 800),
-    };
-  }
-  if (electrons === null) return null;
-  throw usageError(
-    '--window-electrons',
-    'no window',
-    'the orbitals too',
-    'Add --window, such as --window 3-6.',
-  );
-}
-
-function inputFiles(files: readonly string[], flags: Flags) {
-  return { files, recipe: text(flags.recipe) };
-}
-
-function electronsOf(flags: Flags): number | null {
-  const given = text(flags.electrons);
-  return given === null ? null : parseCount('--electrons', given, 0, 800);
-}
-
-function variantsOf(flags: Flags) {
-  const given = text(flags.variants);
-  return given === null ? null : expandVariants(given);
-}
-
-function readManner(flags: Flags): Manner {
-  return {
-    json: flags.json === true,
-    quiet: flags.quiet === true,
-    seed: parseCount('--seed', String(flags.seed), 0, 2 ** 32 - 1),
-    workers: parseCount('--workers', String(flags.workers), 1, 64),
-    trace: flags.trace === true,
-  };
-}
-
-const text = (flag: string | boolean | undefined): string | null => (typeof flag === 'string' ? flag : null);
 
 /** commander's own message, in our one line. */
 function fromCommander(error: CommanderError, args: readonly string[]): Error {

@@ -1,10 +1,10 @@
 import { type Command, Option } from 'commander';
 import { WHATIF_METHODS, type WhatIfMethod } from '../../core/estimate';
 import { toHartree } from '../../core/units';
+import type { Flags } from './flags';
 import type { Request, WhatIfRequest } from './request';
 import { parseCount, parseNumber, parseTarget } from './values';
 
-type Flags = Record<string, string | boolean | undefined>;
 /** Up to 2⁴⁰ factors, rows or coefficients: far above any published table. */
 const MOST = 2 ** 40;
 

@@ -52,6 +52,12 @@ describe('the comparison in the terminal', () => {
     );
   });
 
+  it('says what figures for a matrix element stand for', () => {
+    const lines = compareText(run([sparse]), 'matrix-element', 120).split('\n');
+    expect(lines[0]).toContain('a matrix element to 5 cm⁻¹');
+    expect(lines[1]).toContain('one level');
+  });
+
   it('puts the two ways to treat spin side by side with the change in percent', () => {
     expect(row(text, 'Toffoli a step')).toBe('940 −9.6 % 850 940');
     expect(row(text, '  rotations')).toBe('200 −50.0 % 100 200');

@@ -1,0 +1,100 @@
+import { expandVariants } from '../../core/encode';
+import type { Meaning, OrbitalChoice } from '../../core/plan';
+import type { CompareRequest, Manner } from './request';
+import {
+  parseBits,
+  parseCount,
+  parseOccupations,
+  parseOrbitals,
+  parseOverlaps,
+  parseTarget,
+  parseTerms,
+  parseThreshold,
+  usageError,
+} from './values';
+
+/** What commander hands over: the text of each flag, or true for one without a value. */
+export type Flags = Record<string, string | boolean | undefined>;
+const ANY = Number.MAX_SAFE_INTEGER;
+
+export const textOf = (flag: string | boolean | undefined): string | null =>
+  typeof flag === 'string' ? flag : null;
+
+export function compareRequest(files: readonly string[], flags: Flags): CompareRequest {
+  const meaning = String(flags.meaning) as Meaning;
+  const overlaps = parseOverlaps(String(flags.overlap));
+  if (overlaps.length === 2 && meaning !== 'splitting') {
+    throw usageError(
+      '--overlap',
+      'two numbers',
+      'one, as there is one level',
+      'Add --meaning splitting or give one.',
+    );
+  }
+  const cap = textOf(flags.qubitsMax);
+  return {
+    command: 'compare',
+    ...inputFiles(files, flags),
+    comparison: {
+      ...selection(flags),
+      target: { ...parseTarget(String(flags.target)), meaning },
+      variants: variantsOf(flags),
+      threshold: parseThreshold(String(flags.threshold)),
+      bits: parseBits(String(flags.bits)),
+      overlaps: meaning === 'splitting' && overlaps.length === 1 ? [overlaps[0]!, overlaps[0]!] : overlaps,
+      qubitsMax: cap === null ? null : parseCount('--qubits-max', cap, 1, ANY),
+    },
+  };
+}
+
+export function selection(flags: Flags) {
+  const occupations = textOf(flags.occupations);
+  return {
+    terms: parseTerms(String(flags.terms)),
+    electrons: electronsOf(flags),
+    occupations: occupations === null ? null : parseOccupations(occupations),
+    window: windowOf(flags),
+  };
+}
+
+function windowOf(flags: Flags): OrbitalChoice | null {
+  const orbitals = textOf(flags.window);
+  const electrons = textOf(flags.windowElectrons);
+  if (orbitals !== null) {
+    return {
+      orbitals: parseOrbitals(orbitals),
+      electrons: electrons === null ? null : parseCount('--window-electrons', electrons, 0, 800),
+    };
+  }
+  if (electrons === null) return null;
+  throw usageError(
+    '--window-electrons',
+    'no window',
+    'the orbitals too',
+    'Add --window, such as --window 3-6.',
+  );
+}
+
+export function inputFiles(files: readonly string[], flags: Flags) {
+  return { files, recipe: textOf(flags.recipe) };
+}
+
+export function electronsOf(flags: Flags): number | null {
+  const given = textOf(flags.electrons);
+  return given === null ? null : parseCount('--electrons', given, 0, 800);
+}
+
+export function variantsOf(flags: Flags) {
+  const given = textOf(flags.variants);
+  return given === null ? null : expandVariants(given);
+}
+
+export function readManner(flags: Flags): Manner {
+  return {
+    json: flags.json === true,
+    quiet: flags.quiet === true,
+    seed: parseCount('--seed', String(flags.seed), 0, 2 ** 32 - 1),
+    workers: parseCount('--workers', String(flags.workers), 1, 64),
+    trace: flags.trace === true,
+  };
+}
