@@ -30,6 +30,10 @@ export interface GateSink {
    * bulk of a large circuit, without a single Toffoli.
    */
   readonly skipsClifford?: boolean;
+  /** About how many gates a sink with `skipsClifford` was spared: half the bits of the table contents. */
+  skip?(gates: number): void;
+  /** Names wires just allocated; for texts and diagrams. */
+  nameRegister?(name: string, wires: readonly number[]): void;
   /** `condition` is the classical bit the gate depends on, or −1. Unused wires are −1. */
   gate(kind: GateKind, a: number, b: number, c: number, condition: number): void;
   /** exp(−i·angle/2·Z) on a wire; radians. */
@@ -71,6 +75,11 @@ export class Machine {
     return this.#sink.skipsClifford === true;
   }
 
+  /** Says what {@link GateSink.skipsClifford} left out. */
+  skip(gates: number): void {
+    this.#sink.skip?.(gates);
+  }
+
   get live(): number {
     return this.#live;
   }
@@ -83,8 +92,11 @@ export class Machine {
     return wire;
   }
 
-  allocateRegister(size: number): number[] {
-    return Array.from({ length: size }, () => this.allocate());
+  /** @param name - for registers that live through a whole circuit, so that texts can call them by it. */
+  allocateRegister(size: number, name?: string): number[] {
+    const wires = Array.from({ length: size }, () => this.allocate());
+    if (name !== undefined && size > 0) this.#sink.nameRegister?.(name, wires);
+    return wires;
   }
 
   release(wire: number): void {

@@ -113,7 +113,10 @@ function read(
   const lowBits = Math.log2(block);
   const listed = new Set(addresses);
   unaryIteration(register.slice(lowBits), blockAddresses(addresses, block), control, (m, high, flag) => {
-    if (m.skipsClifford) return;
+    if (m.skipsClifford) {
+      m.skip((block * width) / 2);
+      return;
+    }
     for (let j = 0; j < block; j++) {
       const address = high * block + j;
       if (!listed.has(address)) continue;
@@ -176,7 +179,10 @@ export function erase(
   const flags = low.begin(machine);
   const listed = new Set(addresses);
   unaryIteration(register.slice(lowBits), blockAddresses(addresses, block), control, (m, high, flag) => {
-    if (m.skipsClifford) return;
+    if (m.skipsClifford) {
+      m.skip((block * output.length) / 2);
+      return;
+    }
     for (let j = 0; j < block; j++) {
       const address = high * block + j;
       if (!listed.has(address)) continue;

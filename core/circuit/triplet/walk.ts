@@ -43,11 +43,11 @@ export function walkWires(
   machine: Machine,
   rotations: 'gradient' | 'exact',
 ): WalkWires {
-  const allocate = (size: number) => machine.allocateRegister(size);
-  const one = (wanted: boolean) => (wanted ? machine.allocate() : null);
+  const allocate = (size: number, name: string) => machine.allocateRegister(size, name);
+  const one = (wanted: boolean, name: string) => (wanted ? allocate(1, name)[0]! : null);
   const modulusBits = tables.angleBits + 2;
-  const system = allocate(2 * tables.orbitals);
-  const gradient = rotations === 'gradient' ? allocate(gradientWires(modulusBits)) : [];
+  const system = allocate(2 * tables.orbitals, 'system');
+  const gradient = rotations === 'gradient' ? allocate(gradientWires(modulusBits), 'gradient') : [];
   return {
     system,
     gradient,
@@ -55,14 +55,14 @@ export function walkWires(
       rotations === 'gradient'
         ? rotateByGradient(target, angle, gradient)
         : rotateExactly(target, angle, modulusBits),
-    item: allocate(tables.itemBits),
-    face: one(tables.hasFaces),
-    square: one(tables.hasPaired),
-    outerUniform: allocate(tables.bits.keep),
-    row: allocate(tables.rowBits),
-    innerUniform: allocate(tables.bits.innerKeep),
-    sigma: one(true)!,
-    x: one(true)!,
+    item: allocate(tables.itemBits, 'item'),
+    face: one(tables.hasFaces, 'face'),
+    square: one(tables.hasPaired, 'square'),
+    outerUniform: allocate(tables.bits.keep, 'outer uniform'),
+    row: allocate(tables.rowBits, 'row'),
+    innerUniform: allocate(tables.bits.innerKeep, 'inner uniform'),
+    sigma: one(true, 'sigma')!,
+    x: one(true, 'kind')!,
   };
 }
 
