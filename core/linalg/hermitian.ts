@@ -118,7 +118,7 @@ function* valueSteps(arena: Arena, matrix: ComplexMatrix): Steps<Float64Array> {
   const places = place(arena, matrix);
   yield* reduceHermitianSteps(arena, places);
   removePhases(arena.f64, places);
-  if (arena.kernels.qlSteps(places.d, places.tr, n, 0, 0, 0) !== 0) throw notConverged(n);
+  if (arena.kernels.qlValues(places.d, places.tr, n) !== 0) throw notConverged(n);
   return arena.f64.slice(places.d, places.d + n).sort();
 }
 

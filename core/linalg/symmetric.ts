@@ -122,7 +122,7 @@ function* valueSteps(arena: Arena, input: Float64Array, n: number): Steps<Float6
   const d = arena.take(n);
   const e = arena.take(n);
   yield* reduceSteps(arena, a, n, d, e, arena.take(n));
-  if (arena.kernels.qlSteps(d, e, n, 0, 0, 0) !== 0) throw notConverged(n);
+  if (arena.kernels.qlValues(d, e, n) !== 0) throw notConverged(n);
   return arena.f64.slice(d, d + n).sort();
 }
 

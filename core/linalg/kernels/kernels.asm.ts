@@ -1,7 +1,7 @@
 // Entry of the WebAssembly module. Memory is laid out by the caller from heapBase() on; nothing is allocated here.
 export { gemm } from './gemm.asm';
 export { hermitianTimes, hermitianValuesOfMany, reduceHermitian } from './hermitian.asm';
-export { qlSteps } from './ql.asm';
+export { qlSteps, qlValues } from './ql.asm';
 export { eigenvaluesOfMany, reduceTriangle } from './reduce.asm';
 export { addRows, rowDots, triangleRankTwo, triangleTimes } from './rows.asm';
 

@@ -102,7 +102,10 @@ export interface Kernels {
 
   /**
    * Implicit QL: d becomes the unordered eigenvalues of the tridiagonal matrix (d, e), e is destroyed. Rotations go to the n rows of
-   * z (`width` numbers each; 0 for values only). Returns 1 if an eigenvalue did not converge, else 0.
+   * z (`width` numbers each). Returns 1 if an eigenvalue did not converge, else 0.
    */
   qlSteps(d: number, e: number, n: number, z: number, ld: number, width: number): number;
+
+  /** {@link qlSteps} without vectors, and faster for it. */
+  qlValues(d: number, e: number, n: number): number;
 }

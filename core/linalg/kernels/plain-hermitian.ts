@@ -5,7 +5,7 @@ type HermitianKernels = Pick<Kernels, 'hermitianTimes' | 'reduceHermitian' | 'he
 
 /** Complex Hermitian reductions on two planes. */
 export function plainHermitian(memory: () => Float64Array): HermitianKernels {
-  const { qlSteps } = plainTriangle(memory);
+  const { qlValues } = plainTriangle(memory);
   const kernels: HermitianKernels = {
     hermitianTimes(ar, ai, ld, n, xr, xi, yr, yi) {
       const m = memory();
@@ -64,7 +64,7 @@ export function plainHermitian(memory: () => Float64Array): HermitianKernels {
         const from = i * ld * n;
         kernels.reduceHermitian(ar + from, ai + from, ld, n, d, room, room + n, room + 2 * n, room + 3 * n);
         for (let k = 1; k < n; k++) m[room + k - 1] = Math.hypot(m[room + k], m[room + n + k]);
-        failed += qlSteps(d, room, n, 0, 0, 0);
+        failed += qlValues(d, room, n);
       }
       return failed;
     },

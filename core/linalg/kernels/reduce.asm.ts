@@ -1,5 +1,5 @@
 // Householder reduction of small symmetric or antisymmetric matrices to tridiagonal form, and batches of it.
-import { qlSteps } from './ql.asm';
+import { qlValues } from './ql.asm';
 import { triangleRankTwo, triangleTimes } from './rows.asm';
 
 const TINY: f64 = 1e-290; // less than this is no content, and its reciprocal would overflow
@@ -61,7 +61,7 @@ export function eigenvaluesOfMany(a: i32, ld: i32, n: i32, count: i32, sign: f64
   for (let i = 0; i < count; i++, a += ld * n, values += n) {
     reduceTriangle(a, ld, n, sign, values, e, h, w);
     // A diagonal unitary turns iT into the real symmetric matrix with the sizes of T's elements beside a zero diagonal.
-    if (qlSteps(values, e, n, 0, 0, 0) != 0) failed++;
+    if (qlValues(values, e, n) != 0) failed++;
   }
   return failed;
 }

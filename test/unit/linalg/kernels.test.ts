@@ -171,6 +171,30 @@ describe('QL', () => {
   }
 });
 
+describe('QL without vectors', () => {
+  for (const n of SIZES) {
+    it(`agrees with the rotations by another formula, order ${n}`, () => {
+      for (const shape of [
+        { d: randomNumbers(n, 21), e: randomNumbers(n, 22) },
+        { d: new Float64Array(n), e: randomNumbers(n, 23) },
+        { d: randomNumbers(n, 24), e: randomNumbers(n, 25).map((x, i) => (i % 3 ? x * 1e-9 : 0)) },
+        { d: new Float64Array(n).fill(2), e: randomNumbers(n, 26).map((x) => x * 1e-5) },
+        {
+          d: randomNumbers(n, 27).map((x, i) => x * 10 ** -i),
+          e: randomNumbers(n, 28).map((x, i) => x * 10 ** -i),
+        },
+      ]) {
+        const [fast, slow] = [createArena(), plainArena()].map((arena) => {
+          const [d, e] = [put(arena, shape.d), put(arena, shape.e)];
+          expect(arena.kernels.qlValues(d, e, n)).toBe(0);
+          return arena.f64.slice(d, d + n).sort();
+        });
+        expect(distance(fast, slow)).toBeLessThan(3e-14);
+      }
+    });
+  }
+});
+
 describe('arena', () => {
   it('keeps what is in memory when it grows and reuses released room', () => {
     for (const arena of [createArena(), plainArena()]) {
