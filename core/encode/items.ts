@@ -1,5 +1,11 @@
-import { type FactorBlock, type SquareFactors, sectorLayout, type TripleFactors } from '../factor';
-import { traceOfPairs } from '../factor/elements';
+import {
+  type FactorBlock,
+  type SquareFactors,
+  sectorLayout,
+  type TripleFactors,
+  traceOfPairs,
+} from '../factor';
+
 import { countAbove, median, shiftedNorm } from './shift';
 
 /** Eigenvalues below this part of a factor's largest are zero and take no row. */

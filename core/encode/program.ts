@@ -1,4 +1,4 @@
-import type { Mu } from '../hamiltonian/operators';
+import type { Mu } from '../hamiltonian';
 
 /**
  * What SELECT of the triplet form has to apply, and how often: the encoding as rows of Majorana products.

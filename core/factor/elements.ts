@@ -1,4 +1,4 @@
-import { isSymmetricPlane, type Mu, type Sector } from '../hamiltonian/operators';
+import { isSymmetricPlane, type Mu, type Sector } from '../hamiltonian';
 import { numAntisymmetricPairs, numSymmetricPairs } from '../integrals/integral-set';
 
 /** Where one plane of a sector stands in a factor's vector and in its spectrum. */

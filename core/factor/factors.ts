@@ -1,4 +1,4 @@
-import type { Mu, Sector, TripletOperator } from '../hamiltonian/operators';
+import type { Mu, Sector, TripletOperator } from '../hamiltonian';
 import type { ComplexMatrix } from '../linalg';
 
 /** Which physical part of the two-electron tensor a block factorises. */

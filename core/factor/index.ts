@@ -1,4 +1,4 @@
-export { type PlaneSlot, planeInto, type SectorLayout, sectorLayout } from './elements';
+export { type PlaneSlot, planeInto, type SectorLayout, sectorLayout, traceOfPairs } from './elements';
 export { type FactoriseOptions, factorise } from './factorise';
 export type {
   BlockPart,

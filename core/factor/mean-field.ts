@@ -1,4 +1,4 @@
-import type { TripletOperator } from '../hamiltonian/operators';
+import type { TripletOperator } from '../hamiltonian';
 import { numAntisymmetricPairs, numSymmetricPairs } from '../integrals/integral-set';
 import { multiply } from '../linalg';
 import { planeInto, sectorLayout, traceOfPairs, weightedTraceOfPairs } from './elements';

@@ -1,4 +1,4 @@
-import type { Mu, Sector } from '../hamiltonian/operators';
+import type { Mu, Sector } from '../hamiltonian';
 import { numAntisymmetricPairs, numSymmetricPairs } from '../integrals/integral-set';
 import type { JobContext, Task } from '../job';
 import { antisymmetricNormsBatch, symmetricEigenvaluesBatch } from '../linalg';

@@ -1,4 +1,4 @@
-import type { SpinorHamiltonian } from '../hamiltonian/hamiltonian';
+import type { SpinorHamiltonian } from '../hamiltonian';
 import { numAntisymmetricPairs, numSymmetricPairs } from '../integrals/integral-set';
 
 /** Writes the Hermitian M×M matrix with the given coordinates (symmetric pairs, then antisymmetric ones). */

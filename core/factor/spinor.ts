@@ -1,4 +1,4 @@
-import type { SpinorHamiltonian } from '../hamiltonian/hamiltonian';
+import type { SpinorHamiltonian } from '../hamiltonian';
 import type { JobContext, Task } from '../job';
 import { hermitianEigenvaluesBatch, multiply } from '../linalg';
 import { choleskyFactors } from './coulomb';

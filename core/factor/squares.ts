@@ -1,4 +1,4 @@
-import type { Mu, Sector } from '../hamiltonian/operators';
+import type { Mu, Sector } from '../hamiltonian';
 import type { JobContext } from '../job';
 import type { WeightedVectors } from './eigenvectors';
 import { sectorLayout } from './elements';

@@ -1,4 +1,4 @@
-import { zeroOperator } from '../hamiltonian/operators';
+import { zeroOperator } from '../hamiltonian';
 import type { JobContext } from '../job';
 import { antisymmetricNormsBatch, multiply } from '../linalg';
 import { ZERO_WEIGHT } from './eigenvectors';
