@@ -1,10 +1,11 @@
 // `npm test [-- FILTER]`: set-up, type check, lint, unit, property and published tests, bundles, browser tests.
 // With a filter word only the vitest files whose path contains it run.
 import { existsSync, mkdirSync, readFileSync, rmSync } from 'node:fs';
+import { relative } from 'node:path';
 import { findBrowser, NO_BROWSER } from './browser.mjs';
 import { showChecks, typeChecks } from './check.mjs';
 import { lintChecks } from './lint.mjs';
-import { inRoot, packageCommand, runNode } from './process.mjs';
+import { inRoot, packageCommand, ROOT, runNode } from './process.mjs';
 import { ensureBuilt, setUp } from './setup.mjs';
 
 const filters = process.argv.slice(2).filter((word) => !word.startsWith('-'));
@@ -76,7 +77,7 @@ async function vitest(projects, words) {
 
 function book({ testResults }) {
   for (const file of testResults) {
-    const name = file.name.replace(inRoot(''), '').replaceAll('\\', '/');
+    const name = relative(ROOT, file.name).replaceAll('\\', '/');
     // A file that fails to load has no test to carry the failure.
     if (file.status === 'failed' && file.assertionResults.every((test) => test.status !== 'failed'))
       failed.push(name);
