@@ -18,7 +18,7 @@ import { nodeReadPlatform } from './hdf5';
 import type { InputFiles } from './request';
 
 /** Recipes and references are written by hand or hold some hundred numbers. */
-const MOST_JSON = 4 * 2 ** 20;
+const MOST_JSON = 2 ** 20;
 
 /** Finds out what the named files are and how they are to be read. */
 export async function openInputs(

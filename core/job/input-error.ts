@@ -23,7 +23,7 @@ export class InputError extends Error implements Problem {
 
   constructor(problem: Problem) {
     const line = `${problem.where}: ${problem.found}; expected ${problem.expected}. ${problem.mend}`;
-    super(line.replace(/\s*\n\s*/g, ' '));
+    super(plainLine(line));
     this.code = problem.code;
     this.where = problem.where;
     this.found = problem.found;
@@ -37,6 +37,15 @@ export class InputError extends Error implements Problem {
     return { code, where, found, expected, mend };
   }
 }
+
+/**
+ * One line without control or formatting characters: names in a message come from files, and a terminal must not
+ * obey them.
+ */
+const plainLine = (text: string): string =>
+  text
+    .replace(/\s*[\n\r\t]\s*/g, ' ')
+    .replace(/[\p{Cc}\p{Cf}\p{Zl}\p{Zp}]/gu, (c) => `\\u{${c.codePointAt(0)!.toString(16)}}`);
 
 /**
  * Something noticed in otherwise readable input. `error` stops the job, `warning` asks for a decision,

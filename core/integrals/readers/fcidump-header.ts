@@ -1,6 +1,6 @@
 import { InputError } from '../../job';
 import { MAX_ARRAY_BYTES } from './limits';
-import type { Namelist } from './namelist';
+import { excerpt, type Namelist } from './namelist';
 
 /** What the namelist of an FCIDUMP says. `orbitals` counts spinors in a spinor file. */
 export interface FcidumpHeader {
@@ -29,7 +29,13 @@ export function readHeader(path: string, keys: Namelist): FcidumpHeader {
     const values = keys.get(key)?.values;
     if (values === undefined) return null;
     if (values.length === 1 && /^[+-]?\d{1,9}$/.test(values[0])) return Number(values[0]);
-    throw refuse('bad-header', key, `${key}=${values.join(' ')}`, 'one whole number', `Correct ${key}.`);
+    throw refuse(
+      'bad-header',
+      key,
+      `${key}=${excerpt(values.join(' '))}`,
+      'one whole number',
+      `Correct ${key}.`,
+    );
   };
   const flag = (key: string): boolean => /^(\.?t(rue)?\.?|[1-9]\d*)$/i.test(keys.get(key)?.values[0] ?? '');
 
@@ -72,7 +78,7 @@ export function readHeader(path: string, keys: Namelist): FcidumpHeader {
   if (electrons === null)
     notes.push('The header has no NELEC: the number of electrons must come from elsewhere.');
   const other = [...keys.keys()].filter((key) => !KNOWN.has(key));
-  if (other.length > 0) notes.push(`Header keys without meaning here: ${other.join(', ')}.`);
+  if (other.length > 0) notes.push(`Header keys without meaning here: ${excerpt(other.join(', '))}.`);
   return { orbitals, electrons, ms2, relativistic, at, notes };
 }
 

@@ -2,7 +2,7 @@ import { InputError, type JobContext } from '../../job';
 import type { RawArray } from '../raw';
 import type { ByteSource, Hdf5Dataset, Hdf5File, ReadPlatform } from '../source';
 import { refuseEmpty } from './chunks';
-import { requireFinite } from './limits';
+import { clipped, requireFinite } from './limits';
 import { hasHdf5Signature } from './sniff';
 
 /**
@@ -62,7 +62,7 @@ export function noSuchDataset(
   path: string,
   mend = 'Correct the dataset in the recipe, or name another file.',
 ): InputError {
-  const known = file.datasets();
+  const known = file.datasets().map(clipped);
   const shown = known.length > 12 ? `${known.slice(0, 12).join(', ')}, …` : known.join(', ');
   return new InputError({
     code: 'no-such-dataset',

@@ -10,6 +10,9 @@ const UNQUESTIONED_BYTES = 2 ** 26;
  */
 const MAX_INFLATION = 250;
 
+/** A name from a file, short enough for a message. */
+export const clipped = (name: string): string => (name.length > 80 ? `${name.slice(0, 77)}…` : name);
+
 const mebibytes = (bytes: number): string => `${Math.ceil(bytes / 2 ** 20)} MiB`;
 
 /** Element count of a shape. @throws InputError `too-large` where it could not be held. */

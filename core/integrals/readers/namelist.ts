@@ -1,11 +1,15 @@
 import { InputError } from '../../job';
 import { latin1 } from './text-lines';
 
-const MAX_HEADER_BYTES = 2 ** 20;
+const MAX_HEADER_BYTES = 2 ** 16;
+/** A label for each of 800 spinors is the longest list there is; repeat counts can claim any number. */
+const MAX_VALUES = 10_000;
 /** Blank and comment lines that may come before the header. */
 const MAX_LEADING_LINES = 1000;
 /** A line of integrals where the header should go on: a number with a decimal point comes first. */
-const DATA_LINE = /^\s*\(?\s*[-+]?\d*\.\d/;
+const DATA_LINE = /^\s*(?:\(\s*)?[-+]?\d*\.\d/;
+/** `KEY=` or `KEY(1)=`. Bounded and never begun inside a word, so that no text makes it slow. */
+const KEY = /(?<![A-Za-z0-9_])([A-Za-z][A-Za-z0-9_]{0,30})\s{0,99}(?:\([^)]{0,99}\))?\s{0,99}=/g;
 
 const MENDS: Readonly<Record<string, string>> = {
   'unclosed-header': 'Close the header with a line "&END"; if the file was cut short, copy it again.',
@@ -58,20 +62,23 @@ export class NamelistCollector {
 
   parse(): Namelist {
     const keys = new Map<string, { values: string[]; line: number }>();
-    const pattern = /([A-Za-z][A-Za-z0-9_]*)\s*(?:\([^)]*\))?\s*=/g;
-    const found = [...this.text.matchAll(pattern)];
+    const found = [...this.text.matchAll(KEY)];
+    let [line, counted] = [this.firstLine, 0];
     found.forEach((match, i) => {
       const key = match[1].toUpperCase();
-      const line = this.firstLine + this.text.slice(0, match.index).split('\n').length - 1;
+      for (; counted < match.index; counted++) if (this.text[counted] === '\n') line++;
       const from = match.index + match[0].length;
       const body = this.text.slice(from, found[i + 1]?.index ?? this.text.length);
-      const values = body
-        .split(/[\s,;]+/)
-        .filter((value) => value !== '')
-        .flatMap(repeated);
+      const written = body.split(/[\s,;]+/).filter((value) => value !== '');
+      const count = written.reduce((sum, value) => sum + repetitions(value).count, 0);
+      if (count > MAX_VALUES) {
+        const found = `${key} with ${count} values`;
+        throw this.problem('bad-header', line, found, `at most ${MAX_VALUES}`, `Correct ${key}.`);
+      }
+      const values = written.flatMap(repeated);
       const earlier = keys.get(key)?.values;
       if (earlier && earlier.join(' ') !== values.join(' ')) {
-        const both = `${earlier.join(' ')} and ${values.join(' ')}`;
+        const both = `${excerpt(earlier.join(' '))} and ${excerpt(values.join(' '))}`;
         throw this.problem(
           'bad-header',
           line,
@@ -119,7 +126,12 @@ function untilEnd(text: string): { kept: string; closed: boolean } {
 }
 
 /** Fortran's repeat count: `8*1` stands for eight ones. */
-function repeated(value: string): string[] {
+function repetitions(value: string): { count: number; once: string } {
   const match = /^(\d{1,4})\*(.+)$/.exec(value);
-  return match ? new Array<string>(Number(match[1])).fill(match[2]) : [value];
+  return match ? { count: Number(match[1]), once: match[2] } : { count: 1, once: value };
+}
+
+function repeated(value: string): string[] {
+  const { count, once } = repetitions(value);
+  return new Array<string>(count).fill(once);
 }

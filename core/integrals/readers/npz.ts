@@ -3,7 +3,7 @@ import { InputError, type JobContext } from '../../job';
 import type { RawArray } from '../raw';
 import type { ByteSource } from '../source';
 import { forEachChunk, refuseEmpty } from './chunks';
-import { refuseTraps } from './limits';
+import { clipped, refuseTraps } from './limits';
 import { NpyAssembler } from './npy';
 import { damaged, dataOffset, readDirectory, type ZipMember } from './zip';
 
@@ -28,7 +28,7 @@ export async function readNpz(
 ): Promise<RawArray> {
   refuseEmpty(source);
   const member = choose(source, await readDirectory(source, context), name);
-  const where = `${source.path}:${arrayName(member)}`;
+  const where = `${source.path}:${clipped(arrayName(member))}`;
   if (member.encrypted || (member.method !== 0 && member.method !== 8)) {
     throw new InputError({
       code: 'bad-zip',
@@ -71,7 +71,8 @@ function choose(source: ByteSource, members: readonly ZipMember[], name: string 
         : fitting.length === 0
           ? 'no such array'
           : `${fitting.length} arrays`,
-    expected: names.length === 0 ? 'at least one array' : `one of ${names.slice(0, 12).join(', ')}`,
+    expected:
+      names.length === 0 ? 'at least one array' : `one of ${names.slice(0, 12).map(clipped).join(', ')}`,
     mend:
       names.length === 0
         ? 'Write it again with numpy.savez.'

@@ -1,5 +1,6 @@
 /** The candidate with the fewest single-letter edits from `word`, or null where none is near. */
 export function nearest(word: string, candidates: readonly string[]): string | null {
+  if (word.length > 100) return null;
   let best: string | null = null;
   let bestDistance = Math.max(2, Math.ceil(word.length / 2)) + 1;
   for (const candidate of candidates) {

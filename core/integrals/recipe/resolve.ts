@@ -169,7 +169,7 @@ async function refuseWithSuggestion(
 
 /** The text of a small file. @throws InputError `not-utf8`, `too-large`. */
 async function readText(source: ByteSource): Promise<string> {
-  const limit = 4 * 2 ** 20;
+  const limit = 2 ** 20;
   if (source.size > limit) {
     const found = `${source.size} bytes`;
     throw new InputError({

@@ -10,7 +10,7 @@ import { nearest } from './nearest';
  * @throws InputError `schema`: where = `file: JSON pointer`, and the nearest known key or value in the mend.
  */
 export function checkSchema(document: Json, schema: object, file: string): void {
-  const { valid, errors } = new Validator(schema as Schema, '2020-12', false).validate(document);
+  const { valid, errors } = validate(document, schema as Schema);
   if (valid) return;
   const leaves = errors.filter((unit) => unit.keyword in RANK && !isPassedOn(unit, schema as Schema));
   // An unknown key usually explains the required key that is missing, so it comes first.
@@ -48,6 +48,17 @@ const RANK: Readonly<Record<string, number>> = {
   not: 5,
 };
 
+/** All problems, or only the first where there are more than the library can collect. */
+function validate(document: Json, schema: Schema) {
+  try {
+    return new Validator(schema, '2020-12', false).validate(document);
+  } catch (error) {
+    // It spreads its list of problems over the arguments of a call, of which there may not be 100 000.
+    if (!(error instanceof RangeError)) throw error;
+    return new Validator(schema, '2020-12', true).validate(document);
+  }
+}
+
 /** An additionalProperties that is a schema only reports what its own keywords report more exactly. */
 const isPassedOn = (unit: OutputUnit, schema: Schema): boolean =>
   unit.keyword === 'additionalProperties' &&
@@ -67,8 +78,8 @@ function explain(unit: OutputUnit, document: Json, schema: Schema) {
     const key = Object.keys(value as object).find((name) => !known.includes(name)) ?? '';
     const near = nearest(key, known);
     return {
-      where: `${place}/${key.replaceAll('~', '~0').replaceAll('/', '~1')}`,
-      found: `unknown key ${JSON.stringify(key)}`,
+      where: `${place}/${clip(key.replaceAll('~', '~0').replaceAll('/', '~1'))}`,
+      found: `unknown key ${shorten(key)}`,
       expected: `one of ${known.join(', ')}`,
       mend: near === null ? 'Remove the key.' : `The nearest known key is "${near}".`,
     };
@@ -176,7 +187,6 @@ function resolveSchema(schema: Schema, tokens: readonly string[]): unknown {
   return at;
 }
 
-function shorten(value: unknown): string {
-  const text = JSON.stringify(value) ?? 'nothing';
-  return text.length > 80 ? `${text.slice(0, 77)}…` : text;
-}
+const shorten = (value: unknown): string => clip(JSON.stringify(value) ?? 'nothing');
+
+const clip = (text: string): string => (text.length > 80 ? `${text.slice(0, 77)}…` : text);

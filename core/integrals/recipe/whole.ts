@@ -12,7 +12,7 @@ export async function wholeRole(
   const format = await sniffFormat(source);
   if (format === 'fcidump') {
     const head = new TextDecoder('latin1').decode(await source.read(0, 65536));
-    return /TREL\s*=\s*\.?T/i.test(head) || /^\s*\(/m.test(head) ? 'spinor' : 'spin-free';
+    return /TREL\s*=\s*\.?T/i.test(head) || /^[ \t]*\(/m.test(head) ? 'spinor' : 'spin-free';
   }
   if (format !== 'hdf5') return null;
   const file = await platform.openHdf5(source);
