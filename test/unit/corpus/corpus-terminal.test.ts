@@ -1,44 +1,8 @@
 import { describe, expect, it } from 'vitest';
-import { answer } from '../../../app/cli/jobs';
-import { printResult } from '../../../app/cli/print';
-import { type Call, parseCall } from '../../../app/cli/program';
-import { reportError } from '../../../app/cli/status';
-import { InputError, inlineContext } from '../../../core/job';
+import { InputError } from '../../../core/job';
 import type { Inspection } from '../../../core/plan';
+import { spinwright } from './call';
 import { manifest, type Row, wordsOf } from './manifest';
-
-interface Answer {
-  readonly status: number;
-  readonly stdout: string;
-  readonly stderr: string;
-  readonly error: unknown;
-}
-
-/** A call of the command line within this process: the same steps, without the thread of its own. */
-async function spinwright(words: readonly string[]): Promise<Answer> {
-  const out = {
-    text: '',
-    write: (text: string) => {
-      out.text += text;
-    },
-  };
-  const err = {
-    text: '',
-    write: (text: string) => {
-      err.text += text;
-    },
-  };
-  let call: Call | null = null;
-  try {
-    call = parseCall(words, '', out.write);
-    const result = await answer(call.request, inlineContext(call.manner.seed));
-    const status = printResult(result, call.manner, out, err);
-    return { status, stdout: out.text, stderr: err.text, error: null };
-  } catch (error) {
-    const status = reportError(error, false, err);
-    return { status, stdout: out.text, stderr: err.text, error };
-  }
-}
 
 /** Four times the limit: only a run-away job meets it, never a busy machine. */
 const WATCHDOG_MS = 4 * 1000 * manifest.limits.seconds;
