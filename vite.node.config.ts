@@ -18,7 +18,7 @@ export default defineConfig({
         desktop: 'app/desktop/main.ts',
       },
       output: { format: 'es', entryFileNames: '[name].js', chunkFileNames: 'chunks/[name]-[hash].js' },
-      external: ['electron', /^h5wasm/, ...builtinModules, ...builtinModules.map((m) => `node:${m}`)],
+      external: ['electron', ...builtinModules, ...builtinModules.map((m) => `node:${m}`)],
     },
   },
   ssr: { noExternal: true, external: ['electron'] },

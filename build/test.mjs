@@ -5,6 +5,7 @@ import { relative } from 'node:path';
 import { findBrowser, NO_BROWSER } from './browser.mjs';
 import { showChecks, typeChecks } from './check.mjs';
 import { lintChecks } from './lint.mjs';
+import { packCheck } from './pack-check.mjs';
 import { inRoot, packageCommand, ROOT, runNode } from './process.mjs';
 import { ensureBuilt, setUp } from './setup.mjs';
 
@@ -24,6 +25,7 @@ if (filters.length === 0) {
 
 heading('Bundles');
 count(await bundles());
+if (filters.length === 0 && failed.every((name) => name !== 'bundles')) count(await packCheck());
 
 heading('Tests');
 await vitest(['core', 'ui'], filters);
