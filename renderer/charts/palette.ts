@@ -41,5 +41,5 @@ export function drawText(
 /** A tick of a logarithmic axis with no more digits than it needs: 800, 5×10⁹, 1.5×10¹⁰. */
 export function tickWords(value: number): string {
   if (value < 1e6) return formatSignificant(value, value < 1 ? 1 : 6).replace(/\.0+$/, '');
-  return formatSignificant(value, 2).replace('.0×', '×');
+  return formatSignificant(value, 2).replace('.0×', '×').replace(/^1×/, '');
 }

@@ -1,6 +1,12 @@
 import { parseVariant } from '../../core/encode';
 import { confidenceFactor, errorBudget, targetRequest } from '../../core/estimate';
-import { type IntegralSet, loadIntegrals, resolveInputs, throwFirstError } from '../../core/integrals';
+import {
+  type IntegralSet,
+  loadIntegrals,
+  type Recipe,
+  resolveInputs,
+  throwFirstError,
+} from '../../core/integrals';
 import type { JobContext } from '../../core/job';
 import { inspectIntegrals, runComparison, runVerification } from '../../core/plan';
 import { toHartree } from '../../core/units';
@@ -10,10 +16,10 @@ import { listParts } from './parts';
 import type { Ask, JobName, Jobs, Source } from './protocol';
 
 /** The set read last: the jobs of one window are nearly always about the same files. */
-let held: { readonly id: number; readonly set: IntegralSet } | null = null;
+let held: { readonly id: number; readonly set: IntegralSet; readonly recipe: Recipe } | null = null;
 
-async function integralsOf(source: Source, context: JobContext): Promise<IntegralSet> {
-  if (held?.id === source.id) return held.set;
+async function integralsOf(source: Source, context: JobContext): Promise<NonNullable<typeof held>> {
+  if (held?.id === source.id) return held;
   held = null; // two large sets at once might not fit
   const files = blobFileSet(source.name, source.files);
   const chosen = source.chosenOneByOne ? { chosen: source.files.map((f) => f.path) } : {};
@@ -26,12 +32,12 @@ async function integralsOf(source: Source, context: JobContext): Promise<Integra
     recipeName,
     onError: 'keep',
   });
-  held = { id: source.id, set };
-  return set;
+  held = { id: source.id, set, recipe };
+  return held;
 }
 
 async function read({ source }: Jobs['read']['input'], context: JobContext): Promise<Jobs['read']['output']> {
-  const set = await integralsOf(source, context);
+  const { set, recipe } = await integralsOf(source, context);
   const { title, kind, orbitals, electrons, constant, terms, findings, files } = await inspectIntegrals(
     set,
     context,
@@ -44,7 +50,7 @@ async function read({ source }: Jobs['read']['input'], context: JobContext): Pro
     constant,
     terms,
     findings,
-    parts: listParts(set),
+    parts: listParts(set, recipe),
     bytes: files.reduce((sum, f) => sum + f.bytes, 0),
     meanFieldCoversActive: set.kind === 'spatial' && set.meanFieldCoversActive,
   };
@@ -55,7 +61,7 @@ async function reckon(
   context: JobContext,
   tell: (news: Jobs['reckon']['news']) => void,
 ): Promise<Jobs['reckon']['output']> {
-  const set = await integralsOf(source, context);
+  const { set } = await integralsOf(source, context);
   throwFirstError(set.findings);
   const request = { ...ask, variants: variants.map(parseVariant) };
   const { comparison } = await runComparison(set, request, context, {
@@ -81,7 +87,7 @@ async function prove(
   { source, ask, variants }: Jobs['prove']['input'],
   context: JobContext,
 ): Promise<Jobs['prove']['output']> {
-  const set = await integralsOf(source, context);
+  const { set } = await integralsOf(source, context);
   throwFirstError(set.findings);
   const { terms, electrons, occupations } = ask;
   const evidence = await runVerification(

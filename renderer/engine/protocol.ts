@@ -21,6 +21,9 @@ export interface ReadPart {
   readonly holds: string;
   readonly role: string;
   readonly term: Term;
+  readonly units: string;
+  /** Conventions stated by the recipe. */
+  readonly readAs: string;
 }
 
 /** What reading a set tells. Energies in hartree. */

@@ -1,15 +1,15 @@
-import type { EncodingShape } from '../../core/encode';
-import { fromHartree, toHartree } from '../../core/units';
+import type { VariantEstimate } from '../../core/plan/comparison';
+import { fromHartree } from '../../core/units';
 import type { FrontModel, FrontPoint } from '../charts/front-chart';
 import type { PartsModel, TotalsModel } from '../charts/lambda-charts';
 import type { StepBar, StepModel } from '../charts/step-chart';
 import type { TargetModel } from '../charts/target-chart';
 import type { Ask } from '../engine/protocol';
 import { signedCount, targetWords, UNIT_WORDS } from '../figures/figures';
+import { CHEMICAL_ACCURACY, type Curve } from '../state/curves.svelte';
 import type { Column, Entry } from './columns';
 import { gridOf } from './geometry';
 import { lambdaParts, SERIES, seriesToffoli } from './parts';
-import { overTargets } from './reprice';
 
 /** Short name of a column in a chart, with the shift only where two columns differ by nothing else. */
 export function shortWord(column: Column, columns: readonly Column[]): string {
@@ -103,37 +103,24 @@ export function frontModel(
   return { points, groups, cap, focused };
 }
 
-/** Chemical accuracy by the usual reading, 1 kcal/mol: common practice, no source. */
-const CHEMICAL_ACCURACY = toHartree(1, 'kcal/mol');
-const POINTS = 49;
-
-/**
- * Toffoli of one run over the target from about 1 cm⁻¹ to beyond chemical accuracy, the encoding as it was reckoned.
- * One line a column: its better side, since the two sides of a pair would lie on each other.
- */
+/** One line a column: its better side, since the two sides of a pair would lie on each other. */
 export function targetModel(
   columns: readonly Column[],
   selected: string | null,
   ask: Ask,
-  shapeOf: (name: string) => EncodingShape | null,
+  curveOf: (e: VariantEstimate) => Curve | null,
 ): TargetModel {
-  const own = toHartree(ask.target.value, ask.target.unit);
-  const low = Math.min(own / 5, CHEMICAL_ACCURACY / 351);
-  const high = Math.max(own * 5, CHEMICAL_ACCURACY * 1.6);
-  const hartrees = Array.from({ length: POINTS }, (_, i) => low * (high / low) ** (i / (POINTS - 1)));
   const lines = columns.flatMap((column) => {
-    const sides = column.sides.filter((s) => s.estimate && s.stale === null && shapeOf(s.name));
-    const best = sides.reduce<Entry | null>(
-      (a, b) => (a && a.estimate!.totalToffoli <= b.estimate!.totalToffoli ? a : b),
-      null,
-    );
-    if (!best) return [];
-    const points = overTargets(best.estimate!, shapeOf(best.name)!, ask, hartrees).map(
-      ({ hartree, toffoli }) => ({
-        x: fromHartree(hartree, ask.target.unit),
-        y: toffoli,
-      }),
-    );
+    const sides = column.sides.flatMap((s) => (s.estimate && s.stale === null ? [s.estimate] : []));
+    const [first, ...others] = sides;
+    if (!first) return [];
+    const best = others.reduce((a, b) => (b.totalToffoli < a.totalToffoli ? b : a), first);
+    const curve = curveOf(best);
+    if (!curve) return [];
+    const points = curve.map(({ hartree, toffoli }) => ({
+      x: fromHartree(hartree, ask.target.unit),
+      y: toffoli,
+    }));
     return [{ word: shortWord(column, columns), selected: column.key === selected, points }];
   });
   return {

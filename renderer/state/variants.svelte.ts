@@ -1,7 +1,7 @@
 import { type EncodingShape, parseVariant } from '../../core/encode';
 import type { SurfaceCodeAssumptions } from '../../core/estimate';
 import { Cancelled, type Problem } from '../../core/job';
-import type { Comparison } from '../../core/plan/comparison';
+import type { Comparison, VariantEstimate } from '../../core/plan/comparison';
 import { parseEnergy, toHartree } from '../../core/units';
 import type { Engine } from '../engine/engine';
 import type { Ask, VariantNews } from '../engine/protocol';
@@ -51,6 +51,10 @@ export class VariantsState {
   readonly #load: LoadState;
   readonly #ask: () => Ask;
   readonly #machine: () => SurfaceCodeAssumptions;
+  readonly #kept = new WeakMap<
+    Answered,
+    { ask: Ask; machine: SurfaceCodeAssumptions; estimate: VariantEstimate }
+  >();
   #stop: AbortController | null = null;
 
   constructor(engine: Engine, load: LoadState, ask: () => Ask, machine: () => SurfaceCodeAssumptions) {
@@ -82,12 +86,25 @@ export class VariantsState {
       const { entry, shape } = answer;
       if (!entry.estimate || !answer.ask) return { ...entry, stale: null };
       if (shape && canRecount(answer.ask, ask)) {
-        const estimate = onMachine(recount(entry.estimate, shape, ask), this.#machine());
-        return { ...entry, estimate, stale: null };
+        return { ...entry, estimate: this.#recounted(answer, entry.estimate, shape, ask), stale: null };
       }
       return { ...entry, stale: staleWords(answer.ask, ask) };
     });
   });
+
+  /**
+   * The estimate for the present question and machine. Kept until one of them changes: progress of other variants
+   * asks for it twenty times a second, and charts compare estimates by identity.
+   */
+  #recounted(answer: Answered, estimate: VariantEstimate, shape: EncodingShape, ask: Ask): VariantEstimate {
+    const machine = this.#machine();
+    const kept = this.#kept.get(answer);
+    if (kept?.ask === ask && kept.machine === machine) return kept.estimate;
+    const same = answer.ask === ask ? estimate : recount(estimate, shape, ask);
+    const result = onMachine(same, machine);
+    this.#kept.set(answer, { ask, machine, estimate: result });
+    return result;
+  }
 
   shapeOf(name: string): EncodingShape | null {
     return this.#answers.get(name)?.shape ?? null;
