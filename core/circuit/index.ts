@@ -3,15 +3,26 @@ export { type GateCount, GateCounter } from './gates/counter';
 export { GATE_KINDS, type GateKind, type GateSink, Machine } from './gates/machine';
 export type { Operation } from './gates/operation';
 export { addressBits } from './primitives/unary-iteration';
+export { type Census, takeCensus } from './qasm/census';
+export { type QasmText, writeQasm } from './qasm/write';
 export { STEP_PARTS, type StepPart, type Subroutine } from './recipe';
 export { type DoubleFactorised, doubleFactorisedStep } from './recipes/double-factorised';
 export { type Hypercontracted, hypercontractedStep } from './recipes/hypercontracted';
 export type { LookupPolicy } from './recipes/scope';
 export { type SingleFactorised, singleFactorisedStep } from './recipes/single-factorised';
-export { type SparseSizes, sparseStep } from './recipes/sparse';
+export { type SparseSizes, sparseStep as sparseStepByFormula } from './recipes/sparse';
 export { spinorStep } from './recipes/spinor';
 export { type FactorisedBits, tripletStep as tripletStepByFormula } from './recipes/triplet';
 export { SparseState } from './simulate/sparse-state';
+export { type SparseBits, type SparseLayout, sparseLayout } from './sparse/layout';
+export { sparseRecipe } from './sparse/recipe';
+export { type SparseStep, sparseStep } from './sparse/step';
+export {
+  encodedProgram as encodedSparseProgram,
+  type SparseTables,
+  sparseTables,
+} from './sparse/tables';
+export { sparseAncillas, sparseWalkStep, sparseWires, withTerm } from './sparse/walk';
 export { chooseBlocks } from './triplet/blocks';
 export type { SpinTreatment } from './triplet/product';
 export { tripletRecipe } from './triplet/recipe';

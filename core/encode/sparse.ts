@@ -5,6 +5,7 @@ import { numAntisymmetricPairs, numSymmetricPairs, symmetricPair } from '../inte
 import type { JobContext } from '../job';
 import { sumLambda } from './assemble';
 import type { Encoding, EncodingShape } from './encoding';
+import { kindsOf, sparseProgram } from './sparse-program';
 import { numRows, type Section, sparseSections, visitRows } from './sparse-sections';
 import type { VariantName } from './variant';
 
@@ -40,6 +41,7 @@ export async function encodeSparse(
   for (let p = 0; p < n; p++) trace += kappa.planes[p * n + p]!;
   const constant = h.constant - 0.5 * diagonalSum(h) + trace;
   const { 'one-body.charge': charge, 'one-body.spin': spin, ...twoBody } = tally.lambda;
+  const timesSame = sharedRatio(h);
   const shape: EncodingShape = {
     kind: 'sparse',
     orbitals: n,
@@ -50,6 +52,13 @@ export async function encodeSparse(
     oneBodyPairRows: 0,
     maxRowsPerFactor: 0,
     spinDependent: tally.spin > 0,
+    terms: {
+      orbitals: n,
+      coefficients: tally.oneBody + tally.twoBody,
+      spin: tally.spin > 0,
+      ...tally.features,
+      otherShare: Math.abs(timesSame) / (1 + Math.abs(timesSame)),
+    },
   };
   return {
     variant,
@@ -58,7 +67,14 @@ export async function encodeSparse(
     constant,
     residual: tally.residual,
     rebuild: () => rebuild(h, kappa, sections, cutoff, constant),
+    sparseProgram: () => sparseProgram(n, constant, sections, cutoff, timesSame),
   };
+}
+
+/** Spin–other-orbit over spin–same-orbit where one array holds both, else 0. */
+function sharedRatio({ g }: SpatialHamiltonian): number {
+  const other = g.spinOrbit?.other;
+  return other === undefined || other instanceof Float64Array ? 0 : other.timesSame;
 }
 
 /** κ^μ = k^μ + Σ_r g^{μ0}_pqrr. */
@@ -180,9 +196,14 @@ async function count(sections: readonly Section[], cutoff: number, ctx: JobConte
   let bound = 0;
   let square = 0;
   let dropped = 0;
+  let total = 0;
+  let shared = 0;
+  let secondComponent = false;
+  let exchanged = false;
   await visitAll(sections, ctx, (section) => {
     for (const [part] of section.shares) lambda[part] ??= 0;
     const { values, shares } = section;
+    const [kind] = kindsOf(section);
     return (weight, index) => {
       if (weight <= cutoff) {
         if (weight > NOISE) dropped++;
@@ -194,11 +215,16 @@ async function count(sections: readonly Section[], cutoff: number, ctx: JobConte
       if (section.oneBody) oneBody++;
       else twoBody++;
       if (section.spin) spin++;
+      total += weight;
+      if (kind!.shared) shared += weight;
+      if (kind!.nu !== null && kind!.nu !== 0) secondComponent = true;
+      if (kind!.exchanged) exchanged = true;
       for (const [part, fraction] of shares) lambda[part]! += fraction * weight;
     };
   });
   const residual: Residual = { frobenius: Math.sqrt(square), oneNormBound: bound, dropped };
-  return { lambda, oneBody, twoBody, spin, residual };
+  const features = { secondComponent, exchanged, sharedPart: total > 0 ? shared / total : 0 };
+  return { lambda, oneBody, twoBody, spin, features, residual };
 }
 
 /** Σ value² over value·weight for shares a : b of one value: (a² + b²)/(a + b), a = 1 for the same-orbit part. */

@@ -3,6 +3,7 @@ import {
   type LookupPolicy,
   type Subroutine,
   sparseStep,
+  sparseStepByFormula,
   spinorStep,
   tripletStep,
   tripletStepByFormula,
@@ -172,15 +173,17 @@ function recipeOf(
     case 'spinor':
       return spinorStep(shape, widths, policy);
     case 'sparse':
-      return sparseStep(
-        {
-          orbitals: shape.orbitals,
-          coefficients: shape.rows,
-          spinDependent: shape.spinDependent,
-          keepBits: bits.keep,
-          phaseBits,
-        },
-        policy,
-      );
+      return shape.terms && policy.mode !== 'dirty'
+        ? sparseStep(shape.terms, widths, policy).recipe
+        : sparseStepByFormula(
+            {
+              orbitals: shape.orbitals,
+              coefficients: shape.rows,
+              spinDependent: shape.spinDependent,
+              keepBits: bits.keep,
+              phaseBits,
+            },
+            policy,
+          );
   }
 }

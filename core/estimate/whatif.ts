@@ -5,7 +5,7 @@ import {
   type LookupPolicy,
   type Subroutine,
   singleFactorisedStep,
-  sparseStep,
+  sparseStepByFormula,
 } from '../circuit';
 import type { SurfaceCodeAssumptions } from './estimate';
 import { explain, type Reconciliation } from './explain';
@@ -75,7 +75,7 @@ function recipeOf(parameters: WhatIfOptions, phaseBits: number): Subroutine {
     case 'single-factorised':
       return singleFactorisedStep({ orbitals, factors: parameters.factors!, keepBits, phaseBits }, policy);
     case 'sparse':
-      return sparseStep(
+      return sparseStepByFormula(
         { orbitals, coefficients: parameters.coefficients!, spinDependent: false, keepBits, phaseBits },
         policy,
       );

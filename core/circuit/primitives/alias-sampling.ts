@@ -24,7 +24,15 @@ export interface AliasTable {
  * @param weights - at most 2^n non-negative numbers, one or more positive; missing ones are 0.
  */
 export function aliasTable(weights: ArrayLike<number>, indexBits: number, keepBits: number): AliasTable {
-  const size = 2 ** indexBits;
+  return { indexBits, keepBits, ...aliasBuckets(weights, 2 ** indexBits, keepBits) };
+}
+
+/** The same over any number of buckets; the probability of i is units(i)/(size·2^ℵ). */
+export function aliasBuckets(
+  weights: ArrayLike<number>,
+  size: number,
+  keepBits: number,
+): Pick<AliasTable, 'keep' | 'alternate' | 'probabilities'> {
   if (weights.length > size) throw new RangeError(`${weights.length} weights exceed ${size} buckets`);
   const units = largestRemainders(weights, size, size * 2 ** keepBits);
   const bucket = 2 ** keepBits;
@@ -48,7 +56,7 @@ export function aliasTable(weights: ArrayLike<number>, indexBits: number, keepBi
   }
   for (const i of large) alternate[i] = i;
   const probabilities = Float64Array.from(units, (u) => u / (size * bucket));
-  return { indexBits, keepBits, keep, alternate, probabilities };
+  return { keep, alternate, probabilities };
 }
 
 function largestRemainders(weights: ArrayLike<number>, size: number, total: number): Float64Array {

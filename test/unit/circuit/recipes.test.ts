@@ -2,7 +2,7 @@ import { describe, expect, it } from 'vitest';
 import {
   type LookupPolicy,
   type Subroutine,
-  sparseStep,
+  sparseStepByFormula as sparseStep,
   spinorStep,
   tripletStepByFormula as tripletStep,
 } from '../../../core/circuit';

@@ -1,0 +1,87 @@
+import { gate, nothing, type Operation, repeat, sequence } from '../gates/operation';
+
+/** Toffoli of computing factor · u for a number u of `bits` bits: that many for each 1 of the factor but the lowest. */
+export function multipleToffoli(factor: number, bits: number): number {
+  return (ones(factor).length - 1) * bits;
+}
+
+/** Wires lent while the multiple is held: a sum bit and a carry for each Toffoli. */
+export function multipleWires(factor: number, bits: number): number {
+  return 2 * multipleToffoli(factor, bits);
+}
+
+/** Positions of the bits that are 1, ascending. */
+function ones(factor: number): number[] {
+  const positions: number[] = [];
+  for (let i = 0; 2 ** i <= factor; i++) if (Math.floor(factor / 2 ** i) % 2 === 1) positions.push(i);
+  return positions;
+}
+
+/**
+ * factor · u in wires that stay until the operation is taken back, which is free: shifted copies of u are added one
+ * after the other and all carries are kept. The result shares wires with u where nothing is added.
+ *
+ * @param factor - odd.
+ * @param u - lowest bit first; at least as many bits as the factor has.
+ * @param lent - `multipleWires` wires in |0⟩.
+ * @returns `value`, lowest bit first.
+ */
+export function multiple(
+  factor: number,
+  u: readonly number[],
+  lent: readonly number[],
+): { readonly compute: Operation; readonly value: readonly number[] } {
+  const free = [...lent];
+  let value: number[] = [...u];
+  const steps: Operation[] = [];
+  for (const shift of ones(factor).slice(1)) {
+    const addend = value;
+    const sums: number[] = [];
+    let carry = -1;
+    for (const [i, bit] of u.entries()) {
+      const sum = free.shift()!;
+      const next = free.shift()!;
+      steps.push(columnSum(bit, addend[shift + i] ?? -1, carry, sum, next));
+      sums.push(sum);
+      carry = next;
+    }
+    value = [...addend.slice(0, shift), ...sums, carry];
+  }
+  return { compute: repeat(steps.length, (i) => steps[i]!), value };
+}
+
+/** sum ← x ⊕ y ⊕ carry and next ← majority(x, y, carry); y or carry may be missing (−1), not both. */
+function columnSum(x: number, y: number, carry: number, sum: number, next: number): Operation {
+  const add = (wire: number) => (wire < 0 ? nothing : gate('CX', wire, sum));
+  const bits = sequence(add(x), add(y), add(carry));
+  if (y < 0 || carry < 0) return sequence(gate('AND', x, y < 0 ? carry : y, next), bits);
+  const unite = sequence(gate('CX', carry, x), gate('CX', carry, y));
+  return sequence(unite, gate('AND', x, y, next), gate('CX', carry, next), unite, bits);
+}
+
+/** Toffoli of comparing a number of `bits` bits with an odd constant: the lowest bit is free. */
+export function constantComparisonToffoli(bits: number): number {
+  return Math.max(0, bits - 1);
+}
+
+/**
+ * [number < threshold] for an odd constant, in the last of the lent wires (the number has as many): from the lowest
+ * bit up, less_{i+1} = ¬x_i ∨ less_i where the constant has a 1, else ¬x_i ∧ less_i. Kept until taken back for free.
+ */
+export function lessThanConstant(
+  number: readonly number[],
+  threshold: number,
+  lent: readonly number[],
+): Operation {
+  const steps = number.map((x, i): Operation => {
+    const less = lent[i]!;
+    if (i === 0) return sequence(gate('CX', x, less), gate('X', less));
+    const below = lent[i - 1]!;
+    // a ∨ b = ¬(¬a ∧ ¬b)
+    if (Math.floor(threshold / 2 ** i) % 2 === 1) {
+      return sequence(gate('X', below), gate('AND', x, below, less), gate('X', below), gate('X', less));
+    }
+    return sequence(gate('X', x), gate('AND', x, below, less), gate('X', x));
+  });
+  return repeat(steps.length, (i) => steps[i]!);
+}

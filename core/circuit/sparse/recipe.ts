@@ -1,0 +1,235 @@
+import { type Blocks, erasureToffoli, lookUpToffoli, oneHotToffoli } from '../primitives/look-up';
+import { reflectionToffoli } from '../primitives/reflection';
+import { addressBits } from '../primitives/unary-iteration';
+import type { StepPart, Subroutine } from '../recipe';
+import type { PhaseEstimationPart } from '../triplet/recipe';
+import type { SparseLayout } from './layout';
+import { constantComparisonToffoli, multipleToffoli } from './multiple';
+import { orbitalExchangeToffoli, pairExchangeToffoli, pairsToffoli, pairsWires } from './select';
+import { kindExchangeT, selectedMajoranaToffoli, selectedMajoranaWires } from './selected-majorana';
+import { preparedWires } from './walk';
+
+const LOW = 'G. H. Low, V. Kliuchnikov, L. Schaeffer, arXiv:1812.00954 (2018)';
+const BERRY = 'D. W. Berry et al., Quantum 3, 208 (2019)';
+const BABBUSH = 'R. Babbush et al., Phys. Rev. X 8, 041015 (2018)';
+const GIDNEY = 'C. Gidney, Quantum 2, 74 (2018)';
+const DERIVED = 'derived; equal to the emitted circuit, see DEVELOPERS';
+
+interface Leaf {
+  readonly name: string;
+  readonly part: StepPart;
+  readonly times?: number;
+  readonly toffoli: number;
+  readonly t?: number;
+  readonly formula: string;
+  readonly inputs: Readonly<Record<string, number>>;
+  readonly source: string;
+  /** Wires lent while it runs. */
+  readonly scratch?: number;
+}
+
+const leaf = ({ scratch, ...rest }: Leaf): Subroutine => ({
+  ...rest,
+  ...(scratch ? { registers: [{ name: `scratch of ${rest.name}`, qubits: scratch }] } : {}),
+});
+
+/** Toffoli of reading and of erasing a table of `rows` rows without gaps. */
+export function tableToffoli(rows: number, width: number, blocks: Blocks): { read: number; erase: number } {
+  return {
+    read: lookUpToffoli(Math.ceil(rows / blocks.read), width, blocks.read),
+    erase: erasureToffoli(Math.ceil(rows / blocks.erase), blocks.erase),
+  };
+}
+
+/** Wires of unary iteration over 0 … count − 1 without control: its depth less one, or a constant wire. */
+const iterationWires = (count: number) => (count === 1 ? 1 : addressBits(count) - 1);
+
+/** Toffoli of PREPARE and its undoing besides the table. */
+export function preparationToffoli({ address, keepBits, wordWidth, share }: SparseLayout): number {
+  return (
+    multipleToffoli(address.factor, address.uniformBits) +
+    keepBits +
+    wordWidth +
+    (share ? constantComparisonToffoli(share.bits) : 0)
+  );
+}
+
+/**
+ * The walk step of the sparse form as a tree of counts, Toffoli by Toffoli that of the circuit which
+ * `sparseWalkStep` emits, and with the same peak of wires.
+ */
+export function sparseRecipe(layout: SparseLayout, blocks: Blocks, phase: PhaseEstimationPart): Subroutine {
+  const { address, share, exchanged } = layout;
+  const ancillas = [
+    { name: 'lower address bits', qubits: address.lowBits },
+    { name: 'uniform number', qubits: address.uniformBits },
+    { name: 'uniform number of the spin–orbit kind', qubits: share?.bits ?? 0 },
+    { name: 'order of the pairs', qubits: 1 },
+    { name: 'spins', qubits: 2 },
+    { name: 'Majorana kinds', qubits: 2 },
+    { name: 'placing of two components', qubits: exchanged ? 1 : 0 },
+  ].filter((register) => register.qubits > 0);
+  const reflected = ancillas.reduce((sum, register) => sum + register.qubits, 0);
+  return {
+    name: 'walk step, sparse',
+    registers: [
+      { name: 'system', qubits: 2 * layout.orbitals },
+      ...phase.registers.filter((register) => register.qubits > 0),
+      ...ancillas,
+    ],
+    children: [
+      blockEncodingRecipe(layout, blocks),
+      leaf({
+        name: 'reflection of the walk',
+        part: 'reflections',
+        toffoli: reflectionToffoli(reflected),
+        formula: 'n − 2',
+        inputs: { n: reflected },
+        source: 'common practice, no source',
+        scratch: Math.max(0, reflected + phase.controls - 2),
+      }),
+      leaf({
+        name: 'control by the phase register',
+        part: 'control',
+        toffoli: phase.controls,
+        formula: 'one AND for each control of the reflection',
+        inputs: { controls: phase.controls },
+        source: BABBUSH,
+      }),
+    ],
+  };
+}
+
+function blockEncodingRecipe(layout: SparseLayout, blocks: Blocks): Subroutine {
+  const { address, keepBits, wordWidth, rowWidth, share } = layout;
+  const held = preparedWires(layout, blocks.read);
+  const table = tableToffoli(address.rows, rowWidth, blocks);
+  const read = Math.ceil(address.rows / blocks.read);
+  const erase = Math.ceil(address.rows / blocks.erase);
+  return {
+    name: 'block encoding',
+    registers: [
+      { name: 'row number', qubits: held.multiple },
+      { name: 'rows of the table', qubits: held.output },
+      { name: 'carries of the comparison', qubits: held.carries },
+      { name: 'change of the word', qubits: held.chosen },
+      { name: 'spin–orbit kind', qubits: held.share },
+    ].filter((register) => register.qubits > 0),
+    children: [
+      leaf({
+        name: 'row number',
+        part: 'prepare',
+        toffoli: multipleToffoli(address.factor, address.uniformBits),
+        formula: 'g(ones of m − 1): m·u for a g-bit number u, taken back by measurement',
+        inputs: { m: address.factor, g: address.uniformBits },
+        source: DERIVED,
+      }),
+      leaf({
+        name: 'coefficient look-up',
+        part: 'prepare',
+        toffoli: table.read,
+        formula: 'B − 2 + b(k − 1)',
+        inputs: { rows: address.rows, B: read, b: rowWidth, k: blocks.read },
+        source: `${LOW}; ${BERRY}`,
+        scratch: iterationWires(read),
+      }),
+      leaf({
+        name: 'comparison',
+        part: 'prepare',
+        toffoli: keepBits,
+        formula: 'keep: one AND a bit, taken back by measurement',
+        inputs: { keep: keepBits },
+        source: `${BABBUSH}; ${GIDNEY}`,
+      }),
+      leaf({
+        name: 'choice of the word',
+        part: 'prepare',
+        toffoli: wordWidth,
+        formula: 'w: one AND a bit of the word, taken back by measurement',
+        inputs: { w: wordWidth },
+        source: DERIVED,
+      }),
+      leaf({
+        name: 'spin–orbit kind',
+        part: 'prepare',
+        toffoli: share ? constantComparisonToffoli(share.bits) : 0,
+        formula: 'n − 1: a number compared with a constant',
+        inputs: { n: share?.bits ?? 1 },
+        source: DERIVED,
+      }),
+      selectRecipe(layout),
+      leaf({
+        name: 'coefficient erasure',
+        part: 'prepare',
+        toffoli: table.erase,
+        formula: 'B − 2 + (k − 1 − log₂k)',
+        inputs: { rows: address.rows, B: erase, k: blocks.erase, flags: oneHotToffoli(blocks.erase) },
+        source: BERRY,
+        scratch: (blocks.erase === 1 ? 0 : blocks.erase) + iterationWires(erase),
+      }),
+    ],
+  };
+}
+
+/** Two row operators, each of two selected Majorana operators. */
+function selectRecipe(layout: SparseLayout): Subroutine {
+  const { orbitals, orbitalBits, spin } = layout;
+  const modes = 2 * orbitals;
+  const exchanged = orbitalExchangeToffoli(layout);
+  const majorana = (times: number) =>
+    leaf({
+      name: 'selected Majorana operator',
+      part: 'select.other',
+      times,
+      toffoli: selectedMajoranaToffoli(modes),
+      t: spin ? kindExchangeT(modes) : 0,
+      formula: spin ? '2N − 1; two T gates a mode for the Majorana kind' : '2N − 1',
+      inputs: { N: orbitals },
+      source: BABBUSH,
+      scratch: selectedMajoranaWires(modes),
+    });
+  const pair = (): Subroutine => ({
+    name: 'row operator',
+    registers: exchanged > 0 ? [{ name: 'exchanged orbitals', qubits: exchanged }] : [],
+    children: [
+      leaf({
+        name: 'orbitals of a pair',
+        part: 'select.other',
+        toffoli: exchanged,
+        formula: 'n: one AND a bit of an orbital number, taken back by measurement; 0 with spin',
+        inputs: { n: orbitalBits },
+        source: DERIVED,
+      }),
+      majorana(2),
+    ],
+  });
+  return {
+    name: 'SELECT',
+    registers: [{ name: 'pairs of the coefficient', qubits: pairsWires(layout) }].filter((r) => r.qubits > 0),
+    children: [
+      leaf({
+        name: 'pairs of the coefficient',
+        part: 'select.other',
+        toffoli: pairsToffoli(layout),
+        formula: 'ANDs that place the spin components and find the Majorana kinds',
+        inputs: { n: orbitalBits },
+        source: DERIVED,
+      }),
+      {
+        name: 'product of two row operators',
+        registers: [{ name: 'exchanged pairs', qubits: pairExchangeToffoli(layout) }],
+        children: [
+          leaf({
+            name: 'order of the pairs',
+            part: 'select.other',
+            toffoli: pairExchangeToffoli(layout),
+            formula: '2n, and what else describes a pair: one AND a bit, taken back by measurement',
+            inputs: { n: orbitalBits },
+            source: DERIVED,
+          }),
+          { ...pair(), times: 2 },
+        ],
+      },
+    ],
+  };
+}

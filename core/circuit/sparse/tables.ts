@@ -1,0 +1,81 @@
+import type { SparseProgram } from '../../encode';
+import { termSizes } from '../../encode';
+import { aliasBuckets } from '../primitives/alias-sampling';
+import { type SparseBits, type SparseLayout, sparseLayout } from './layout';
+import { signBit } from './select';
+
+/** The table of a sparse encoding, rounded to its bits. */
+export interface SparseTables {
+  readonly program: SparseProgram;
+  readonly layout: SparseLayout;
+  /** Row i keeps its own coefficient where the fraction of the address number is below keep[i]/2^ℵ. */
+  readonly keep: Uint32Array;
+  readonly alternate: Uint32Array;
+}
+
+/** @param refinement - see {@link sparseLayout}. */
+export function sparseTables(program: SparseProgram, bits: SparseBits, refinement: number): SparseTables {
+  const layout = sparseLayout(termSizes(program), bits, refinement);
+  const { keep, alternate } = aliasBuckets(program.weights, layout.address.rows, bits.keep);
+  return { program, layout, keep, alternate };
+}
+
+/** Bit of the word of a coefficient; rows beyond the last coefficient are never kept, so theirs is not looked at. */
+function wordBit({ program, layout }: SparseTables, term: number, bit: number): boolean {
+  if (term >= program.weights.length) return false;
+  const { orbitalBits: n } = layout;
+  const kind = program.kinds[program.kindOf[term]!]!;
+  const isOneBody = kind.nu === null;
+  if (bit < 4 * n) {
+    const which = Math.floor(bit / n);
+    if (isOneBody && which >= 2) return !layout.noneBit && ((layout.orbitals >>> (bit % n)) & 1) === 1;
+    return ((program.orbitalsOf[4 * term + which]! >>> (bit % n)) & 1) === 1;
+  }
+  const flags = [
+    ...(layout.noneBit ? [isOneBody] : []),
+    signBit(layout.spin, kind, program.negative[term] === 1),
+    ...(layout.spin ? [kind.antisymmetric, ...componentBits(kind.mu)] : []),
+    ...(layout.storesSecond ? componentBits(kind.nu ?? 0) : []),
+  ];
+  return flags[bit - 4 * n]!;
+}
+
+/** s and m of a spin component. */
+const componentBits = (mu: number): [boolean, boolean] => [mu === 1 || mu === 2, mu === 2 || mu === 3];
+
+/** Bit of a row of the table: word, word ⊕ alternate word, keep value. */
+export function rowBit(tables: SparseTables, row: number, bit: number): boolean {
+  const { wordWidth } = tables.layout;
+  if (bit < wordWidth) return wordBit(tables, row, bit);
+  if (bit < 2 * wordWidth) {
+    const own = wordBit(tables, row, bit - wordWidth);
+    return own !== wordBit(tables, tables.alternate[row]!, bit - wordWidth);
+  }
+  return ((tables.keep[row]! >>> (bit - 2 * wordWidth)) & 1) === 1;
+}
+
+/**
+ * The program that the tables encode exactly, probabilities in place of weights: how many of the 2^{g} numbers u lead
+ * to each coefficient. The difference to the given program is the whole rounding error.
+ */
+export function encodedProgram(tables: SparseTables): SparseProgram {
+  const { program, layout, keep, alternate } = tables;
+  const { rows, lowBits, factor, uniformBits } = layout.address;
+  const total = program.weights.reduce((sum, weight) => sum + weight, 0);
+  const weights = new Float64Array(program.weights.length);
+  const size = 2 ** uniformBits;
+  const unit = 2 ** (uniformBits - layout.keepBits);
+  // factor·u < bound for the first ⌈bound/factor⌉ numbers u.
+  const below = (bound: number) => Math.ceil(bound / factor);
+  for (let row = 0; row < rows; row++) {
+    const high = Math.floor(row / 2 ** lowBits);
+    const from = below(high * size);
+    const middle = below(high * size + keep[row]! * unit);
+    const to = below((high + 1) * size);
+    const share = total / (size * 2 ** lowBits);
+    if (middle > from) weights[row]! += (middle - from) * share;
+    if (to > middle) weights[alternate[row]!]! += (to - middle) * share;
+  }
+  const otherShare = layout.share ? layout.share.threshold / 2 ** layout.share.bits : program.otherShare;
+  return { ...program, weights, otherShare };
+}

@@ -1,0 +1,161 @@
+import fc from 'fast-check';
+import { describe, expect, it } from 'vitest';
+import type { Subroutine } from '../../core/circuit';
+import { GateCounter } from '../../core/circuit/gates/counter';
+import { Machine } from '../../core/circuit/gates/machine';
+import { SparseState } from '../../core/circuit/simulate/sparse-state';
+import { lessThanConstant, multiple, multipleWires } from '../../core/circuit/sparse/multiple';
+import { sparseRecipe } from '../../core/circuit/sparse/recipe';
+import { sparseTables } from '../../core/circuit/sparse/tables';
+import { sparseWalkStep, sparseWires } from '../../core/circuit/sparse/walk';
+import { type SparseProgram, type TermKind, termSizes } from '../../core/encode';
+import { peakOf, stepCost } from '../../core/estimate';
+import type { Mu } from '../../core/hamiltonian/operators';
+
+/** One group of kinds for each feature that the word and SELECT depend on. */
+const KINDS = {
+  spinFree: { antisymmetric: false, mu: 0, nu: 0, shared: false, exchanged: false },
+  oneBody: { antisymmetric: true, mu: 2, nu: null, shared: false, exchanged: false },
+  shared: { antisymmetric: true, mu: 1, nu: 0, shared: true, exchanged: false },
+  other: { antisymmetric: true, mu: 0, nu: 3, shared: false, exchanged: false },
+  spinSpin: { antisymmetric: false, mu: 1, nu: 3, shared: false, exchanged: true },
+} satisfies Record<string, TermKind & { mu: Mu; nu: Mu | null }>;
+
+const programs = fc
+  .record({
+    orbitals: fc.integer({ min: 2, max: 9 }),
+    counts: fc.record({
+      spinFree: fc.integer({ min: 1, max: 40 }),
+      oneBody: fc.integer({ min: 0, max: 3 }),
+      shared: fc.constantFrom(0, 0, 1, 5),
+      other: fc.constantFrom(0, 0, 4),
+      spinSpin: fc.constantFrom(0, 0, 3),
+    }),
+    share: fc.constantFrom(2 / 3, 1 / 2, 0.3),
+  })
+  .map(({ orbitals, counts, share }): SparseProgram => {
+    const names = Object.keys(KINDS) as (keyof typeof KINDS)[];
+    const kindOf = names.flatMap((name, i) => Array.from({ length: counts[name] }, () => i));
+    return {
+      orbitals,
+      constant: 0,
+      kinds: names.map((name) => KINDS[name]),
+      kindOf: Uint8Array.from(kindOf),
+      orbitalsOf: Uint16Array.from(kindOf.flatMap(() => [1, 0, 1, 0])),
+      weights: Float64Array.from(kindOf, (_, i) => 1 + (i % 3)),
+      negative: new Uint8Array(kindOf.length),
+      otherShare: share,
+      otherSign: 1,
+    };
+  });
+
+const block = fc.constantFrom(1, 2, 4, 8);
+
+describe('sparse walk step', () => {
+  it('has a recipe that counts the emitted circuit, part by part, and its peak of wires', () => {
+    fc.assert(
+      fc.property(
+        programs,
+        fc.record({ keep: fc.integer({ min: 1, max: 6 }), share: fc.integer({ min: 1, max: 5 }) }),
+        fc.integer({ min: 0, max: 5 }),
+        fc.record({ read: block, erase: block }),
+        fc.boolean(),
+        (program, bits, refinement, asked, controlled) => {
+          const tables = sparseTables(program, bits, refinement);
+          const { layout } = tables;
+          const limit = layout.address.rows;
+          const blocks = {
+            read: asked.read <= limit ? asked.read : 1,
+            erase: asked.erase <= limit ? asked.erase : 1,
+          };
+
+          const counter = new GateCounter({ toffoliOnly: true });
+          const machine = new Machine(counter);
+          const wires = sparseWires(layout, machine);
+          const control = controlled ? machine.allocate() : null;
+          sparseWalkStep(tables, wires, blocks, control).run(machine);
+
+          const controls = controlled ? 1 : 0;
+          const recipe: Subroutine = sparseRecipe(layout, blocks, {
+            registers: [{ name: 'control', qubits: controls }],
+            controls,
+          });
+          const emitted = GateCounter.total(counter.root);
+          const cost = stepCost(recipe);
+          expect(cost.toffoli).toBe(emitted.toffoli);
+          expect(cost.t).toBe(emitted.t);
+          const byPart = counter.toffoliByPart();
+          for (const [part, toffoli] of Object.entries(cost.parts)) {
+            // The circuit has the control inside the reflection; the recipe names it apart.
+            if (part === 'control' || part === 'reflections') continue;
+            expect([part, toffoli]).toEqual([part, byPart.get(part as never) ?? 0]);
+          }
+          expect(peakOf(recipe).qubits).toBe(machine.peak);
+          expect(termSizes(program).coefficients).toBeLessThanOrEqual(layout.address.rows);
+        },
+      ),
+      { numRuns: 120 },
+    );
+  });
+});
+
+describe('numbers of the address', () => {
+  /** Runs reversible logic on a basis state and reads wires back. */
+  const run = (bits: number, x: number, build: (machine: Machine, wires: number[]) => readonly number[]) => {
+    const state = new SparseState({ maxWires: 192 });
+    const machine = new Machine(state);
+    const wires = machine.allocateRegister(bits);
+    for (const [i, wire] of wires.entries()) if ((x >> i) & 1) machine.gate('X', wire);
+    const read = build(machine, wires);
+    let value = 0;
+    state.visit((isSet) => {
+      for (const [i, wire] of read.entries()) if (isSet(wire)) value += 2 ** i;
+    });
+    return value;
+  };
+
+  it('multiplies by an odd constant and takes it back', () => {
+    fc.assert(
+      fc.property(
+        fc.integer({ min: 0, max: 31 }),
+        fc.integer({ min: 6, max: 9 }),
+        fc.nat(),
+        (half, bits, seed) => {
+          const factor = 2 * half + 1;
+          const x = seed % 2 ** bits;
+          const product = run(bits, x, (machine, wires) => {
+            const lent = machine.allocateRegister(multipleWires(factor, bits));
+            const { compute, value } = multiple(factor, wires, lent);
+            compute.run(machine);
+            return value;
+          });
+          expect(product).toBe(factor * x);
+          const back = run(bits, x, (machine, wires) => {
+            const lent = machine.allocateRegister(multipleWires(factor, bits));
+            const { compute } = multiple(factor, wires, lent);
+            compute.run(machine);
+            compute.runAdjoint(machine);
+            return [...wires, ...lent];
+          });
+          expect(back).toBe(x);
+        },
+      ),
+      { numRuns: 60 },
+    );
+  });
+
+  it('compares with an odd constant', () => {
+    for (const bits of [1, 2, 3, 4]) {
+      for (let threshold = 1; threshold < 2 ** bits; threshold += 2) {
+        for (let x = 0; x < 2 ** bits; x++) {
+          const less = run(bits, x, (machine, wires) => {
+            const lent = machine.allocateRegister(bits);
+            lessThanConstant(wires, threshold, lent).run(machine);
+            return lent.slice(-1);
+          });
+          expect(less).toBe(x < threshold ? 1 : 0);
+        }
+      }
+    }
+  });
+});

@@ -1,0 +1,58 @@
+import type { SparseProgram, TermKind } from '../../../core/encode';
+import type { Mu } from '../../../core/hamiltonian/operators';
+import { addScaled, type Dense, times, triplet, zeros } from './majorana-algebra';
+
+/**
+ * The row operators straight from triplet excitations: S: ½(T_pq + T_qp) − δ_pq δ_μ0, A: (i/2)(T_pq − T_qp).
+ */
+function rowOperator(orbitals: number, antisymmetric: boolean, mu: Mu, p: number, q: number): Dense {
+  const out = zeros(4 ** orbitals);
+  const [re, im, back] = antisymmetric ? ([0, 0.5, -1] as const) : ([0.5, 0, 1] as const);
+  addScaled(out, triplet(orbitals, mu, p, q), re, im);
+  addScaled(out, triplet(orbitals, mu, q, p), back * re, back * im);
+  if (!antisymmetric && mu === 0 && p === q) for (let i = 0; i < out.n; i++) out.re[i * out.n + i]! -= 1;
+  return out;
+}
+
+type Factors = readonly [antisymmetric: boolean, mu: Mu];
+
+/** What a coefficient of weight 1 and sign + stands for, as products of row operators with their shares. */
+function products(kind: TermKind, otherShare: number, otherSign: number): [number, Factors, Factors][] {
+  const nu = kind.nu ?? 0;
+  if (kind.shared) {
+    return [
+      [1 - otherShare, [true, kind.mu], [false, 0]],
+      [otherShare * otherSign, [true, 0], [false, kind.mu]],
+    ];
+  }
+  if (kind.exchanged) {
+    return [
+      [0.5, [false, kind.mu], [false, nu]],
+      [0.5, [false, nu], [false, kind.mu]],
+    ];
+  }
+  return [[1, [kind.antisymmetric, kind.mu], [false, nu]]];
+}
+
+/** H − c of a program, dense on Fock space. */
+export function sparseOperator(program: SparseProgram): Dense {
+  const n = program.orbitals;
+  const out = zeros(4 ** n);
+  for (const [i, weight] of program.weights.entries()) {
+    if (weight === 0) continue;
+    const kind = program.kinds[program.kindOf[i]!]!;
+    const [p, q, r, s] = program.orbitalsOf.subarray(4 * i, 4 * i + 4);
+    const signed = program.negative[i] ? -weight : weight;
+    if (kind.nu === null) {
+      addScaled(out, rowOperator(n, kind.antisymmetric, kind.mu, p!, q!), signed);
+      continue;
+    }
+    for (const [share, first, second] of products(kind, program.otherShare, program.otherSign)) {
+      const a = rowOperator(n, ...first, p!, q!);
+      const b = rowOperator(n, ...second, r!, s!);
+      addScaled(out, times(a, b), (share * signed) / 2);
+      addScaled(out, times(b, a), (share * signed) / 2);
+    }
+  }
+  return out;
+}
