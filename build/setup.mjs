@@ -37,7 +37,7 @@ export async function ensureKernels() {
 const COMMON = ['core', 'package-lock.json', 'tsconfig.base.json'];
 /** What each bundle is made from. */
 const BUNDLES = {
-  node: { config: 'vite.node.config.ts', sources: [...COMMON, 'app', 'vite.node.config.ts'] },
+  node: { config: 'vite.node.config.ts', sources: [...COMMON, 'app', 'package.json', 'vite.node.config.ts'] },
   preload: {
     config: 'vite.preload.config.ts',
     sources: ['app/desktop', 'package-lock.json', 'vite.preload.config.ts'],
