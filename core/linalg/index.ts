@@ -23,7 +23,7 @@ export {
   type Operator,
   type Planes,
 } from './lowest';
-export { type MultiplyOptions, multiply, transpose } from './multiply';
+export { type MultiplyOptions, multiply, multiplyAsync, transpose } from './multiply';
 export { hermitianNuclearNorm, sumOfSizes, symmetricNuclearNorm } from './norms';
 export { householderQr, type ThinQr } from './qr';
 export { type SingularOptions, singularValues } from './singular';

@@ -1,4 +1,7 @@
-import { put, takeZeros, withArena } from './kernels/arena';
+import type { JobContext } from '../job';
+import { type Arena, createArena, put, takeZeros, withArena } from './kernels/arena';
+import { productSteps, rowMajor, transposed } from './products';
+import { finish, finishAsync, type Steps } from './steps';
 
 export interface MultiplyOptions {
   /** `a` is stored k×m and used transposed. @defaultValue false */
@@ -8,8 +11,8 @@ export interface MultiplyOptions {
 }
 
 /**
- * C = op(A) op(B), op(A) of m×k, op(B) of k×n, all row-major; the result is m×n. Runs to the end without a break (30 Gflop
- * take about two seconds): split large products by rows where a stop must be heard.
+ * C = op(A) op(B), op(A) of m×k, op(B) of k×n, all row-major; the result is m×n. Runs to the end without a break, a second for
+ * some 15 Gflop: {@link multiplyAsync} is for products that large.
  */
 export function multiply(
   a: Float64Array,
@@ -19,17 +22,46 @@ export function multiply(
   n: number,
   options: MultiplyOptions = {},
 ): Float64Array {
+  checkLengths(a, b, m, k, n);
+  return withArena((arena) => finish(multiplySteps(arena, a, b, m, k, n, options)));
+}
+
+/** {@link multiply} with progress in stage `product`; can be stopped. */
+export async function multiplyAsync(
+  a: Float64Array,
+  b: Float64Array,
+  m: number,
+  k: number,
+  n: number,
+  options: MultiplyOptions,
+  context: JobContext,
+): Promise<Float64Array> {
+  checkLengths(a, b, m, k, n);
+  const steps = multiplySteps(createArena(), a, b, m, k, n, options);
+  return finishAsync(steps, 'product', 2 * m * k * n, context);
+}
+
+function* multiplySteps(
+  arena: Arena,
+  a: Float64Array,
+  b: Float64Array,
+  m: number,
+  k: number,
+  n: number,
+  { transposeA = false, transposeB = false }: MultiplyOptions,
+): Steps<Float64Array> {
+  const pa = put(arena, a.subarray(0, m * k));
+  const pb = put(arena, b.subarray(0, k * n));
+  const pc = takeZeros(arena, m * n);
+  const left = transposeA ? transposed(rowMajor(pa, m)) : rowMajor(pa, k);
+  const right = transposeB ? transposed(rowMajor(pb, k)) : rowMajor(pb, n);
+  yield* productSteps(arena, m, n, k, 1, left, right, pc, n);
+  return arena.f64.slice(pc, pc + m * n);
+}
+
+function checkLengths(a: Float64Array, b: Float64Array, m: number, k: number, n: number): void {
   if (a.length < m * k) throw new RangeError(`left factor needs ${m}×${k} numbers, got ${a.length}`);
   if (b.length < k * n) throw new RangeError(`right factor needs ${k}×${n} numbers, got ${b.length}`);
-  return withArena((arena) => {
-    const pa = put(arena, a.subarray(0, m * k));
-    const pb = put(arena, b.subarray(0, k * n));
-    const pc = takeZeros(arena, m * n);
-    const [ars, acs] = options.transposeA ? [1, m] : [k, 1];
-    const [brs, bcs] = options.transposeB ? [1, k] : [n, 1];
-    arena.kernels.gemm(m, n, k, 1, pa, ars, acs, pb, brs, bcs, pc, n);
-    return arena.f64.slice(pc, pc + m * n);
-  });
 }
 
 /** The cols×rows transpose of a rows×cols matrix. */

@@ -1,5 +1,6 @@
 import { describe, expect, it } from 'vitest';
-import { multiply, transpose } from '../../../core/linalg';
+import { inlineContext } from '../../../core/job';
+import { multiply, multiplyAsync, transpose } from '../../../core/linalg';
 import { distance, naiveProduct, naiveTranspose, randomNumbers } from './support';
 
 describe('multiply', () => {
@@ -24,6 +25,20 @@ describe('multiply', () => {
       );
     });
   }
+
+  it('as a job it gives the same numbers, with rising progress', async () => {
+    const [m, k, n] = [700, 500, 600];
+    const a = randomNumbers(m * k, 3);
+    const b = randomNumbers(k * n, 4);
+    const done: number[] = [];
+    const context = { ...inlineContext(), report: (_: string, x: number) => done.push(x) };
+    const options = { transposeA: true, transposeB: true };
+    const c = await multiplyAsync(a, b, m, k, n, options, context);
+    expect(c).toEqual(multiply(a, b, m, k, n, options));
+    expect(done.length).toBeGreaterThan(3);
+    expect(done).toEqual(done.slice().sort((x, y) => x - y));
+    expect(done.at(-1)).toBe(2 * m * k * n);
+  });
 
   it('gives zeros for an empty sum and nothing for no rows', () => {
     expect(Array.from(multiply(new Float64Array(0), new Float64Array(0), 2, 0, 2))).toEqual([0, 0, 0, 0]);
