@@ -1,0 +1,32 @@
+import { describe, expect, it } from 'vitest';
+import { product, toggled, USUAL, valuesIn, whyNot } from '../../../../renderer/state/axes';
+
+describe('axes', () => {
+  it('offers sound combinations only', () => {
+    for (const name of product({})) expect(whyNot(name)).toBeNull();
+    expect(whyNot('sparse/-/swap-layers/none/clean')).toContain('swap layers');
+    expect(product({ factorisation: ['sparse'], lookup: ['clean'] })).toEqual(['sparse/-/index/none/clean']);
+  });
+
+  it('adds the combinations of a word with the words in use, and takes them away again', () => {
+    const dirty = toggled(USUAL, 'lookup', 'dirty');
+    expect(dirty.length).toBeGreaterThan(USUAL.length);
+    expect(dirty.slice(0, USUAL.length)).toEqual(USUAL);
+    expect(dirty).toContain('sparse/-/index/none/dirty');
+    expect(toggled(dirty, 'lookup', 'dirty')).toEqual(USUAL);
+  });
+
+  it('knows which words are in use', () => {
+    expect(valuesIn(USUAL, 'shift')).toEqual(['none', 'median']);
+    expect(valuesIn(toggled(USUAL, 'factorisation', 'sparse'), 'factorisation')).toEqual([
+      'triplet',
+      'spinor',
+    ]);
+  });
+
+  it('finds its way back from nothing', () => {
+    expect(toggled([], 'factorisation', 'sparse').every((n) => n.startsWith('sparse/-/index/none/'))).toBe(
+      true,
+    );
+  });
+});
