@@ -139,9 +139,9 @@ export async function encodeSpatial(
   variant: VariantName,
   ctx: JobContext,
 ): Promise<Encoding> {
-  const shifted = variant.shift === 'median';
-  const triplet = variant.factorisation === 'triplet';
-  const blocks = itemsOf(factorisation.blocks, shifted);
+  const shifted = variant.shift !== 'none';
+  const triplet = variant.factorisation !== 'spinor';
+  const blocks = itemsOf(factorisation.blocks, variant.shift);
   const oneBody = oneBodyPart(h, factorisation, blocks, shifted);
   const one = triplet ? oneBodyTriplet(oneBody) : oneBodySpinor(oneBody);
   const two = triplet ? tripletTwoBody(blocks) : await spinorTwoBody(blocks, ctx);

@@ -7,6 +7,7 @@ import {
 } from '../factor';
 
 import { countAbove, median, shiftedNorm } from './shift';
+import type { ShiftAxis } from './variant';
 
 /** Eigenvalues below this part of a factor's largest are zero and take no row. */
 export const ROW_ZERO = 1e-9;
@@ -24,13 +25,13 @@ export interface SquareItem {
   readonly pairRows: number;
 }
 
-export function squareItems(block: SquareFactors, shifted: boolean): SquareItem[] {
+export function squareItems(block: SquareFactors, shift: ShiftAxis): SquareItem[] {
   const { slots, spectrumWidth } = sectorLayout(block.sector, block.planes, block.n);
   const { spectra } = block;
   return Array.from({ length: block.count }, (_, t) => {
     const at = t * spectrumWidth;
     const charge = slots.find((slot) => slot.mu === 0 && slot.symmetric);
-    const c = shifted && charge ? median(spectra, at, at + block.n) : 0;
+    const c = charge ? shiftOf(block, t, shift, at) : 0;
     let largest = 0;
     for (let i = at; i < at + spectrumWidth; i++) largest = Math.max(largest, Math.abs(spectra[i]!));
     let norm = 0;
@@ -50,6 +51,12 @@ export function squareItems(block: SquareFactors, shifted: boolean): SquareItem[
   });
 }
 
+/** Shift of a factor's charge plane: its median, or what was optimised where the factors carry that. */
+function shiftOf(block: SquareFactors, t: number, shift: ShiftAxis, at: number): number {
+  if (shift === 'none') return 0;
+  return shift === 'optimised' && block.shifts ? block.shifts[t]! : median(block.spectra, at, at + block.n);
+}
+
 /** One triple: {X, Y} = ½[(cX + Y/c)² − (cX − Y/c)²] with c² = Λ_Y/Λ_X, X = a, Y = S. */
 export interface TripleItem {
   /** Shift of Y in the same-orbit part, where Y = S⊗1; the other-orbit part has no charge to shift. */
@@ -64,14 +71,14 @@ export interface TripleItem {
   readonly pairRows: number;
 }
 
-export function tripleItems(block: TripleFactors, shifted: boolean): TripleItem[] {
+export function tripleItems(block: TripleFactors, shift: ShiftAxis): TripleItem[] {
   const { n, count, antisymmetricNorms: a, symmetricValues: s } = block;
   const half = n >> 1;
   const npair = count > 0 ? block.symmetric.length / count : 0;
   return Array.from({ length: count }, (_, t) => {
     const from = t * n;
     const to = from + n;
-    const c = shifted && block.sameScale !== 0 ? median(s, from, to) : 0;
+    const c = shift !== 'none' && block.sameScale !== 0 ? median(s, from, to) : 0;
     const largest = Math.max(Math.abs(s[from]!), Math.abs(s[to - 1]!));
     const pairRows = countAbove(a, t * half, (t + 1) * half, 0, ROW_ZERO * a[t * half]!);
     // One list of vectors serves both parts; a vector counts where either part gives it weight.
@@ -98,10 +105,10 @@ export type BlockItems =
   | { readonly kind: 'squares'; readonly block: SquareFactors; readonly items: readonly SquareItem[] }
   | { readonly kind: 'triples'; readonly block: TripleFactors; readonly items: readonly TripleItem[] };
 
-export function itemsOf(blocks: readonly FactorBlock[], shifted: boolean): BlockItems[] {
+export function itemsOf(blocks: readonly FactorBlock[], shift: ShiftAxis): BlockItems[] {
   return blocks.map((block) => {
-    if (block.kind === 'squares') return { kind: 'squares', block, items: squareItems(block, shifted) };
-    if (block.kind === 'triples') return { kind: 'triples', block, items: tripleItems(block, shifted) };
+    if (block.kind === 'squares') return { kind: 'squares', block, items: squareItems(block, shift) };
+    if (block.kind === 'triples') return { kind: 'triples', block, items: tripleItems(block, shift) };
     throw new RangeError('spinor factors have no triplet items');
   });
 }

@@ -44,17 +44,24 @@ export function formatVariant(name: VariantName): string {
 /** Why a combination cannot be had, as found, expected and mend; null where it can. */
 function objection(name: VariantName): { found: string; expected: string; mend: string } | null {
   const { factorisation, grouping, spin, shift } = name;
-  if (factorisation === 'compressed' || factorisation === 'hypercontracted' || factorisation === 'mixed') {
+  if (factorisation === 'hypercontracted' || factorisation === 'mixed') {
     return {
       found: `factorisation "${factorisation}", which this version does not make yet`,
-      expected: 'sparse, triplet or spinor',
-      mend: 'Choose one of these three.',
+      expected: 'sparse, triplet, compressed or spinor',
+      mend: 'Choose one of these four.',
     };
   }
-  if (shift === 'optimised') {
+  if (factorisation === 'compressed' && (grouping !== 'separate' || shift !== 'optimised')) {
     return {
-      found: 'shift "optimised", which this version does not make yet',
-      expected: 'none or median',
+      found: `grouping "${grouping}" and shift "${shift}" with compressed factors`,
+      expected: 'separate and optimised: the Coulomb factors are optimised together with their shifts',
+      mend: 'Write compressed/separate/…/optimised/….',
+    };
+  }
+  if (shift === 'optimised' && (factorisation === 'spinor' || grouping === 'joint')) {
+    return {
+      found: `shift "optimised" with ${grouping} ${factorisation} factors`,
+      expected: 'triplet or compressed factors in separate grouping, whose Coulomb part it acts on',
       mend: 'Choose "median".',
     };
   }

@@ -28,6 +28,8 @@ export interface SquareFactors {
    * triplet form follows from these alone.
    */
   readonly spectra: Float64Array;
+  /** Optimised shifts c_t of the charge plane, in the units of `spectra`; absent where none were sought. */
+  readonly shifts?: Float64Array;
 }
 
 /**

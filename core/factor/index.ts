@@ -1,3 +1,4 @@
+export { compressFactors } from './compressed';
 export { type PlaneSlot, planeInto, type SectorLayout, sectorLayout, traceOfPairs } from './elements';
 export { type FactoriseOptions, factorise } from './factorise';
 export type {

@@ -1,5 +1,5 @@
 import { buildEncoding, type Encoding, formatVariant, type VariantName } from '../encode';
-import { type Factorisation, factorise, type Grouping, jointRefusal } from '../factor';
+import { compressFactors, type Factorisation, factorise, type Grouping, jointRefusal } from '../factor';
 import type { SpinHamiltonian } from '../hamiltonian';
 import type { JobContext } from '../job';
 
@@ -11,7 +11,7 @@ export class Encodings {
   readonly #hamiltonian: SpinHamiltonian;
   readonly #threshold: number;
   readonly #occupations: readonly number[] | null;
-  readonly #factorisations = new Map<Grouping, Factorisation>();
+  readonly #factorisations = new Map<string, Factorisation>();
   readonly #encodings = new Map<string, Encoding>();
 
   /**
@@ -36,12 +36,26 @@ export class Encodings {
     let encoding = this.#encodings.get(key);
     if (!encoding) {
       const factorisation =
-        variant.grouping === '-' ? null : await this.#factorised(variant.grouping, context);
+        variant.grouping === '-' ? null : await this.#optimised(variant, variant.grouping, context);
       const options = { threshold: this.#threshold };
       encoding = await buildEncoding(this.#hamiltonian, factorisation, variant, options, context);
       this.#encodings.set(key, encoding);
     }
     return encoding;
+  }
+
+  /** The factorisation of the grouping, its Coulomb factors mixed or their shifts optimised where the variant says so. */
+  async #optimised(variant: VariantName, grouping: Grouping, context: JobContext): Promise<Factorisation> {
+    const given = await this.#factorised(grouping, context);
+    if (variant.shift !== 'optimised' || this.#hamiltonian.kind !== 'spatial') return given;
+    const key = `${variant.factorisation}, optimised`;
+    let found = this.#factorisations.get(key);
+    if (!found) {
+      const keepFactors = variant.factorisation !== 'compressed';
+      found = await compressFactors(this.#hamiltonian, given, { keepFactors }, context);
+      this.#factorisations.set(key, found);
+    }
+    return found;
   }
 
   async #factorised(grouping: Grouping, context: JobContext): Promise<Factorisation> {

@@ -1,7 +1,13 @@
 import { numSymmetricPairs } from '../../integrals/integral-set';
 import type { JobContext } from '../../job';
 import { multiply } from '../../linalg';
-import { type MixingPoint, type MixingProblem, type MixingValue, mixingValue } from './objective';
+import {
+  type MixingPoint,
+  type MixingProblem,
+  type MixingValue,
+  mixingValue,
+  withMedianShifts,
+} from './objective';
 
 export interface MixingOptions {
   /**
@@ -9,6 +15,8 @@ export interface MixingOptions {
    * of more rows. @defaultValue the rank
    */
   readonly factors?: number;
+  /** Leaves the factors as they are and optimises the shifts alone: a convex problem. @defaultValue false */
+  readonly keepFactors?: boolean;
   /** Steps at each smoothing width. @defaultValue 60 */
   readonly steps?: number;
   /** Continues from here instead of from the columns. */
@@ -64,7 +72,7 @@ export async function mixFactors(
     for (let step = 0; step < maxSteps; step++) {
       ctx.report('mixing factors', stage * maxSteps + step, WIDTHS.length * maxSteps);
       await ctx.checkpoint();
-      direction = nextDirection(point, value, direction, npair);
+      direction = nextDirection(point, value, direction, npair, options.keepFactors ?? false);
       const moved = await search(problem, point, value, direction, length, delta, ctx);
       if (!moved) break;
       const gain = value.lambda - moved.value.lambda;
@@ -74,9 +82,11 @@ export async function mixFactors(
       taken++;
       if (gain < SETTLED * value.lambda) break;
     }
-    const { lambda } = await mixingValue(problem, point, 0, ctx);
-    if (lambda < bestLambda) {
-      best = point;
+    // Smoothing rounds off the kink at the median, which is where a shift without effect on κ belongs.
+    for (const candidate of [point, withMedianShifts(problem.n, point)]) {
+      const { lambda } = await mixingValue(problem, candidate, 0, ctx);
+      if (lambda >= bestLambda) continue;
+      best = candidate;
       bestLambda = lambda;
       options.onBest?.(best, bestLambda);
     }
@@ -142,11 +152,14 @@ function nextDirection(
   value: MixingValue,
   previous: Direction | null,
   npair: number,
+  keepFactors: boolean,
 ): Direction {
   // d λ/dε along W → exp(−εA)W is −⟨A, (∂λ/∂W) Wᵀ⟩: the antisymmetric part is the gradient.
-  const product = multiply(value.columns, columns, count, npair, count, { transposeB: true });
   const mixing = new Float64Array(count * count);
-  for (let s = 0; s < count; s++) {
+  const product = keepFactors
+    ? mixing
+    : multiply(value.columns, columns, count, npair, count, { transposeB: true });
+  for (let s = 0; s < count && !keepFactors; s++) {
     for (let t = 0; t < count; t++) {
       mixing[s * count + t] = 0.5 * (product[s * count + t]! - product[t * count + s]!);
     }
@@ -203,6 +216,7 @@ function rotated(
   scale: number,
 ): Float64Array {
   // The Frobenius norm over √2 bounds the largest |eigenvalue|, since they come in ± pairs.
+  if (antisymmetric.every((x) => x === 0)) return columns;
   const pieces = Math.max(
     1,
     Math.ceil(2 * Math.abs(scale) * Math.sqrt(dot(antisymmetric, antisymmetric) / 2)),

@@ -1,6 +1,6 @@
 import { numSymmetricPairs } from '../../integrals/integral-set';
 import type { JobContext, Task } from '../../job';
-import { multiply, symmetricEigen } from '../../linalg';
+import { multiply, symmetricEigen, symmetricEigenvalues } from '../../linalg';
 import { planeInto } from '../elements';
 
 /** What λ of the charge part depends on, besides factors and shifts. */
@@ -158,6 +158,17 @@ function pairsInto(out: Float64Array, at: number, matrix: Float64Array, n: numbe
     for (let q = 0; q < p; q++) out[i++] = Math.SQRT2 * scale * matrix[p * n + q]!;
     out[i++] = scale * matrix[p * n + p]!;
   }
+}
+
+/** The same factors with the shifts that make each norm least by itself. */
+export function withMedianShifts(n: number, point: MixingPoint): MixingPoint {
+  const npair = numSymmetricPairs(n);
+  const plane = new Float64Array(n * n);
+  const shifts = point.shifts.map((_, t) => {
+    planeInto(plane, 0, point.columns, t * npair, n, true);
+    return smoothMedian(symmetricEigenvalues(plane, n), 0);
+  });
+  return { ...point, shifts };
 }
 
 /** The c that makes Σ √((ε_i − c)² + δ²) least: the median where δ = 0, else the zero of a rising function. */

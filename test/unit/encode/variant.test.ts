@@ -35,8 +35,9 @@ describe('variant names', () => {
       'sparse/-/index/none/clean',
       'sparse/-/index/none/dirty',
     ]);
-    // 2 groupings × 2 spins × 2 shifts × 3 look-ups, half of the spins for spinors, and 3 sparse ones.
-    expect(names('*/*/*/*/*')).toHaveLength(24 + 12 + 3);
+    // 2 groupings × 2 spins × 2 shifts × 3 look-ups, half of the spins for spinors, and 3 sparse ones; optimised
+    // shifts for separate triplets, 2 spins × 3 look-ups, and as many compressed forms.
+    expect(names('*/*/*/*/*')).toHaveLength(24 + 12 + 3 + 6 + 6);
   });
 
   it('come once each, in the order of first mention', () => {
@@ -57,8 +58,10 @@ describe('variant names', () => {
     ['sparse/-/swap-layers/none/clean', 'swap layers with the sparse form'],
     ['sparse/-/index/median/clean', 'median shift acts on the eigenvalues'],
     ['spinor/joint/swap-layers/none/clean', 'mix both spins'],
-    ['compressed/joint/index/none/clean', 'does not make yet'],
-    ['triplet/joint/index/optimised/clean', 'does not make yet'],
+    ['hypercontracted/joint/index/none/clean', 'does not make yet'],
+    ['compressed/joint/index/optimised/clean', 'optimised together with their shifts'],
+    ['compressed/separate/index/median/clean', 'optimised together with their shifts'],
+    ['triplet/joint/index/optimised/clean', 'whose Coulomb part it acts on'],
   ])('%s is refused with the reason', (name, reason) => {
     for (const read of [parseVariant, expandVariants]) {
       expect(() => read(name)).toThrow(InputError);
