@@ -23,13 +23,18 @@ export interface SparseWires {
 
 export function sparseWires(layout: SparseLayout, machine: Machine): SparseWires {
   const { address, share, exchanged } = layout;
-  const one = () => machine.allocate();
+  const allocate = (size: number, name: string) => machine.allocateRegister(size, name);
   return {
-    system: machine.allocateRegister(2 * layout.orbitals),
-    low: machine.allocateRegister(address.lowBits),
-    uniform: machine.allocateRegister(address.uniformBits),
-    share: machine.allocateRegister(share?.bits ?? 0),
-    plus: { order: one(), spins: [one(), one()], kinds: [one(), one()], placing: exchanged ? one() : null },
+    system: allocate(2 * layout.orbitals, 'system'),
+    low: allocate(address.lowBits, 'row low'),
+    uniform: allocate(address.uniformBits, 'uniform'),
+    share: allocate(share?.bits ?? 0, 'share'),
+    plus: {
+      order: allocate(1, 'order')[0]!,
+      spins: allocate(2, 'sigma') as [number, number],
+      kinds: allocate(2, 'kind') as [number, number],
+      placing: allocate(exchanged ? 1 : 0, 'placing')[0] ?? null,
+    },
   };
 }
 

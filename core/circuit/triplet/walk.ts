@@ -15,17 +15,21 @@ export interface WalkBlocks extends ProductBlocks {
   readonly inner: Blocks;
 }
 
-/** Wires that live through a whole walk step. `zeros` of the walk's reflection are all but the system's. */
-export interface WalkWires {
-  readonly system: readonly number[];
-  /** Gradient register, empty where rotations are exact. */
-  readonly gradient: readonly number[];
-  readonly rotate: Rotate;
+/** Wires that the outer PREPARE puts into superposition. */
+export interface PrepareWires {
   /** Item number, lowest bit first. */
   readonly item: readonly number[];
   readonly face: number | null;
   readonly square: number | null;
   readonly outerUniform: readonly number[];
+}
+
+/** Wires that live through a whole walk step. `zeros` of the walk's reflection are all but the system's. */
+export interface WalkWires extends PrepareWires {
+  readonly system: readonly number[];
+  /** Gradient register, empty where rotations are exact. */
+  readonly gradient: readonly number[];
+  readonly rotate: Rotate;
   readonly row: readonly number[];
   readonly innerUniform: readonly number[];
   readonly sigma: number;
@@ -44,7 +48,6 @@ export function walkWires(
   rotations: 'gradient' | 'exact',
 ): WalkWires {
   const allocate = (size: number, name: string) => machine.allocateRegister(size, name);
-  const one = (wanted: boolean, name: string) => (wanted ? allocate(1, name)[0]! : null);
   const modulusBits = tables.angleBits + 2;
   const system = allocate(2 * tables.orbitals, 'system');
   const gradient = rotations === 'gradient' ? allocate(gradientWires(modulusBits), 'gradient') : [];
@@ -55,14 +58,22 @@ export function walkWires(
       rotations === 'gradient'
         ? rotateByGradient(target, angle, gradient)
         : rotateExactly(target, angle, modulusBits),
-    item: allocate(tables.itemBits, 'item'),
-    face: one(tables.hasFaces, 'face'),
-    square: one(tables.hasPaired, 'square'),
-    outerUniform: allocate(tables.bits.keep, 'outer uniform'),
+    ...prepareWires(tables, machine),
     row: allocate(tables.rowBits, 'row'),
     innerUniform: allocate(tables.bits.innerKeep, 'inner uniform'),
-    sigma: one(true, 'sigma')!,
-    x: one(true, 'kind')!,
+    sigma: allocate(1, 'sigma')[0]!,
+    x: allocate(1, 'kind')[0]!,
+  };
+}
+
+/** Allocates the wires of the outer PREPARE alone. */
+export function prepareWires(tables: TripletTables, machine: Machine): PrepareWires {
+  const allocate = (size: number, name: string) => machine.allocateRegister(size, name);
+  return {
+    item: allocate(tables.itemBits, 'item'),
+    face: allocate(tables.hasFaces ? 1 : 0, 'face')[0] ?? null,
+    square: allocate(tables.hasPaired ? 1 : 0, 'square')[0] ?? null,
+    outerUniform: allocate(tables.bits.keep, 'outer uniform'),
   };
 }
 
@@ -90,31 +101,48 @@ export function blockEncoding(
   spin: SpinTreatment,
   blocks: WalkBlocks,
 ): Operation {
-  const { outer, bits } = tables;
+  return scratch(outerScratch(tables, blocks), (lent) =>
+    within(outerPrepare(tables, wires, blocks, lent), withItemData(tables, wires, spin, blocks)),
+  );
+}
+
+/** Wires that the outer PREPARE leaves in use: alternate and keep value, and the carries of their comparison. */
+export function outerScratch({ outer, bits }: TripletTables, blocks: Pick<WalkBlocks, 'outer'>): number {
+  return (outer.indexBits + bits.keep) * blocks.outer.read + bits.keep;
+}
+
+/**
+ * Puts items, faces and squares into superposition with the square roots of their weights as amplitudes.
+ *
+ * @param lent - `outerScratch` wires in |0⟩, which stay entangled with the rest until the adjoint.
+ */
+export function outerPrepare(
+  { outer, bits }: TripletTables,
+  wires: PrepareWires,
+  blocks: Pick<WalkBlocks, 'outer'>,
+  lent: readonly number[],
+): Operation {
   const index = [...wires.item, ...(wires.face === null ? [] : [wires.face])];
-  return scratch((index.length + bits.keep) * blocks.outer.read + bits.keep, (lent) => {
-    const sampled = aliasSampling(
-      index,
-      {
-        uniform: wires.outerUniform,
-        output: lent.slice(0, -bits.keep),
-        carries: lent.slice(-bits.keep),
-      },
-      {
-        address: index,
-        addresses: firstAddresses(2 ** index.length),
-        alternate: (i) => outer.alternate[i]!,
-        keep: (i) => outer.keep[i]!,
-      },
-      blocks.outer,
-    );
-    const prepare = sequence(
-      hadamards(index),
-      wires.square === null ? nothing : hadamards([wires.square]),
-      sampled,
-    );
-    return within(span('outer PREPARE', 'prepare', prepare), withItemData(tables, wires, spin, blocks));
-  });
+  const sampled = aliasSampling(
+    index,
+    {
+      uniform: wires.outerUniform,
+      output: lent.slice(0, -bits.keep),
+      carries: lent.slice(-bits.keep),
+    },
+    {
+      address: index,
+      addresses: firstAddresses(2 ** index.length),
+      alternate: (i) => outer.alternate[i]!,
+      keep: (i) => outer.keep[i]!,
+    },
+    blocks.outer,
+  );
+  return span(
+    'outer PREPARE',
+    'prepare',
+    sequence(hadamards(index), wires.square === null ? nothing : hadamards([wires.square]), sampled),
+  );
 }
 
 /** One step of the walk: the block encoding and the reflection about the ancillas' zero state. */
