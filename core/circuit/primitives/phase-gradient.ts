@@ -27,8 +27,14 @@ export function prepareGradient(machine: Machine, gradient: readonly number[]): 
 }
 
 /**
- * exp(iφZ) on `target` up to a fixed phase, φ = 2π(x + ½)/2^β with x the number in `angle` (lowest bit first).
- * The number is added where the target is 0 and its complement where it is 1: the ½ makes the two opposite.
+ * Which angles a number x stands for: φ = 2π(x + ½)/2^β, or φ = 2πx/2^β, which has a zero. The number is added where
+ * the target is 0 and its complement where it is 1: the ½ makes the two opposite; without it the target itself is
+ * the carry that enters the complement's sum. Both cost the same.
+ */
+export type Grid = 'half steps' | 'whole steps';
+
+/**
+ * exp(iφZ) on `target` up to a fixed phase, with x the number in `angle` (lowest bit first).
  *
  * @param angle - at most β wires; missing top bits count as 0. Left unchanged.
  * @param gradient - β − 1 wires in the gradient state; left unchanged.
@@ -37,6 +43,7 @@ export function rotateByGradient(
   target: number,
   angle: readonly number[],
   gradient: readonly number[],
+  grid: Grid = 'half steps',
 ): Operation {
   const modulusBits = gradient.length + 1;
   const missing = modulusBits - angle.length;
@@ -45,18 +52,22 @@ export function rotateByGradient(
     const number = [...angle, ...top];
     return within(
       repeat(modulusBits, (i) => gate('CX', target, number[i]!)),
-      addPhase(number, gradient),
+      addPhase(number, gradient, grid === 'whole steps' ? target : -1),
     );
   });
 }
 
-/** Adds the number modulo 2^β into the gradient, whose virtual top bit turns into phases. */
-function addPhase(number: readonly number[], gradient: readonly number[]): Operation {
+/**
+ * Adds the number modulo 2^β into the gradient, whose virtual top bit turns into phases.
+ *
+ * @param carryWire - added with it, or −1
+ */
+function addPhase(number: readonly number[], gradient: readonly number[], carryWire: number): Operation {
   const n = gradient.length;
   const top = number[n]!;
-  if (n === 0) return gate('Z', top);
+  if (n === 0) return sequence(gate('Z', top), carryWire < 0 ? sequence() : gate('Z', carryWire));
   return scratch(n - 1, (carries) => {
-    const carryInto = (i: number) => (i === 0 ? -1 : carries[i - 1]!);
+    const carryInto = (i: number) => (i === 0 ? carryWire : carries[i - 1]!);
     const up = repeat(n - 1, (i) => carryStep(number[i]!, gradient[i]!, carryInto(i), carries[i]!));
     const last = n - 1;
     const carry = carryInto(last);
@@ -93,14 +104,19 @@ function addPhase(number: readonly number[], gradient: readonly number[]): Opera
  * rotations make it useless on a machine, but a simulator of larger circuits needs no superposed gradient; that it
  * equals {@link rotateByGradient} up to a fixed phase is tested.
  */
-export function rotateExactly(target: number, angle: readonly number[], modulusBits: number): Operation {
+export function rotateExactly(
+  target: number,
+  angle: readonly number[],
+  modulusBits: number,
+  grid: Grid = 'half steps',
+): Operation {
   const turn = (wire: number, phi: number): Operation => ({
     run: (machine) => machine.rotateZ(wire, -2 * phi),
     runAdjoint: (machine) => machine.rotateZ(wire, 2 * phi),
   });
   const unit = (2 * Math.PI) / 2 ** modulusBits;
   return sequence(
-    turn(target, unit / 2),
+    grid === 'half steps' ? turn(target, unit / 2) : sequence(),
     repeat(angle.length, (i) => {
       const half = (unit * 2 ** i) / 2;
       return sequence(turn(target, half), within(gate('CX', angle[i]!, target), turn(target, -half)));
