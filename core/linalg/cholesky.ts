@@ -1,6 +1,6 @@
 import type { JobContext } from '../job';
-import { type Arena, createArena, withArena } from './kernels/arena';
-import { finish, type Steps } from './steps';
+import { type Arena, withArena } from './kernels/arena';
+import { runNow, type Steps } from './steps';
 
 /** A positive semidefinite matrix that is asked for one row at a time. */
 export interface RowSource {
@@ -43,22 +43,24 @@ const NOISE = 1e-15;
  * remainder, which is then no longer bounded by its trace.
  */
 export function pivotedCholesky(source: RowSource, options: CholeskyOptions = {}): PivotedCholesky {
-  return withArena((arena) => finish(choleskySteps(arena, source, options)));
+  return runNow((arena) => choleskySteps(arena, source, options));
 }
 
 /** {@link pivotedCholesky} with progress in stage `cholesky` (columns found, of unknown number). */
-export async function pivotedCholeskyAsync(
+export function pivotedCholeskyAsync(
   source: RowSource,
   options: CholeskyOptions,
   context: JobContext,
 ): Promise<PivotedCholesky> {
-  const steps = choleskySteps(createArena(), source, options);
-  for (let columns = 0; ; columns++) {
-    const step = steps.next();
-    if (step.done) return step.value;
-    context.report('cholesky', columns + 1, null);
-    await context.checkpoint();
-  }
+  return withArena(async (arena) => {
+    const steps = choleskySteps(arena, source, options);
+    for (let columns = 1; ; columns++) {
+      const step = steps.next();
+      if (step.done) return step.value;
+      context.report('cholesky', columns, null);
+      await context.checkpoint();
+    }
+  });
 }
 
 /** Row source of a dense row-major matrix. */

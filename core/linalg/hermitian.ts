@@ -7,10 +7,10 @@ import {
   hermitianReductionWork,
   reduceHermitianSteps,
 } from './hermitian-reduction';
-import { type Arena, createArena, put, withArena } from './kernels/arena';
+import { type Arena, put, withArena } from './kernels/arena';
 import { TINY } from './kernels/plain-triangle';
 import { ascending } from './order';
-import { finish, finishAsync, type Steps } from './steps';
+import { runAsJob, runNow, type Steps } from './steps';
 import { batchSize, notConverged } from './symmetric';
 import type { ComplexMatrix, HermitianEigen } from './types';
 
@@ -23,7 +23,7 @@ import type { ComplexMatrix, HermitianEigen } from './types';
  */
 export function hermitianEigen(matrix: ComplexMatrix): HermitianEigen {
   checkPlanes(matrix.re, matrix.im, matrix.n * matrix.n);
-  return withArena((arena) => finish(eigenSteps(arena, matrix)));
+  return runNow((arena) => eigenSteps(arena, matrix));
 }
 
 /** {@link hermitianEigen} for large n: reports progress in stage `eigen` and can be stopped. */
@@ -34,13 +34,13 @@ export async function hermitianEigenAsync(
   const { n } = matrix;
   checkPlanes(matrix.re, matrix.im, n * n);
   const total = hermitianReductionWork(n) + divideWork(n) + complexReflectorWork(n, n);
-  return finishAsync(eigenSteps(createArena(), matrix), 'eigen', total, context);
+  return runAsJob((arena) => eigenSteps(arena, matrix), 'eigen', total, context);
 }
 
 /** Eigenvalues only, ascending. */
 export function hermitianEigenvalues(matrix: ComplexMatrix): Float64Array {
   checkPlanes(matrix.re, matrix.im, matrix.n * matrix.n);
-  return withArena((arena) => finish(valueSteps(arena, matrix)));
+  return runNow((arena) => valueSteps(arena, matrix));
 }
 
 /** {@link hermitianEigenvalues} with progress in stage `eigenvalues`, for large n. */
@@ -50,7 +50,7 @@ export async function hermitianEigenvaluesAsync(
 ): Promise<Float64Array> {
   checkPlanes(matrix.re, matrix.im, matrix.n * matrix.n);
   const total = hermitianReductionWork(matrix.n);
-  return finishAsync(valueSteps(createArena(), matrix), 'eigenvalues', total, context);
+  return runAsJob((arena) => valueSteps(arena, matrix), 'eigenvalues', total, context);
 }
 
 /**

@@ -9,7 +9,7 @@ import {
   rowsFrom,
   takeBlock,
 } from './block-vectors';
-import { createArena } from './kernels/arena';
+import { type Arena, withArena } from './kernels/arena';
 import type { Planes } from './planes';
 import { ProjectedMatrix } from './projected-matrix';
 import { randomSource } from './random';
@@ -54,7 +54,18 @@ const WIDTH = 12;
  * @remarks Without `diagonal` this is a block Krylov method: the number of applications grows with the root of
  * spread/gap. Memory: about 12·k + 120 vectors. Progress in stage `eigenpairs` counts applications.
  */
-export async function lowestEigenpairs(
+export function lowestEigenpairs(
+  apply: Operator,
+  n: number,
+  k: number,
+  options: LowestOptions,
+  context: JobContext,
+): Promise<LowestEigenpairs> {
+  return withArena((arena) => davidson(arena, apply, n, k, options, context));
+}
+
+async function davidson(
+  arena: Arena,
   apply: Operator,
   n: number,
   k: number,
@@ -67,7 +78,6 @@ export async function lowestEigenpairs(
   const wanted = Math.min(k, n);
   const block = Math.min(n, wanted + Math.max(4, Math.ceil(wanted / 4)));
   const capacity = Math.min(n, Math.max(5 * block, block + 8 * WIDTH));
-  const arena = createArena();
   const basis = takeBlock(arena, capacity, n, complex);
   const images = takeBlock(arena, capacity, n, complex);
   const ritz = takeBlock(arena, 2 * block, n, complex);

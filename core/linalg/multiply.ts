@@ -1,7 +1,7 @@
 import type { JobContext } from '../job';
-import { type Arena, createArena, put, takeZeros, withArena } from './kernels/arena';
+import { type Arena, put, takeZeros } from './kernels/arena';
 import { productSteps, rowMajor, transposed } from './products';
-import { finish, finishAsync, type Steps } from './steps';
+import { runAsJob, runNow, type Steps } from './steps';
 
 export interface MultiplyOptions {
   /** `a` is stored k×m and used transposed. @defaultValue false */
@@ -23,7 +23,7 @@ export function multiply(
   options: MultiplyOptions = {},
 ): Float64Array {
   checkLengths(a, b, m, k, n);
-  return withArena((arena) => finish(multiplySteps(arena, a, b, m, k, n, options)));
+  return runNow((arena) => multiplySteps(arena, a, b, m, k, n, options));
 }
 
 /** {@link multiply} with progress in stage `product`; can be stopped. */
@@ -37,8 +37,7 @@ export async function multiplyAsync(
   context: JobContext,
 ): Promise<Float64Array> {
   checkLengths(a, b, m, k, n);
-  const steps = multiplySteps(createArena(), a, b, m, k, n, options);
-  return finishAsync(steps, 'product', 2 * m * k * n, context);
+  return runAsJob((arena) => multiplySteps(arena, a, b, m, k, n, options), 'product', 2 * m * k * n, context);
 }
 
 function* multiplySteps(

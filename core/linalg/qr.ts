@@ -1,8 +1,8 @@
 import type { JobContext } from '../job';
-import { type Arena, createArena, takeZeros } from './kernels/arena';
+import { type Arena, takeZeros } from './kernels/arena';
 import { TINY } from './kernels/plain-triangle';
 import { applyGroup, BAND, buildTriangle, groupRoom } from './reflector-group';
-import { finishAsync, type Steps } from './steps';
+import { runAsJob, type Steps } from './steps';
 
 /** A = QR: Q rows×cols with orthonormal columns, R cols×cols upper triangular, both row-major. */
 export interface ThinQr {
@@ -28,7 +28,7 @@ export async function householderQr(
   if (rows < cols) throw new RangeError(`householderQr: ${rows}×${cols}; expected rows ≥ cols`);
   if (a.length < rows * cols) throw new RangeError(`householderQr: ${a.length} numbers for ${rows}×${cols}`);
   const total = 4 * cols * cols * rows;
-  return finishAsync(qrSteps(createArena(), a, rows, cols), 'qr', total, context);
+  return runAsJob((arena) => qrSteps(arena, a, rows, cols), 'qr', total, context);
 }
 
 function* qrSteps(arena: Arena, a: Float64Array, rows: number, cols: number): Steps<ThinQr> {

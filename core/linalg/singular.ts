@@ -1,9 +1,9 @@
 import type { JobContext } from '../job';
-import { type Arena, createArena, put, takeZeros } from './kernels/arena';
+import { type Arena, put, takeZeros } from './kernels/arena';
 import { transpose } from './multiply';
 import { ascending } from './order';
 import { gramSteps, productSteps, rowMajor, transposed } from './products';
-import { finishAsync, type Steps } from './steps';
+import { runAsJob, type Steps } from './steps';
 import { eigenInArena, eigenWork } from './symmetric';
 import type { SingularValues } from './types';
 
@@ -47,7 +47,7 @@ export async function singularValues(
   }
   const tolerance = options.tolerance ?? 1e-13;
   const total = 4 * rows * rows * cols + 2 * eigenWork(rows); // an estimate: levels below the first are smaller
-  return finishAsync(tripleSteps(createArena(), a, rows, cols, tolerance), 'singular', total, context);
+  return runAsJob((arena) => tripleSteps(arena, a, rows, cols, tolerance), 'singular', total, context);
 }
 
 /** Rows U (count×rows) and W = U A (count×cols) in the arena, with the norms s of W's rows. */

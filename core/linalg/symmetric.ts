@@ -1,9 +1,9 @@
 import type { JobContext } from '../job';
 import { divideSteps, divideWork } from './divide';
-import { type Arena, createArena, put, withArena } from './kernels/arena';
+import { type Arena, put, withArena } from './kernels/arena';
 import { ascending } from './order';
 import { applyReflectorSteps, reduceSteps, reductionWork, reflectorWork } from './reduction';
-import { finish, finishAsync, type Steps } from './steps';
+import { runAsJob, runNow, type Steps } from './steps';
 import type { SymmetricEigen } from './types';
 
 /**
@@ -15,7 +15,7 @@ import type { SymmetricEigen } from './types';
  */
 export function symmetricEigen(a: Float64Array, n: number): SymmetricEigen {
   checkLength(a, n);
-  return withArena((arena) => finish(eigenSteps(arena, a, n)));
+  return runNow((arena) => eigenSteps(arena, a, n));
 }
 
 /** {@link symmetricEigen} for large n (3000 and more): reports progress in stage `eigen` and can be stopped. */
@@ -25,14 +25,13 @@ export async function symmetricEigenAsync(
   context: JobContext,
 ): Promise<SymmetricEigen> {
   checkLength(a, n);
-  // A memory of its own: other work may use the shared one between two steps.
-  return finishAsync(eigenSteps(createArena(), a, n), 'eigen', eigenWork(n), context);
+  return runAsJob((arena) => eigenSteps(arena, a, n), 'eigen', eigenWork(n), context);
 }
 
 /** Eigenvalues only, ascending. */
 export function symmetricEigenvalues(a: Float64Array, n: number): Float64Array {
   checkLength(a, n);
-  return withArena((arena) => finish(valueSteps(arena, a, n)));
+  return runNow((arena) => valueSteps(arena, a, n));
 }
 
 /** {@link symmetricEigenvalues} with progress in stage `eigenvalues`, for large n. */
@@ -42,7 +41,7 @@ export async function symmetricEigenvaluesAsync(
   context: JobContext,
 ): Promise<Float64Array> {
   checkLength(a, n);
-  return finishAsync(valueSteps(createArena(), a, n), 'eigenvalues', reductionWork(n), context);
+  return runAsJob((arena) => valueSteps(arena, a, n), 'eigenvalues', reductionWork(n), context);
 }
 
 /**

@@ -19,29 +19,38 @@ export interface Arena {
 }
 
 const PAGE = 8192; // numbers in a 64 kB page of WebAssembly memory
-/** A shared memory that has grown beyond this many numbers (64 MB) is dropped after use. */
+/** An idle memory that has grown beyond this many numbers (64 MB) is dropped. */
 const KEEP = 8 * 1024 * 1024;
+const MAX_IDLE = 4;
 
 let compiled: WebAssembly.Module | null | undefined;
-let shared: Arena | undefined;
+/** Memories between two uses. An engine reserves gigabytes of addresses for each, so they are not made lavishly. */
+const idle: Arena[] = [];
 
-/** A memory of its own, for work that lets other work in between. Falls back to plain TypeScript. */
+/** A fresh memory; falls back to plain TypeScript. Most callers want {@link withArena}. */
 export function createArena(): Arena {
   if (compiled === undefined) compiled = compile();
   return compiled ? wasmArena(compiled) : plainArena();
 }
 
-/** Runs short, synchronous work on the shared memory and gives the room back. */
+/** Lends a memory to `work`, which has it for itself also while it waits for something, if it is asynchronous. */
 export function withArena<T>(work: (arena: Arena) => T): T {
-  shared ??= createArena();
-  const arena = shared;
+  const arena = idle.pop() ?? createArena();
   const mark = arena.mark();
-  try {
-    return work(arena);
-  } finally {
+  const giveBack = () => {
     arena.release(mark);
-    if (arena.f64.length > KEEP && shared === arena) shared = undefined;
+    if (arena.f64.length <= KEEP && idle.length < MAX_IDLE) idle.push(arena);
+  };
+  let result: T;
+  try {
+    result = work(arena);
+  } catch (error) {
+    giveBack();
+    throw error;
   }
+  if (result instanceof Promise) return result.finally(giveBack) as T;
+  giveBack();
+  return result;
 }
 
 /** Copies `data` into fresh room. */

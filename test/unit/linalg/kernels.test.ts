@@ -1,5 +1,5 @@
 import { describe, expect, it } from 'vitest';
-import { type Arena, createArena, plainArena, put } from '../../../core/linalg/kernels/arena';
+import { type Arena, createArena, plainArena, put, withArena } from '../../../core/linalg/kernels/arena';
 import { distance, randomNumbers } from './support';
 
 // The compiled kernels against the plain ones on the same numbers. The room behind every array is watched too.
@@ -206,5 +206,30 @@ describe('arena', () => {
       arena.release(mark);
       expect(arena.take(2)).toBe(large);
     }
+  });
+
+  it('is lent to one at a time, for as long as the work waits, and comes back after a failure', async () => {
+    let wake = () => {};
+    const sleeping = withArena(async (arena) => {
+      const at = put(arena, Float64Array.of(7));
+      await new Promise<void>((resolve) => {
+        wake = resolve;
+      });
+      return arena.f64[at];
+    });
+    const start = withArena((arena) => {
+      const at = put(arena, Float64Array.of(8));
+      withArena((another) => expect(another).not.toBe(arena));
+      return at;
+    });
+    wake();
+    expect(await sleeping).toBe(7);
+    const fail = (arena: Arena) => {
+      arena.take(5);
+      throw new Error('no');
+    };
+    expect(() => withArena(fail)).toThrow('no');
+    await expect(withArena(async (arena) => fail(arena))).rejects.toThrow('no');
+    withArena((arena) => expect(arena.take(1)).toBe(start));
   });
 });
