@@ -1,7 +1,7 @@
 import type { Residual } from '../factor/factors';
 import type { SpinHamiltonian } from '../hamiltonian';
 import type { TripletProgram } from './program';
-import type { SparseProgram } from './sparse-program';
+import type { SparseProgram, TermSizes } from './sparse-program';
 import type { VariantName } from './variant';
 
 /** λ in hartree, by part; the parts sum to `total`. Keys: design interfaces, "lambda.parts". */
@@ -38,23 +38,6 @@ export interface EncodingShape {
   readonly items?: ItemSizes;
   /** Sparse form only: what its table and SELECT depend on. */
   readonly terms?: TermSizes;
-}
-
-/** Sizes of a sparse encoding. */
-export interface TermSizes {
-  readonly orbitals: number;
-  /** Unique coefficients. */
-  readonly coefficients: number;
-  /** Any coefficient carries spin. */
-  readonly spin: boolean;
-  /** The second element of a coefficient has a component of its own, apart from the shared spin–orbit ones. */
-  readonly secondComponent: boolean;
-  /** One value may stand for both ways of placing two components. */
-  readonly exchanged: boolean;
-  /** Part of λ in coefficients that serve both spin–orbit kinds at once. */
-  readonly sharedPart: number;
-  /** Of these, the part that acts as spin–other-orbit. */
-  readonly otherShare: number;
 }
 
 /** Sizes of the items of a triplet encoding, the one-body item last: what its tables and their costs depend on. */

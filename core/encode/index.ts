@@ -1,7 +1,7 @@
 export { buildEncoding, type EncodingOptions } from './build';
-export type { Encoding, EncodingShape, ItemSizes, LambdaByPart, TermSizes } from './encoding';
+export type { Encoding, EncodingShape, ItemSizes, LambdaByPart } from './encoding';
 export type { RowFace, TripletItem, TripletProgram, TripletRow } from './program';
-export { type SparseProgram, type TermKind, termSizes } from './sparse-program';
+export { type SparseProgram, type TermKind, type TermSizes, termSizes } from './sparse-program';
 export { encodeTasks } from './tasks';
 export {
   AXES,

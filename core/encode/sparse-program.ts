@@ -1,6 +1,22 @@
 import type { Mu } from '../hamiltonian';
-import type { TermSizes } from './encoding';
 import { numRows, type Section, visitRows } from './sparse-sections';
+
+/** Sizes of a sparse encoding. */
+export interface TermSizes {
+  readonly orbitals: number;
+  /** Unique coefficients. */
+  readonly coefficients: number;
+  /** Any coefficient carries spin. */
+  readonly spin: boolean;
+  /** The second element of a coefficient has a component of its own, apart from the shared spin–orbit ones. */
+  readonly secondComponent: boolean;
+  /** One value may stand for both ways of placing two components. */
+  readonly exchanged: boolean;
+  /** Part of λ in coefficients that serve both spin–orbit kinds at once. */
+  readonly sharedPart: number;
+  /** Of these, the part that acts as spin–other-orbit. */
+  readonly otherShare: number;
+}
 
 /**
  * What a group of coefficients multiplies. With the row operators of the triplet form (core/circuit/triplet/rows.ts)
