@@ -34,7 +34,7 @@ describe('multiply', () => {
     const context = { ...inlineContext(), report: (_: string, x: number) => done.push(x) };
     const options = { transposeA: true, transposeB: true };
     const c = await multiplyAsync(a, b, m, k, n, options, context);
-    expect(c).toEqual(multiply(a, b, m, k, n, options));
+    expect(distance(c, multiply(a, b, m, k, n, options))).toBe(0);
     expect(done.length).toBeGreaterThan(3);
     expect(done).toEqual(done.slice().sort((x, y) => x - y));
     expect(done.at(-1)).toBe(2 * m * k * n);

@@ -174,13 +174,11 @@ describe('batches', () => {
       [6, 5],
       [50, 203],
     ]) {
-      const matrices = Float64Array.from({ length: count }, (_, i) => i).reduce<number[]>(
-        (all, i) => all.concat(Array.from(randomSymmetric(n, i + 1))),
-        [],
-      );
-      const values = symmetricEigenvaluesBatch(Float64Array.from(matrices), count, n);
+      const matrices = new Float64Array(count * n * n);
+      for (let i = 0; i < count; i++) matrices.set(randomSymmetric(n, i + 1), i * n * n);
+      const values = symmetricEigenvaluesBatch(matrices, count, n);
       for (const i of [0, count >> 1, count - 1]) {
-        const one = symmetricEigen(Float64Array.from(matrices.slice(i * n * n, (i + 1) * n * n)), n).values;
+        const one = symmetricEigen(matrices.slice(i * n * n, (i + 1) * n * n), n).values;
         expect(distance(values.slice(i * n, (i + 1) * n), one)).toBeLessThan(1e-12);
       }
     }
@@ -207,7 +205,9 @@ describe('as a job', () => {
       },
     };
     const eigen = await symmetricEigenAsync(a, n, context);
-    expect(eigen).toEqual(symmetricEigen(a, n));
+    const atOnce = symmetricEigen(a, n);
+    expect(distance(eigen.values, atOnce.values)).toBe(0);
+    expect(distance(eigen.vectors, atOnce.vectors)).toBe(0);
     expect(checkpoints).toBeGreaterThan(150);
     for (let i = 1; i < seen.length; i++) expect(seen[i][0]).toBeGreaterThanOrEqual(seen[i - 1][0]);
     expect(seen.at(-1)![0]).toBe(seen.at(-1)![1]);
@@ -233,6 +233,7 @@ describe('as a job', () => {
         symmetricEigen(randomSymmetric(12, 1), 12);
       },
     };
-    expect(await symmetricEigenAsync(a, n, busy)).toEqual(symmetricEigen(a, n));
+    const disturbed = await symmetricEigenAsync(a, n, busy);
+    expect(distance(disturbed.vectors, symmetricEigen(a, n).vectors)).toBe(0);
   });
 });
