@@ -8,7 +8,8 @@ import { type BlockItems, itemsOf } from './items';
 import { KAPPA_ROUNDING, type OneBody, oneBodyPart, oneBodyTriplet } from './one-body';
 import { rebuildSpatial } from './rebuild';
 import { countAbove, shiftedNorm } from './shift';
-import { squareSpinorNorms, tripleSpinorNorms } from './spinor-norms';
+import { faceLambda, type SpinorItems, spinorItems } from './spinor-items';
+import { spinorProgram, spinorSizes } from './spinor-program';
 import { tripletProgram } from './triplet-program';
 import type { VariantName } from './variant';
 
@@ -78,58 +79,85 @@ function tripletTwoBody(blocks: readonly BlockItems[]): TwoBody {
   return two;
 }
 
-/**
- * Spinor form: λ = ¼ Σ |w| (½ ‖Σ_μ L^{t,μ}⊗σ^μ‖_*)². A row is a Kramers pair (even) or a ± pair (odd) of eigenvectors,
- * which one complex vector serves. Both halves of a triple share rows unless a shift makes their Y differ.
- */
-async function spinorTwoBody(blocks: readonly BlockItems[], ctx: JobContext): Promise<TwoBody> {
+/** Spinor form: λ = ¼ Σ |w| (½ ‖Σ_μ L^{t,μ}⊗σ^μ‖_*)². */
+function spinorTwoBody(blocks: readonly SpinorItems[]): TwoBody {
   const two = emptyTwoBody();
   for (const entry of blocks) {
     if (entry.kind === 'triples') {
       const { block, items } = entry;
       two.spin ||= block.count > 0;
-      const plain = block.otherScale !== 0 ? await tripleSpinorNorms(block, items, false, ctx) : null;
-      const same = block.sameScale !== 0 ? await tripleSpinorNorms(block, items, true, ctx) : null;
-      items.forEach((item, t) => {
-        const s = 0.25 * block.strengths[t]!;
-        let rows = 0;
-        if (same) {
-          add(two, 'same-orbit', Math.abs(block.sameScale) * s * same.norms[t]! ** 2);
-          rows += same.pairs[t]!;
-        }
-        if (plain) {
-          add(two, 'other-orbit', Math.abs(block.otherScale) * s * plain.norms[t]! ** 2);
-          if (!same || item.shift !== 0) rows += plain.pairs[t]!;
+      if (block.sameScale !== 0) add(two, 'same-orbit', 0);
+      if (block.otherScale !== 0) add(two, 'other-orbit', 0);
+      for (const { triple, faces, rows } of items) {
+        for (const face of faces) {
+          add(two, face.odd ? 'other-orbit' : 'same-orbit', faceLambda(block.strengths[triple]!, face));
         }
         addRows(two, rows, 0);
-      });
+      }
       continue;
     }
     const { block, items } = entry;
     const part = PART_NAMES[block.part];
     add(two, part, 0);
-    const spinFree = block.sector === 'even' && block.planes.length === 1;
-    two.spin ||= block.count > 0 && !spinFree;
-    const found = spinFree
-      ? { norms: items.map((item) => item.norm), pairs: items.map((item) => item.rows) }
-      : await squareSpinorNorms(block, items, ctx);
-    items.forEach((_, t) => {
-      addSquare(two, part, block.weights[t]!, found.norms[t]!);
-      addRows(two, found.pairs[t]!, 0);
+    items.forEach(({ real, norm, rows }, t) => {
+      two.spin ||= !real;
+      addSquare(two, part, block.weights[t]!, norm);
+      addRows(two, rows, 0);
     });
   }
   return two;
 }
 
-/** ½‖κ‖_* over 2N modes, split: charge = ½‖κ⁰⊗1‖_* = ‖κ⁰‖_*, spin = the remainder, which is never negative. */
+/**
+ * ½‖κ‖_* over 2N modes, split: charge = ½‖κ⁰⊗1‖_* = ‖κ⁰‖_*, spin = the remainder, which is never negative. A row is a
+ * Kramers pair.
+ */
 function oneBodySpinor(part: OneBody) {
   const { n } = part.kappa;
   const charge = shiftedNorm(part.chargeValues, 0, n, 0);
   const values = hermitianEigenvalues(toSpinOrbitals(part.kappa));
   const total = 0.5 * shiftedNorm(values, 0, 2 * n, 0);
   const largest = Math.max(Math.abs(values[0]!), Math.abs(values[2 * n - 1]!));
-  const rows = Math.ceil(countAbove(values, 0, 2 * n, 0, KAPPA_ROUNDING * largest) / 2);
-  return { charge, spin: Math.max(0, total - charge), rows, pairRows: 0 };
+  const zero = KAPPA_ROUNDING * largest;
+  const rows = Math.ceil(countAbove(values, 0, 2 * n, 0, zero) / 2);
+  const real = part.spinNorms.every((a) => a <= zero);
+  return { charge, spin: Math.max(0, total - charge), rows, pairRows: 0, real };
+}
+
+/** What the two forms of an encoding differ in. */
+interface Form {
+  readonly one: ReturnType<typeof oneBodyTriplet>;
+  readonly two: TwoBody;
+  readonly sizes: Pick<EncodingShape, 'items' | 'spinors'>;
+  /** Given the encoding's constant. */
+  readonly programs: (constant: number) => Pick<Encoding, 'program' | 'spinorProgram'>;
+}
+
+function tripletForm(orbitals: number, blocks: readonly BlockItems[], oneBody: OneBody): Form {
+  const one = oneBodyTriplet(oneBody);
+  return {
+    one,
+    two: tripletTwoBody(blocks),
+    sizes: { items: itemSizes(orbitals, blocks, one) },
+    programs: (constant) => ({ program: () => tripletProgram(constant, blocks, oneBody) }),
+  };
+}
+
+async function spinorForm(
+  orbitals: number,
+  blocks: readonly BlockItems[],
+  oneBody: OneBody,
+  ctx: JobContext,
+): Promise<Form> {
+  const one = oneBodySpinor(oneBody);
+  const items: SpinorItems[] = [];
+  for (const block of blocks) items.push(await spinorItems(block, ctx));
+  return {
+    one,
+    two: spinorTwoBody(items),
+    sizes: { spinors: spinorSizes(orbitals, items, one) },
+    programs: (constant) => ({ spinorProgram: () => spinorProgram(constant, items, oneBody, one) }),
+  };
 }
 
 /** Triplet or spinor encoding of a Hamiltonian over spatial orbitals. */
@@ -140,16 +168,17 @@ export async function encodeSpatial(
   ctx: JobContext,
 ): Promise<Encoding> {
   const shifted = variant.shift !== 'none';
-  const triplet = variant.factorisation !== 'spinor';
+  const spinor = variant.factorisation === 'spinor';
   const blocks = itemsOf(factorisation.blocks, variant.shift);
   const oneBody = oneBodyPart(h, factorisation, blocks, shifted);
-  const one = triplet ? oneBodyTriplet(oneBody) : oneBodySpinor(oneBody);
-  const two = triplet ? tripletTwoBody(blocks) : await spinorTwoBody(blocks, ctx);
+  const { one, two, sizes, programs } = spinor
+    ? await spinorForm(h.orbitals, blocks, oneBody, ctx)
+    : tripletForm(h.orbitals, blocks, oneBody);
   const lambda = sumLambda(one, two.parts);
   let trace = 0;
   for (const x of oneBody.chargeValues) trace += x;
   const shape: EncodingShape = {
-    kind: triplet ? 'triplet' : 'spinor',
+    kind: spinor ? 'spinor' : 'triplet',
     orbitals: h.orbitals,
     factors: two.factors,
     rows: two.rows,
@@ -158,7 +187,7 @@ export async function encodeSpatial(
     oneBodyPairRows: one.pairRows,
     maxRowsPerFactor: Math.max(two.maxRows, one.rows),
     spinDependent: two.spin || oneBody.spinNorms.some((a) => a > 0),
-    ...(triplet ? { items: itemSizes(h.orbitals, blocks, one) } : {}),
+    ...sizes,
   };
   const constant = oneBody.constant + trace + two.identity;
   return {
@@ -168,7 +197,7 @@ export async function encodeSpatial(
     constant,
     residual: factorisation.residual,
     rebuild: () => rebuildSpatial(h, factorisation, blocks, oneBody),
-    ...(triplet ? { program: () => tripletProgram(constant, blocks, oneBody) } : {}),
+    ...programs(constant),
   };
 }
 

@@ -2,6 +2,7 @@ import type { Residual } from '../factor/factors';
 import type { SpinHamiltonian } from '../hamiltonian';
 import type { TripletProgram } from './program';
 import type { SparseProgram, TermSizes } from './sparse-program';
+import type { SpinorProgram, SpinorSizes } from './spinor-program';
 import type { VariantName } from './variant';
 
 /** λ in hartree, by part; the parts sum to `total`. Keys: design interfaces, "lambda.parts". */
@@ -36,6 +37,8 @@ export interface EncodingShape {
   readonly spinDependent: boolean;
   /** Triplet form only: the sizes item by item. */
   readonly items?: ItemSizes;
+  /** Spinor form only: the sizes item by item. */
+  readonly spinors?: SpinorSizes;
   /** Sparse form only: what its table and SELECT depend on. */
   readonly terms?: TermSizes;
 }
@@ -68,6 +71,8 @@ export interface Encoding {
   rebuild(): SpinHamiltonian;
   /** Triplet form only: all rows with their vectors, for circuits and exported tables. Made anew at each call. */
   readonly program?: () => TripletProgram;
+  /** Spinor form only: the same. */
+  readonly spinorProgram?: () => SpinorProgram;
   /** Sparse form only: all coefficients, as above. */
   readonly sparseProgram?: () => SparseProgram;
 }

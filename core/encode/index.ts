@@ -2,6 +2,14 @@ export { buildEncoding, type EncodingOptions } from './build';
 export type { Encoding, EncodingShape, ItemSizes, LambdaByPart } from './encoding';
 export type { RowFace, TripletItem, TripletProgram, TripletRow } from './program';
 export { type SparseProgram, type TermKind, type TermSizes, termSizes } from './sparse-program';
+export {
+  SPINOR_KINDS,
+  type SpinorItem,
+  type SpinorKind,
+  type SpinorProgram,
+  type SpinorRow,
+  type SpinorSizes,
+} from './spinor-program';
 export { encodeTasks } from './tasks';
 export {
   AXES,

@@ -1,10 +1,11 @@
-import { type Factorisation, hermitianInto, type SpinorFactors } from '../factor';
+import { type Factorisation, hermitianInto, kramersPhases, type SpinorFactors } from '../factor';
 import { type SpinorHamiltonian, spinorFromProductForm } from '../hamiltonian';
-import { hermitianEigenvalues } from '../linalg';
+import { type ComplexMatrix, hermitianEigenvalues } from '../linalg';
 import { sumLambda } from './assemble';
 import type { Encoding, EncodingShape } from './encoding';
 import { ROW_ZERO } from './items';
 import { countAbove, median, shiftedNorm } from './shift';
+import { SPINOR_KINDS, type SpinorSizes, spinorFileProgram, turnPhases } from './spinor-program';
 import type { VariantName } from './variant';
 
 interface Item {
@@ -13,10 +14,14 @@ interface Item {
   readonly trace: number;
   /** ½‖L'‖_*. */
   readonly norm: number;
-  readonly rows: number;
+  /** Eigenvalues that are not zero. */
+  readonly values: number;
 }
 
-/** One-norm, trace, shift and rows of each factor. Kramers pairs (even) and ± pairs (odd) share a row. */
+/** A one-body part that is odd by more than this part of its largest element has no Kramers pairs. */
+const EVEN = 1e-7;
+
+/** One-norm, trace and shift of each factor. */
 function itemsOf(block: SpinorFactors, shifted: boolean): Item[] {
   const m = block.spinors;
   const { spectra } = block;
@@ -27,12 +32,11 @@ function itemsOf(block: SpinorFactors, shifted: boolean): Item[] {
     for (let i = from; i < to; i++) trace += spectra[i]! / 2;
     const shift = shifted && block.part !== 'odd' ? median(spectra, from, to) : 0;
     const largest = Math.max(Math.abs(spectra[from]!), Math.abs(spectra[to - 1]!));
-    const values = countAbove(spectra, from, to, shift, ROW_ZERO * largest);
     return {
       shift,
       trace,
       norm: shiftedNorm(spectra, from, to, shift) / 2,
-      rows: block.part === 'mixed' ? values : Math.ceil(values / 2),
+      values: countAbove(spectra, from, to, shift, ROW_ZERO * largest),
     };
   });
 }
@@ -64,12 +68,10 @@ export function encodeSpinors(h: SpinorHamiltonian, factors: Factorisation, vari
   let constant = h.constant + factors.foldedConstant;
   const parts: Record<string, number> = {};
   let identity = 0;
-  let rows = 0;
-  let maxRows = 0;
-  let count = 0;
+  const values: number[] = [];
   for (const { block, items } of blocks) {
     const part = block.part === 'odd' ? 'two-body.odd' : 'two-body.even';
-    items.forEach(({ trace, shift, norm, rows: own }, t) => {
+    items.forEach(({ trace, shift, norm, values: own }, t) => {
       const w = block.weights[t]!;
       const total = trace + shift * excess;
       hermitianInto(lRe, lIm, 0, block.vectors, t * size, m);
@@ -80,35 +82,49 @@ export function encodeSpinors(h: SpinorHamiltonian, factors: Factorisation, vari
       constant -= 0.5 * w * total * total;
       parts[part] = (parts[part] ?? 0) + 0.25 * Math.abs(w) * norm * norm;
       identity += 0.25 * w * norm * norm;
-      rows += own;
-      maxRows = Math.max(maxRows, own);
-      count++;
+      values.push(own);
     });
   }
-  const values = hermitianEigenvalues({ n: m, re, im });
-  const shift = shifted ? median(values) : 0;
+  const spectrum = hermitianEigenvalues({ n: m, re, im });
+  const shift = shifted ? median(spectrum) : 0;
   for (let i = 0; i < m; i++) {
-    values[i]! -= shift;
+    spectrum[i]! -= shift;
     re[i * m + i]! -= shift;
   }
   constant += shift * h.electrons;
-  const oneNorm = shiftedNorm(values, 0, m, 0) / 2;
-  const largest = Math.max(Math.abs(values[0]!), Math.abs(values[m - 1]!));
-  const nonZero = countAbove(values, 0, m, 0, 1e-13 * largest);
-  const paired = blocks.every(({ block }) => block.part !== 'mixed');
-  const oneBodyRows = paired ? Math.ceil(nonZero / 2) : nonZero;
+  const oneNorm = shiftedNorm(spectrum, 0, m, 0) / 2;
+  const largest = Math.max(Math.abs(spectrum[0]!), Math.abs(spectrum[m - 1]!));
+  values.push(countAbove(spectrum, 0, m, 0, 1e-13 * largest));
+  const kappa = { n: m, re, im };
+  const phases = pairPhases(h, factors, kappa);
+  // Kramers pairs (even) and ± pairs (odd) share a row.
+  const rows = Uint32Array.from(values, (own) => (phases ? Math.ceil(own / 2) : own));
+  const last = rows.length - 1;
   const shape: EncodingShape = {
     kind: 'spinor',
     orbitals: m / 2,
-    factors: count,
-    rows,
+    factors: last,
+    rows: rows.subarray(0, last).reduce((sum, own) => sum + own, 0),
     pairRows: 0,
-    oneBodyRows,
+    oneBodyRows: rows[last]!,
     oneBodyPairRows: 0,
-    maxRowsPerFactor: Math.max(maxRows, oneBodyRows),
+    maxRowsPerFactor: Math.max(...rows),
     spinDependent: true,
+    // An odd number of spinors has no circuit over orbitals.
+    ...(m % 2 === 0 ? { spinors: sizesOf(m, rows, phases !== null) } : {}),
   };
-  const trace = values.reduce((sum, x) => sum + x, 0) / 2;
+  const trace = spectrum.reduce((sum, x) => sum + x, 0) / 2;
+  const total = constant + trace + identity;
+  const program = () =>
+    spinorFileProgram(
+      total,
+      blocks
+        .flatMap(({ block, items }) => items.map((item, t) => ({ block, t, ...item })))
+        .map((factor, t) => ({ ...factor, rows: rows[t]! })),
+      kappa,
+      rows[last]!,
+      phases,
+    );
   const rebuild = (): SpinorHamiltonian => {
     const k = { re: Float64Array.from(re), im: Float64Array.from(im) };
     const g = { re: new Float64Array(size * size), im: new Float64Array(size * size) };
@@ -137,8 +153,38 @@ export function encodeSpinors(h: SpinorHamiltonian, factors: Factorisation, vari
     shape,
     // A spinor file does not keep charge and spin apart: all of κ counts as charge.
     lambda: sumLambda({ charge: oneNorm, spin: 0 }, parts),
-    constant: constant + trace + identity,
+    constant: total,
     residual: factors.residual,
     rebuild,
+    ...(shape.spinors ? { spinorProgram: program } : {}),
   };
 }
+
+/** Phases that make spinors 2m, 2m + 1 partners of each other; null where the Hamiltonian has no Kramers pairs. */
+function pairPhases(h: SpinorHamiltonian, factors: Factorisation, kappa: ComplexMatrix): Float64Array | null {
+  if (factors.blocks.some((block) => block.kind === 'spinor-squares' && block.part === 'mixed')) return null;
+  const phases = kramersPhases(h);
+  const { n } = kappa;
+  const { re, im } = turnPhases(kappa, phases);
+  let largest = 0;
+  let defect = 0;
+  for (let p = 0; p < n; p++) {
+    for (let q = 0; q < n; q++) {
+      // κ_P̄Q̄ = s_P s_Q κ*_PQ, s = −1 for the second of a pair.
+      const [i, j] = [p * n + q, (p ^ 1) * n + (q ^ 1)];
+      const sign = (p & 1) === (q & 1) ? 1 : -1;
+      largest = Math.max(largest, Math.hypot(re[i]!, im[i]!));
+      defect = Math.max(defect, Math.hypot(re[j]! - sign * re[i]!, im[j]! + sign * im[i]!));
+    }
+  }
+  return defect <= EVEN * largest ? phases : null;
+}
+
+const sizesOf = (m: number, rows: Uint32Array, partners: boolean): SpinorSizes => ({
+  orbitals: m / 2,
+  partners,
+  rows,
+  kinds: new Uint8Array(rows.length).fill(SPINOR_KINDS.indexOf('full')),
+  twoFaced: new Uint8Array(rows.length),
+  hasPaired: false,
+});

@@ -1,4 +1,4 @@
-import { spinorNormsTask } from './spinor-norms';
+import { spinorNormsTask, tripleNormsTask } from './spinor-norms';
 
 /** Tasks that workers must know by name to run encodings in parallel. */
-export const encodeTasks = [spinorNormsTask] as const;
+export const encodeTasks = [spinorNormsTask, tripleNormsTask] as const;

@@ -12,6 +12,7 @@ export type {
   TripleFactors,
 } from './factors';
 export { jointDimensions, jointRefusal, MAX_SECTOR } from './joint';
+export { kramersPhases } from './kramers-phases';
 export { lcuNorms } from './one-norms';
 export { hermitianInto } from './spinor-elements';
 export { factorTasks } from './tasks';
