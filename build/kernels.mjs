@@ -5,7 +5,6 @@ import { createHash } from 'node:crypto';
 import { existsSync, readdirSync, readFileSync, renameSync, writeFileSync } from 'node:fs';
 import { dirname, join } from 'node:path';
 import { fileURLToPath } from 'node:url';
-import asc from 'assemblyscript/asc';
 
 const root = join(dirname(fileURLToPath(import.meta.url)), '..');
 const folder = join(root, 'core/linalg/kernels');
@@ -35,6 +34,7 @@ if (!existsSync(output) || !readFileSync(output, 'utf8').startsWith(mark)) {
 }
 
 async function compile() {
+  const { default: asc } = await import('assemblyscript/asc'); // takes its time, so only when needed
   let binary;
   const { error, stderr } = await asc.main([ENTRY, '--outFile', 'kernels.wasm', ...FLAGS], {
     readFile: (name, base) => {
