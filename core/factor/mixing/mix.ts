@@ -207,7 +207,10 @@ async function search(
   return null;
 }
 
-/** exp(scale·A) W by its power series in pieces of norm ≤ ½: orthogonal to rounding, matrix products only. */
+/**
+ * exp(scale·A) W. The exponential is taken by its power series at norm ≤ ½ and squared back: orthogonal to rounding,
+ * and made of matrix products only, which the kernels are good at.
+ */
 function rotated(
   columns: Float64Array,
   antisymmetric: Float64Array,
@@ -216,29 +219,25 @@ function rotated(
   scale: number,
 ): Float64Array {
   // The Frobenius norm over √2 bounds the largest |eigenvalue|, since they come in ± pairs.
-  if (antisymmetric.every((x) => x === 0)) return columns;
-  const pieces = Math.max(
-    1,
-    Math.ceil(2 * Math.abs(scale) * Math.sqrt(dot(antisymmetric, antisymmetric) / 2)),
-  );
-  const step = scale / pieces;
-  let result: Float64Array = Float64Array.from(columns);
-  for (let piece = 0; piece < pieces; piece++) {
-    let term = result;
-    const sum = Float64Array.from(result);
-    for (let k = 1; k <= 18; k++) {
-      term = multiply(antisymmetric, term, count, count, npair);
-      let largest = 0;
-      for (let i = 0; i < term.length; i++) {
-        term[i]! *= step / k;
-        sum[i]! += term[i]!;
-        largest = Math.max(largest, Math.abs(term[i]!));
-      }
-      if (largest < 1e-17) break;
+  const norm = Math.abs(scale) * Math.sqrt(dot(antisymmetric, antisymmetric) / 2);
+  if (norm === 0) return columns;
+  const squarings = Math.max(0, Math.ceil(Math.log2(2 * norm)));
+  const small = antisymmetric.map((x) => (x * scale) / 2 ** squarings);
+  let term: Float64Array = small;
+  let exponential: Float64Array = Float64Array.from(small);
+  for (let i = 0; i < count; i++) exponential[i * count + i]! += 1;
+  for (let k = 2; k <= 18; k++) {
+    term = multiply(small, term, count, count, count);
+    let largest = 0;
+    for (let i = 0; i < term.length; i++) {
+      term[i]! /= k;
+      exponential[i]! += term[i]!;
+      largest = Math.max(largest, Math.abs(term[i]!));
     }
-    result = sum;
+    if (largest < 1e-17) break;
   }
-  return result;
+  for (let i = 0; i < squarings; i++) exponential = multiply(exponential, exponential, count, count, count);
+  return multiply(exponential, columns, count, count, npair);
 }
 
 function dot(a: Float64Array, b: Float64Array): number {
