@@ -1,3 +1,4 @@
+import { plainLine } from '../../core/job';
 import type { Inspection } from '../../core/plan';
 import { formatExactCount, formatOneNorm, formatSignificant } from '../../core/units';
 import { textTable, wrap } from './text-table';
@@ -8,7 +9,7 @@ export function inspectText(inspection: Inspection, columns: number): string {
   const bytes = files.reduce((sum, file) => sum + file.bytes, 0);
   const space = kind === 'spatial' ? `${orbitals} spatial orbitals` : `${2 * orbitals} complex spinors`;
   const lines = [
-    ...(title ? [title] : []),
+    ...(title ? [plainLine(title)] : []),
     `${space}, ${electrons} electrons, constant ${formatSignificant(constant, 12)} Eh; ` +
       `${files.length} files, ${formatExactCount(bytes)} bytes`,
     '',
@@ -23,7 +24,7 @@ export function inspectText(inspection: Inspection, columns: number): string {
     '',
     findings.length === 0 ? 'Nothing to note.' : 'Findings',
     ...findings.flatMap(({ severity, where, found, expected, mend }) =>
-      wrap(`- ${severity}: ${where}: ${found}; expected ${expected}. ${mend}`, columns, '  '),
+      wrap(plainLine(`- ${severity}: ${where}: ${found}; expected ${expected}. ${mend}`), columns, '  '),
     ),
   ];
   return `${lines.join('\n')}\n`;

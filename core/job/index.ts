@@ -1,2 +1,2 @@
-export { type Finding, InputError, type Problem } from './input-error';
+export { type Finding, InputError, type Problem, plainLine } from './input-error';
 export { Cancelled, inlineContext, type JobContext, type Task } from './job';

@@ -39,10 +39,10 @@ export class InputError extends Error implements Problem {
 }
 
 /**
- * One line without control or formatting characters: names in a message come from files, and a terminal must not
+ * One line without control or formatting characters: names and titles come from files, and a terminal must not
  * obey them.
  */
-const plainLine = (text: string): string =>
+export const plainLine = (text: string): string =>
   text
     .replace(/\s*[\n\r\t]\s*/g, ' ')
     .replace(/[\p{Cc}\p{Cf}\p{Zl}\p{Zp}]/gu, (c) => `\\u{${c.codePointAt(0)!.toString(16)}}`);
