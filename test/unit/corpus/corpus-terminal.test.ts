@@ -71,4 +71,14 @@ describe('files with something to note', () => {
     },
     WATCHDOG_MS,
   );
+
+  it.each(named(manifest.findings))(
+    'as text, without a character that a terminal obeys: %s',
+    async (_name, row) => {
+      const { status, stdout } = await spinwright(wordsOf(row).filter((word) => word !== '--json'));
+      expect(status).toBe(0);
+      expect(stdout.replaceAll('\n', '')).not.toMatch(/[\p{Cc}\p{Cf}]/u);
+      expect(stdout).toContain(`- ${row.severity}: `);
+    },
+  );
 });
