@@ -2,6 +2,8 @@ export * from './formulas';
 export { type GateCount, GateCounter } from './gates/counter';
 export { GATE_KINDS, type GateKind, type GateSink, Machine } from './gates/machine';
 export type { Operation } from './gates/operation';
+export type { Blocks } from './primitives/look-up';
+export { prepareGradient } from './primitives/phase-gradient';
 export { addressBits } from './primitives/unary-iteration';
 export { type Census, takeCensus } from './qasm/census';
 export { type QasmText, writeQasm } from './qasm/write';
@@ -20,13 +22,25 @@ export { type SparseStep, sparseStep } from './sparse/step';
 export {
   encodedProgram as encodedSparseProgram,
   type SparseTables,
+  type Steering,
   sparseTables,
+  steeringNumbers,
 } from './sparse/tables';
-export { sparseAncillas, sparseWalkStep, sparseWires, withTerm } from './sparse/walk';
+export { sparseAncillas, sparseBlockEncoding, sparseWalkStep, sparseWires, withTerm } from './sparse/walk';
 export { chooseBlocks } from './triplet/blocks';
 export type { SpinTreatment } from './triplet/product';
 export { tripletRecipe } from './triplet/recipe';
 export { sizesOf, type TripletLayout, tripletLayout } from './triplet/sizes';
 export { type StepBits, type TripletStep, tripletStep } from './triplet/step';
 export { encodedProgram, type TripletBits, type TripletTables, tripletTables } from './triplet/tables';
-export { ancillaWires, type WalkBlocks, walkStep, walkWires, withItemData } from './triplet/walk';
+export {
+  ancillaWires,
+  blockEncoding as tripletBlockEncoding,
+  outerPrepare,
+  outerScratch,
+  prepareWires,
+  type WalkBlocks,
+  walkStep,
+  walkWires,
+  withItemData,
+} from './triplet/walk';

@@ -6,10 +6,13 @@ export {
 } from './determinant-energy';
 export { binomial, type SectorBasis, sectorBasis } from './determinants';
 export { type Form, fockMatrix, oneBodyFockMatrix, spinorFockMatrix } from './fock';
+export { type RealisedRounding, realisedRounding } from './energy-error';
 export { programOperator } from './program-operator';
 export { REFERENCE_LEVELS, referenceEigenvalues } from './reference';
 export { MAX_SECTOR_DIMENSION, type SectorMatrix, sectorMatrix } from './sector-matrix';
 export { multiplySparse } from './sparse';
+export { simulatedSparseBlock } from './sparse-block';
+export { sparseProgramOperator } from './sparse-block-operator';
 export type { SparseHermitian } from './sparse-hermitian';
 export { type SpectralRange, type SpectralRangeOptions, spectralRange } from './spectral-range';
 export { exactSpectrum, type Spectrum, type SpectrumOptions } from './spectrum';

@@ -6,6 +6,7 @@ import { Machine } from '../../core/circuit/gates/machine';
 import { SparseState } from '../../core/circuit/simulate/sparse-state';
 import { lessThanConstant, multiple, multipleWires } from '../../core/circuit/sparse/multiple';
 import { sparseRecipe } from '../../core/circuit/sparse/recipe';
+import { sparseStep } from '../../core/circuit/sparse/step';
 import { sparseTables } from '../../core/circuit/sparse/tables';
 import { sparseWalkStep, sparseWires } from '../../core/circuit/sparse/walk';
 import { type SparseProgram, type TermKind, termSizes } from '../../core/encode';
@@ -157,5 +158,48 @@ describe('numbers of the address', () => {
         }
       }
     }
+  });
+});
+
+describe('sparse step', () => {
+  const sizes = fc.record({
+    orbitals: fc.integer({ min: 2, max: 60 }),
+    coefficients: fc.integer({ min: 1, max: 3_000_000 }),
+    spin: fc.constant(true),
+    secondComponent: fc.boolean(),
+    exchanged: fc.boolean(),
+    sharedPart: fc.constantFrom(0, 1e-4, 0.1),
+    otherShare: fc.constant(2 / 3),
+  });
+  const widths = fc.record({ keepBits: fc.integer({ min: 4, max: 26 }), phaseBits: fc.constant(20) });
+
+  it('costs no less under a cap, and keeps it unless the look-up is down to single rows', () => {
+    fc.assert(
+      fc.property(sizes, widths, fc.integer({ min: 100, max: 20_000 }), (given, bits, cap) => {
+        const free = sparseStep(given, bits, { mode: 'clean', block: 'auto', qubitCap: null });
+        const capped = sparseStep(given, bits, { mode: 'clean', block: 'auto', qubitCap: cap });
+        expect(stepCost(capped.recipe).toffoli).toBeGreaterThanOrEqual(stepCost(free.recipe).toffoli);
+        if (peakOf(free.recipe).qubits <= cap) expect(capped.blocks).toEqual(free.blocks);
+        if (peakOf(capped.recipe).qubits > cap) expect(capped.blocks.read).toBe(1);
+      }),
+    );
+  });
+
+  it('has a row for every coefficient, and no table that a power of two would make cheaper', () => {
+    fc.assert(
+      fc.property(sizes, widths, (given, bits) => {
+        const policy = { mode: 'clean', block: 'auto', qubitCap: null } as const;
+        const { layout, recipe } = sparseStep(given, bits, policy);
+        const { rows, factor, lowBits } = layout.address;
+        expect(rows).toBe(factor * 2 ** lowBits);
+        expect(rows).toBeGreaterThanOrEqual(given.coefficients);
+        expect(rows).toBeLessThan(2 * given.coefficients);
+        const full = 2 ** Math.ceil(Math.log2(given.coefficients));
+        const filled = sparseStep({ ...given, coefficients: full }, bits, policy);
+        const { prepare } = stepCost(recipe).parts;
+        // The split between spin–orbit kinds may take half a bit more in the larger table.
+        expect(prepare).toBeLessThanOrEqual(stepCost(filled.recipe).parts.prepare + 1);
+      }),
+    );
   });
 });

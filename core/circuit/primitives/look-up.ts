@@ -74,6 +74,8 @@ export function blockAddresses(addresses: Uint32Array, block: number): Uint32Arr
  * @param register - address, lowest bit first; must hold one of the table's addresses.
  * @param output - k·width wires in |0⟩: the row comes out in the first `width`, the rest holds other rows until
  *   the erasure.
+ * @param flags - where the erasure keeps its flags: in wires of its own, or in the output just measured if that has
+ *   enough.
  */
 export function lookUp(
   register: readonly number[],
@@ -81,6 +83,7 @@ export function lookUp(
   table: Table,
   blocks: Blocks,
   control: number | null = null,
+  flags: 'fresh' | 'in output' = 'fresh',
 ): Operation {
   return {
     run: (machine) => read(machine, register, output, table, blocks.read, control),
@@ -93,6 +96,7 @@ export function lookUp(
         contentAfterSwaps(table, blocks.read),
         blocks.erase,
         control,
+        flags === 'in output' ? output : [],
       );
     },
   };
@@ -163,6 +167,8 @@ export function contentAfterSwaps(
 /**
  * Measures every output wire in the X basis, which leaves the phase (−1)^{outcomes · content(address)}, and takes
  * that phase back: flags of the low address bits are paired with flags of the high ones in CZ gates.
+ *
+ * @param lent - wires in |0⟩ once the output is measured, used for the flags if there are enough.
  */
 export function erase(
   machine: Machine,
@@ -172,10 +178,11 @@ export function erase(
   content: (address: number, position: number) => boolean,
   block: number,
   control: number | null,
+  lent: readonly number[] = [],
 ): void {
   const outcomes = machine.measureRegisterX(output);
   const lowBits = Math.log2(block);
-  const low = oneHot(register.slice(0, lowBits));
+  const low = oneHot(register.slice(0, lowBits), lent.length >= block ? lent : null);
   const flags = low.begin(machine);
   const listed = new Set(addresses);
   unaryIteration(register.slice(lowBits), blockAddresses(addresses, block), control, (m, high, flag) => {
@@ -196,17 +203,29 @@ export function erase(
   low.end(machine);
 }
 
-/** Flags of all 2^j values of j bits. Doubling m flags costs m − 1 ANDs: the last product follows by the sum rule. */
-function oneHot(bits: readonly number[]): { begin(m: Machine): number[]; end(m: Machine): void } {
+/**
+ * Flags of all 2^j values of j bits. Doubling m flags costs m − 1 ANDs: the last product follows by the sum rule.
+ *
+ * @param lent - 2^j wires in |0⟩ to put them in, or null: wires of their own.
+ */
+function oneHot(
+  bits: readonly number[],
+  lent: readonly number[] | null,
+): { begin(m: Machine): number[]; end(m: Machine): void } {
   const flags: number[] = [];
+  const take = (machine: Machine, size: number) =>
+    lent === null ? machine.allocateRegister(size) : lent.slice(flags.length, flags.length + size);
+  const giveBack = (machine: Machine, wires: readonly number[]) => {
+    if (lent === null) machine.releaseRegister(wires);
+  };
   return {
     begin(machine) {
       for (const [level, bit] of bits.entries()) {
-        const upper = machine.allocateRegister(2 ** level);
         if (level === 0) {
-          flags.push(machine.allocate());
+          flags.push(...take(machine, 1));
           machine.gate('X', flags[0]!);
         }
+        const upper = take(machine, 2 ** level);
         const last = upper.length - 1;
         machine.gate('CX', bit, upper[last]!);
         for (let j = 0; j < last; j++) {
@@ -229,10 +248,10 @@ function oneHot(bits: readonly number[]): { begin(m: Machine): number[]; end(m: 
           machine.gate('UNAND', flags[j]!, bit, upper[j]!);
         }
         machine.gate('CX', bit, upper[last]!);
-        machine.releaseRegister(upper);
+        giveBack(machine, upper);
         if (level === 0) {
           machine.gate('X', flags[0]!);
-          machine.releaseRegister(flags.splice(0));
+          giveBack(machine, flags.splice(0));
         }
       }
     },

@@ -102,10 +102,10 @@ function shareOf(fraction: number, bits: number): { bits: number; threshold: num
 }
 
 /**
- * Bits for the split between the two spin–orbit kinds: the part of λ that it moves is to be no more than that of one
- * keep bit, λ·2^{−ℵ}.
+ * Bits for the split between the two spin–orbit kinds. What it moves, λ_shared·2^{−bits}, all of it in one direction, is
+ * to be no more than what rounding L weights is expected to, λ·2^{−ℵ}/√(12L) with errors of random signs.
  */
-export function shareBits(sizes: TermSizes, keepBits: number): number {
-  if (sizes.sharedPart <= 0) return 0;
-  return Math.max(1, keepBits + Math.ceil(Math.log2(sizes.sharedPart)));
+export function shareBits({ sharedPart, coefficients }: TermSizes, keepBits: number): number {
+  if (sharedPart <= 0) return 0;
+  return Math.max(1, keepBits + Math.ceil(Math.log2(sharedPart * Math.sqrt(12 * coefficients))));
 }

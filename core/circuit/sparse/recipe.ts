@@ -165,7 +165,9 @@ function blockEncodingRecipe(layout: SparseLayout, blocks: Blocks): Subroutine {
         formula: 'B − 2 + (k − 1 − log₂k)',
         inputs: { rows: address.rows, B: erase, k: blocks.erase, flags: oneHotToffoli(blocks.erase) },
         source: BERRY,
-        scratch: (blocks.erase === 1 ? 0 : blocks.erase) + iterationWires(erase),
+        // The flags lie in the measured output if it has enough wires.
+        scratch:
+          (blocks.erase === 1 || held.output >= blocks.erase ? 0 : blocks.erase) + iterationWires(erase),
       }),
     ],
   };

@@ -89,9 +89,15 @@ function chooseBlocks(
       (k) => cost(k, 1).read,
       (k) => k <= largest,
     );
+  const read = mode === 'plain' ? 1 : block === 'auto' ? cheapest() : Math.min(block, largest);
   return {
-    read: mode === 'plain' ? 1 : block === 'auto' ? cheapest() : Math.min(block, largest),
-    erase: bestBlock(rows, (k) => cost(1, k).erase),
+    read,
+    // No more flags than the measured output has wires for.
+    erase: bestBlock(
+      rows,
+      (k) => cost(1, k).erase,
+      (k) => k <= read * rowWidth,
+    ),
   };
 }
 

@@ -54,28 +54,65 @@ export function rowBit(tables: SparseTables, row: number, bit: number): boolean 
   return ((tables.keep[row]! >>> (bit - 2 * wordWidth)) & 1) === 1;
 }
 
-/**
- * The program that the tables encode exactly, probabilities in place of weights: how many of the 2^{g} numbers u lead
- * to each coefficient. The difference to the given program is the whole rounding error.
- */
-export function encodedProgram(tables: SparseTables): SparseProgram {
-  const { program, layout, keep, alternate } = tables;
+/** Values of the numbers in superposition that lead to one row and one choice of word, one standing for all. */
+export interface Steering {
+  readonly low: number;
+  readonly uniform: number;
+  readonly share: number;
+  /** Whose word SELECT gets. */
+  readonly term: number;
+  readonly isOther: boolean;
+  /** Part of all values that do the same. */
+  readonly probability: number;
+}
+
+/** All distinct things that the numbers in superposition may lead to. */
+export function* steeringNumbers({ layout, keep, alternate }: SparseTables): Generator<Steering> {
   const { rows, lowBits, factor, uniformBits } = layout.address;
-  const total = program.weights.reduce((sum, weight) => sum + weight, 0);
-  const weights = new Float64Array(program.weights.length);
   const size = 2 ** uniformBits;
   const unit = 2 ** (uniformBits - layout.keepBits);
+  const kinds = layout.share
+    ? [
+        { share: 0, isOther: true, part: layout.share.threshold / 2 ** layout.share.bits },
+        {
+          share: 2 ** layout.share.bits - 1,
+          isOther: false,
+          part: 1 - layout.share.threshold / 2 ** layout.share.bits,
+        },
+      ]
+    : [{ share: 0, isOther: false, part: 1 }];
   // factor·u < bound for the first ⌈bound/factor⌉ numbers u.
   const below = (bound: number) => Math.ceil(bound / factor);
   for (let row = 0; row < rows; row++) {
     const high = Math.floor(row / 2 ** lowBits);
-    const from = below(high * size);
     const middle = below(high * size + keep[row]! * unit);
-    const to = below((high + 1) * size);
-    const share = total / (size * 2 ** lowBits);
-    if (middle > from) weights[row]! += (middle - from) * share;
-    if (to > middle) weights[alternate[row]!]! += (to - middle) * share;
+    const ranges = [
+      { from: below(high * size), to: middle, term: row },
+      { from: middle, to: below((high + 1) * size), term: alternate[row]! },
+    ];
+    for (const { from, to, term } of ranges) {
+      if (to <= from) continue;
+      const probability = (to - from) / (size * 2 ** lowBits);
+      for (const { share, isOther, part } of kinds) {
+        yield {
+          low: row % 2 ** lowBits,
+          uniform: from,
+          share,
+          term,
+          isOther,
+          probability: probability * part,
+        };
+      }
+    }
   }
+}
+
+/** The program that the tables encode exactly. The difference to the given one is the whole rounding error. */
+export function encodedProgram(tables: SparseTables): SparseProgram {
+  const { program, layout } = tables;
+  const total = program.weights.reduce((sum, weight) => sum + weight, 0);
+  const weights = new Float64Array(program.weights.length);
+  for (const { term, probability } of steeringNumbers(tables)) weights[term]! += total * probability;
   const otherShare = layout.share ? layout.share.threshold / 2 ** layout.share.bits : program.otherShare;
   return { ...program, weights, otherShare };
 }

@@ -109,7 +109,7 @@ export function withTerm(tables: SparseTables, wires: SparseWires, blocks: Block
         span(
           'coefficient look-up',
           'prepare',
-          lookUp([...wires.low, ...value.slice(uniformBits)], output, table, blocks),
+          lookUp([...wires.low, ...value.slice(uniformBits)], output, table, blocks, null, 'in output'),
         ),
         span(
           'comparison',

@@ -1,13 +1,18 @@
 import { describe, expect, it } from 'vitest';
 import { Machine } from '../../../core/circuit/gates/machine';
 import { SparseState } from '../../../core/circuit/simulate/sparse-state';
-import type { SparseTables } from '../../../core/circuit/sparse/tables';
-import { encodedProgram, sparseTables } from '../../../core/circuit/sparse/tables';
+import {
+  encodedProgram,
+  type SparseTables,
+  sparseTables,
+  steeringNumbers,
+} from '../../../core/circuit/sparse/tables';
 import {
   type SparseWires,
   sparseAncillas,
   sparseBlockEncoding,
   sparseWires,
+  withTerm,
 } from '../../../core/circuit/sparse/walk';
 import type { SparseProgram, TermKind } from '../../../core/encode';
 import type { Mu } from '../../../core/hamiltonian/operators';
@@ -17,15 +22,18 @@ import { sparseOperator } from './sparse-algebra';
 /** antisymmetric, μ, ν, p, q, r, s, weight, sign */
 type Row = [boolean, Mu, Mu | null, number, number, number, number, number, 1 | -1];
 
-const SHARED = { otherShare: 2 / 3, otherSign: 1 as const };
+type Split = Pick<SparseProgram, 'otherShare' | 'otherSign'>;
+const SHARED: Split = { otherShare: 2 / 3, otherSign: 1 };
+const TURNED: Split = { otherShare: 0.3, otherSign: -1 };
 
-function program(orbitals: number, rows: readonly Row[], shared = false, split = SHARED): SparseProgram {
+/** @param split - how spin–orbit coefficients are shared between the two kinds; null: they are not. */
+function program(orbitals: number, rows: readonly Row[], split: Split | null = null): SparseProgram {
   const kinds = rows.map(
     ([antisymmetric, mu, nu]): TermKind => ({
       antisymmetric,
       mu,
       nu,
-      shared: shared && antisymmetric && nu === 0,
+      shared: split !== null && antisymmetric && nu === 0,
       exchanged: !antisymmetric && mu !== 0 && nu !== null && nu !== 0 && mu !== nu,
     }),
   );
@@ -37,7 +45,8 @@ function program(orbitals: number, rows: readonly Row[], shared = false, split =
     orbitalsOf: Uint16Array.from(rows.flatMap(([, , , p, q, r, s]) => [p, q, r, s])),
     weights: Float64Array.from(rows, (row) => row[7]),
     negative: Uint8Array.from(rows, (row) => (row[8] < 0 ? 1 : 0)),
-    ...split,
+    otherShare: split?.otherShare ?? 0,
+    otherSign: split?.otherSign ?? 1,
   };
 }
 
@@ -62,6 +71,11 @@ const SPIN_SPIN: Row[] = [
   [false, 2, 2, 1, 1, 0, 0, 0.1, 1],
   [false, 2, 3, 1, 0, 1, 0, 0.1, 1],
 ];
+const BOTH_KINDS: Row[] = [...ONE_BODY_SPIN.slice(1), ...SPIN_ORBIT.slice(0, 5)];
+const ONE_OF_EACH: Row[] = [ONE_BODY_SPIN[1]!, SPIN_ORBIT[0]!, SPIN_ORBIT[3]!, SPIN_ORBIT[4]!];
+const MIXTURE: Row[] = [ONE_BODY_SPIN[1]!, SPIN_ORBIT[2]!, SPIN_SPIN[1]!, SPIN_SPIN[4]!];
+
+const ROW_BY_ROW = { read: 1, erase: 1 };
 
 /** Runs the block encoding on every basis state of the system at once, with a copy of it as a label. */
 function simulate(
@@ -101,25 +115,104 @@ function distance(a: Dense, b: Dense): number {
   return worst;
 }
 
-describe('block encoding', () => {
+/** Rounding of some ten thousand gates, and amplitudes that the simulator drops: far below any step of the tables. */
+const TOLERANCE = 1e-11;
+
+const norm = (a: Dense) => distance(a, zeros(a.n));
+
+describe('sparse block encoding on Fock space', () => {
+  const few = SPIN_FREE.slice(1, 4) as [Row, Row, Row];
   it.each([
-    ['spin-free', program(2, SPIN_FREE)],
-    ['one-body spin–orbit', program(2, [...SPIN_FREE.slice(0, 3), ...ONE_BODY_SPIN])],
-    ['shared spin–orbit', program(2, [...SPIN_FREE.slice(1, 4), ...ONE_BODY_SPIN, ...SPIN_ORBIT], true)],
-    ['other', program(2, [...SPIN_FREE.slice(1, 4), ...ONE_BODY_SPIN, ...SPIN_ORBIT, ...OTHER_ORBIT])],
-    ['spin-spin', program(2, [...SPIN_FREE.slice(1, 3), ...ONE_BODY_SPIN, ...SPIN_SPIN])],
-    ['all', program(2, [...SPIN_FREE, ...ONE_BODY_SPIN, ...SPIN_ORBIT, ...SPIN_SPIN], true)],
-  ])('%s', (_, given) => {
-    const tables = sparseTables(given, { keep: 1, share: 2 }, 1);
-    const t0 = performance.now();
-    const block = simulate(tables, 'random', (machine, wires) => {
-      sparseBlockEncoding(tables, wires, { read: 2, erase: 2 }).run(machine);
+    ['charge', program(2, SPIN_FREE), 1, { read: 2, erase: 4 }, 'random'],
+    ['charge, three orbitals', program(3, [...few, [false, 0, 0, 2, 1, 2, 0, 0.7, -1]]), 0, ROW_BY_ROW, 1],
+    ['one-body spin–orbit', program(2, [...few, ...ONE_BODY_SPIN]), 2, ROW_BY_ROW, 0],
+    ['spin–same-orbit', program(2, [...few, ...SPIN_ORBIT]), 3, { read: 4, erase: 2 }, 1],
+    ['both spin–orbit kinds from one value', program(2, [few[0], ...ONE_OF_EACH], SHARED), 3, ROW_BY_ROW, 0],
+    ['the same with a negative ratio', program(2, [...few, ...BOTH_KINDS], TURNED), 3, ROW_BY_ROW, 'random'],
+    ['spin–other-orbit', program(2, [...few, ...OTHER_ORBIT]), 2, ROW_BY_ROW, 'random'],
+    ['spin–spin', program(2, [...few, ...SPIN_SPIN]), 4, { read: 2, erase: 1 }, 'random'],
+    ['shared and exchanged values', program(2, [few[2], ...MIXTURE], TURNED), 2, ROW_BY_ROW, 1],
+  ] as const)('%s', (_, given, refinement, blocks, outcomes) => {
+    const tables = sparseTables(given, { keep: 1, share: 2 }, refinement);
+    const block = simulate(tables, outcomes, (machine, wires) => {
+      sparseBlockEncoding(tables, wires, blocks).run(machine);
     });
-    console.log(_, performance.now() - t0, tables.layout.address);
     const lambda = given.weights.reduce((a, b) => a + b, 0);
     const expected = zeros(block.n);
     addScaled(expected, sparseOperator(encodedProgram(tables)), 1 / lambda);
-    console.log(distance(block, expected));
-    expect(distance(block, expected)).toBeLessThan(1e-11);
+    expect(distance(block, expected)).toBeLessThan(TOLERANCE);
+    expect(norm(expected)).toBeGreaterThan(0.05);
   });
 });
+
+describe('sparse SELECT', () => {
+  it.each([
+    ['two orbitals', program(2, [...SPIN_FREE.slice(0, 2), ...MIXTURE], SHARED)],
+    ['three orbitals', program(3, [...SPIN_FREE.slice(0, 2), ...MIXTURE], SHARED)],
+    ['three orbitals, charge', program(3, SPIN_FREE)],
+  ])('is its own inverse, so that the block encoding is Hermitian: %s', (_, given) => {
+    const tables = sparseTables(given, { keep: 1, share: 1 }, 3);
+    const state = new SparseState({ maxWires: 192 });
+    const machine = new Machine(state);
+    const wires = sparseWires(tables.layout, machine);
+    const { system, plus } = wires;
+    const free = [
+      ...system,
+      plus.order,
+      ...plus.spins,
+      ...plus.kinds,
+      ...(plus.placing === null ? [] : [plus.placing]),
+    ];
+    const numbers = [wires.low, wires.uniform, wires.share];
+    // A random vector: only the identity leaves it as it is.
+    const random = randomNumbers(5);
+    const entries = [...steeringNumbers(tables)].flatMap((steering) => {
+      const set = numbers.flatMap((register, i) =>
+        register.filter((_, b) => ([steering.low, steering.uniform, steering.share][i]! >> b) & 1),
+      );
+      return Array.from({ length: 24 }, () => ({
+        ones: [...set, ...free.filter(() => random() < 0)],
+        amplitude: random(),
+      }));
+    });
+    const unique = new Map(entries.map((entry) => [entry.ones.join(), entry]));
+    state.load([...unique.values()]);
+    const act = () => withTerm(tables, wires, ROW_BY_ROW).run(machine);
+    const all = [...numbers.flat(), ...free];
+    const read = () => {
+      const found = new Map<string, [number, number]>();
+      state.visit((isSet, re, im) =>
+        found.set(
+          all
+            .filter(isSet)
+            .sort((a, b) => a - b)
+            .join(),
+          [re, im],
+        ),
+      );
+      return found;
+    };
+    const before = read();
+    act();
+    const between = read();
+    act();
+    const after = read();
+    expect([...between.keys()].filter((key) => !before.has(key)).length).toBeGreaterThan(before.size / 2);
+    expect(after.size).toBe(before.size);
+    for (const [key, [re, im]] of before) {
+      const [x, y] = after.get(key) ?? [Number.NaN, Number.NaN];
+      expect(Math.hypot(x - re, y - im)).toBeLessThan(TOLERANCE);
+    }
+  });
+});
+
+/** Seeded numbers in (−1, 1). */
+function randomNumbers(seed: number): () => number {
+  let a = seed;
+  return () => {
+    a = (a + 0x6d2b79f5) | 0;
+    let t = Math.imul(a ^ (a >>> 15), 1 | a);
+    t = (t + Math.imul(t ^ (t >>> 7), 61 | t)) ^ t;
+    return ((t ^ (t >>> 14)) >>> 0) / 2147483648 - 1;
+  };
+}

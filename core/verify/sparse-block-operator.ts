@@ -1,0 +1,116 @@
+import type { SparseProgram, TermKind } from '../encode';
+import { isSymmetricPlane, type Mu, type Sector, toSpinOrbitals, zeroOperator } from '../hamiltonian';
+import type { ComplexMatrix } from '../linalg';
+import type { SectorBasis } from './determinants';
+import { oneBodyFockMatrix } from './fock';
+
+/**
+ * H − constant that a sparse program stands for, on the determinants of a sector: dense, from triplet excitations on
+ * the whole Fock space, so that emitted circuits can be held against it. N ≤ 4.
+ */
+export function sparseProgramOperator(program: SparseProgram, basis: SectorBasis): ComplexMatrix {
+  const { orbitals, kinds, kindOf, orbitalsOf, weights, negative } = program;
+  const total = zeros(basis.dim);
+  const rows = new Map<string, ComplexMatrix>();
+  const row = (antisymmetric: boolean, mu: Mu, p: number, q: number): ComplexMatrix => {
+    const key = [antisymmetric, mu, p, q].join();
+    let found = rows.get(key);
+    if (!found) {
+      found = rowOperator(orbitals, antisymmetric, mu, p, q, basis);
+      rows.set(key, found);
+    }
+    return found;
+  };
+  for (const [i, weight] of weights.entries()) {
+    if (weight === 0) continue;
+    const kind = kinds[kindOf[i]!]!;
+    const [p, q, r, s] = orbitalsOf.subarray(4 * i, 4 * i + 4) as unknown as [number, number, number, number];
+    const signed = negative[i] ? -weight : weight;
+    if (kind.nu === null) {
+      addScaled(total, row(kind.antisymmetric, kind.mu, p, q), signed);
+      continue;
+    }
+    for (const { mu, nu, share } of componentsOf(kind, kind.nu, program)) {
+      addAnticommutator(total, row(kind.antisymmetric, mu, p, q), row(false, nu, r, s), (share * signed) / 2);
+    }
+  }
+  return total;
+}
+
+/** Where the components of a coefficient stand, and how much of it in each place. */
+function componentsOf(kind: TermKind, nu: Mu, { otherShare, otherSign }: SparseProgram) {
+  const { mu } = kind;
+  if (kind.shared) {
+    return [
+      { mu, nu, share: 1 - otherShare },
+      { mu: nu, nu: mu, share: otherSign * otherShare },
+    ];
+  }
+  if (!kind.exchanged) return [{ mu, nu, share: 1 }];
+  return [
+    { mu, nu, share: 0.5 },
+    { mu: nu, nu: mu, share: 0.5 },
+  ];
+}
+
+/** ½(T_pq + T_qp) − δ_pq δ_μ0 for a symmetric element, (i/2)(T_pq − T_qp) for an antisymmetric one. */
+function rowOperator(
+  n: number,
+  antisymmetric: boolean,
+  mu: Mu,
+  p: number,
+  q: number,
+  basis: SectorBasis,
+): ComplexMatrix {
+  const sector: Sector = isSymmetricPlane('even', mu) === antisymmetric ? 'odd' : 'even';
+  const operator = zeroOperator(sector, n);
+  const plane = mu * n * n;
+  operator.planes[plane + p * n + q]! += 0.5;
+  operator.planes[plane + q * n + p]! += antisymmetric ? -0.5 : 0.5;
+  const out = restrict(oneBodyFockMatrix(toSpinOrbitals(operator)), basis);
+  if (!antisymmetric && mu === 0 && p === q) {
+    for (let i = 0; i < basis.dim; i++) out.re[i * basis.dim + i]! -= 1;
+  }
+  return out;
+}
+
+function restrict(full: ComplexMatrix, { dim, states }: SectorBasis): ComplexMatrix {
+  const out = zeros(dim);
+  for (let i = 0; i < dim; i++) {
+    for (let j = 0; j < dim; j++) {
+      out.re[i * dim + j] = full.re[states[i]! * full.n + states[j]!]!;
+      out.im[i * dim + j] = full.im[states[i]! * full.n + states[j]!]!;
+    }
+  }
+  return out;
+}
+
+/** target += scale (ab + ba). */
+function addAnticommutator(target: ComplexMatrix, a: ComplexMatrix, b: ComplexMatrix, scale: number): void {
+  const { n } = target;
+  const addProduct = (x: ComplexMatrix, y: ComplexMatrix) => {
+    for (let i = 0; i < n; i++) {
+      for (let k = 0; k < n; k++) {
+        const [re, im] = [scale * x.re[i * n + k]!, scale * x.im[i * n + k]!];
+        if (re === 0 && im === 0) continue;
+        for (let j = 0; j < n; j++) {
+          target.re[i * n + j]! += re * y.re[k * n + j]! - im * y.im[k * n + j]!;
+          target.im[i * n + j]! += re * y.im[k * n + j]! + im * y.re[k * n + j]!;
+        }
+      }
+    }
+  };
+  addProduct(a, b);
+  addProduct(b, a);
+}
+
+function zeros(n: number): ComplexMatrix {
+  return { n, re: new Float64Array(n * n), im: new Float64Array(n * n) };
+}
+
+function addScaled(target: ComplexMatrix, a: ComplexMatrix, scale: number): void {
+  for (let i = 0; i < a.re.length; i++) {
+    target.re[i]! += scale * a.re[i]!;
+    target.im[i]! += scale * a.im[i]!;
+  }
+}
