@@ -23,12 +23,17 @@ async function filesBelow(entry: FileSystemEntry, prefix: string): Promise<Opene
 
 /** Files and folders of a drop; a single dropped folder is the data set, its name no part of the paths. */
 export async function droppedFiles(transfer: DataTransfer): Promise<OpenedFiles> {
-  // The list is emptied once the event handler returns, so the entries are taken before anything is awaited.
+  // The list is emptied once the event handler returns, so everything is taken before anything is awaited.
   const entries = [...transfer.items].map((item) => item.webkitGetAsEntry()).filter((e) => e !== null);
+  const loose = [...transfer.files];
+  if (entries.length === 0) {
+    const files = loose.map((file) => ({ path: file.name, blob: file }));
+    return { name: loose[0]?.name ?? '', files, chosenOneByOne: true };
+  }
   const alone = entries.length === 1;
   const groups = await Promise.all(
     entries.map((entry) => filesBelow(entry, entry.isDirectory && !alone ? `${entry.name}/` : '')),
   );
   const folder = alone && entries[0]!.isDirectory;
-  return { name: entries[0]?.name ?? '', files: groups.flat(), chosenOneByOne: !folder };
+  return { name: entries[0]!.name, files: groups.flat(), chosenOneByOne: !folder };
 }
