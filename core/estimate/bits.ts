@@ -70,6 +70,22 @@ function bitsBelow(errorAtZeroBits: number, allowed: number): number {
 }
 
 /**
+ * Energy error of a whole encoding at given bits, hartree: worst cases summed, and the statistical estimate. What the
+ * tables of a program really do is core/verify/energy-error.ts.
+ */
+export function roundingError(
+  shape: EncodingShape,
+  lambda: LambdaSplit,
+  bits: { readonly keep: number; readonly rotation: number },
+): { readonly rigorous: number; readonly estimate: number } {
+  const keep = keepErrors(shape, lambda);
+  const rotation = rotationErrors(shape, lambda) ?? { rigorous: 0, estimate: 0 };
+  const sum = (part: keyof ErrorAtZeroBits) =>
+    keep[part] * 2 ** -bits.keep + rotation[part] * 2 ** -bits.rotation;
+  return { rigorous: sum('rigorous'), estimate: sum('estimate') };
+}
+
+/**
  * Alias sampling over L rows rounds each probability to a multiple of 1/(L 2^ℵ). Outer table: λ 2^−ℵ, or with
  * independent signs λ 2^−ℵ/√(12 L). Inner tables: the square doubles twice, 4λ₂ 2^−ℵ; the one-body rows count once.
  */

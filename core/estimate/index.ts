@@ -5,6 +5,7 @@ export {
   GUARD_BITS,
   type LambdaSplit,
   LEAST_BITS,
+  roundingError,
 } from './bits';
 export type { PhysicalEstimate, StepCost, SurfaceCodeAssumptions } from './estimate';
 export type { Reason, Reconciliation } from './explain';

@@ -5,8 +5,8 @@ export {
   extremeDeterminant,
 } from './determinant-energy';
 export { binomial, type SectorBasis, sectorBasis } from './determinants';
-export { type Form, fockMatrix, oneBodyFockMatrix, spinorFockMatrix } from './fock';
 export { type RealisedRounding, realisedRounding } from './energy-error';
+export { type Form, fockMatrix, oneBodyFockMatrix, spinorFockMatrix } from './fock';
 export { programOperator } from './program-operator';
 export { REFERENCE_LEVELS, referenceEigenvalues } from './reference';
 export { MAX_SECTOR_DIMENSION, type SectorMatrix, sectorMatrix } from './sector-matrix';
