@@ -7,7 +7,8 @@ import { manifest, type Row, wordsOf } from './manifest';
 /** Four times the limit: only a run-away job meets it, never a busy machine. */
 const WATCHDOG_MS = 4 * 1000 * manifest.limits.seconds;
 
-const named = (rows: readonly Row[]) => rows.map((row) => [`${row.path}: ${row.damage}`, row] as const);
+const named = <R extends Row>(rows: readonly R[]) =>
+  rows.map((row) => [`${row.path}: ${row.damage}`, row] as const);
 
 describe('malformed files in the terminal', () => {
   it.each(named(manifest.errors))(
@@ -57,7 +58,7 @@ const isFinding = (code: string): boolean =>
   );
 
 describe('files with something to note', () => {
-  it.each(manifest.findings.map((row) => [`${row.path}: ${row.damage}`, row] as const))(
+  it.each(named(manifest.findings))(
     '%s',
     async (_name, row) => {
       const { status, stdout, stderr } = await spinwright(wordsOf(row));
