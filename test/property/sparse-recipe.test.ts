@@ -3,7 +3,9 @@ import { describe, expect, it } from 'vitest';
 import type { Subroutine } from '../../core/circuit';
 import { GateCounter } from '../../core/circuit/gates/counter';
 import { Machine } from '../../core/circuit/gates/machine';
+import type { Blocks } from '../../core/circuit/primitives/look-up';
 import { SparseState } from '../../core/circuit/simulate/sparse-state';
+import type { SparseLayout } from '../../core/circuit/sparse/layout';
 import { lessThanConstant, multiple, multipleWires } from '../../core/circuit/sparse/multiple';
 import { sparseRecipe } from '../../core/circuit/sparse/recipe';
 import { sparseStep } from '../../core/circuit/sparse/step';
@@ -100,6 +102,17 @@ describe('sparse walk step', () => {
   });
 });
 
+/** Emits without the contents of the table, which are Clifford gates. */
+function emit(layout: SparseLayout, blocks: Blocks): { toffoli: number; t: number; wires: number } {
+  const program = { otherSign: 1 } as SparseProgram;
+  const tables = { program, layout, keep: new Uint32Array(0), alternate: new Uint32Array(0) };
+  const counter = new GateCounter({ toffoliOnly: true });
+  const machine = new Machine(counter);
+  sparseWalkStep(tables, sparseWires(layout, machine), blocks, null).run(machine);
+  const { toffoli, t } = GateCounter.total(counter.root);
+  return { toffoli, t, wires: machine.peak };
+}
+
 describe('numbers of the address', () => {
   /** Runs reversible logic on a basis state and reads wires back. */
   const run = (bits: number, x: number, build: (machine: Machine, wires: number[]) => readonly number[]) => {
@@ -162,6 +175,25 @@ describe('numbers of the address', () => {
 });
 
 describe('sparse step', () => {
+  it('counts what is emitted for millions of coefficients of fifty orbitals', () => {
+    const { layout, blocks, recipe } = sparseStep(
+      {
+        orbitals: 50,
+        coefficients: 2_657_691,
+        spin: true,
+        secondComponent: false,
+        exchanged: false,
+        sharedPart: 8.3e-5,
+        otherShare: 2 / 3,
+      },
+      { keepBits: 23, phaseBits: 0 },
+      { mode: 'clean', block: 'auto', qubitCap: null },
+    );
+    const emitted = emit(layout, blocks);
+    const { toffoli, parts, t } = stepCost(recipe);
+    expect(emitted).toEqual({ toffoli: toffoli - parts.control, t, wires: peakOf(recipe).qubits });
+  });
+
   const sizes = fc.record({
     orbitals: fc.integer({ min: 2, max: 60 }),
     coefficients: fc.integer({ min: 1, max: 3_000_000 }),

@@ -115,7 +115,7 @@ function read(
     throw new RangeError(`a look-up of ${width} bits in blocks of ${block} needs ${block * width} wires`);
   }
   const lowBits = Math.log2(block);
-  const listed = new Set(addresses);
+  const isListed = membership(addresses);
   unaryIteration(register.slice(lowBits), blockAddresses(addresses, block), control, (m, high, flag) => {
     if (m.skipsClifford) {
       m.skip((block * width) / 2);
@@ -123,7 +123,7 @@ function read(
     }
     for (let j = 0; j < block; j++) {
       const address = high * block + j;
-      if (!listed.has(address)) continue;
+      if (!isListed(address)) continue;
       for (let b = 0; b < width; b++) {
         if (table.bit(address, b)) m.gate('CX', flag, output[j * width + b]!);
       }
@@ -135,6 +135,15 @@ function read(
       controlledSwap(machine, register[bit]!, output[i]!, output[i + 2 ** bit * width]!);
     }
   }
+}
+
+/** Whether an address is in the list; millions of them are not gathered unless someone asks. */
+function membership(addresses: Uint32Array): (address: number) => boolean {
+  let listed: Set<number> | null = null;
+  return (address) => {
+    listed ??= new Set(addresses);
+    return listed.has(address);
+  };
 }
 
 /** One Toffoli: a and b change places where the control is 1. */
@@ -151,7 +160,7 @@ export function contentAfterSwaps(
 ): (address: number, position: number) => boolean {
   const { width, bit } = table;
   const lowBits = Math.log2(block);
-  const listed = new Set(table.addresses);
+  const isListed = membership(table.addresses);
   return (address, position) => {
     let copy = Math.floor(position / width);
     // Undo the swaps: the last one applied (bit 0) comes first.
@@ -160,7 +169,7 @@ export function contentAfterSwaps(
       if (((address >>> b) & 1) === 1 && copy < 2 * half) copy = copy < half ? copy + half : copy - half;
     }
     const source = address - (address % block) + copy;
-    return listed.has(source) && bit(source, position % width);
+    return isListed(source) && bit(source, position % width);
   };
 }
 
@@ -184,7 +193,7 @@ export function erase(
   const lowBits = Math.log2(block);
   const low = oneHot(register.slice(0, lowBits), lent.length >= block ? lent : null);
   const flags = low.begin(machine);
-  const listed = new Set(addresses);
+  const isListed = membership(addresses);
   unaryIteration(register.slice(lowBits), blockAddresses(addresses, block), control, (m, high, flag) => {
     if (m.skipsClifford) {
       m.skip((block * output.length) / 2);
@@ -192,7 +201,7 @@ export function erase(
     }
     for (let j = 0; j < block; j++) {
       const address = high * block + j;
-      if (!listed.has(address)) continue;
+      if (!isListed(address)) continue;
       for (let b = 0; b < output.length; b++) {
         if (!content(address, b)) continue;
         if (block === 1) m.gate('Z', flag, -1, -1, outcomes[b]!);

@@ -88,3 +88,25 @@ it.each([
   const error = worst(block, lambda, encoding.constant, await exactMatrix(h));
   expect(error).toBeLessThan(bound.weights + bound.shares);
 });
+
+it('the program holds the coefficients that the encoding counted, formaldehyde in eight orbitals', async () => {
+  const set = await loadSet(findSet('ch2o_sto3g_8o')!);
+  const h = buildHamiltonian(set, { terms: [...SPIN_ORBIT, 'ss'] });
+  const variant = parseVariant('sparse/-/index/none/clean');
+  const encoding = await buildEncoding(h, null, variant, { threshold: 1e-4 }, inlineContext());
+  const program = encoding.sparseProgram!();
+  expect(termSizes(program)).toEqual(encoding.shape.terms);
+  expect(program.weights.reduce((a, b) => a + b, 0)).toBeCloseTo(encoding.lambda.total, 10);
+  for (let i = 0; i < program.weights.length; i++) {
+    const [p, q, r, s] = program.orbitalsOf.subarray(4 * i, 4 * i + 4) as unknown as [
+      number,
+      number,
+      number,
+      number,
+    ];
+    const kind = program.kinds[program.kindOf[i]!]!;
+    expect(q).toBeLessThanOrEqual(kind.antisymmetric ? p - 1 : p);
+    expect(s).toBeLessThanOrEqual(r);
+    expect(Math.max(p, r)).toBeLessThan(8);
+  }
+});
