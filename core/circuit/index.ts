@@ -13,7 +13,7 @@ export { type Hypercontracted, hypercontractedStep } from './recipes/hypercontra
 export type { LookupPolicy } from './recipes/scope';
 export { type SingleFactorised, singleFactorisedStep } from './recipes/single-factorised';
 export { type SparseSizes, sparseStep as sparseStepByFormula } from './recipes/sparse';
-export { spinorStep } from './recipes/spinor';
+export { spinorStep as spinorStepByFormula } from './recipes/spinor';
 export { type FactorisedBits, tripletStep as tripletStepByFormula } from './recipes/triplet';
 export { SparseState } from './simulate/sparse-state';
 export { type SparseBits, type SparseLayout, sparseLayout } from './sparse/layout';
@@ -27,6 +27,25 @@ export {
   steeringNumbers,
 } from './sparse/tables';
 export { sparseAncillas, sparseBlockEncoding, sparseWalkStep, sparseWires, withTerm } from './sparse/walk';
+export { ANGLE_GROUPS, type AngleGroup, type SpinorLayout, spinorLayout } from './spinor/layout';
+export { spinorRecipe } from './spinor/recipe';
+export { chooseSpinorTables, type SpinorStep, spinorStep } from './spinor/step';
+export {
+  encodedSpinorProgram,
+  type SpinorBits,
+  type SpinorTables,
+  spinorSizesOf,
+  spinorTables,
+} from './spinor/tables';
+export {
+  type SpinorBlocks,
+  type SpinorWires,
+  spinorAncillas,
+  spinorBlockEncoding,
+  spinorWalkStep,
+  spinorWires,
+  withSpinorItem,
+} from './spinor/walk';
 export { chooseBlocks } from './triplet/blocks';
 export type { SpinTreatment } from './triplet/product';
 export { tripletRecipe } from './triplet/recipe';

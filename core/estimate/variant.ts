@@ -5,6 +5,7 @@ import {
   sparseStep,
   sparseStepByFormula,
   spinorStep,
+  spinorStepByFormula,
   tripletStep,
   tripletStepByFormula,
 } from '../circuit';
@@ -171,7 +172,9 @@ function recipeOf(
         ? tripletStep(shape.items, spin, widths, policy).recipe
         : tripletStepByFormula(shape, spin, widths, policy);
     case 'spinor':
-      return spinorStep(shape, widths, policy);
+      return shape.spinors && policy.mode !== 'dirty'
+        ? spinorStep(shape.spinors, widths, policy).recipe
+        : spinorStepByFormula(shape, widths, policy);
     case 'sparse':
       return shape.terms && policy.mode !== 'dirty'
         ? sparseStep(shape.terms, widths, policy).recipe

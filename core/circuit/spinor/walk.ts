@@ -7,6 +7,7 @@ import {
   type SquaresForm,
   type SquaresWires,
   squaresAncillas,
+  squaresBlockEncoding,
   squaresItem,
   squaresWalkStep,
   squaresWires,
@@ -97,6 +98,15 @@ export function spinorForm(tables: SpinorTables, wires: SpinorWires, blocks: Spi
     },
     product: (use) => product(tables, productWires, blocks, use, use.extra[0] ?? null),
   };
+}
+
+/** U with (⟨0|⊗1) U (|0⟩⊗1) = (H − c)/λ on the system: see squaresBlockEncoding. */
+export function spinorBlockEncoding(
+  tables: SpinorTables,
+  wires: SpinorWires,
+  blocks: SpinorBlocks,
+): Operation {
+  return squaresBlockEncoding(spinorForm(tables, wires, blocks), wires);
 }
 
 /** One step of the walk: the block encoding and the reflection about the ancillas' zero state. */

@@ -3,7 +3,7 @@ import {
   type LookupPolicy,
   type Subroutine,
   sparseStepByFormula as sparseStep,
-  spinorStep,
+  spinorStepByFormula,
   tripletStepByFormula as tripletStep,
 } from '../../../core/circuit';
 import type { EncodingShape } from '../../../core/encode';
@@ -78,7 +78,7 @@ describe('triplet step', () => {
 describe('spinor step', () => {
   it('rotates 12(2N−1) times and swaps partners in four layers', () => {
     const shape: EncodingShape = { ...SHAPE, kind: 'spinor', pairRows: 0, oneBodyPairRows: 0 };
-    const cost = stepCost(spinorStep(shape, BITS, CLEAN));
+    const cost = stepCost(spinorStepByFormula(shape, BITS, CLEAN));
     expect(cost.parts['select.rotations']).toBe(12 * (2 * N - 1) * (BETA - 2));
     expect(cost.parts['select.swaps']).toBe(4 * N);
     expect(cost.t).toBe(0);

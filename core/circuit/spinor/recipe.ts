@@ -1,0 +1,140 @@
+import { givensToffoli, tiltLayerCost } from '../primitives/givens';
+import { swapLayerToffoli } from '../primitives/majorana';
+import { gradientWires, rotationToffoli } from '../primitives/phase-gradient';
+import type { Subroutine } from '../recipe';
+import { DERIVED, eraseLeaf, GIDNEY, leaf, loadLeaf } from '../squares/leaves';
+import { type PhaseEstimationPart, squaresRecipe } from '../squares/recipe';
+import type { KeepBits } from '../squares/tables';
+import type { SpinorLayout } from './layout';
+import { type ProductBlocks, turnsSpins } from './product';
+import type { SpinorBlocks } from './walk';
+
+/** The walk step of the spinor form: see {@link squaresRecipe}. */
+export function spinorRecipe(
+  layout: SpinorLayout,
+  bits: KeepBits,
+  blocks: SpinorBlocks,
+  phase: PhaseEstimationPart,
+): Subroutine {
+  const form = {
+    name: 'walk step, spinor',
+    registers: [
+      { name: 'system', qubits: 2 * layout.orbitals },
+      { name: 'phase gradient', qubits: gradientWires(layout.angleBits + 2) },
+    ],
+    plus: layout.partners ? ['time-reversed partner'] : [],
+    flags: layout.flags.length,
+    aroundItem: layout.hasPaired
+      ? {
+          registers: [{ name: 'second square', qubits: 1 }],
+          children: [
+            leaf({
+              name: 'second square',
+              part: 'select.other',
+              toffoli: 1,
+              formula: 'one AND: the square of a paired item',
+              inputs: {},
+              source: DERIVED,
+            }),
+          ],
+        }
+      : {},
+    product: (second: boolean) => productRecipe(layout, blocks, second),
+  };
+  return squaresRecipe(form, layout, bits, blocks, phase);
+}
+
+/** SELECT: the occupation of one spinor. */
+function productRecipe(layout: SpinorLayout, blocks: ProductBlocks, second: boolean): Subroutine {
+  const { orbitals, angleBits, partners, hasAxes, rowAddresses, rowWidth } = layout;
+  const modulusBits = angleBits + 2;
+  const spins = turnsSpins(layout, second);
+  const groups = [...layout.tables].filter(([group]) => group === 'phases' || spins);
+  // Two more addend bits than are stored, and the carries.
+  const scratch = modulusBits;
+  const rotations = (name: string, angles: number, each: number, formula: string) =>
+    leaf({
+      name,
+      part: 'select.rotations',
+      times: angles > 0 ? 2 : 0,
+      toffoli: angles * each,
+      formula,
+      inputs: { N: orbitals, β: modulusBits },
+      source: GIDNEY,
+      scratch: angles > 0 ? scratch : 0,
+    });
+  const givensEach = givensToffoli(modulusBits);
+  const phaseEach = rotationToffoli(modulusBits);
+  const tilt = tiltLayerCost(orbitals);
+  return {
+    name: 'occupation of a spinor',
+    registers: [
+      { name: 'angles and signs', qubits: rowWidth * blocks.rows.read },
+      ...groups.map(([group, { width }]) => ({
+        name: `angles, ${group}`,
+        qubits: width * blocks.groups[group],
+      })),
+    ],
+    children: [
+      loadLeaf(
+        'angle look-up',
+        'select.lookup',
+        { addresses: rowAddresses, width: rowWidth },
+        blocks.rows.read,
+        second,
+      ),
+      ...groups.map(([group, table]) =>
+        loadLeaf(`${group} look-up`, 'select.lookup', table, blocks.groups[group], true),
+      ),
+      {
+        name: 'occupation in its frame',
+        registers: partners && hasAxes ? [{ name: 'whether spins are swapped', qubits: 1 }] : [],
+        children: [
+          leaf({
+            name: 'whether spins are swapped',
+            part: 'select.other',
+            times: partners && hasAxes ? 1 : 0,
+            toffoli: 1,
+            formula: 'one AND: spin reversed, and its axis is z',
+            inputs: {},
+            source: DERIVED,
+          }),
+          rotations('orbital rotation', orbitals - 1, givensEach, '2(N − 1)(β − 2), gradient modulus 2^β'),
+          rotations(
+            'phases of the orbitals',
+            layout.hasPhases ? orbitals - 1 : 0,
+            phaseEach,
+            '(N − 1)(β − 2)',
+          ),
+          rotations(
+            'spins of the orbitals',
+            spins ? orbitals : 0,
+            givensEach + phaseEach,
+            '3N(β − 2): a Givens rotation and a phase an orbital',
+          ),
+          leaf({
+            name: 'spin axis',
+            part: 'select.other',
+            times: hasAxes ? 2 : 0,
+            ...tilt,
+            formula: 'N: one AND an orbital; 6N T gates',
+            inputs: { N: orbitals },
+            source: DERIVED,
+            scratch: hasAxes ? 1 : 0,
+          }),
+          leaf({
+            name: 'swap of the spins',
+            part: 'select.swaps',
+            times: partners ? 2 : 0,
+            toffoli: swapLayerToffoli(orbitals),
+            formula: 'N: one AND an orbital',
+            inputs: { N: orbitals },
+            source: DERIVED,
+            scratch: partners ? 1 : 0,
+          }),
+        ],
+      },
+      eraseLeaf('angle erasure', 'select.lookup', rowAddresses, blocks.rows.erase, second),
+    ],
+  };
+}

@@ -1,0 +1,84 @@
+import {
+  type Blocks,
+  countBlocks,
+  erasureToffoli,
+  erasureWires,
+  lookUpToffoli,
+  lookUpWires,
+} from '../primitives/look-up';
+import type { StepPart, Subroutine } from '../recipe';
+
+export const LOW = 'G. H. Low, V. Kliuchnikov, L. Schaeffer, arXiv:1812.00954 (2018)';
+export const BERRY = 'D. W. Berry et al., Quantum 3, 208 (2019)';
+export const BABBUSH = 'R. Babbush et al., Phys. Rev. X 8, 041015 (2018)';
+export const GIDNEY = 'C. Gidney, Quantum 2, 74 (2018)';
+export const DERIVED = 'derived; equal to the emitted circuit, see DEVELOPERS';
+
+interface Leaf {
+  readonly name: string;
+  readonly part: StepPart;
+  readonly times?: number;
+  readonly toffoli?: number;
+  readonly t?: number;
+  readonly formula: string;
+  readonly inputs: Readonly<Record<string, number>>;
+  readonly source: string;
+  /** Wires lent while it runs. */
+  readonly scratch?: number;
+}
+
+export const leaf = ({ scratch, ...rest }: Leaf): Subroutine => ({
+  ...rest,
+  ...(scratch ? { registers: [{ name: `scratch of ${rest.name}`, qubits: scratch }] } : {}),
+});
+
+/** A table as a recipe sees it. */
+export interface TableSizes {
+  readonly addresses: Uint32Array;
+  readonly width: number;
+}
+
+/** A look-up in blocks of k; its output wires belong to the node around it. */
+export function loadLeaf(
+  name: string,
+  part: StepPart,
+  { addresses, width }: TableSizes,
+  k: number,
+  controlled = false,
+): Subroutine {
+  const blocks = countBlocks(addresses, k);
+  return leaf({
+    name,
+    part,
+    toffoli: lookUpToffoli(blocks, width, k, controlled),
+    formula: controlled ? 'B − 1 + b(k − 1)' : 'B − 2 + b(k − 1)',
+    inputs: { rows: addresses.length, B: blocks, b: width, k },
+    source: `${LOW}; ${BERRY}`,
+    scratch: lookUpWires(addresses, k, controlled),
+  });
+}
+
+export function eraseLeaf(
+  name: string,
+  part: StepPart,
+  addresses: Uint32Array,
+  k: number,
+  controlled = false,
+): Subroutine {
+  const blocks = countBlocks(addresses, k);
+  return leaf({
+    name,
+    part,
+    toffoli: erasureToffoli(blocks, k, controlled),
+    formula: controlled ? 'B − 1 + (k − 1 − log₂k)' : 'B − 2 + (k − 1 − log₂k)',
+    inputs: { rows: addresses.length, B: blocks, k },
+    source: BERRY,
+    scratch: erasureWires(addresses, k, controlled),
+  });
+}
+
+/** Counts of blocks that a table is read and erased in. */
+export const blockCounts = (addresses: Uint32Array, { read, erase }: Blocks) => ({
+  read: countBlocks(addresses, read),
+  erase: countBlocks(addresses, erase),
+});

@@ -1,0 +1,197 @@
+import { aliasSamplingToffoli } from '../primitives/alias-sampling';
+import { type Blocks, erasureWires, lookUpWires } from '../primitives/look-up';
+import { reflectionToffoli } from '../primitives/reflection';
+import type { Subroutine } from '../recipe';
+import type { SquaresLayout } from './layout';
+import { BABBUSH, BERRY, blockCounts, eraseLeaf, LOW, leaf, loadLeaf, type TableSizes } from './leaves';
+import type { KeepBits } from './tables';
+import { COMMON_FLAGS, type SquaresBlocks } from './walk';
+
+/** What phase estimation adds to a walk step. */
+export interface PhaseEstimationPart {
+  readonly registers: readonly { readonly name: string; readonly qubits: number }[];
+  /** Toffoli a step: controls of the last reflection. */
+  readonly controls: number;
+}
+
+/** What a form of encoding adds to the recipe of its squares. */
+export interface FormRecipe {
+  readonly name: string;
+  /** Registers that live through the step before the index registers: system, phase gradient. */
+  readonly registers: readonly { readonly name: string; readonly qubits: number }[];
+  /** Wires in the plus state beside the row number, by name. */
+  readonly plus: readonly string[];
+  /** Flags of an item of the form's own. */
+  readonly flags: number;
+  /** Around the square: wires it lends, and what is done before and after. */
+  readonly aroundItem: Pick<Subroutine, 'registers' | 'children'>;
+  readonly product: (second: boolean) => Subroutine;
+}
+
+/**
+ * The walk step of an encoding by squares as a tree of counts, Toffoli by Toffoli that of the circuit which
+ * `squaresWalkStep` emits, and with the same peak of wires. The step meets phase estimation only as controls: its
+ * registers are carried along, and each control costs one Toffoli.
+ */
+export function squaresRecipe(
+  form: FormRecipe,
+  layout: SquaresLayout,
+  bits: KeepBits,
+  blocks: SquaresBlocks,
+  phase: PhaseEstimationPart,
+): Subroutine {
+  const ancillas = [
+    { name: 'item', qubits: layout.itemBits },
+    { name: 'face', qubits: layout.hasFaces ? 1 : 0 },
+    { name: 'square of a pair', qubits: layout.hasPaired ? 1 : 0 },
+    { name: 'uniform number, outer', qubits: bits.keep },
+    { name: 'row', qubits: layout.rowBits },
+    { name: 'uniform number, inner', qubits: bits.innerKeep },
+    ...form.plus.map((name) => ({ name, qubits: 1 })),
+  ].filter((register) => register.qubits > 0);
+  const reflected = ancillas.reduce((sum, register) => sum + register.qubits, 0);
+  return {
+    name: form.name,
+    registers: [...form.registers, ...phase.registers.filter((register) => register.qubits > 0), ...ancillas],
+    children: [
+      blockEncodingRecipe(form, layout, bits, blocks),
+      leaf({
+        name: 'reflection of the walk',
+        part: 'reflections',
+        toffoli: reflectionToffoli(reflected),
+        formula: 'n − 2',
+        inputs: { n: reflected },
+        source: 'common practice, no source',
+        scratch: Math.max(0, reflected + phase.controls - 2),
+      }),
+      leaf({
+        name: 'control by the phase register',
+        part: 'control',
+        toffoli: phase.controls,
+        formula: 'one AND for each control of the reflection',
+        inputs: { controls: phase.controls },
+        source: BABBUSH,
+      }),
+    ],
+  };
+}
+
+/** Tables that PREPARE reads. */
+export function squaresTables(layout: SquaresLayout, bits: KeepBits, flags: number) {
+  const { itemBits, rowBits } = layout;
+  const index = itemBits + (layout.hasFaces ? 1 : 0);
+  return {
+    outer: { addresses: layout.outerAddresses, width: index + bits.keep, limit: 2 ** index },
+    items: {
+      addresses: layout.itemAddresses,
+      width: rowBits + COMMON_FLAGS + flags,
+      limit: 2 ** itemBits,
+    },
+    inner: { addresses: layout.innerAddresses, width: rowBits + bits.innerKeep, limit: 2 ** rowBits },
+  };
+}
+
+function blockEncodingRecipe(
+  form: FormRecipe,
+  layout: SquaresLayout,
+  bits: KeepBits,
+  blocks: SquaresBlocks,
+): Subroutine {
+  const { outer, items } = squaresTables(layout, bits, form.flags);
+  const index = layout.itemBits + (layout.hasFaces ? 1 : 0);
+  const { registers, children } = form.aroundItem;
+  return {
+    name: 'block encoding',
+    registers: samplingRegisters('outer', outer.width, bits.keep, blocks.outer),
+    children: [
+      ...samplingLeaves('outer PREPARE', outer, index, bits.keep, blocks.outer, 0),
+      {
+        name: 'item',
+        registers: [{ name: 'item data', qubits: items.width * blocks.items.read }],
+        children: [
+          loadLeaf('item data', 'prepare', items, blocks.items.read),
+          {
+            name: 'square of the item, or the one-body part',
+            ...(registers ? { registers } : {}),
+            children: [...(children ?? []), ...squareRecipe(form, layout, bits, blocks)],
+          },
+          eraseLeaf('item data, undone', 'prepare', items.addresses, blocks.items.erase),
+        ],
+      },
+    ],
+  };
+}
+
+const samplingRegisters = (which: string, width: number, keepBits: number, blocks: Blocks) => [
+  { name: `alternate and keep, ${which}`, qubits: width * blocks.read },
+  { name: `carries of the comparison, ${which}`, qubits: keepBits },
+];
+
+/** Alias sampling and its undoing; they run one after the other with what they steer in between. */
+function samplingLeaves(
+  name: string,
+  table: TableSizes,
+  index: number,
+  keepBits: number,
+  blocks: Blocks,
+  t: number,
+): Subroutine[] {
+  const counts = blockCounts(table.addresses, blocks);
+  const { prepare, unprepare } = aliasSamplingToffoli(counts, index, keepBits, blocks);
+  return [
+    leaf({
+      name,
+      part: 'prepare',
+      toffoli: prepare,
+      t,
+      formula: 'B − 2 + b(k − 1) + keep + n: look-up, comparison, exchange',
+      inputs: { B: counts.read, b: table.width, k: blocks.read, keep: keepBits, n: index },
+      source: `${BABBUSH}; ${LOW}`,
+      scratch: lookUpWires(table.addresses, blocks.read),
+    }),
+    leaf({
+      name: `${name}, undone`,
+      part: 'prepare',
+      toffoli: unprepare,
+      t,
+      formula: 'B − 2 + (k − 1 − log₂k) + n: erasure, exchange; the comparison is taken back by measurement',
+      inputs: { B: counts.erase, k: blocks.erase, n: index },
+      source: `${BABBUSH}; ${BERRY}`,
+      scratch: erasureWires(table.addresses, blocks.erase),
+    }),
+  ];
+}
+
+/** Both uses of the rows and the reflection between them. */
+function squareRecipe(
+  form: FormRecipe,
+  layout: SquaresLayout,
+  bits: KeepBits,
+  blocks: SquaresBlocks,
+): Subroutine[] {
+  const { rowBits } = layout;
+  const { inner } = squaresTables(layout, bits, form.flags);
+  const hadamardT = layout.equalSizes ? 0 : 2 * rowBits;
+  const use = (second: boolean): Subroutine => ({
+    name: second ? 'second use of the rows' : 'first use of the rows',
+    registers: samplingRegisters('inner', inner.width, bits.innerKeep, blocks.inner),
+    children: [
+      ...samplingLeaves('inner PREPARE', inner, rowBits, bits.innerKeep, blocks.inner, hadamardT),
+      form.product(second),
+    ],
+  });
+  const reflected = rowBits + bits.innerKeep + form.plus.length + 1;
+  return [
+    use(false),
+    leaf({
+      name: 'inner reflection',
+      part: 'reflections',
+      toffoli: reflectionToffoli(reflected),
+      formula: 'n − 2',
+      inputs: { n: reflected },
+      source: 'common practice, no source',
+      scratch: Math.max(0, reflected - 2),
+    }),
+    use(true),
+  ];
+}
