@@ -16,3 +16,4 @@ export { sparseProgramOperator } from './sparse-block-operator';
 export type { SparseHermitian } from './sparse-hermitian';
 export { type SpectralRange, type SpectralRangeOptions, spectralRange } from './spectral-range';
 export { exactSpectrum, type Spectrum, type SpectrumOptions } from './spectrum';
+export { type LevelShifts, levelShifts, windowOfProgram } from './window-levels';
