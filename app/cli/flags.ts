@@ -1,5 +1,5 @@
 import { expandVariants } from '../../core/encode';
-import type { Meaning, OrbitalChoice } from '../../core/plan';
+import type { ComparisonRequest, Meaning, OrbitalChoice } from '../../core/plan';
 import type { CompareRequest, Manner } from './request';
 import {
   parseBits,
@@ -21,6 +21,12 @@ export const textOf = (flag: string | boolean | undefined): string | null =>
   typeof flag === 'string' ? flag : null;
 
 export function compareRequest(files: readonly string[], flags: Flags): CompareRequest {
+  const comparison = { ...costing(flags), variants: variantsOf(flags) };
+  return { command: 'compare', ...inputFiles(files, flags), comparison };
+}
+
+/** Everything that decides the costs of a variant. */
+export function costing(flags: Flags): Omit<ComparisonRequest, 'variants'> {
   const meaning = String(flags.meaning) as Meaning;
   const overlaps = parseOverlaps(String(flags.overlap));
   if (overlaps.length === 2 && meaning !== 'splitting') {
@@ -33,17 +39,12 @@ export function compareRequest(files: readonly string[], flags: Flags): CompareR
   }
   const cap = textOf(flags.qubitsMax);
   return {
-    command: 'compare',
-    ...inputFiles(files, flags),
-    comparison: {
-      ...selection(flags),
-      target: { ...parseTarget(String(flags.target)), meaning },
-      variants: variantsOf(flags),
-      threshold: parseThreshold(String(flags.threshold)),
-      bits: parseBits(String(flags.bits)),
-      overlaps: meaning === 'splitting' && overlaps.length === 1 ? [overlaps[0]!, overlaps[0]!] : overlaps,
-      qubitsMax: cap === null ? null : parseCount('--qubits-max', cap, 1, ANY),
-    },
+    ...selection(flags),
+    target: { ...parseTarget(String(flags.target)), meaning },
+    threshold: parseThreshold(String(flags.threshold)),
+    bits: parseBits(String(flags.bits)),
+    overlaps: meaning === 'splitting' && overlaps.length === 1 ? [overlaps[0]!, overlaps[0]!] : overlaps,
+    qubitsMax: cap === null ? null : parseCount('--qubits-max', cap, 1, ANY),
   };
 }
 

@@ -1,11 +1,18 @@
 import { SURFACE_CODE_DEFAULTS, whatif } from '../../core/estimate';
 import type { JobContext } from '../../core/job';
-import { inspectIntegrals, runComparison, runVerification } from '../../core/plan';
+import {
+  countCircuit,
+  inspectIntegrals,
+  runComparison,
+  runVerification,
+  writeCircuit,
+} from '../../core/plan';
 import { loadInputs, openInputs, readReference } from './inputs';
-import type { CompareRequest, InspectRequest, Request, VerifyRequest } from './request';
+import { writeStreamed } from './output';
+import type { CircuitRequest, CompareRequest, InspectRequest, Request, VerifyRequest } from './request';
 import type { Result } from './result';
 
-/** Does what a request asks for. Runs in the job's thread; writes nothing. */
+/** Does what a request asks for. Runs in the job's thread; writes nothing but a circuit, to its temporary name. */
 export async function answer(request: Request, context: JobContext): Promise<Result> {
   switch (request.command) {
     case 'inspect':
@@ -14,6 +21,8 @@ export async function answer(request: Request, context: JobContext): Promise<Res
       return compare(request, context);
     case 'verify':
       return verify(request, context);
+    case 'circuit':
+      return circuit(request, context);
     case 'whatif':
       return { command: 'whatif', whatIf: whatif(request.options, SURFACE_CODE_DEFAULTS) };
     case 'copy-demo':
@@ -47,4 +56,15 @@ async function verify(request: VerifyRequest, context: JobContext): Promise<Resu
   const set = await loadInputs(inputs, request.terms, 'throw', context);
   const evidence = await runVerification(set, request, context, await readReference(inputs));
   return { command: 'verify', evidence };
+}
+
+async function circuit(request: CircuitRequest, context: JobContext): Promise<Result> {
+  const { out, part } = request;
+  const set = await loadInputs(await openInputs(request, context), request.circuit.terms, 'throw', context);
+  if (out === null)
+    return { command: 'circuit-count', count: await countCircuit(set, request.circuit, context) };
+  const text = await writeStreamed(out, (write) =>
+    writeCircuit(set, { ...request.circuit, part }, context, write),
+  );
+  return { command: 'circuit-text', text, out };
 }

@@ -35,6 +35,7 @@ async function main(args: readonly string[]): Promise<number> {
     return printResult(result, manner, process.stdout, process.stderr);
   } catch (error) {
     line?.clear();
+    removePending();
     return reportError(error, call?.manner.trace ?? args.includes('--trace'), process.stderr);
   }
 }

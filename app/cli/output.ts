@@ -1,7 +1,19 @@
 import { randomBytes } from 'node:crypto';
-import { cpSync, existsSync, mkdirSync, readdirSync, renameSync, rmSync, writeFileSync } from 'node:fs';
+import {
+  closeSync,
+  cpSync,
+  existsSync,
+  mkdirSync,
+  openSync,
+  readdirSync,
+  renameSync,
+  rmSync,
+  writeFileSync,
+  writeSync,
+} from 'node:fs';
 import { basename, dirname, join, resolve } from 'node:path';
 import { InputError } from '../../core/job';
+import type { OutputFile } from './request';
 
 /** Temporary names in use: removed when the program is interrupted. */
 const pending = new Set<string>();
@@ -18,17 +30,63 @@ function place(target: string, write: (temporary: string) => void): void {
     write(temporary);
     renameSync(temporary, target);
   } catch (error) {
-    throw new InputError({
-      code: 'cannot-write',
-      where: target,
-      found: `the file cannot be written (${(error as NodeJS.ErrnoException).code ?? 'unknown reason'})`,
-      expected: 'a place that can be written to',
-      mend: 'Choose another path or free this one.',
-    });
+    throw cannotWrite(target, error);
   } finally {
     rmSync(temporary, { recursive: true, force: true });
     pending.delete(temporary);
   }
+}
+
+function cannotWrite(target: string, error: unknown): InputError {
+  return new InputError({
+    code: 'cannot-write',
+    where: target,
+    found: `the file cannot be written (${(error as NodeJS.ErrnoException).code ?? 'unknown reason'})`,
+    expected: 'a place that can be written to',
+    mend: 'Choose another path or free this one.',
+  });
+}
+
+/** A temporary name for a file that another thread will write; removed unless it is put in place. */
+export function reserveFile(path: string): OutputFile {
+  const temporary = temporaryName(resolve(path));
+  pending.add(temporary);
+  return { path, temporary };
+}
+
+/** Writes a reserved file piece by piece. */
+export async function writeStreamed<T>(
+  { path, temporary }: OutputFile,
+  produce: (write: (chunk: string) => void) => Promise<T>,
+): Promise<T> {
+  const guarded = <V>(use: () => V): V => {
+    try {
+      return use();
+    } catch (error) {
+      throw cannotWrite(path, error);
+    }
+  };
+  const file = guarded(() => {
+    mkdirSync(dirname(temporary), { recursive: true });
+    return openSync(temporary, 'wx');
+  });
+  try {
+    return await produce((chunk) => {
+      guarded(() => writeSync(file, chunk));
+    });
+  } finally {
+    closeSync(file);
+  }
+}
+
+/** Gives a reserved file its own name. */
+export function placeReserved({ path, temporary }: OutputFile): void {
+  try {
+    renameSync(temporary, resolve(path));
+  } catch (error) {
+    throw cannotWrite(path, error);
+  }
+  pending.delete(temporary);
 }
 
 /** Writes a file under a temporary name and renames it, so that no one ever sees half a file. */

@@ -1,9 +1,10 @@
 import type { WhatIfResult } from '../../core/estimate';
 import { throwFirstError } from '../../core/integrals';
 import { type ComparisonRun, comparisonDocument } from '../../core/plan';
+import { circuitCountText, circuitText } from './circuit-text';
 import { compareText } from './compare-text';
 import { inspectText } from './inspect-text';
-import { copyFolder, writeWhole } from './output';
+import { copyFolder, placeReserved, writeWhole } from './output';
 import type { TerminalStream } from './progress';
 import type { Manner } from './request';
 import type { Result } from './result';
@@ -59,6 +60,21 @@ export function printResult(
         () => verifyText(evidence),
       );
       return evidence.checks.every(({ ok }) => ok) ? DONE : CHECK_FAILED;
+    }
+    case 'circuit-count':
+      answer(
+        () => result.count,
+        () => circuitCountText(result.count),
+      );
+      return DONE;
+    case 'circuit-text': {
+      const { text, out: file } = result;
+      placeReserved(file);
+      answer(
+        () => ({ ...text, file: file.path }),
+        () => circuitText(text, file.path),
+      );
+      return DONE;
     }
     case 'whatif':
       answer(

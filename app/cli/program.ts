@@ -1,6 +1,7 @@
 import { Command, CommanderError, Option } from 'commander';
 import { MEANINGS } from '../../core/plan';
 import { version } from '../../package.json';
+import { addCircuit } from './circuit-command';
 import {
   compareRequest,
   electronsOf,
@@ -113,6 +114,8 @@ function buildProgram(demoFolder: string, accept: Accept): Command {
       );
     });
 
+  addCircuit(costed(reading(program.command('circuit'))), accept);
+
   addWhatIf(answering(program.command('whatif')), accept);
 
   comparing(answering(program.command('demo')))
@@ -152,11 +155,18 @@ function selecting(command: Command): Command {
 }
 
 function comparing(command: Command): Command {
+  return costed(command).option(
+    '--variants <list>',
+    'variants to compare; * stands for every value of an axis',
+  );
+}
+
+/** Options that decide the costs of a variant. */
+function costed(command: Command): Command {
   return selecting(command)
     .addOption(
       new Option('--meaning <what>', 'what the target is of').choices([...MEANINGS]).default('level'),
     )
-    .option('--variants <list>', 'variants to compare; * stands for every value of an axis')
     .option('--threshold <hartree>', 'what truncation may drop, 0 = nothing, or auto', '0')
     .option('--bits <n>', 'bits of keep values and angles, or auto', 'auto')
     .option('--overlap <p>', 'squared overlap of the start state, two for a splitting', '1')
@@ -181,4 +191,4 @@ function fromCommander(error: CommanderError, args: readonly string[]): Error {
   );
 }
 
-const COMMANDS = ['inspect', 'compare', 'verify', 'whatif', 'demo'];
+const COMMANDS = ['inspect', 'compare', 'verify', 'circuit', 'whatif', 'demo'];

@@ -1,5 +1,10 @@
 import type { WhatIfOptions } from '../../core/estimate';
-import type { ComparisonRequest, VerificationRequest } from '../../core/plan';
+import type {
+  CircuitPart,
+  ComparisonRequest,
+  CircuitRequest as PlanCircuitRequest,
+  VerificationRequest,
+} from '../../core/plan';
 
 /** Which files a command reads. */
 export interface InputFiles {
@@ -24,6 +29,21 @@ export interface VerifyRequest extends InputFiles, VerificationRequest {
   readonly command: 'verify';
 }
 
+/** One variant's circuit: counted, or written to a file. */
+export interface CircuitRequest extends InputFiles {
+  readonly command: 'circuit';
+  readonly circuit: PlanCircuitRequest;
+  readonly part: CircuitPart;
+  /** null: count only. */
+  readonly out: OutputFile | null;
+}
+
+/** A file that the job writes under a temporary name while the main thread sees to it. */
+export interface OutputFile {
+  readonly path: string;
+  readonly temporary: string;
+}
+
 export interface CopyDemoRequest {
   readonly command: 'copy-demo';
   readonly from: string;
@@ -36,7 +56,13 @@ export interface WhatIfRequest {
 }
 
 /** What one call of the command line asks for; plain data, since it crosses a worker border. */
-export type Request = InspectRequest | CompareRequest | VerifyRequest | WhatIfRequest | CopyDemoRequest;
+export type Request =
+  | InspectRequest
+  | CompareRequest
+  | VerifyRequest
+  | CircuitRequest
+  | WhatIfRequest
+  | CopyDemoRequest;
 
 /** How the answer is given. */
 export interface Manner {

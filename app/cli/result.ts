@@ -1,5 +1,13 @@
 import type { WhatIfResult } from '../../core/estimate';
-import type { ComparisonRun, Evidence, Inspection, Meaning } from '../../core/plan';
+import type {
+  CircuitCount,
+  CircuitText,
+  ComparisonRun,
+  Evidence,
+  Inspection,
+  Meaning,
+} from '../../core/plan';
+import type { OutputFile } from './request';
 
 /** What a request comes back with; plain data, since it crosses a worker border. */
 export type Result =
@@ -11,5 +19,7 @@ export type Result =
     }
   | { readonly command: 'compare'; readonly run: ComparisonRun; readonly meaning: Meaning }
   | { readonly command: 'verify'; readonly evidence: Evidence }
+  | { readonly command: 'circuit-count'; readonly count: CircuitCount }
+  | { readonly command: 'circuit-text'; readonly text: CircuitText; readonly out: OutputFile }
   | { readonly command: 'whatif'; readonly whatIf: WhatIfResult }
   | { readonly command: 'copy-demo'; readonly from: string; readonly out: string };

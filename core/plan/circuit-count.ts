@@ -1,18 +1,7 @@
-import {
-  bitsFor,
-  type GateCount,
-  GateCounter,
-  Machine,
-  STEP_PARTS,
-  type StepPart,
-  tripletStep,
-  tripletTables,
-  walkStep,
-  walkWires,
-} from '../circuit';
+import { type GateCount, GateCounter, Machine, STEP_PARTS, type StepPart } from '../circuit';
 import { type Encoding, formatVariant, type VariantName } from '../encode';
-import { InputError, type JobContext } from '../job';
-import type { VariantEstimate } from './comparison';
+import type { JobContext } from '../job';
+import { type CircuitEstimate, phaseBitsOf, walkCircuit } from './walk-circuit';
 
 /** What `circuit --count-only --json` prints: one walk step, counted gate by gate as it is emitted. */
 export interface CircuitCount {
@@ -42,39 +31,21 @@ const COUNTER_STEP = 1;
 export async function countWalkStep(
   encoding: Encoding,
   variant: VariantName,
-  estimate: Pick<VariantEstimate, 'bits' | 'walkSteps'>,
+  estimate: CircuitEstimate,
   qubitsMax: number | null,
   context: JobContext,
 ): Promise<CircuitCount> {
-  const { items } = encoding.shape;
-  if (!encoding.program || !items || variant.lookup === 'dirty') {
-    throw new InputError({
-      code: 'no-circuit',
-      where: `variant "${formatVariant(variant)}"`,
-      found: 'an encoding without an emitted circuit',
-      expected: 'triplet factors with clean or plain look-ups',
-      mend: 'Choose such a variant, e.g. triplet/separate/swap-layers/median/clean.',
-    });
-  }
   context.report('rounding the tables', 0, null);
   await context.checkpoint();
-  const phaseBits = bitsFor(estimate.walkSteps + 1);
-  const { keep, rotation } = estimate.bits;
-  const { blocks } = tripletStep(
-    items,
-    variant.spin,
-    { keepBits: keep, rotationBits: rotation, phaseBits },
-    { mode: variant.lookup, block: 'auto', qubitCap: qubitsMax },
-  );
-  const tables = tripletTables(encoding.program(), { keep, innerKeep: keep, rotation });
+  const walk = walkCircuit(encoding, variant, estimate, qubitsMax);
   context.report('emitting the walk step', 0, null);
   await context.checkpoint();
   const counter = new GateCounter({ toffoliOnly: true });
   const machine = new Machine(counter);
+  const phaseBits = phaseBitsOf(estimate);
   const phaseRegister = machine.allocateRegister(phaseBits);
   machine.allocateRegister(Math.max(phaseBits - 1, 0));
-  const wires = walkWires(tables, machine, 'gradient');
-  walkStep(tables, wires, variant.spin, blocks, phaseRegister[0]!).run(machine);
+  walk.emit('walk-step', machine, { control: phaseRegister[0]!, withGradient: false });
 
   const byPart = counter.toffoliByPart();
   const parts = Object.fromEntries(STEP_PARTS.map((part) => [part, byPart.get(part) ?? 0])) as Record<

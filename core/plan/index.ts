@@ -1,3 +1,11 @@
+export type { CircuitCount } from './circuit-count';
+export {
+  type CircuitRequest,
+  type CircuitText,
+  countCircuit,
+  MOST_GATES,
+  writeCircuit,
+} from './circuit-run';
 export type { Comparison, Target, TermSummary, VariantEstimate } from './comparison';
 export { comparisonDocument, variantDocument } from './document';
 export type { Check, Evidence } from './evidence';
@@ -15,3 +23,4 @@ export { hamiltonianOf, type OrbitalChoice, type SystemRequest } from './system'
 export { findTask, TASK_NAMES } from './tasks';
 export { termSummaries } from './term-summaries';
 export { runVerification, type VerificationRequest } from './verification';
+export { CIRCUIT_PARTS, type CircuitPart } from './walk-circuit';

@@ -6,19 +6,13 @@ import {
   parseVariant,
   type VariantName,
 } from '../encode';
-import {
-  confidenceFactor,
-  errorBudget,
-  estimateVariant,
-  SURFACE_CODE_DEFAULTS,
-  type TargetRequest,
-  targetRequest,
-} from '../estimate';
+import type { TargetRequest } from '../estimate';
 import { heldTerms } from '../hamiltonian';
 import type { IntegralSet, SelectableTerm } from '../integrals';
 import { Cancelled, InputError, type JobContext, type Problem } from '../job';
 import { toHartree } from '../units';
 import type { VariantEstimate } from './comparison';
+import { costOf, targetOf, thresholdOf } from './costing';
 import { Encodings } from './encodings';
 import { Floors } from './floors';
 import { recommend } from './recommendation';
@@ -63,13 +57,9 @@ export async function runComparison(
 ): Promise<ComparisonRun> {
   const hamiltonian = hamiltonianOf(set, request);
   const hartree = toHartree(request.target.value, request.target.unit);
-  const target = targetOf(request, hartree);
+  const target = targetOf(request);
   const terms = hamiltonian.kind === 'spatial' ? hamiltonian.terms : heldTerms(set);
-  const threshold =
-    request.threshold === 'auto'
-      ? errorBudget(target, confidenceFactor(target.accuracy)).truncation
-      : request.threshold;
-  const encodings = new Encodings(hamiltonian, threshold, occupationsOf(set, request));
+  const encodings = new Encodings(hamiltonian, thresholdOf(request, target), occupationsOf(set, request));
   const floors = new Floors(hamiltonian, MAX_DETERMINANTS);
 
   const variants = request.variants ?? defaultVariants(set);
@@ -107,20 +97,6 @@ export async function runComparison(
     },
     outcomes,
   };
-}
-
-function targetOf({ target: { meaning }, overlaps }: ComparisonRequest, hartree: number): TargetRequest {
-  const bare = targetRequest(hartree, { meaning });
-  if (overlaps.length !== bare.levels.length) {
-    throw new InputError({
-      code: 'overlaps',
-      where: 'overlaps',
-      found: `${overlaps.length} numbers`,
-      expected: `${bare.levels.length}, one a level`,
-      mend: 'Give one overlap for a level, two for a splitting.',
-    });
-  }
-  return { ...bare, levels: bare.levels.map((level, i) => ({ ...level, overlap: overlaps[i]! })) };
 }
 
 async function attempt(name: string, work: () => Promise<VariantEstimate>): Promise<VariantOutcome> {
@@ -164,18 +140,7 @@ async function estimateOf(
   context: JobContext,
 ): Promise<VariantEstimate> {
   const { lambda, shape, residual, constant } = encoding;
-  const cost = estimateVariant({
-    shape,
-    lambda,
-    variant,
-    target,
-    options: {
-      keepBits: request.bits,
-      rotationBits: request.bits,
-      qubitsMax: request.qubitsMax,
-      surfaceCode: SURFACE_CODE_DEFAULTS,
-    },
-  });
+  const cost = costOf(encoding, variant, target, request);
   return {
     name: formatVariant(variant),
     terms,

@@ -1,0 +1,151 @@
+import { type Machine, takeCensus, writeQasm } from '../circuit';
+import { type Encoding, formatVariant, type VariantName } from '../encode';
+import type { IntegralSet } from '../integrals';
+import { InputError, type JobContext } from '../job';
+import { type CircuitCount, countWalkStep } from './circuit-count';
+import { costOf, targetOf, thresholdOf } from './costing';
+import { Encodings } from './encodings';
+import type { ComparisonRequest } from './request';
+import { hamiltonianOf, occupationsOf } from './system';
+import { type CircuitEstimate, type CircuitPart, walkCircuit } from './walk-circuit';
+
+/** A comparison of one variant, of which the circuit is wanted. */
+export interface CircuitRequest extends Omit<ComparisonRequest, 'variants'> {
+  readonly variant: VariantName;
+}
+
+/** Longest text that is written, in expected gates: some 150 MB. */
+export const MOST_GATES = 5_000_000;
+
+/** What was written. `circuit --json` prints it. */
+export interface CircuitText {
+  readonly schema: 'spinwright-circuit-text/1';
+  readonly variant: string;
+  readonly part: CircuitPart;
+  readonly language: 'OpenQASM 3.0';
+  readonly bits: { readonly keep: number; readonly rotation: number };
+  /** Hartree: the block encoding holds (H − constant)/lambda. */
+  readonly lambda: number;
+  readonly constant: number;
+  readonly wires: number;
+  readonly registers: readonly { readonly name: string; readonly qubits: number }[];
+  readonly lines: number;
+}
+
+interface Planned {
+  readonly encoding: Encoding;
+  readonly estimate: CircuitEstimate;
+}
+
+async function plan(set: IntegralSet, request: CircuitRequest, context: JobContext): Promise<Planned> {
+  const target = targetOf(request);
+  const encodings = new Encodings(
+    hamiltonianOf(set, request),
+    thresholdOf(request, target),
+    occupationsOf(set, request),
+  );
+  const reason = encodings.refusal(request.variant);
+  if (reason !== null) {
+    throw new InputError({
+      code: 'left-out',
+      where: `variant "${formatVariant(request.variant)}"`,
+      found: reason,
+      expected: 'an encoding that can be made',
+      mend: 'Choose another grouping, e.g. separate.',
+    });
+  }
+  const encoding = await encodings.of(request.variant, context);
+  return { encoding, estimate: costOf(encoding, request.variant, target, request) };
+}
+
+/** Counts the walk step of a variant gate by gate: the `step` of a comparison under the same options. */
+export async function countCircuit(
+  set: IntegralSet,
+  request: CircuitRequest,
+  context: JobContext,
+): Promise<CircuitCount> {
+  const { encoding, estimate } = await plan(set, request, context);
+  return countWalkStep(encoding, request.variant, estimate, request.qubitsMax, context);
+}
+
+const MEANING_OF_PART: Readonly<Record<CircuitPart, string>> = {
+  'walk-step':
+    'one step of the walk: block encoding, then the reflection of its index registers where control is 1',
+  'block-encoding':
+    'the block encoding U: with its index registers at 0 before and after, (H - constant)/lambda on the system',
+  prepare: 'PREPARE of the outer index; registers below stay entangled',
+};
+
+/**
+ * Writes a part of a variant's walk as OpenQASM 3.
+ *
+ * @param write - takes the text piece by piece
+ * @throws InputError `too-long` above {@link MOST_GATES}, `no-part`, `no-circuit`
+ */
+export async function writeCircuit(
+  set: IntegralSet,
+  request: CircuitRequest & { readonly part: CircuitPart },
+  context: JobContext,
+  write: (chunk: string) => void,
+): Promise<CircuitText> {
+  const { encoding, estimate } = await plan(set, request, context);
+  const { part } = request;
+  const variant = formatVariant(request.variant);
+  context.report('rounding the tables', 0, null);
+  await context.checkpoint();
+  const walk = walkCircuit(encoding, request.variant, estimate, request.qubitsMax);
+  if (!walk.parts.includes(part)) throw noPart(variant, part, walk.parts);
+  const circuit = (machine: Machine) => {
+    const control = part === 'walk-step' ? machine.allocateRegister(1, 'control')[0]! : null;
+    walk.emit(part, machine, { control, withGradient: true });
+  };
+  context.report('measuring the circuit', 0, null);
+  await context.checkpoint();
+  const census = takeCensus(circuit);
+  if (census.expectedGates > MOST_GATES) throw tooLong(variant, census.expectedGates);
+  const { keep, rotation } = estimate.bits;
+  const { constant, lambda } = encoding;
+  const comments = [
+    `${variant}: ${MEANING_OF_PART[part]}`,
+    `lambda ${lambda.total} Eh, constant ${constant} Eh, ${keep} bits of keep values, ${rotation} bits of angles`,
+    'A ccx into a qubit of work that is 0 is an AND: one Toffoli state; it is taken back by a measurement.',
+  ];
+  const expected = Math.round(census.expectedGates);
+  const lines = writeQasm(circuit, census, {
+    comments,
+    write,
+    onLines: (done) => context.report('writing the circuit', Math.min(done, expected), expected),
+  });
+  return {
+    schema: 'spinwright-circuit-text/1',
+    variant,
+    part,
+    language: 'OpenQASM 3.0',
+    bits: { keep, rotation },
+    lambda: lambda.total,
+    constant,
+    wires: census.wires,
+    registers: census.registers.map(({ name, wires }) => ({ name, qubits: wires.length })),
+    lines,
+  };
+}
+
+function tooLong(variant: string, gates: number): InputError {
+  return new InputError({
+    code: 'too-long',
+    where: `variant "${variant}"`,
+    found: `about ${gates.toPrecision(2)} gates`,
+    expected: `at most ${MOST_GATES} for a text`,
+    mend: 'Use --count-only, a smaller --window, fewer --bits or a higher --threshold.',
+  });
+}
+
+function noPart(variant: string, part: CircuitPart, parts: readonly CircuitPart[]): InputError {
+  return new InputError({
+    code: 'no-part',
+    where: `variant "${variant}"`,
+    found: `part ${part}, which is not emitted by itself`,
+    expected: parts.join(' or '),
+    mend: `Choose --part ${parts[0]}.`,
+  });
+}

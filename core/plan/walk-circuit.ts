@@ -1,0 +1,120 @@
+import {
+  type Blocks,
+  bitsFor,
+  type LookupPolicy,
+  type Machine,
+  outerPrepare,
+  outerScratch,
+  prepareGradient,
+  prepareWires,
+  type SparseTables,
+  sparseBlockEncoding,
+  sparseStep,
+  sparseTables,
+  sparseWalkStep,
+  sparseWires,
+  type TripletTables,
+  tripletBlockEncoding,
+  tripletStep,
+  tripletTables,
+  type WalkBlocks,
+  walkStep,
+  walkWires,
+} from '../circuit';
+import { type Encoding, formatVariant, type VariantName } from '../encode';
+import { InputError } from '../job';
+import type { VariantEstimate } from './comparison';
+
+export const CIRCUIT_PARTS = ['walk-step', 'block-encoding', 'prepare'] as const;
+export type CircuitPart = (typeof CIRCUIT_PARTS)[number];
+
+/** The walk of one encoding, its tables rounded, ready to be emitted any number of times. */
+export interface WalkCircuit {
+  readonly parts: readonly CircuitPart[];
+  /** Allocates the part's wires, named, and emits it once on them. What PREPARE alone lends stays in use. */
+  emit(part: CircuitPart, machine: Machine, options: EmitOptions): void;
+}
+
+export interface EmitOptions {
+  /** Wire that switches the reflection of the walk step; null: none. */
+  readonly control: number | null;
+  /** Whether the phase gradient, which a run prepares once, is prepared here. */
+  readonly withGradient: boolean;
+}
+
+/** What of an estimate decides the circuit. */
+export type CircuitEstimate = Pick<VariantEstimate, 'bits' | 'walkSteps'>;
+
+/** Bits of the phase register of a run. */
+export const phaseBitsOf = ({ walkSteps }: CircuitEstimate): number => bitsFor(walkSteps + 1);
+
+/**
+ * The circuit that an estimate stands for, with the same bits and blocks.
+ *
+ * @throws InputError `no-circuit` for encodings whose circuit is not emitted.
+ */
+export function walkCircuit(
+  encoding: Encoding,
+  variant: VariantName,
+  estimate: CircuitEstimate,
+  qubitsMax: number | null,
+): WalkCircuit {
+  const { keep, rotation } = estimate.bits;
+  const widths = { keepBits: keep, rotationBits: rotation, phaseBits: phaseBitsOf(estimate) };
+  const policy: LookupPolicy = { mode: variant.lookup, block: 'auto', qubitCap: qubitsMax };
+  const { items, terms } = encoding.shape;
+  if (policy.mode !== 'dirty' && encoding.program && items) {
+    const { blocks } = tripletStep(items, variant.spin, widths, policy);
+    const tables = tripletTables(encoding.program(), { keep, innerKeep: keep, rotation });
+    return tripletWalk(tables, variant.spin, blocks);
+  }
+  if (policy.mode !== 'dirty' && encoding.sparseProgram && terms) {
+    const { bits, refinement, blocks } = sparseStep(terms, widths, policy);
+    return sparseWalk(sparseTables(encoding.sparseProgram(), bits, refinement), blocks);
+  }
+  throw new InputError({
+    code: 'no-circuit',
+    where: `variant "${formatVariant(variant)}"`,
+    found: 'an encoding without an emitted circuit',
+    expected: 'triplet factors or sparse terms, with clean or plain look-ups',
+    mend: 'Choose such a variant, e.g. triplet/separate/swap-layers/median/clean.',
+  });
+}
+
+function tripletWalk(tables: TripletTables, spin: VariantName['spin'], blocks: WalkBlocks): WalkCircuit {
+  return {
+    parts: CIRCUIT_PARTS,
+    emit(part, machine, { control, withGradient }) {
+      if (part === 'prepare') {
+        const lent = machine.allocateRegister(outerScratch(tables, blocks), 'alternate and keep');
+        outerPrepare(tables, prepareWires(tables, machine), blocks, lent).run(machine);
+        return;
+      }
+      const wires = walkWires(tables, machine, 'gradient');
+      if (withGradient) {
+        machine.enter('phase gradient, once a run');
+        prepareGradient(machine, wires.gradient);
+        machine.leave();
+      }
+      const operation =
+        part === 'walk-step'
+          ? walkStep(tables, wires, spin, blocks, control)
+          : tripletBlockEncoding(tables, wires, spin, blocks);
+      operation.run(machine);
+    },
+  };
+}
+
+function sparseWalk(tables: SparseTables, blocks: Blocks): WalkCircuit {
+  return {
+    parts: ['walk-step', 'block-encoding'],
+    emit(part, machine, { control }) {
+      const wires = sparseWires(tables.layout, machine);
+      const operation =
+        part === 'walk-step'
+          ? sparseWalkStep(tables, wires, blocks, control)
+          : sparseBlockEncoding(tables, wires, blocks);
+      operation.run(machine);
+    },
+  };
+}
