@@ -1,6 +1,7 @@
 import type { Comparison, ComparisonRun, VariantEstimate } from '../../core/plan';
 import { formatChange, formatSignificant } from '../../core/units';
 import { type CompareRow, compareRows, unitText } from './compare-rows';
+import { outcomeLines } from './outcome-text';
 import { padEnd, padStart, width, wrap } from './text-table';
 
 /** One variant, or the two that differ in how SELECT treats spin alone. */
@@ -34,15 +35,7 @@ export function compareText(
     lines.push('* over the floor for all electron numbers, since the encoding is not shifted', '');
   }
   lines.push(...recommendation(comparison, columns));
-  for (const outcome of outcomes) {
-    if (outcome.status === 'left-out')
-      lines.push(...bullet(`left out: ${outcome.name}: ${outcome.reason}`, columns));
-    if (outcome.status === 'failed') {
-      const { where, found, expected, mend } = outcome.problem;
-      const reason = `failed: ${outcome.name}: ${where}: ${found}; expected ${expected}. ${mend}`;
-      lines.push(...bullet(reason, columns));
-    }
-  }
+  for (const line of outcomeLines(outcomes)) lines.push(...bullet(line, columns));
   return `${lines.join('\n').trimEnd()}\n`;
 }
 

@@ -3,7 +3,9 @@ import { throwFirstError } from '../../core/integrals';
 import { type ComparisonRun, comparisonDocument } from '../../core/plan';
 import { circuitCountText, circuitText } from './circuit-text';
 import { compareText } from './compare-text';
+import { encodeText } from './encode-text';
 import { inspectText } from './inspect-text';
+import { outcomeLines } from './outcome-text';
 import { copyFolder, placeReserved, writeWhole } from './output';
 import type { TerminalStream } from './progress';
 import type { Manner } from './request';
@@ -50,7 +52,7 @@ export function printResult(
         () => comparisonDocument(run.comparison),
         () => compareText(run, meaning, columns),
       );
-      if (manner.json) for (const line of outcomeNotes(run)) err.write(`${line}\n`);
+      if (manner.json) for (const line of outcomeLines(run.outcomes)) err.write(`${line}\n`);
       return compareStatus(run);
     }
     case 'verify': {
@@ -76,6 +78,15 @@ export function printResult(
       );
       return DONE;
     }
+    case 'encode': {
+      const { tables, out: folder } = result;
+      placeReserved(folder);
+      answer(
+        () => ({ ...tables, folder: folder.path }),
+        () => encodeText(tables, folder.path),
+      );
+      return DONE;
+    }
     case 'whatif':
       answer(
         () => whatIfDocument(result.whatIf),
@@ -92,16 +103,6 @@ export function printResult(
       return DONE;
     }
   }
-}
-
-/** With JSON on stdout, what is missing from it is said on stderr. */
-function outcomeNotes({ outcomes }: ComparisonRun): string[] {
-  return outcomes.flatMap((outcome) => {
-    if (outcome.status === 'left-out') return [`left out: ${outcome.name}: ${outcome.reason}`];
-    if (outcome.status !== 'failed') return [];
-    const { where, found, expected, mend } = outcome.problem;
-    return [`failed: ${outcome.name}: ${where}: ${found}; expected ${expected}. ${mend}`];
-  });
 }
 
 function compareStatus({ outcomes }: ComparisonRun): number {

@@ -196,6 +196,7 @@ export async function encodeSpatial(
     lambda,
     constant,
     residual: factorisation.residual,
+    notes: factorisation.notes,
     rebuild: () => rebuildSpatial(h, factorisation, blocks, oneBody),
     ...programs(constant),
   };

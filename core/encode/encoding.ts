@@ -64,6 +64,8 @@ export interface Encoding {
   /** c with H − c what the circuit encodes: E₀ − ½Σw_tτ_t² + tr κ⁰ + ¼Σw_tΛ_t² (+ shift terms). Hartree. */
   readonly constant: number;
   readonly residual: Residual;
+  /** What its factors could not be made as asked, one sentence each. */
+  readonly notes?: readonly string[];
   /**
    * Rebuilds the Hamiltonian that this encoding stands for, from its factors alone, in product form. A shifted
    * encoding gives the same operator in the η-electron sector only.

@@ -155,6 +155,7 @@ export function encodeSpinors(h: SpinorHamiltonian, factors: Factorisation, vari
     lambda: sumLambda({ charge: oneNorm, spin: 0 }, parts),
     constant: total,
     residual: factors.residual,
+    notes: factors.notes,
     rebuild,
     ...(shape.spinors ? { spinorProgram: program } : {}),
   };

@@ -29,7 +29,13 @@ export interface ComparisonRequest extends SystemRequest {
 
 /** What became of one requested variant. */
 export type VariantOutcome =
-  | { readonly status: 'done'; readonly name: string; readonly estimate: VariantEstimate }
+  | {
+      readonly status: 'done';
+      readonly name: string;
+      readonly estimate: VariantEstimate;
+      /** What could not be made as asked, one sentence each. */
+      readonly notes?: readonly string[];
+    }
   /** Not computed for a reason known beforehand, such as a sector that is too large. */
   | { readonly status: 'left-out'; readonly name: string; readonly reason: string }
   | { readonly status: 'failed'; readonly name: string; readonly problem: Problem };

@@ -75,7 +75,8 @@ export async function runComparison(
       : await attempt(name, async () => {
           const encoding = await encodings.of(variant, named);
           events.onEncoded?.(name, encoding.shape);
-          return estimateOf(encoding, variant, terms, request, target, floors, named);
+          const estimate = await estimateOf(encoding, variant, terms, request, target, floors, named);
+          return { estimate, notes: encoding.notes ?? [] };
         });
     outcomes.push(outcome);
     events.onOutcome?.(outcome);
@@ -99,9 +100,12 @@ export async function runComparison(
   };
 }
 
-async function attempt(name: string, work: () => Promise<VariantEstimate>): Promise<VariantOutcome> {
+async function attempt(
+  name: string,
+  work: () => Promise<{ readonly estimate: VariantEstimate; readonly notes: readonly string[] }>,
+): Promise<VariantOutcome> {
   try {
-    return { status: 'done', name, estimate: await work() };
+    return { status: 'done', name, ...(await work()) };
   } catch (error) {
     if (error instanceof Cancelled) throw error;
     return { status: 'failed', name, problem: problemOf(error, name) };
