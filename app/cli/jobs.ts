@@ -2,17 +2,26 @@ import { SURFACE_CODE_DEFAULTS, whatif } from '../../core/estimate';
 import type { JobContext } from '../../core/job';
 import {
   countCircuit,
+  encodeTables,
   inspectIntegrals,
+  npyBytes,
   runComparison,
   runVerification,
   writeCircuit,
 } from '../../core/plan';
 import { loadInputs, openInputs, readReference } from './inputs';
-import { writeStreamed } from './output';
-import type { CircuitRequest, CompareRequest, InspectRequest, Request, VerifyRequest } from './request';
+import { writeFolder, writeStreamed } from './output';
+import type {
+  CircuitRequest,
+  CompareRequest,
+  EncodeRequest,
+  InspectRequest,
+  Request,
+  VerifyRequest,
+} from './request';
 import type { Result } from './result';
 
-/** Does what a request asks for. Runs in the job's thread; writes nothing but a circuit, to its temporary name. */
+/** Does what a request asks for. Runs in the job's thread; writes nothing but circuits and tables, to their temporary names. */
 export async function answer(request: Request, context: JobContext): Promise<Result> {
   switch (request.command) {
     case 'inspect':
@@ -23,6 +32,8 @@ export async function answer(request: Request, context: JobContext): Promise<Res
       return verify(request, context);
     case 'circuit':
       return circuit(request, context);
+    case 'encode':
+      return encode(request, context);
     case 'whatif':
       return { command: 'whatif', whatIf: whatif(request.options, SURFACE_CODE_DEFAULTS) };
     case 'copy-demo':
@@ -67,4 +78,14 @@ async function circuit(request: CircuitRequest, context: JobContext): Promise<Re
     writeCircuit(set, { ...request.circuit, part }, context, write),
   );
   return { command: 'circuit-text', text, out };
+}
+
+async function encode(request: EncodeRequest, context: JobContext): Promise<Result> {
+  const set = await loadInputs(await openInputs(request, context), request.encode.terms, 'throw', context);
+  const { document, arrays } = await encodeTables(set, request.encode, context);
+  writeFolder(request.out, function* () {
+    yield ['tables.json', `${JSON.stringify(document, null, 2)}\n`] as const;
+    for (const array of arrays) yield [`${array.name}.npy`, npyBytes(array)] as const;
+  });
+  return { command: 'encode', tables: document, out: request.out };
 }

@@ -79,7 +79,37 @@ export async function writeStreamed<T>(
   }
 }
 
-/** Gives a reserved file its own name. */
+/**
+ * Writes the files of a reserved folder one by one.
+ * @throws InputError `folder-in-use`, `cannot-write`
+ */
+export function writeFolder(
+  { path, temporary }: OutputFile,
+  files: () => Iterable<readonly [name: string, content: string | Uint8Array]>,
+): void {
+  refuseUsedFolder(path);
+  for (const [name, content] of files()) {
+    try {
+      mkdirSync(temporary, { recursive: true });
+      writeFileSync(join(temporary, name), content, { flag: 'wx' });
+    } catch (error) {
+      throw cannotWrite(path, error);
+    }
+  }
+}
+
+function refuseUsedFolder(path: string): void {
+  if (!existsSync(path) || readdirSync(path).length === 0) return;
+  throw new InputError({
+    code: 'folder-in-use',
+    where: path,
+    found: 'the folder holds files',
+    expected: 'a new or an empty folder',
+    mend: 'Name another folder.',
+  });
+}
+
+/** Gives a reserved file or folder its own name; an empty folder of that name gives way. */
 export function placeReserved({ path, temporary }: OutputFile): void {
   try {
     renameSync(temporary, resolve(path));
@@ -100,18 +130,8 @@ export function writeWhole(path: string, text: string): void {
  */
 export function copyFolder(source: string, path: string): readonly string[] {
   const target = resolve(path);
-  if (existsSync(target)) {
-    if (readdirSync(target).length > 0) {
-      throw new InputError({
-        code: 'folder-in-use',
-        where: path,
-        found: 'the folder holds files',
-        expected: 'a new or an empty folder',
-        mend: 'Name another folder.',
-      });
-    }
-    rmSync(target, { recursive: true });
-  }
+  refuseUsedFolder(path);
+  if (existsSync(target)) rmSync(target, { recursive: true });
   place(target, (temporary) => cpSync(source, temporary, { recursive: true }));
   return readdirSync(target).sort();
 }

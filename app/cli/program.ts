@@ -2,6 +2,7 @@ import { Command, CommanderError, Option } from 'commander';
 import { MEANINGS } from '../../core/plan';
 import { version } from '../../package.json';
 import { addCircuit } from './circuit-command';
+import { addEncode } from './encode-command';
 import {
   compareRequest,
   electronsOf,
@@ -116,6 +117,8 @@ function buildProgram(demoFolder: string, accept: Accept): Command {
 
   addCircuit(costed(reading(program.command('circuit'))), accept);
 
+  addEncode(costed(reading(program.command('encode'))), accept);
+
   addWhatIf(answering(program.command('whatif')), accept);
 
   comparing(answering(program.command('demo')))
@@ -191,4 +194,4 @@ function fromCommander(error: CommanderError, args: readonly string[]): Error {
   );
 }
 
-const COMMANDS = ['inspect', 'compare', 'verify', 'circuit', 'whatif', 'demo'];
+const COMMANDS = ['inspect', 'compare', 'verify', 'circuit', 'encode', 'whatif', 'demo'];

@@ -38,7 +38,14 @@ export interface CircuitRequest extends InputFiles {
   readonly out: OutputFile | null;
 }
 
-/** A file that the job writes under a temporary name while the main thread sees to it. */
+/** The tables of one variant, written into a folder. */
+export interface EncodeRequest extends InputFiles {
+  readonly command: 'encode';
+  readonly encode: PlanCircuitRequest;
+  readonly out: OutputFile;
+}
+
+/** A file or folder that the job writes under a temporary name while the main thread sees to it. */
 export interface OutputFile {
   readonly path: string;
   readonly temporary: string;
@@ -61,6 +68,7 @@ export type Request =
   | CompareRequest
   | VerifyRequest
   | CircuitRequest
+  | EncodeRequest
   | WhatIfRequest
   | CopyDemoRequest;
 

@@ -6,6 +6,7 @@ import type {
   Evidence,
   Inspection,
   Meaning,
+  TablesDocument,
 } from '../../core/plan';
 import type { OutputFile } from './request';
 
@@ -21,5 +22,6 @@ export type Result =
   | { readonly command: 'verify'; readonly evidence: Evidence }
   | { readonly command: 'circuit-count'; readonly count: CircuitCount }
   | { readonly command: 'circuit-text'; readonly text: CircuitText; readonly out: OutputFile }
+  | { readonly command: 'encode'; readonly tables: TablesDocument; readonly out: OutputFile }
   | { readonly command: 'whatif'; readonly whatIf: WhatIfResult }
   | { readonly command: 'copy-demo'; readonly from: string; readonly out: string };

@@ -8,6 +8,9 @@ export {
 } from './circuit-run';
 export type { Comparison, Target, TermSummary, VariantEstimate } from './comparison';
 export { comparisonDocument, variantDocument } from './document';
+export { type EncodedTables, encodeTables, type TablesDocument } from './encode-tables';
+export { npyBytes } from './encode-tables-npy';
+export { readTables } from './encode-tables-read';
 export type { Check, Evidence } from './evidence';
 export { type Inspection, inspectIntegrals } from './inspection';
 export { recommend } from './recommendation';
