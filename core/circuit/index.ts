@@ -1,9 +1,10 @@
 export * from './formulas';
 export { type GateCount, GateCounter } from './gates/counter';
 export { GATE_KINDS, type GateKind, type GateSink, Machine } from './gates/machine';
-export type { Operation } from './gates/operation';
+export { type Operation, within } from './gates/operation';
 export type { Blocks } from './primitives/look-up';
 export { prepareGradient } from './primitives/phase-gradient';
+export { hadamards } from './primitives/reflection';
 export { addressBits } from './primitives/unary-iteration';
 export { type Census, takeCensus } from './qasm/census';
 export { type QasmText, writeQasm } from './qasm/write';

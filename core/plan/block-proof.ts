@@ -1,26 +1,13 @@
-import {
-  chooseBlocks,
-  encodedProgram,
-  sizesOf,
-  type TripletBits,
-  tripletLayout,
-  tripletTables,
-} from '../circuit';
 import { type Encoding, formatVariant, type VariantName } from '../encode';
 import type { SpinHamiltonian } from '../hamiltonian';
 import type { JobContext } from '../job';
 import type { ComplexMatrix } from '../linalg';
-import { programOperator, type SectorMatrix, sectorBasis, sectorMatrix, simulatedBlock } from '../verify';
+import { type SectorBasis, type SectorMatrix, sectorBasis, sectorMatrix, simulatedBlock } from '../verify';
 import { type Check, check } from './evidence';
+import { provableBlock } from './provable-block';
 
 /** Circuits up to this many orbitals are simulated: the state grows with rows, bits and determinants. */
 export const MAX_PROOF_ORBITALS = 3;
-
-/**
- * Bits of the simulated circuit. The inner tables are coarse, because their uniform numbers multiply the state; what
- * they round is in the bound, and held exactly against the tables by a check of its own.
- */
-const BITS: TripletBits = { keep: 20, innerKeep: 3, rotation: 16 };
 
 /** Rounding of some ten thousand simulated gates, as a part of λ. */
 const SIMULATION = 1e-10;
@@ -36,9 +23,9 @@ export interface BlockProof {
 }
 
 /**
- * Simulates the emitted PREPARE† · SELECT · PREPARE of a triplet variant and compares its block, column by column,
- * with the operator that the rounded tables stand for (equal to rounding) and with H itself (within the bound that
- * follows from the bits).
+ * Simulates the emitted PREPARE† · SELECT · PREPARE of a variant and compares its block, column by column, with the
+ * operator that the rounded tables stand for (equal to rounding) and with H itself (within the bound that follows
+ * from the bits).
  *
  * @returns null where no circuit of the variant can be simulated here.
  */
@@ -48,26 +35,23 @@ export async function proveBlock(
   variant: VariantName,
   context: JobContext,
 ): Promise<BlockProof | null> {
-  if (hamiltonian.kind !== 'spatial' || !encoding.program || hamiltonian.orbitals > MAX_PROOF_ORBITALS)
-    return null;
-  if (variant.lookup === 'dirty') return null;
-  const program = encoding.program();
-  const tables = tripletTables(program, BITS);
-  const layout = tripletLayout(sizesOf(program), BITS);
-  const blocks = chooseBlocks(layout, BITS, { mode: variant.lookup, block: 'auto' }, null);
-  const basis = sectorBasis(2 * hamiltonian.orbitals, hamiltonian.electrons);
-  const block = await simulatedBlock(tables, variant.spin, blocks, basis, context);
+  if (encoding.shape.orbitals > MAX_PROOF_ORBITALS) return null;
+  const provable = provableBlock(encoding, variant);
+  if (!provable) return null;
+  const { electrons } = hamiltonian;
+  const basis = sectorBasis(2 * encoding.shape.orbitals, electrons);
+  const block = await simulatedBlock(provable.circuit, basis, context);
   const lambda = encoding.lambda.total;
-  const rounded = programOperator(encodedProgram(program, tables), basis);
-  const exact = dense(await sectorMatrix(hamiltonian, hamiltonian.electrons, 'product', context));
+  const exact = dense(await sectorMatrix(hamiltonian, electrons, 'product', context));
+  if (provable.phases) turn(exact, provable.phases, basis);
   const name = `${formatVariant(variant)}: emitted circuit against its rounded tables, largest element`;
   return {
     maxError: largestDifference(block, lambda, encoding.constant, exact),
-    bound: roundingBound(encoding, BITS),
+    bound: provable.bound,
     columns: basis.dim,
     check: check(
       name,
-      largestDifference(block, lambda, 0, rounded),
+      largestDifference(block, lambda, 0, provable.encoded(basis)),
       0,
       SIMULATION * lambda,
       'simulation of the emitted gates; rows and squares evaluated on Fock space',
@@ -75,20 +59,20 @@ export async function proveBlock(
   };
 }
 
-/**
- * Bound on the operator norm of what rounding changes. Weights: every probability is off by less than one unit, so
- * λ2^−ℵ for the outer table, four times λ₂2^−ℵ for the rows of squares, λ₁2^−ℵ for one-body rows. Angles: a unit vector
- * moves by at most δ = √(N−1)·π/2^b, each product by 2δ, a square T₂ by 8δ(1 + δ).
- */
-function roundingBound({ lambda, shape }: Encoding, bits: TripletBits): number {
-  const { oneBody, twoBody, total } = lambda;
-  const delta = (Math.sqrt(shape.orbitals - 1) * Math.PI) / 2 ** bits.rotation;
-  return (
-    total * 2 ** -bits.keep +
-    (4 * twoBody + oneBody) * 2 ** -bits.innerKeep +
-    8 * delta * (1 + delta) * twoBody +
-    2 * delta * oneBody
+/** ⟨a|H|b⟩ over modes e^{iφ_P} ψ_P, in place. */
+function turn({ n, re, im }: ComplexMatrix, phases: Float64Array, { states }: SectorBasis): void {
+  const total = Float64Array.from(states, (state) =>
+    phases.reduce((sum, phi, p) => sum + ((state >>> p) & 1 ? phi : 0), 0),
   );
+  for (let i = 0; i < n; i++) {
+    for (let j = 0; j < n; j++) {
+      const angle = total[j]! - total[i]!;
+      const [c, s] = [Math.cos(angle), Math.sin(angle)];
+      const [x, y] = [re[i * n + j]!, im[i * n + j]!];
+      re[i * n + j] = c * x - s * y;
+      im[i * n + j] = c * y + s * x;
+    }
+  }
 }
 
 /** max |scale·a + shift·1 − b|. */

@@ -1,110 +1,102 @@
-import type { SpinTreatment, TripletTables, WalkBlocks } from '../circuit';
-import {
-  addressBits,
-  ancillaWires,
-  GateCounter,
-  Machine,
-  SparseState,
-  walkWires,
-  withItemData,
-} from '../circuit';
+import { addressBits, GateCounter, Machine, type Operation, SparseState } from '../circuit';
 import type { JobContext } from '../job';
 import type { ComplexMatrix } from '../linalg';
 import type { SectorBasis } from './determinants';
 
 /**
- * ⟨0|U|0⟩ of an emitted triplet block encoding on all determinants of a sector, by simulation of the circuit.
- *
- * The outer registers only steer: gates never change them between PREPARE and its undoing. So the block is the sum
- * over their basis states of probability times the block with that basis state put in, and each of those needs far
- * fewer amplitudes than the whole (a small case with everything running is a unit test). All columns are simulated
- * at once, each with its number in a register that no gate touches.
+ * An emitted block encoding whose steering registers are kept out of superposition. Registers that no gate changes
+ * between PREPARE and its undoing only steer: the block is the sum over their basis states of probability times the
+ * block with that basis state put in, and each of those needs far fewer amplitudes than the whole.
+ */
+export interface SteeredBlock {
+  /** One for each thing that the steering registers can lead to; they sum to 1. */
+  readonly probabilities: readonly number[];
+  /** Amplitudes that one determinant grows to under one basis state: how many are simulated together. */
+  readonly spread: number;
+  /** Allocates the circuit's wires. */
+  open(machine: Machine): OpenBlock;
+}
+
+export interface OpenBlock {
+  readonly system: readonly number[];
+  /** Wires at 1 in a basis state of the steering registers. */
+  readonly steering: (branch: number) => readonly number[];
+  readonly operation: Operation;
+  /** Wires, none of them steering, whose zero state the block is projected on. */
+  readonly projected: readonly number[];
+}
+
+/** Amplitudes that one simulation may grow to: keeps it in fast memory. */
+const AMPLITUDES = 20_000;
+
+/**
+ * ⟨0|U|0⟩ of an emitted block encoding on all determinants of a sector, by simulation of the circuit. Columns and
+ * basis states of the steering registers are simulated together, each pair with its own number in a register that no
+ * gate touches.
  *
  * @returns dim×dim matrix, row = final determinant. Times λ, plus the encoding's constant, it is to be H.
  */
 export async function simulatedBlock(
-  tables: TripletTables,
-  spin: SpinTreatment,
-  blocks: WalkBlocks,
+  circuit: SteeredBlock,
   basis: SectorBasis,
   context: JobContext,
 ): Promise<ComplexMatrix> {
   const { dim } = basis;
   const block = { n: dim, re: new Float64Array(dim * dim), im: new Float64Array(dim * dim) };
-  const outerStates = tables.items.flatMap((item, t) =>
-    item.lambda.flatMap((_, face) =>
-      (item.paired ? [0, 1] : [0]).map((square) => ({
-        t,
-        face,
-        square,
-        probability: tables.outer.probabilities[face * 2 ** tables.itemBits + t]! / (item.paired ? 2 : 1),
-      })),
-    ),
-  );
-  const wires = peakWires(tables, spin, blocks) + addressBits(dim);
-  for (const [done, outer] of outerStates.entries()) {
-    context.report('simulating the circuit', done, outerStates.length);
+  const branches = [...circuit.probabilities.keys()].filter((b) => circuit.probabilities[b]! > 0);
+  const batch = Math.max(1, Math.floor(AMPLITUDES / (dim * circuit.spread)));
+  const wires = peakWires(circuit) + addressBits(dim * Math.min(batch, branches.length));
+  for (let from = 0; from < branches.length; from += batch) {
+    context.report('simulating the circuit', from, branches.length);
     await context.checkpoint();
-    if (outer.probability > 0) addItemBlock(block, tables, spin, blocks, basis, outer, wires, context.seed);
+    addBranches(block, circuit, branches.slice(from, from + batch), basis, wires, context.seed);
   }
-  context.report('simulating the circuit', outerStates.length, outerStates.length);
+  context.report('simulating the circuit', branches.length, branches.length);
   return block;
 }
 
 /** A basis state takes as many words as it has wires, so the simulator is given no more than are used. */
-function peakWires(tables: TripletTables, spin: SpinTreatment, blocks: WalkBlocks): number {
+function peakWires(circuit: SteeredBlock): number {
   const machine = new Machine(new GateCounter({ toffoliOnly: true }));
-  withItemData(tables, walkWires(tables, machine, 'exact'), spin, blocks).run(machine);
+  circuit.open(machine).operation.run(machine);
   return machine.peak;
 }
 
-interface OuterState {
-  readonly t: number;
-  readonly face: number;
-  readonly square: number;
-  readonly probability: number;
-}
-
-function addItemBlock(
+function addBranches(
   block: ComplexMatrix,
-  tables: TripletTables,
-  spin: SpinTreatment,
-  blocks: WalkBlocks,
-  basis: SectorBasis,
-  outer: OuterState,
+  circuit: SteeredBlock,
+  branches: readonly number[],
+  { dim, modes, states, rank }: SectorBasis,
   maxWires: number,
   seed: number,
 ): void {
-  const { dim, modes, states } = basis;
   const state = new SparseState({ maxWires, seed });
   const machine = new Machine(state);
-  const column = machine.allocateRegister(addressBits(dim));
-  const wires = walkWires(tables, machine, 'exact');
-  const steering = [
-    ...wires.item.filter((_, i) => (outer.t >> i) & 1),
-    ...(outer.face === 1 ? [wires.face!] : []),
-    ...(outer.square === 1 ? [wires.square!] : []),
-  ];
+  const label = machine.allocateRegister(addressBits(dim * branches.length));
+  const { system, steering, operation, projected } = circuit.open(machine);
   state.load(
-    Array.from(states, (determinant, j) => ({
-      ones: [
-        ...column.filter((_, i) => (j >> i) & 1),
-        ...wires.system.filter((_, m) => (determinant >>> m) & 1),
-        ...steering,
-      ],
-      amplitude: 1,
-    })),
+    branches.flatMap((branch, b) => {
+      const fixed = steering(branch);
+      return Array.from(states, (determinant, j) => ({
+        ones: [
+          ...label.filter((_, i) => Math.floor((b * dim + j) / 2 ** i) % 2 === 1),
+          ...system.filter((_, m) => (determinant >>> m) & 1),
+          ...fixed,
+        ],
+        amplitude: 1,
+      }));
+    }),
   );
-  withItemData(tables, wires, spin, blocks).run(machine);
-  const ancillas = ancillaWires(wires).filter((wire) => !steering.includes(wire));
+  operation.run(machine);
   state.visit((isSet, re, im) => {
-    if (ancillas.some((wire) => isSet(wire))) return;
+    if (projected.some((wire) => isSet(wire))) return;
     let determinant = 0;
-    for (let m = 0; m < modes; m++) if (isSet(wires.system[m]!)) determinant |= 1 << m;
-    let j = 0;
-    for (const [i, wire] of column.entries()) if (isSet(wire)) j |= 1 << i;
-    const row = basis.rank(determinant >>> 0);
-    block.re[row * dim + j]! += outer.probability * re;
-    block.im[row * dim + j]! += outer.probability * im;
+    for (let m = 0; m < modes; m++) if (isSet(system[m]!)) determinant |= 1 << m;
+    let at = 0;
+    for (const [i, wire] of label.entries()) if (isSet(wire)) at += 2 ** i;
+    const probability = circuit.probabilities[branches[Math.floor(at / dim)]!]!;
+    const to = rank(determinant >>> 0) * dim + (at % dim);
+    block.re[to]! += probability * re;
+    block.im[to]! += probability * im;
   });
 }

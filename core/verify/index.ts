@@ -1,4 +1,4 @@
-export { simulatedBlock } from './block-encoding';
+export { type OpenBlock, type SteeredBlock, simulatedBlock } from './block-encoding';
 export {
   type DeterminantEnergies,
   determinantEnergies,
@@ -11,9 +11,12 @@ export { programOperator } from './program-operator';
 export { REFERENCE_LEVELS, referenceEigenvalues } from './reference';
 export { MAX_SECTOR_DIMENSION, type SectorMatrix, sectorMatrix } from './sector-matrix';
 export { multiplySparse } from './sparse';
-export { simulatedSparseBlock } from './sparse-block';
+export { sparseBlock } from './sparse-block';
 export { sparseProgramOperator } from './sparse-block-operator';
 export type { SparseHermitian } from './sparse-hermitian';
 export { type SpectralRange, type SpectralRangeOptions, spectralRange } from './spectral-range';
 export { exactSpectrum, type Spectrum, type SpectrumOptions } from './spectrum';
+export { spinorBlock } from './spinor-block';
+export { spinorProgramOperator } from './spinor-block-operator';
+export { tripletBlock } from './triplet-block';
 export { type LevelShifts, levelShifts, windowOfProgram } from './window-levels';

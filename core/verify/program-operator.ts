@@ -8,7 +8,7 @@ import {
 } from '../hamiltonian';
 import type { ComplexMatrix } from '../linalg';
 import type { SectorBasis } from './determinants';
-import { oneBodyFockMatrix } from './fock';
+import { addIdentity, addProduct, addScaled, dagger, oneBodyOnSector, zeroMatrix } from './sector-operators';
 
 /**
  * H − constant that a triplet program stands for, on the determinants of a sector: dense, from the meaning of rows
@@ -16,7 +16,7 @@ import { oneBodyFockMatrix } from './fock';
  */
 export function programOperator(program: TripletProgram, basis: SectorBasis): ComplexMatrix {
   const n = program.orbitals;
-  const total = zeros(basis.dim);
+  const total = zeroMatrix(basis.dim);
   addScaled(total, rowsOperator(n, program.oneBody, 0, 1, basis), 1);
   for (const item of program.items) {
     for (const [face, lambda] of item.lambda.entries()) {
@@ -24,8 +24,8 @@ export function programOperator(program: TripletProgram, basis: SectorBasis): Co
       for (const square of item.paired ? [1, -1] : [1]) {
         const m = rowsOperator(n, item.rows, face, item.paired ? square : 1, basis);
         const share = (item.sign * square * lambda) / (item.paired ? 2 : 1);
-        addScaled(total, adjointTimes(m), (2 * share) / norm ** 2);
-        for (let i = 0; i < basis.dim; i++) total.re[i * basis.dim + i]! -= share;
+        addProduct(total, dagger(m), m, (2 * share) / norm ** 2);
+        addIdentity(total, -share);
       }
     }
   }
@@ -68,50 +68,9 @@ function rowsOperator(
     if (row.kind === 'S') re -= scale;
     else im += scale * row.u.reduce((sum, x, p) => sum + x * row.v[p]!, 0);
   }
-  const out = zeros(basis.dim);
+  const out = zeroMatrix(basis.dim);
   for (const operator of Object.values(sectors))
-    addScaled(out, restrict(oneBodyFockMatrix(toSpinOrbitals(operator)), basis), 1);
-  for (let i = 0; i < basis.dim; i++) {
-    out.re[i * basis.dim + i]! += re;
-    out.im[i * basis.dim + i]! += im;
-  }
+    addScaled(out, oneBodyOnSector(toSpinOrbitals(operator), basis), 1);
+  addIdentity(out, re, im);
   return out;
-}
-
-function restrict(full: ComplexMatrix, { dim, states }: SectorBasis): ComplexMatrix {
-  const out = zeros(dim);
-  for (let i = 0; i < dim; i++) {
-    for (let j = 0; j < dim; j++) {
-      out.re[i * dim + j] = full.re[states[i]! * full.n + states[j]!]!;
-      out.im[i * dim + j] = full.im[states[i]! * full.n + states[j]!]!;
-    }
-  }
-  return out;
-}
-
-/** M†M. */
-function adjointTimes(m: ComplexMatrix): ComplexMatrix {
-  const { n } = m;
-  const out = zeros(n);
-  for (let i = 0; i < n; i++) {
-    for (let j = 0; j < n; j++) {
-      for (let k = 0; k < n; k++) {
-        const [a, b, c, d] = [m.re[k * n + i]!, -m.im[k * n + i]!, m.re[k * n + j]!, m.im[k * n + j]!];
-        out.re[i * n + j]! += a * c - b * d;
-        out.im[i * n + j]! += a * d + b * c;
-      }
-    }
-  }
-  return out;
-}
-
-function zeros(n: number): ComplexMatrix {
-  return { n, re: new Float64Array(n * n), im: new Float64Array(n * n) };
-}
-
-function addScaled(target: ComplexMatrix, a: ComplexMatrix, scale: number): void {
-  for (let i = 0; i < a.re.length; i++) {
-    target.re[i]! += scale * a.re[i]!;
-    target.im[i]! += scale * a.im[i]!;
-  }
 }

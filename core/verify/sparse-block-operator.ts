@@ -2,7 +2,7 @@ import type { SparseProgram, TermKind } from '../encode';
 import { isSymmetricPlane, type Mu, type Sector, toSpinOrbitals, zeroOperator } from '../hamiltonian';
 import type { ComplexMatrix } from '../linalg';
 import type { SectorBasis } from './determinants';
-import { oneBodyFockMatrix } from './fock';
+import { addIdentity, addProduct, addScaled, oneBodyOnSector, zeroMatrix } from './sector-operators';
 
 /**
  * H − constant that a sparse program stands for, on the determinants of a sector: dense, from triplet excitations on
@@ -10,7 +10,7 @@ import { oneBodyFockMatrix } from './fock';
  */
 export function sparseProgramOperator(program: SparseProgram, basis: SectorBasis): ComplexMatrix {
   const { orbitals, kinds, kindOf, orbitalsOf, weights, negative } = program;
-  const total = zeros(basis.dim);
+  const total = zeroMatrix(basis.dim);
   const rows = new Map<string, ComplexMatrix>();
   const row = (antisymmetric: boolean, mu: Mu, p: number, q: number): ComplexMatrix => {
     const key = [antisymmetric, mu, p, q].join();
@@ -67,50 +67,13 @@ function rowOperator(
   const plane = mu * n * n;
   operator.planes[plane + p * n + q]! += 0.5;
   operator.planes[plane + q * n + p]! += antisymmetric ? -0.5 : 0.5;
-  const out = restrict(oneBodyFockMatrix(toSpinOrbitals(operator)), basis);
-  if (!antisymmetric && mu === 0 && p === q) {
-    for (let i = 0; i < basis.dim; i++) out.re[i * basis.dim + i]! -= 1;
-  }
-  return out;
-}
-
-function restrict(full: ComplexMatrix, { dim, states }: SectorBasis): ComplexMatrix {
-  const out = zeros(dim);
-  for (let i = 0; i < dim; i++) {
-    for (let j = 0; j < dim; j++) {
-      out.re[i * dim + j] = full.re[states[i]! * full.n + states[j]!]!;
-      out.im[i * dim + j] = full.im[states[i]! * full.n + states[j]!]!;
-    }
-  }
+  const out = oneBodyOnSector(toSpinOrbitals(operator), basis);
+  if (!antisymmetric && mu === 0 && p === q) addIdentity(out, -1);
   return out;
 }
 
 /** target += scale (ab + ba). */
 function addAnticommutator(target: ComplexMatrix, a: ComplexMatrix, b: ComplexMatrix, scale: number): void {
-  const { n } = target;
-  const addProduct = (x: ComplexMatrix, y: ComplexMatrix) => {
-    for (let i = 0; i < n; i++) {
-      for (let k = 0; k < n; k++) {
-        const [re, im] = [scale * x.re[i * n + k]!, scale * x.im[i * n + k]!];
-        if (re === 0 && im === 0) continue;
-        for (let j = 0; j < n; j++) {
-          target.re[i * n + j]! += re * y.re[k * n + j]! - im * y.im[k * n + j]!;
-          target.im[i * n + j]! += re * y.im[k * n + j]! + im * y.re[k * n + j]!;
-        }
-      }
-    }
-  };
-  addProduct(a, b);
-  addProduct(b, a);
-}
-
-function zeros(n: number): ComplexMatrix {
-  return { n, re: new Float64Array(n * n), im: new Float64Array(n * n) };
-}
-
-function addScaled(target: ComplexMatrix, a: ComplexMatrix, scale: number): void {
-  for (let i = 0; i < a.re.length; i++) {
-    target.re[i]! += scale * a.re[i]!;
-    target.im[i]! += scale * a.im[i]!;
-  }
+  addProduct(target, a, b, scale);
+  addProduct(target, b, a, scale);
 }

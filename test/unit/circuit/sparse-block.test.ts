@@ -11,7 +11,13 @@ import { buildHamiltonian, type SpatialHamiltonian } from '../../../core/hamilto
 import type { SelectableTerm } from '../../../core/integrals';
 import { inlineContext } from '../../../core/job';
 import type { ComplexMatrix } from '../../../core/linalg';
-import { sectorBasis, sectorMatrix, simulatedSparseBlock, sparseProgramOperator } from '../../../core/verify';
+import {
+  sectorBasis,
+  sectorMatrix,
+  simulatedBlock,
+  sparseBlock,
+  sparseProgramOperator,
+} from '../../../core/verify';
 import { findSet, loadSet } from '../../published/data-set';
 
 const POLICY: LookupPolicy = { mode: 'clean', block: 'auto', qubitCap: null };
@@ -76,7 +82,7 @@ it.each([
   const step = sparseStep(encoding.shape.terms!, { keepBits, phaseBits: 1 }, POLICY);
   const tables = sparseTables(program, step.bits, step.refinement);
   const basis = sectorBasis(6, 5);
-  const block = await simulatedSparseBlock(tables, step.blocks, basis, context);
+  const block = await simulatedBlock(sparseBlock(tables, step.blocks), basis, context);
 
   const lambda = encoding.lambda.total;
   const rounded = sparseProgramOperator(encodedSparseProgram(tables), basis);
