@@ -15,7 +15,7 @@ interface Column {
 const MATRIX_ELEMENT =
   'Reckoned as phase estimation of one level; estimating matrix elements directly is not reckoned.';
 const GAP = '   ';
-const SEAM = 9;
+const SEAM = 10;
 const LEAST_CELL = 11;
 const LEAST_LINE = 80;
 
