@@ -32,8 +32,16 @@ function place(target: string, write: (temporary: string) => void): void {
   } catch (error) {
     throw cannotWrite(target, error);
   } finally {
+    discard(temporary);
+  }
+}
+
+function discard(temporary: string): void {
+  pending.delete(temporary);
+  try {
     rmSync(temporary, { recursive: true, force: true });
-    pending.delete(temporary);
+  } catch {
+    // What was to be its folder is none: then there is nothing to remove either.
   }
 }
 
@@ -138,5 +146,5 @@ export function copyFolder(source: string, path: string): readonly string[] {
 
 /** Removes what an interrupted write left. */
 export function removePending(): void {
-  for (const temporary of pending) rmSync(temporary, { recursive: true, force: true });
+  for (const temporary of pending) discard(temporary);
 }

@@ -1,7 +1,6 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
-import type { GateKind, GateSink } from '../../../core/circuit/gates/machine';
-import { Machine } from '../../../core/circuit/gates/machine';
+import type { GateKind, Machine } from '../../../core/circuit/gates/machine';
 import { lookUp } from '../../../core/circuit/primitives/look-up';
 import { takeCensus } from '../../../core/circuit/qasm/census';
 import { takeIdentifier } from '../../../core/circuit/qasm/identifiers';
@@ -9,72 +8,7 @@ import { writeQasm } from '../../../core/circuit/qasm/write';
 import { SparseState } from '../../../core/circuit/simulate/sparse-state';
 import { parse } from './qasm/parse';
 import { play } from './qasm/play';
-
-const textOf = (circuit: (machine: Machine) => void, comments: readonly string[] = []): string => {
-  const chunks: string[] = [];
-  writeQasm(circuit, takeCensus(circuit), { comments, write: (chunk) => chunks.push(chunk) });
-  return chunks.join('');
-};
-
-type Amplitudes = Map<string, readonly [number, number]>;
-
-/** By the values of the named registers; all other wires must be 0. */
-function amplitudes(state: SparseState, registers: ReadonlyMap<string, readonly number[]>): Amplitudes {
-  const out: Amplitudes = new Map();
-  state.visit((isSet, re, im) => {
-    const key = [...registers]
-      .map(([name, wires]) => `${name}=${wires.map((w) => +isSet(w)).join('')}`)
-      .join(' ');
-    expect(out.has(key)).toBe(false);
-    out.set(key, [re, im]);
-  });
-  return out;
-}
-
-/** Entangles a register with a reference of the same size: the state then shows every column of what follows. */
-function spread(sink: GateSink, wires: readonly number[], reference: readonly number[]): void {
-  for (const [i, wire] of wires.entries()) {
-    sink.gate('H', wire, -1, -1, -1);
-    sink.gate('CX', wire, reference[i]!, -1, -1);
-  }
-}
-
-const REFERENCE = 100;
-
-/**
- * Runs a circuit on `inputs` named registers straight on the simulator and by way of its text, on all basis states of
- * them at once, with measurement outcomes forced to `outcome`; both must give the same amplitudes.
- */
-function expectSame(circuit: (machine: Machine) => void, outcome: 0 | 1): void {
-  const census = takeCensus(circuit);
-  const named = new Map(census.registers.map(({ name, wires }) => [name, wires]));
-  const inputs = [...named.values()].flat();
-  const reference = inputs.map((_, i) => REFERENCE + i);
-
-  const direct = new SparseState({ maxWires: 160, outcomes: outcome });
-  spread(direct, inputs, reference);
-  circuit(new Machine(direct));
-
-  const reread = new SparseState({ maxWires: 160, outcomes: outcome });
-  let next = REFERENCE;
-  const { qubits } = play(textOf(circuit), reread, (name, wires) => {
-    if (!named.has(name)) return;
-    spread(
-      reread,
-      wires,
-      wires.map(() => next++),
-    );
-  });
-  const all = (registers: ReadonlyMap<string, readonly number[]>) =>
-    new Map([...registers].filter(([name]) => named.has(name)).concat([['reference', reference]]));
-  const want = amplitudes(direct, all(named));
-  const got = amplitudes(reread, all(qubits));
-  expect(got.size).toBe(want.size);
-  for (const [key, [re, im]] of want) {
-    expect(got.get(key)![0]).toBeCloseTo(re, 12);
-    expect(got.get(key)![1]).toBeCloseTo(im, 12);
-  }
-}
+import { expectSame, textOf } from './qasm/same';
 
 const SIZE = 4;
 const ARITY: Partial<Record<GateKind, number>> = {
@@ -111,32 +45,36 @@ describe('the OpenQASM 3 text of a circuit', () => {
         fc.array(step, { maxLength: 25 }),
         fc.constantFrom(0 as const, 1 as const),
         (steps, outcome) => {
-          expectSame((machine) => {
-            const q = machine.allocateRegister(SIZE, 'q');
-            for (const [i, one] of steps.entries()) {
-              const [a, b, c] = one.wires.map((w) => q[w]!) as [number, number, number];
-              if (one.kind === 'rz') machine.rotateZ(a, 'angle' in one ? one.angle : 0);
-              else if (one.kind === 'AND') {
-                machine.enter(`product ${i}`);
-                const t = machine.allocate();
-                machine.gate('AND', a, b, t);
-                machine.gate('CX', t, c);
-                machine.gate('UNAND', a, b, t);
-                machine.release(t);
-                machine.leave();
-              } else if (one.kind === 'measure') {
-                // A copy, measured away: its phase is mended by a conditioned gate.
-                const t = machine.allocate();
-                machine.gate('CX', a, t);
-                const bit = machine.measureX(t);
-                machine.release(t);
-                machine.gate('Z', a, -1, -1, bit);
-              } else {
-                const arity = ARITY[one.kind]!;
-                machine.gate(one.kind, a, arity > 1 ? b : -1, arity > 2 ? c : -1);
+          expectSame(
+            (machine) => {
+              const q = machine.allocateRegister(SIZE, 'q');
+              for (const [i, one] of steps.entries()) {
+                const [a, b, c] = one.wires.map((w) => q[w]!) as [number, number, number];
+                if (one.kind === 'rz') machine.rotateZ(a, 'angle' in one ? one.angle : 0);
+                else if (one.kind === 'AND') {
+                  machine.enter(`product ${i}`);
+                  const t = machine.allocate();
+                  machine.gate('AND', a, b, t);
+                  machine.gate('CX', t, c);
+                  machine.gate('UNAND', a, b, t);
+                  machine.release(t);
+                  machine.leave();
+                } else if (one.kind === 'measure') {
+                  // A copy, measured away: its phase is mended by a conditioned gate.
+                  const t = machine.allocate();
+                  machine.gate('CX', a, t);
+                  const bit = machine.measureX(t);
+                  machine.release(t);
+                  machine.gate('Z', a, -1, -1, bit);
+                } else {
+                  const arity = ARITY[one.kind]!;
+                  machine.gate(one.kind, a, arity > 1 ? b : -1, arity > 2 ? c : -1);
+                }
               }
-            }
-          }, outcome);
+            },
+            outcome,
+            ['q'],
+          );
         },
       ),
       { numRuns: 150 },
@@ -149,23 +87,27 @@ describe('the OpenQASM 3 text of a circuit', () => {
       width: 2,
       bit: (address: number, b: number) => (((address * 5 + 3) >> b) & 1) === 1,
     };
-    expectSame((machine) => {
-      const address = machine.allocateRegister(3, 'address');
-      // Only listed addresses may be asked for: 3 and 6 become 2 and 7.
-      const other = machine.allocateRegister(1, 'other')[0]!;
-      const [low, middle, high] = address as [number, number, number];
-      machine.gate('X', high);
-      machine.gate('CCX', high, middle, other);
-      machine.gate('X', high);
-      machine.gate('CX', other, low);
-      void low;
-      const output = machine.allocateRegister(4);
-      const operation = lookUp(address, output, table, { read: 2, erase: 2 });
-      operation.run(machine);
-      machine.gate('CZ', output[0]!, output[1]!);
-      operation.runAdjoint(machine);
-      machine.releaseRegister(output);
-    }, outcome);
+    expectSame(
+      (machine) => {
+        const address = machine.allocateRegister(3, 'address');
+        // Only listed addresses may be asked for: 3 and 6 become 2 and 7.
+        const other = machine.allocateRegister(1, 'other')[0]!;
+        const [low, middle, high] = address as [number, number, number];
+        machine.gate('X', high);
+        machine.gate('CCX', high, middle, other);
+        machine.gate('X', high);
+        machine.gate('CX', other, low);
+        void low;
+        const output = machine.allocateRegister(4);
+        const operation = lookUp(address, output, table, { read: 2, erase: 2 });
+        operation.run(machine);
+        machine.gate('CZ', output[0]!, output[1]!);
+        operation.runAdjoint(machine);
+        machine.releaseRegister(output);
+      },
+      outcome,
+      ['address', 'other'],
+    );
   });
 
   it('names registers, marks subroutines, and is the same twice', () => {
