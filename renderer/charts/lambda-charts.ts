@@ -1,4 +1,4 @@
-import type { ChartConfiguration, Plugin } from 'chart.js';
+import type { ChartConfiguration, Plugin, Scale } from 'chart.js';
 import { formatOneNorm, normUnderHead } from '../figures/figures';
 import { drawText, FONT, type Palette } from './palette';
 
@@ -16,6 +16,14 @@ export interface PartsModel {
 }
 
 const LABELS = 124;
+
+/** Labels in a column of fixed width; no room above and below, since the first and last row are half a row from the edge. */
+function fitLabels(axis: Scale): void {
+  axis.width = LABELS;
+  axis.paddingTop = 0;
+  axis.paddingBottom = 0;
+}
+
 const FIGURES = 62;
 
 /** A total this many times the least one is off the scale: its bar is broken and its figure printed. */
@@ -108,9 +116,7 @@ export function totalsChart(model: TotalsModel, palette: Palette): ChartConfigur
             autoSkip: false,
             padding: 6,
           },
-          afterFit: (axis) => {
-            axis.width = LABELS;
-          },
+          afterFit: fitLabels,
         },
       },
       plugins: { legend: { display: false }, tooltip: { enabled: false } },
@@ -186,7 +192,12 @@ export function partsChart(model: PartsModel, palette: Palette): ChartConfigurat
             font: { family: FONT, size: 12 },
             maxRotation: 0,
             autoSkip: false,
-            callback: (value) => (isPower(Number(value)) ? powerWords(Number(value)) : ''),
+            // Words of six decades and more would touch: every other one then.
+            callback: (value) => {
+              const decade = Math.round(Math.log10(Number(value)));
+              const crowded = Math.log10(high / low) > 4.5 && decade % 2 !== 0;
+              return isPower(Number(value)) && !crowded ? powerWords(Number(value)) : '';
+            },
           },
         },
         y: {
@@ -206,9 +217,7 @@ export function partsChart(model: PartsModel, palette: Palette): ChartConfigurat
             autoSkip: false,
             callback: (value) => model.rows[Number(value)]?.word ?? '',
           },
-          afterFit: (axis) => {
-            axis.width = LABELS;
-          },
+          afterFit: fitLabels,
         },
       },
       plugins: { legend: { display: false }, tooltip: { enabled: false } },

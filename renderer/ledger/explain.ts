@@ -109,7 +109,7 @@ const EXPLAIN: Readonly<Record<RowId, Explain>> = {
         ' + ',
       ),
       words('. '),
-      source('Closed formulas, not an emitted circuit.'),
+      source('Counted by the closed formulas of the recipe.'),
     ],
     dearest(e),
   ],
