@@ -47,18 +47,24 @@ export {
   spinorWires,
   withSpinorItem,
 } from './spinor/walk';
+export type { StepBits } from './squares/step';
+export type { WeightTables } from './squares/tables';
+export {
+  outerPrepare,
+  outerScratch,
+  type PrepareWires,
+  prepareWires,
+  type SquaresBlocks,
+} from './squares/walk';
 export { chooseBlocks } from './triplet/blocks';
 export type { SpinTreatment } from './triplet/product';
 export { tripletRecipe } from './triplet/recipe';
 export { sizesOf, type TripletLayout, tripletLayout } from './triplet/sizes';
-export { type StepBits, type TripletStep, tripletStep } from './triplet/step';
+export { type TripletStep, tripletStep } from './triplet/step';
 export { encodedProgram, type TripletBits, type TripletTables, tripletTables } from './triplet/tables';
 export {
   ancillaWires,
   blockEncoding as tripletBlockEncoding,
-  outerPrepare,
-  outerScratch,
-  prepareWires,
   type WalkBlocks,
   walkStep,
   walkWires,

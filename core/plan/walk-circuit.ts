@@ -3,21 +3,31 @@ import {
   bitsFor,
   type LookupPolicy,
   type Machine,
+  type Operation,
   outerPrepare,
   outerScratch,
   prepareGradient,
   prepareWires,
   type SparseTables,
+  type SpinorBlocks,
+  type SpinorTables,
+  type SquaresBlocks,
   sparseBlockEncoding,
   sparseStep,
   sparseTables,
   sparseWalkStep,
   sparseWires,
+  spinorBlockEncoding,
+  spinorStep,
+  spinorTables,
+  spinorWalkStep,
+  spinorWires,
   type TripletTables,
   tripletBlockEncoding,
   tripletStep,
   tripletTables,
   type WalkBlocks,
+  type WeightTables,
   walkStep,
   walkWires,
 } from '../circuit';
@@ -62,11 +72,16 @@ export function walkCircuit(
   const { keep, rotation } = estimate.bits;
   const widths = { keepBits: keep, rotationBits: rotation, phaseBits: phaseBitsOf(estimate) };
   const policy: LookupPolicy = { mode: variant.lookup, block: 'auto', qubitCap: qubitsMax };
-  const { items, terms } = encoding.shape;
+  const { items, spinors, terms } = encoding.shape;
   if (policy.mode !== 'dirty' && encoding.program && items) {
     const { blocks } = tripletStep(items, variant.spin, widths, policy);
     const tables = tripletTables(encoding.program(), { keep, innerKeep: keep, rotation });
     return tripletWalk(tables, variant.spin, blocks);
+  }
+  if (policy.mode !== 'dirty' && encoding.spinorProgram && spinors) {
+    const { layout, blocks } = spinorStep(spinors, widths, policy);
+    const bits = { keep, innerKeep: keep, rotation };
+    return spinorWalk(spinorTables(encoding.spinorProgram(), bits, layout.merged), blocks);
   }
   if (policy.mode !== 'dirty' && encoding.sparseProgram && terms) {
     const { bits, refinement, blocks } = sparseStep(terms, widths, policy);
@@ -76,31 +91,71 @@ export function walkCircuit(
     code: 'no-circuit',
     where: `variant "${formatVariant(variant)}"`,
     found: 'an encoding without an emitted circuit',
-    expected: 'triplet factors or sparse terms, with clean or plain look-ups',
+    expected: 'triplet factors, spinor factors or sparse terms, with clean or plain look-ups',
     mend: 'Choose such a variant, e.g. triplet/separate/swap-layers/median/clean.',
   });
 }
 
 function tripletWalk(tables: TripletTables, spin: VariantName['spin'], blocks: WalkBlocks): WalkCircuit {
+  return squaresWalk({
+    weights: tables,
+    hasPaired: tables.hasPaired,
+    blocks,
+    open(machine) {
+      const wires = walkWires(tables, machine, 'gradient');
+      return {
+        gradient: wires.gradient,
+        step: (control) => walkStep(tables, wires, spin, blocks, control),
+        blockEncoding: () => tripletBlockEncoding(tables, wires, spin, blocks),
+      };
+    },
+  });
+}
+
+function spinorWalk(tables: SpinorTables, blocks: SpinorBlocks): WalkCircuit {
+  return squaresWalk({
+    weights: tables.weights,
+    hasPaired: tables.layout.hasPaired,
+    blocks,
+    open(machine) {
+      const wires = spinorWires(tables, machine, 'gradient');
+      return {
+        gradient: wires.gradient,
+        step: (control) => spinorWalkStep(tables, wires, blocks, control),
+        blockEncoding: () => spinorBlockEncoding(tables, wires, blocks),
+      };
+    },
+  });
+}
+
+/** A form of encoding by squares, on wires of its own. */
+interface SquaresEmitter {
+  readonly weights: WeightTables;
+  readonly hasPaired: boolean;
+  readonly blocks: SquaresBlocks;
+  open(machine: Machine): {
+    readonly gradient: readonly number[];
+    readonly step: (control: number | null) => Operation;
+    readonly blockEncoding: () => Operation;
+  };
+}
+
+function squaresWalk({ weights, hasPaired, blocks, open }: SquaresEmitter): WalkCircuit {
   return {
     parts: CIRCUIT_PARTS,
     emit(part, machine, { control, withGradient }) {
       if (part === 'prepare') {
-        const lent = machine.allocateRegister(outerScratch(tables, blocks), 'alternate and keep');
-        outerPrepare(tables, prepareWires(tables, machine), blocks, lent).run(machine);
+        const lent = machine.allocateRegister(outerScratch({ weights, blocks }), 'alternate and keep');
+        outerPrepare({ weights, blocks }, prepareWires(weights, hasPaired, machine), lent).run(machine);
         return;
       }
-      const wires = walkWires(tables, machine, 'gradient');
+      const { gradient, step, blockEncoding } = open(machine);
       if (withGradient) {
         machine.enter('phase gradient, once a run');
-        prepareGradient(machine, wires.gradient);
+        prepareGradient(machine, gradient);
         machine.leave();
       }
-      const operation =
-        part === 'walk-step'
-          ? walkStep(tables, wires, spin, blocks, control)
-          : tripletBlockEncoding(tables, wires, spin, blocks);
-      operation.run(machine);
+      (part === 'walk-step' ? step(control) : blockEncoding()).run(machine);
     },
   };
 }

@@ -90,7 +90,7 @@ it('the recipe counts the emitted walk step, part by part, and its peak of wires
         walkStep(tables, wires, spin, blocks, control).run(machine);
 
         const controls = controlled ? 1 : 0;
-        const recipe: Subroutine = tripletRecipe(sizes, layout, bits, spin, blocks, {
+        const recipe: Subroutine = tripletRecipe(program.orbitals, layout, bits, spin, blocks, {
           registers: [{ name: 'control', qubits: controls }],
           controls,
         });

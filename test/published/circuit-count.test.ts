@@ -12,6 +12,9 @@ const VARIANTS = [
   'triplet/joint/swap-layers/median/clean',
   'triplet/separate/index/none/plain',
   'triplet/separate/swap-layers/median/clean',
+  'spinor/joint/index/median/clean',
+  'spinor/separate/index/median/clean',
+  'spinor/separate/index/none/plain',
 ];
 
 describe.each(['oh_sto3g', 'ch2o_sto3g_8o', 'ch2o_631g_20o'])('%s', (name) => {

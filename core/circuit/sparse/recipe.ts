@@ -2,7 +2,7 @@ import { type Blocks, erasureToffoli, lookUpToffoli, oneHotToffoli } from '../pr
 import { reflectionToffoli } from '../primitives/reflection';
 import { addressBits } from '../primitives/unary-iteration';
 import type { StepPart, Subroutine } from '../recipe';
-import type { PhaseEstimationPart } from '../triplet/recipe';
+import type { PhaseEstimationPart } from '../squares/recipe';
 import type { SparseLayout } from './layout';
 import { constantComparisonToffoli, multipleToffoli } from './multiple';
 import { orbitalExchangeToffoli, pairExchangeToffoli, pairsToffoli, pairsWires } from './select';

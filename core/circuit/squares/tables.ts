@@ -21,7 +21,7 @@ export interface WeightedItem {
  */
 export interface WeightTables {
   readonly keepBits: KeepBits;
-  readonly items: number;
+  readonly itemCount: number;
   readonly itemBits: number;
   readonly hasFaces: boolean;
   readonly rowBits: number;
@@ -55,7 +55,7 @@ export function weightTables(items: readonly WeightedItem[], bits: KeepBits): We
   }
   return {
     keepBits: { keep: bits.keep, innerKeep: bits.innerKeep },
-    items: items.length,
+    itemCount: items.length,
     itemBits,
     hasFaces,
     rowBits,

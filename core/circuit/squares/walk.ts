@@ -66,6 +66,17 @@ export interface ProductUse extends ItemWires {
   readonly extra: readonly number[];
 }
 
+/** Allocates the wires of the outer PREPARE alone. */
+export function prepareWires(weights: WeightTables, hasPaired: boolean, machine: Machine): PrepareWires {
+  const allocate = (size: number, name: string) => machine.allocateRegister(size, name);
+  return {
+    item: allocate(weights.itemBits, 'item'),
+    face: allocate(weights.hasFaces ? 1 : 0, 'face')[0] ?? null,
+    square: allocate(hasPaired ? 1 : 0, 'square')[0] ?? null,
+    outerUniform: allocate(weights.keepBits.keep, 'outer uniform'),
+  };
+}
+
 /** @param plus - names of the wires in the plus state. */
 export function squaresWires(
   weights: WeightTables,
@@ -73,15 +84,11 @@ export function squaresWires(
   plus: readonly string[],
   machine: Machine,
 ): SquaresWires {
-  const allocate = (size: number, name: string) => machine.allocateRegister(size, name);
   return {
-    item: allocate(weights.itemBits, 'item'),
-    face: allocate(weights.hasFaces ? 1 : 0, 'face')[0] ?? null,
-    square: allocate(hasPaired ? 1 : 0, 'square')[0] ?? null,
-    outerUniform: allocate(weights.keepBits.keep, 'outer uniform'),
-    row: allocate(weights.rowBits, 'row'),
-    innerUniform: allocate(weights.keepBits.innerKeep, 'inner uniform'),
-    plus: plus.flatMap((name) => allocate(1, name)),
+    ...prepareWires(weights, hasPaired, machine),
+    row: machine.allocateRegister(weights.rowBits, 'row'),
+    innerUniform: machine.allocateRegister(weights.keepBits.innerKeep, 'inner uniform'),
+    plus: plus.flatMap((name) => machine.allocateRegister(1, name)),
   };
 }
 
@@ -164,9 +171,9 @@ export function squaresWalkStep(form: SquaresForm, wires: SquaresWires, control:
 
 /** Loads what depends on the item alone, applies the item, and takes the data back. */
 export function squaresItem(form: SquaresForm, wires: SquaresWires): Operation {
-  const { items, rowBits, sizeBits } = form.weights;
-  const last = items - 1;
-  const data = Array.from({ length: items }, (_, t) => [
+  const { itemCount, rowBits, sizeBits } = form.weights;
+  const last = itemCount - 1;
+  const data = Array.from({ length: itemCount }, (_, t) => [
     form.isNegative(t),
     form.isPaired(t),
     t !== last,
@@ -174,7 +181,7 @@ export function squaresItem(form: SquaresForm, wires: SquaresWires): Operation {
   ]);
   const width = rowBits + data[0]!.length;
   const table = {
-    addresses: firstAddresses(items),
+    addresses: firstAddresses(itemCount),
     width,
     bit: (t: number, b: number) => (b < rowBits ? sizeBits[t]! > b : data[t]![b - rowBits]!),
   };

@@ -1,5 +1,5 @@
 import type { TripletRow } from '../../encode/program';
-import { anglesOf, vectorOf } from '../primitives/majorana';
+import { roundVector } from '../squares/rounded-vector';
 import { rowBits } from './rows';
 
 /**
@@ -22,13 +22,7 @@ export interface RoundedRow {
   readonly turned: 1 | -1;
 }
 
-/** θ of one step: 2π/2^b with b = angleBits + 1; number x stands for θ = (x + ½) steps. */
-const step = (angleBits: number) => (2 * Math.PI) / 2 ** (angleBits + 1);
-
-/**
- * Rounds a row. Every θ but the last lies in [0, π]; a vector with a negative last component is turned round, its
- * sign kept with the row, so the last one does too and b − 1 bits reach the grid 2π/2^b everywhere.
- */
+/** Rounds a row; the sign of a vector that was turned round is kept with the row. */
 export function roundRow(row: TripletRow, paired: boolean, angleBits: number): RoundedRow {
   const u = roundVector(row.u, angleBits);
   const v = row.kind === 'S' ? u : roundVector(row.v, angleBits);
@@ -44,17 +38,4 @@ export function roundRow(row: TripletRow, paired: boolean, angleBits: number): R
   const isPair = row.kind === 'A' ? 1 : 0;
   const flags = [...first, isPair, paired ? isPair : 0, ...first.map((bit, i) => bit ^ second[i]!)];
   return { u: u.numbers, v: v.numbers, flags: flags.map((bit) => bit === 1), turned };
-}
-
-/** The unit vector that angle numbers stand for. */
-export function roundedVector(numbers: Uint32Array, angleBits: number): Float64Array {
-  return vectorOf(Float64Array.from(numbers, (x) => (x + 0.5) * step(angleBits)));
-}
-
-function roundVector(vector: Float64Array, angleBits: number): { numbers: Uint32Array; sign: 1 | -1 } {
-  const sign = vector[vector.length - 1]! < 0 ? -1 : 1;
-  const angles = anglesOf(sign < 0 ? vector.map((x) => -x) : vector);
-  const last = 2 ** angleBits - 1;
-  const numbers = Uint32Array.from(angles, (theta) => Math.min(last, Math.floor(theta / step(angleBits))));
-  return { numbers, sign };
 }

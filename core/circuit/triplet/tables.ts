@@ -1,35 +1,26 @@
 import type { TripletItem, TripletProgram } from '../../encode/program';
-import { type AliasTable, aliasTable } from '../primitives/alias-sampling';
-import { addressBits } from '../primitives/unary-iteration';
-import { FACE_FLAGS, IS_PAIR, ROW_FLAGS, type RoundedRow, roundedVector, roundRow } from './rounded-row';
+import { roundedVector } from '../squares/rounded-vector';
+import {
+  encodedLambda,
+  encodedWeights,
+  type KeepBits,
+  type WeightTables,
+  weightTables,
+} from '../squares/tables';
+import { FACE_FLAGS, IS_PAIR, ROW_FLAGS, type RoundedRow, roundRow } from './rounded-row';
 
-export interface TripletBits {
-  /** ℵ of the outer alias table. */
-  readonly keep: number;
-  /** ℵ of the inner alias tables. */
-  readonly innerKeep: number;
+export interface TripletBits extends KeepBits {
   /** b: angles are rounded to the grid 2π/2^b (half a step off zero). */
   readonly rotation: number;
 }
 
-/**
- * The tables of a triplet encoding, rounded to its bits. A row's address is item·2^{rowBits} + row number, the
- * one-body item being the last item; the inner alias tables have the face as a further, highest bit.
- */
-export interface TripletTables {
+/** The tables of a triplet encoding, rounded to its bits; addresses as in {@link WeightTables}. */
+export interface TripletTables extends WeightTables {
   readonly orbitals: number;
   readonly bits: TripletBits;
+  /** The one-body item is the last. */
   readonly items: readonly TripletItem[];
-  readonly itemBits: number;
-  readonly hasFaces: boolean;
   readonly hasPaired: boolean;
-  readonly rowBits: number;
-  /** Bits of the row number that each item puts in superposition. */
-  readonly sizeBits: Uint8Array;
-  /** Over the item number, with the face as highest bit. */
-  readonly outer: AliasTable;
-  /** By address, face included. */
-  readonly inner: readonly (AliasTable & { readonly base: number })[];
   readonly rows: ReadonlyMap<number, RoundedRow>;
   /** Addresses of `rows`, ascending. */
   readonly rowAddresses: Uint32Array;
@@ -48,45 +39,24 @@ export function tripletTables(program: TripletProgram, bits: TripletBits): Tripl
     ...item,
     rows: [...item.rows.filter((row) => row.kind === 'A'), ...item.rows.filter((row) => row.kind === 'S')],
   }));
-  const itemBits = Math.max(1, addressBits(items.length));
-  const hasFaces = items.some((item) => item.lambda.length > 1);
-  const sizeBits = Uint8Array.from(items, (item) => addressBits(item.rows.length));
-  const rowBits = Math.max(1, ...sizeBits);
-
-  const outerWeights = new Float64Array(2 ** (itemBits + (hasFaces ? 1 : 0)));
-  const inner: (AliasTable & { base: number })[] = [];
-  for (const face of hasFaces ? [0, 1] : [0]) {
-    for (const [t, item] of items.entries()) {
-      if (item.lambda[face] === undefined) continue;
-      const index = face * 2 ** itemBits + t;
-      outerWeights[index] = item.lambda[face];
-      const weights = item.rows.map((row) => row.faces[face]!.weight);
-      inner.push({ ...aliasTable(weights, sizeBits[t]!, bits.innerKeep), base: index * 2 ** rowBits });
-    }
-  }
-
+  const weights = weightTables(items, bits);
   const angleBits = bits.rotation - 1;
   const rows = new Map<number, RoundedRow>();
   for (const [t, item] of items.entries()) {
     for (const [j, row] of item.rows.entries()) {
-      rows.set(t * 2 ** rowBits + j, roundRow(row, item.paired, angleBits));
+      rows.set(t * 2 ** weights.rowBits + j, roundRow(row, item.paired, angleBits));
     }
   }
   return {
+    ...weights,
     orbitals: program.orbitals,
     bits,
     items,
-    itemBits,
-    hasFaces,
     hasPaired: items.some((item) => item.paired),
-    rowBits,
-    sizeBits,
-    outer: aliasTable(outerWeights, itemBits + (hasFaces ? 1 : 0), bits.keep),
-    inner,
     rows,
     rowAddresses: Uint32Array.from(rows.keys()),
     angleBits,
-    rowWidth: (program.orbitals - 1) * angleBits + ROW_FLAGS + (hasFaces ? FACE_FLAGS : 0),
+    rowWidth: (program.orbitals - 1) * angleBits + ROW_FLAGS + (weights.hasFaces ? FACE_FLAGS : 0),
   };
 }
 
@@ -106,15 +76,13 @@ export const isPairRow = (tables: TripletTables, address: number): boolean =>
  * difference of the two is the whole rounding error.
  */
 export function encodedProgram(program: TripletProgram, tables: TripletTables): TripletProgram {
-  const { itemBits, rowBits, angleBits, outer, inner, items } = tables;
-  const byBase = new Map(inner.map((table) => [table.base, table]));
-  const total = items.reduce((sum, item) => sum + item.lambda.reduce((a, b) => a + b, 0), 0);
-  const index = (t: number, face: number) => face * 2 ** itemBits + t;
-  const encoded = items.map(
-    (item, t): TripletItem => ({
+  const { rowBits, angleBits, items } = tables;
+  const encoded = items.map((item, t): TripletItem => {
+    const weights = item.lambda.map((_, face) => encodedWeights(tables, t, face));
+    return {
       sign: item.sign,
       paired: item.paired,
-      lambda: item.lambda.map((_, face) => total * outer.probabilities[index(t, face)]!),
+      lambda: item.lambda.map((_, face) => encodedLambda(tables, t, face)),
       rows: item.rows.map((row, j) => {
         const rounded = tables.rows.get(t * 2 ** rowBits + j)!;
         const u = roundedVector(rounded.u, angleBits);
@@ -124,13 +92,13 @@ export function encodedProgram(program: TripletProgram, tables: TripletTables): 
           v: row.kind === 'S' ? u : roundedVector(rounded.v, angleBits),
           faces: row.faces.map((face, f) => ({
             mu: face.mu,
-            weight: byBase.get(index(t, f) * 2 ** rowBits)?.probabilities[j] ?? 0,
+            weight: weights[f]?.[j] ?? 0,
             sign: (face.sign * rounded.turned) as 1 | -1,
           })),
         };
       }),
-    }),
-  );
+    };
+  });
   const oneBody = encoded.pop()!;
   return {
     orbitals: program.orbitals,

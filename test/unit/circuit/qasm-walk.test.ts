@@ -1,14 +1,9 @@
 import { expect, it } from 'vitest';
 import type { Machine } from '../../../core/circuit/gates/machine';
 import { prepareGradient } from '../../../core/circuit/primitives/phase-gradient';
+import { outerPrepare, outerScratch, prepareWires } from '../../../core/circuit/squares/walk';
 import { tripletTables } from '../../../core/circuit/triplet/tables';
-import {
-  outerPrepare,
-  outerScratch,
-  prepareWires,
-  walkStep,
-  walkWires,
-} from '../../../core/circuit/triplet/walk';
+import { walkStep, walkWires } from '../../../core/circuit/triplet/walk';
 import type { TripletProgram, TripletRow } from '../../../core/encode/program';
 import { expectSame } from './qasm/same';
 
@@ -49,8 +44,9 @@ it.each([
 
 it('PREPARE read back gives the amplitudes of its table', () => {
   const circuit = (machine: Machine) => {
-    const lent = machine.allocateRegister(outerScratch(TABLES, BLOCKS), 'alternate and keep');
-    outerPrepare(TABLES, prepareWires(TABLES, machine), BLOCKS, lent).run(machine);
+    const prepared = { weights: TABLES, blocks: BLOCKS };
+    const lent = machine.allocateRegister(outerScratch(prepared), 'alternate and keep');
+    outerPrepare(prepared, prepareWires(TABLES, TABLES.hasPaired, machine), lent).run(machine);
   };
   expect(expectSame(circuit, 1, [])).toBe(4);
 });
