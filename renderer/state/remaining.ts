@@ -4,7 +4,7 @@ const STEPS_S = [5, 10, 20, 40, 60, 120, 180, 300, 600, 1200, 1800, 3600];
 
 /** Time left of a job of equal pieces, in steps rather than seconds, so that it does not flicker. */
 export class Remaining {
-  readonly #total: number;
+  #total: number;
   readonly #now: () => number;
   readonly #start: number;
   #done = 0;
@@ -17,6 +17,11 @@ export class Remaining {
 
   finished(): void {
     this.#done++;
+  }
+
+  /** A piece that turned out to be no work: it says nothing about the others. */
+  dropped(): void {
+    this.#total--;
   }
 
   /** `About 40 s left`, or empty while nothing can be said. */

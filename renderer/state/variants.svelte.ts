@@ -142,7 +142,8 @@ export class VariantsState {
           signal: stop.signal,
           onNews: (news) => {
             this.#hear(news, source, ask);
-            if (news.status !== 'started' && news.status !== 'sized') remaining.finished();
+            if (news.status === 'left-out') remaining.dropped();
+            else if (news.status === 'done' || news.status === 'failed') remaining.finished();
           },
           onProgress: (stage, done, total) => {
             const fraction = total ? Math.min(1, done / total) : null;
