@@ -138,7 +138,7 @@ function read(
 }
 
 /** Whether an address is in the list; millions of them are not gathered unless someone asks. */
-function membership(addresses: Uint32Array): (address: number) => boolean {
+export function membership(addresses: Uint32Array): (address: number) => boolean {
   let listed: Set<number> | null = null;
   return (address) => {
     listed ??= new Set(addresses);
@@ -217,7 +217,7 @@ export function erase(
  *
  * @param lent - 2^j wires in |0⟩ to put them in, or null: wires of their own.
  */
-function oneHot(
+export function oneHot(
   bits: readonly number[],
   lent: readonly number[] | null,
 ): { begin(m: Machine): number[]; end(m: Machine): void } {
