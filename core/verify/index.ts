@@ -10,7 +10,7 @@ export { type RealisedRounding, realisedRounding } from './energy-error';
 export { type Form, fockMatrix, oneBodyFockMatrix, spinorFockMatrix } from './fock';
 export { programOperator } from './program-operator';
 export { REFERENCE_LEVELS, referenceEigenvalues } from './reference';
-export { referenceDeterminant, type SecondOrderChange, secondOrderChange } from './second-order';
+export { referenceDeterminant, type SecondOrder, secondOrder } from './second-order';
 export { MAX_SECTOR_DIMENSION, type SectorMatrix, sectorMatrix } from './sector-matrix';
 export { multiplySparse } from './sparse';
 export { sparseBlock } from './sparse-block';

@@ -1,4 +1,4 @@
-import { normalOrder, type SpatialHamiltonian, type SpinHamiltonian, toSpinOrbitals } from '../hamiltonian';
+import { type SpatialHamiltonian, type SpinHamiltonian, toSpinOrbitals } from '../hamiltonian';
 import { symmetricPair } from '../integrals/integral-set';
 
 /** (PQ|RS) over spin orbitals 2p + σ or spinors, read into `re` and `im`: no allocation in the loops over excitations. */
@@ -99,37 +99,49 @@ class SpatialModes implements ModeIntegrals {
   }
 }
 
-/** The reference's expectation value and its Fock operator F_PQ = h_PQ + Σ_R n_R [(PQ|RR) − (PR|RQ)], hartree. */
+/** A determinant's expectation value and its Fock operator F_PQ = h_PQ + Σ_R n_R [(PQ|RR) − (PR|RQ)], hartree. */
 export interface FockOperator {
   readonly energy: number;
-  /** Row-major over the modes. */
-  readonly re: Float64Array;
-  readonly im: Float64Array;
+  /** F_PP of all modes. */
+  readonly diagonal: Float64Array;
+  /** |F_ia|², filled modes by empty ones. */
+  readonly couplings: Float64Array;
 }
 
-/** @param occupied - 0 or 1 for each mode */
-export function fockOperator(hamiltonian: SpinHamiltonian, occupied: Uint8Array): FockOperator {
-  if (hamiltonian.kind === 'spatial') {
-    const up = Float64Array.from({ length: hamiltonian.orbitals }, (_, p) => occupied[2 * p]!);
-    const down = Float64Array.from({ length: hamiltonian.orbitals }, (_, p) => occupied[2 * p + 1]!);
-    const { energy, even, odd } = normalOrder(hamiltonian, up, down);
-    const [a, b] = [toSpinOrbitals(even), toSpinOrbitals(odd)];
-    return { energy, re: a.re.map((x, i) => x + b.re[i]!), im: a.im.map((x, i) => x + b.im[i]!) };
-  }
-  const { spinors: m, h, g, constant } = hamiltonian;
-  const [re, im] = [h.re.slice(), h.im.slice()];
-  let energy = constant;
-  for (let P = 0; P < m; P++) {
-    for (let Q = 0; Q < m; Q++) {
-      for (let R = 0; R < m; R++) {
-        if (!occupied[R]) continue;
-        const direct = ((P * m + Q) * m + R) * m + R;
-        const exchange = ((P * m + R) * m + R) * m + Q;
-        re[P * m + Q]! += g.re[direct]! - g.re[exchange]!;
-        im[P * m + Q]! += g.im[direct]! - g.im[exchange]!;
-      }
+/** The part of the Fock operator that perturbation theory asks for, from O(modes·η²) integrals. */
+export function fockOperator(
+  hamiltonian: SpinHamiltonian,
+  integrals: ModeIntegrals,
+  filled: readonly number[],
+  empty: readonly number[],
+): FockOperator {
+  const m = integrals.modes;
+  const h = hamiltonian.kind === 'spatial' ? toSpinOrbitals(hamiltonian.h) : hamiltonian.h;
+  let [re, im] = [0, 0];
+  const element = (P: number, Q: number): void => {
+    re = h.re[P * m + Q]!;
+    im = h.im[P * m + Q]!;
+    for (const R of filled) {
+      integrals.read(P, Q, R, R);
+      re += integrals.re;
+      im += integrals.im;
+      integrals.read(P, R, R, Q);
+      re -= integrals.re;
+      im -= integrals.im;
     }
-    if (occupied[P]) energy += 0.5 * (h.re[P * m + P]! + re[P * m + P]!);
-  }
-  return { energy, re, im };
+  };
+  const diagonal = Float64Array.from({ length: m }, (_, P) => {
+    element(P, P);
+    return re;
+  });
+  let energy = hamiltonian.constant;
+  for (const i of filled) energy += 0.5 * (h.re[i * m + i]! + diagonal[i]!);
+  const couplings = new Float64Array(filled.length * empty.length);
+  filled.forEach((i, x) => {
+    empty.forEach((a, z) => {
+      element(i, a);
+      couplings[x * empty.length + z] = re * re + im * im;
+    });
+  });
+  return { energy, diagonal, couplings };
 }

@@ -1,17 +1,17 @@
 import type { SpinHamiltonian } from '../hamiltonian';
 import type { JobContext } from '../job';
-import { type FockOperator, fockOperator, type ModeIntegrals, modeIntegrals } from './second-order-integrals';
+import { fockOperator, type ModeIntegrals, modeIntegrals } from './second-order-integrals';
 
-/** Energy to second order from one determinant, and what a changed Hamiltonian makes of it. Hartree. */
-export interface SecondOrderChange {
-  /** ⟨D|H|D⟩ and the second-order energy with H itself. */
+/** Energy to second order from one determinant, hartree. */
+export interface SecondOrder {
+  /** ⟨D|H|D⟩. */
   readonly reference: number;
+  /** Second-order energy. */
   readonly correlation: number;
-  /** Changed minus given: of ⟨D|H|D⟩, and of the second-order energy. */
-  readonly firstOrder: number;
-  readonly secondOrder: number;
-  /** Excitations that couple and are left out because H puts them too close to the determinant. */
+  /** Excitations that couple and are left out because they lie too close to the determinant. */
   readonly omitted: number;
+  /** Diagonal of the Fock operator. */
+  readonly levels: Float64Array;
 }
 
 /**
@@ -28,79 +28,59 @@ const NO_COUPLING = 1e-20;
  *
  * Assumed: zeroth order is the diagonal of the determinant's own Fock operator, for open shells that of the general
  * determinant with its spin density. Orbitals need not be canonical: couplings i–a count as singles; i–j and a–b are
- * left out. Each Hamiltonian has its own ε; which excitations are left out is decided by the given one.
+ * left out.
  *
  * @param occupied - 0 or 1 for each mode, 2p + σ
+ * @param near - levels that decide which excitations are left out; null: its own. Two Hamiltonians are comparable
+ *   where the second is given the levels of the first.
  */
-export async function secondOrderChange(
-  given: SpinHamiltonian,
-  changed: SpinHamiltonian,
+export async function secondOrder(
+  hamiltonian: SpinHamiltonian,
   occupied: Uint8Array,
+  near: Float64Array | null,
   context: JobContext,
-): Promise<SecondOrderChange> {
-  const [before, after] = [fockOperator(given, occupied), fockOperator(changed, occupied)];
-  await context.checkpoint();
-  const [old, now] = [modeIntegrals(given), modeIntegrals(changed)];
-  const m = old.modes;
+): Promise<SecondOrder> {
+  const integrals = modeIntegrals(hamiltonian);
   const filled: number[] = [];
   const empty: number[] = [];
-  for (let P = 0; P < m; P++) (occupied[P] ? filled : empty).push(P);
-  const [e, f] = [diagonal(before, m), diagonal(after, m)];
-  let [oldSum, newSum, omitted] = [0, 0, 0];
+  for (const [P, x] of occupied.entries()) (x ? filled : empty).push(P);
+  const fock = fockOperator(hamiltonian, integrals, filled, empty);
+  const e = fock.diagonal;
+  const given = near ?? e;
+  let [correlation, omitted] = [0, 0];
   for (const [x, i] of filled.entries()) {
     context.report('second order', x, filled.length);
-    for (const a of empty) {
-      const gap = e[i]! - e[a]!;
-      const at = i * m + a;
-      if (gap > -LEAST_GAP) {
-        if (size(before, at) + size(after, at) > NO_COUPLING) omitted++;
-        continue;
-      }
-      oldSum += size(before, at) / gap;
-      newSum += size(after, at) / (f[i]! - f[a]!);
+    for (const [z, a] of empty.entries()) {
+      const coupling = fock.couplings[x * empty.length + z]!;
+      if (given[i]! - given[a]! <= -LEAST_GAP) correlation += coupling / (e[i]! - e[a]!);
+      else if (coupling > NO_COUPLING) omitted++;
     }
     for (let y = x + 1; y < filled.length; y++) {
-      // Some 1000 doubles between two checkpoints of a large set.
-      if (y % 4 === 0) await context.checkpoint();
+      // Some 1000 doubles each for a large set.
+      await context.checkpoint();
       const j = filled[y]!;
       for (const [z, a] of empty.entries()) {
         for (let w = z + 1; w < empty.length; w++) {
           const b = empty[w]!;
-          const v = coupling(old, i, j, a, b);
-          const u = coupling(now, i, j, a, b);
-          if (v === 0 && u === 0) continue;
-          const gap = e[i]! + e[j]! - e[a]! - e[b]!;
-          if (gap > -LEAST_GAP) {
-            if (v + u > NO_COUPLING) omitted++;
-            continue;
-          }
-          oldSum += v / gap;
-          newSum += u / (f[i]! + f[j]! - f[a]! - f[b]!);
+          const coupling = doubleCoupling(integrals, i, j, a, b);
+          if (coupling === 0) continue;
+          if (given[i]! + given[j]! - given[a]! - given[b]! <= -LEAST_GAP) {
+            correlation += coupling / (e[i]! + e[j]! - e[a]! - e[b]!);
+          } else if (coupling > NO_COUPLING) omitted++;
         }
       }
     }
   }
-  return {
-    reference: before.energy,
-    correlation: oldSum,
-    firstOrder: after.energy - before.energy,
-    secondOrder: newSum - oldSum,
-    omitted,
-  };
+  return { reference: fock.energy, correlation, omitted, levels: e };
 }
 
 /** |(ia|jb) − (ib|ja)|². */
-function coupling(integrals: ModeIntegrals, i: number, j: number, a: number, b: number): number {
+function doubleCoupling(integrals: ModeIntegrals, i: number, j: number, a: number, b: number): number {
   integrals.read(i, a, j, b);
   const { re, im } = integrals;
   integrals.read(i, b, j, a);
   return (re - integrals.re) ** 2 + (im - integrals.im) ** 2;
 }
-
-const size = ({ re, im }: FockOperator, at: number): number => re[at]! ** 2 + im[at]! ** 2;
-
-const diagonal = ({ re }: FockOperator, m: number): Float64Array =>
-  Float64Array.from({ length: m }, (_, P) => re[P * m + P]!);
 
 /**
  * A determinant for occupations 0…2 of spatial orbitals: ↑ before ↓, the fullest orbitals first.
