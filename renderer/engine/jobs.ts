@@ -126,8 +126,8 @@ async function prove(
       ...(Object.keys(evidence.blockEncoding).length === 0
         ? [
             {
-              name: 'gate counts against an emitted circuit',
-              reason: 'no circuit was emitted in this run; the counts are closed formulas',
+              name: 'emitted circuits, simulated against H',
+              reason: 'simulation is for systems of at most three orbitals; choose a smaller set or a window',
             },
           ]
         : []),

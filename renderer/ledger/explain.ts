@@ -109,7 +109,9 @@ const EXPLAIN: Readonly<Record<RowId, Explain>> = {
         ' + ',
       ),
       words('. '),
-      source('Counted by the closed formulas of the recipe.'),
+      source(
+        e.lookup === 'dirty' ? 'Counted by closed formulas.' : 'Equal to the emitted circuit, gate by gate.',
+      ),
     ],
     dearest(e),
   ],

@@ -25,10 +25,10 @@ export const VALUE_WORDS: Readonly<Record<string, string>> = {
 
 /** Values that can be reckoned today; the others have no encoding yet. */
 export const OFFERED: Readonly<Record<Axis, readonly string[]>> = {
-  factorisation: ['sparse', 'triplet', 'spinor'],
+  factorisation: ['sparse', 'triplet', 'compressed', 'spinor'],
   grouping: ['joint', 'separate'],
   spin: ['index', 'swap-layers'],
-  shift: ['none', 'median'],
+  shift: ['none', 'median', 'optimised'],
   lookup: ['plain', 'clean', 'dirty'],
 };
 
@@ -53,9 +53,11 @@ export function product(chosen: Readonly<Partial<Record<Axis, readonly string[]>
   for (const factorisation of pick('factorisation')) {
     // An axis without meaning for the factorisation takes its only value instead of being crossed.
     const sparse = factorisation === 'sparse';
-    for (const grouping of sparse ? ['-'] : pick('grouping'))
-      for (const spin of factorisation === 'triplet' ? pick('spin') : ['index'])
-        for (const shift of sparse ? ['none'] : pick('shift'))
+    const compressed = factorisation === 'compressed';
+    const layered = compressed || factorisation === 'triplet';
+    for (const grouping of sparse ? ['-'] : compressed ? ['separate'] : pick('grouping'))
+      for (const spin of layered ? pick('spin') : ['index'])
+        for (const shift of sparse ? ['none'] : compressed ? ['optimised'] : pick('shift'))
           for (const lookup of pick('lookup')) {
             const name = [factorisation, grouping, spin, shift, lookup].join('/');
             if (whyNot(name) === null) names.add(name);

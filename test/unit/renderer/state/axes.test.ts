@@ -24,6 +24,13 @@ describe('axes', () => {
     ]);
   });
 
+  it('gives compressed factors the grouping and shift that they come with', () => {
+    expect(toggled(USUAL, 'factorisation', 'compressed').slice(USUAL.length)).toEqual([
+      'compressed/separate/index/optimised/clean',
+      'compressed/separate/swap-layers/optimised/clean',
+    ]);
+  });
+
   it('finds its way back from nothing', () => {
     expect(toggled([], 'factorisation', 'sparse').every((n) => n.startsWith('sparse/-/index/none/'))).toBe(
       true,
