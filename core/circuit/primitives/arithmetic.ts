@@ -59,3 +59,30 @@ export function compareInto(x: readonly number[], y: readonly number[], flag: nu
     return within(sequence(complement, chain), gate('CX', carries[n - 1]!, flag));
   });
 }
+
+/** Toffoli of comparing a number of `bits` bits with an odd constant: the lowest bit is free. */
+export function constantComparisonToffoli(bits: number): number {
+  return Math.max(0, bits - 1);
+}
+
+/**
+ * [number < threshold] for an odd constant, in the last of the lent wires (the number has as many): from the lowest
+ * bit up, less_{i+1} = ¬x_i ∨ less_i where the constant has a 1, else ¬x_i ∧ less_i. Kept until taken back for free.
+ */
+export function lessThanConstant(
+  number: readonly number[],
+  threshold: number,
+  lent: readonly number[],
+): Operation {
+  const steps = number.map((x, i): Operation => {
+    const less = lent[i]!;
+    if (i === 0) return sequence(gate('CX', x, less), gate('X', less));
+    const below = lent[i - 1]!;
+    // a ∨ b = ¬(¬a ∧ ¬b)
+    if (Math.floor(threshold / 2 ** i) % 2 === 1) {
+      return sequence(gate('X', below), gate('AND', x, below, less), gate('X', below), gate('X', less));
+    }
+    return sequence(gate('X', x), gate('AND', x, below, less), gate('X', x));
+  });
+  return repeat(steps.length, (i) => steps[i]!);
+}

@@ -1,10 +1,11 @@
+import { constantComparisonToffoli } from '../primitives/arithmetic';
 import { type Blocks, erasureToffoli, lookUpToffoli, oneHotToffoli } from '../primitives/look-up';
 import { reflectionToffoli } from '../primitives/reflection';
 import { addressBits } from '../primitives/unary-iteration';
 import type { StepPart, Subroutine } from '../recipe';
 import type { PhaseEstimationPart } from '../squares/recipe';
 import type { SparseLayout } from './layout';
-import { constantComparisonToffoli, multipleToffoli } from './multiple';
+import { multipleToffoli } from './multiple';
 import { orbitalExchangeToffoli, pairExchangeToffoli, pairsToffoli, pairsWires } from './select';
 import { kindExchangeT, selectedMajoranaToffoli, selectedMajoranaWires } from './selected-majorana';
 import { preparedWires } from './walk';

@@ -1,11 +1,11 @@
 import type { Machine } from '../gates/machine';
 import { gate, nothing, type Operation, repeat, scratch, sequence, span, within } from '../gates/operation';
-import { carryStep } from '../primitives/arithmetic';
+import { carryStep, lessThanConstant } from '../primitives/arithmetic';
 import { type Blocks, lookUp } from '../primitives/look-up';
 import { flipZeros, hadamards } from '../primitives/reflection';
 import { firstAddresses } from '../primitives/unary-iteration';
 import type { SparseLayout } from './layout';
-import { lessThanConstant, multiple, multipleWires } from './multiple';
+import { multiple, multipleWires } from './multiple';
 import { type PlusWires, select } from './select';
 import { rowBit, type SparseTables } from './tables';
 
