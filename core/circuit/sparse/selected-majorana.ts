@@ -1,19 +1,6 @@
-import {
-  adjoint,
-  gate,
-  nothing,
-  type Operation,
-  repeat,
-  scratch,
-  sequence,
-  within,
-} from '../gates/operation';
-import {
-  type Leaf,
-  unaryIteration,
-  unaryIterationToffoli,
-  unaryIterationWires,
-} from '../primitives/unary-iteration';
+import { adjoint, gate, nothing, type Operation, repeat, sequence, within } from '../gates/operation';
+import { type RangedLeaf, rangedIteration, rangedIterationWires } from '../primitives/ranged-iteration';
+import { unaryIterationToffoli } from '../primitives/unary-iteration';
 
 /** Modes 0 … 2N − 1, and 2N for no operator at all. */
 export function modeAddresses(modes: number): Uint32Array {
@@ -27,13 +14,13 @@ export function selectedMajoranaToffoli(modes: number): number {
 
 /** Wires lent: the iteration's, and the one that carries the Jordan–Wigner string. */
 export function selectedMajoranaWires(modes: number): number {
-  return unaryIterationWires(modeAddresses(modes), false) + 1;
+  return rangedIterationWires(modeAddresses(modes), false);
 }
 
 /**
  * X_m Z_{m+1} Z_{m+2} … where the address is m < 2N (kind 0), or X_m Z_m Z_{m+1} … = −i Y_m Z_{m+1} … (kind 1);
- * where it is 2N, only `none`. Unary iteration: a further wire is 1 at all modes after the flagged one and puts the
- * string of Z there (R. Babbush et al., Phys. Rev. X 8, 041015 (2018)).
+ * where it is 2N, only `none`. Ranged unary iteration: a further wire is 1 at all modes after the flagged one and puts
+ * the string of Z there.
  *
  * The strings run upward: Jordan–Wigner in reversed order. a_m then has (−1)^{n_{>m}} in place of (−1)^{n_{<m}},
  * which is the same up to the parity of all electrons: even operators that keep their number do not change.
@@ -48,29 +35,20 @@ export function selectedMajorana(
   none: (flag: number) => Operation = () => nothing,
 ): Operation {
   const modes = system.length;
-  return scratch(1, ([after]) => {
-    const operator = (m: number, flag: number) => {
-      if (m === modes) return none(flag);
-      const flip = gate('CX', flag, system[m]!);
-      return kind === 0 ? flip : sequence(gate('CZ', flag, system[m]!), flip);
+  const operator = (m: number, flag: number) => {
+    if (m === modes) return none(flag);
+    const flip = gate('CX', flag, system[m]!);
+    return kind === 0 ? flip : sequence(gate('CZ', flag, system[m]!), flip);
+  };
+  const leaf =
+    (isAdjoint: boolean): RangedLeaf =>
+    (machine, m, flag, after) => {
+      if (m < modes) machine.gate('CZ', after, system[m]!);
+      const applied = operator(m, flag);
+      if (isAdjoint) applied.runAdjoint(machine);
+      else applied.run(machine);
     };
-    const leaf =
-      (isAdjoint: boolean): Leaf =>
-      (machine, m, flag) => {
-        if (m < modes) machine.gate('CZ', after!, system[m]!);
-        const applied = operator(m, flag);
-        if (isAdjoint) applied.runAdjoint(machine);
-        else applied.run(machine);
-        machine.gate('CX', flag, after!);
-      };
-    const iterate = unaryIteration(address, modeAddresses(modes), null, leaf(false), leaf(true));
-    // The string is its own adjoint, so the iteration runs upward in both directions.
-    const reset = gate('X', after!);
-    return {
-      run: (machine) => sequence(iterate, reset).run(machine),
-      runAdjoint: (machine) => sequence(adjoint(iterate), reset).run(machine),
-    };
-  });
+  return rangedIteration(address, modeAddresses(modes), null, 'above', leaf(false), leaf(true));
 }
 
 /** T gates around one Majorana operator whose kind a wire says: two a mode. */
