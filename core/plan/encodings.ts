@@ -35,13 +35,17 @@ export class Encodings {
     const key = formatVariant({ ...variant, spin: 'index', lookup: 'clean' });
     let encoding = this.#encodings.get(key);
     if (!encoding) {
-      const factorisation =
-        variant.grouping === '-' ? null : await this.#optimised(variant, variant.grouping, context);
+      const factorisation = await this.factorisationOf(variant, context);
       const options = { threshold: this.#threshold };
       encoding = await buildEncoding(this.#hamiltonian, factorisation, variant, options, context);
       this.#encodings.set(key, encoding);
     }
     return encoding;
+  }
+
+  /** What the variant's encoding is made from; null for the sparse form. */
+  async factorisationOf(variant: VariantName, context: JobContext): Promise<Factorisation | null> {
+    return variant.grouping === '-' ? null : this.#optimised(variant, variant.grouping, context);
   }
 
   /** The factorisation of the grouping, its Coulomb factors mixed or their shifts optimised where the variant says so. */

@@ -14,6 +14,7 @@ import { toHartree } from '../units';
 import type { VariantEstimate } from './comparison';
 import { costOf, targetOf, thresholdOf } from './costing';
 import { Encodings } from './encodings';
+import { EnergyEstimates, type TruncationEnergy } from './energy-estimate';
 import { Floors } from './floors';
 import { recommend } from './recommendation';
 import type { ComparisonRequest, ComparisonRun, VariantOutcome } from './request';
@@ -61,6 +62,7 @@ export async function runComparison(
   const terms = hamiltonian.kind === 'spatial' ? hamiltonian.terms : heldTerms(set);
   const encodings = new Encodings(hamiltonian, thresholdOf(request, target), occupationsOf(set, request));
   const floors = new Floors(hamiltonian, MAX_DETERMINANTS);
+  const energies = new EnergyEstimates(hamiltonian, occupationsOf(set, request));
 
   const variants = request.variants ?? defaultVariants(set);
   const outcomes: VariantOutcome[] = [];
@@ -75,8 +77,11 @@ export async function runComparison(
       : await attempt(name, async () => {
           const encoding = await encodings.of(variant, named);
           events.onEncoded?.(name, encoding.shape);
-          const estimate = await estimateOf(encoding, variant, terms, request, target, floors, named);
-          return { estimate, notes: encoding.notes ?? [] };
+          const factorisation = await encodings.factorisationOf(variant, named);
+          const energy = await energies.of(encoding, factorisation, named);
+          const estimate = await estimateOf(encoding, energy, variant, terms, request, target, floors, named);
+          const missing = typeof energy === 'string' ? [`no estimate of the energy error: ${energy}`] : [];
+          return { estimate, notes: [...(encoding.notes ?? []), ...missing] };
         });
     outcomes.push(outcome);
     events.onOutcome?.(outcome);
@@ -136,6 +141,7 @@ function labelled(context: JobContext, label: string): JobContext {
 
 async function estimateOf(
   encoding: Encoding,
+  energy: TruncationEnergy | string | null,
   variant: VariantName,
   terms: readonly SelectableTerm[],
   request: ComparisonRequest,
@@ -158,7 +164,11 @@ async function estimateOf(
     constant,
     factors: shape.factors,
     rows: shape.rows + shape.oneBodyRows,
-    residual: { frobenius: residual.frobenius, oneNormBound: residual.oneNormBound, energyEstimate: null },
+    residual: {
+      frobenius: residual.frobenius,
+      oneNormBound: residual.oneNormBound,
+      energyEstimate: figureOf(energy),
+    },
     bits: cost.bits,
     step: cost.step,
     logicalQubits: cost.logicalQubits,
@@ -168,4 +178,10 @@ async function estimateOf(
     campaignToffoli: cost.campaignToffoli,
     physical: cost.physical,
   };
+}
+
+/** First and second order together; 0 where nothing was dropped, null where there is no estimate. */
+function figureOf(energy: TruncationEnergy | string | null): number | null {
+  if (energy === null) return 0;
+  return typeof energy === 'string' ? null : energy.firstOrder + energy.secondOrder;
 }

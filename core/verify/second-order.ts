@@ -1,11 +1,14 @@
 import type { SpinHamiltonian } from '../hamiltonian';
 import type { JobContext } from '../job';
 import { fockOperator, type ModeIntegrals, modeIntegrals } from './second-order-integrals';
+import { degenerateSpace, type Excitation, lowestInSpace } from './second-order-space';
 
 /** Energy to second order from one determinant, hartree. */
 export interface SecondOrder {
-  /** ⟨D|H|D⟩. */
+  /** ⟨D|H|D⟩, or the lowest level of H among the determinants degenerate with D. */
   readonly reference: number;
+  /** These determinants, D itself first. */
+  readonly space: readonly Excitation[];
   /** Second-order energy. */
   readonly correlation: number;
   /** Excitations that couple and are left out because they lie too close to the determinant. */
@@ -15,8 +18,8 @@ export interface SecondOrder {
 }
 
 /**
- * Excitations nearer than this belong to a (nearly) degenerate reference, about which a series from one determinant
- * says nothing. Hartree; common practice, no source.
+ * Determinants nearer than this are degenerate with the reference: they are diagonalised together with it. Excitations
+ * with smaller denominators are left out. Hartree; common practice, no source.
  */
 const LEAST_GAP = 0.1;
 /** |coupling|² below which nothing is lost by leaving it out: 1e-10 Eh. */
@@ -28,16 +31,17 @@ const NO_COUPLING = 1e-20;
  *
  * Assumed: zeroth order is the diagonal of the determinant's own Fock operator, for open shells that of the general
  * determinant with its spin density. Orbitals need not be canonical: couplings i–a count as singles; i–j and a–b are
- * left out.
+ * left out. Where determinants are degenerate with D (open shells: spin–orbit coupling splits them to first order), the
+ * lowest level among them stands in for ⟨D|H|D⟩, and E₂ is that of D alone.
  *
  * @param occupied - 0 or 1 for each mode, 2p + σ
- * @param near - levels that decide which excitations are left out; null: its own. Two Hamiltonians are comparable
- *   where the second is given the levels of the first.
+ * @param like - decides which determinants are degenerate and which excitations are left out; null: H itself. Two
+ *   Hamiltonians are comparable where the second is told the result of the first.
  */
 export async function secondOrder(
   hamiltonian: SpinHamiltonian,
   occupied: Uint8Array,
-  near: Float64Array | null,
+  like: Pick<SecondOrder, 'levels' | 'space'> | null,
   context: JobContext,
 ): Promise<SecondOrder> {
   const integrals = modeIntegrals(hamiltonian);
@@ -46,12 +50,15 @@ export async function secondOrder(
   for (const [P, x] of occupied.entries()) (x ? filled : empty).push(P);
   const fock = fockOperator(hamiltonian, integrals, filled, empty);
   const e = fock.diagonal;
-  const given = near ?? e;
+  const given = like?.levels ?? e;
+  const space = like?.space ?? degenerateSpace(hamiltonian, occupied, LEAST_GAP);
+  const inSpace = new Set(space.map(({ from, to }) => [...from, ...to].join()));
   let [correlation, omitted] = [0, 0];
   for (const [x, i] of filled.entries()) {
     context.report('second order', x, filled.length);
     for (const [z, a] of empty.entries()) {
       const coupling = fock.couplings[x * empty.length + z]!;
+      if (space.length > 1 && inSpace.has([i, a].join())) continue;
       if (given[i]! - given[a]! <= -LEAST_GAP) correlation += coupling / (e[i]! - e[a]!);
       else if (coupling > NO_COUPLING) omitted++;
     }
@@ -63,7 +70,7 @@ export async function secondOrder(
         for (let w = z + 1; w < empty.length; w++) {
           const b = empty[w]!;
           const coupling = doubleCoupling(integrals, i, j, a, b);
-          if (coupling === 0) continue;
+          if (coupling === 0 || (space.length > 1 && inSpace.has([i, j, a, b].join()))) continue;
           if (given[i]! + given[j]! - given[a]! - given[b]! <= -LEAST_GAP) {
             correlation += coupling / (e[i]! + e[j]! - e[a]! - e[b]!);
           } else if (coupling > NO_COUPLING) omitted++;
@@ -71,7 +78,13 @@ export async function secondOrder(
       }
     }
   }
-  return { reference: fock.energy, correlation, omitted, levels: e };
+  return {
+    reference: space.length > 1 ? lowestInSpace(hamiltonian, integrals, occupied, space) : fock.energy,
+    correlation,
+    omitted,
+    levels: e,
+    space,
+  };
 }
 
 /** |(ia|jb) − (ib|ja)|². */

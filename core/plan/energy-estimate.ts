@@ -1,0 +1,143 @@
+import { buildEncoding, type Encoding, type VariantName } from '../encode';
+import type { Factorisation } from '../factor';
+import type { SpinHamiltonian } from '../hamiltonian';
+import { InputError, type JobContext } from '../job';
+import {
+  type DeterminantStatistics,
+  determinantEnergies,
+  determinantStatistics,
+  extremeDeterminant,
+  referenceDeterminant,
+  type SecondOrder,
+  secondOrder,
+} from '../verify';
+import { hamiltonianOfFactors } from './energy-estimate-hamiltonian';
+
+/** What an encoding's truncation means for the energy, hartree. */
+export interface TruncationEnergy {
+  /**
+   * Change of the reference's energy (one determinant, or the lowest level among those degenerate with it), and of its
+   * second-order energy.
+   */
+  readonly firstOrder: number;
+  readonly secondOrder: number;
+  /** Excitations left out as too close to the determinant. */
+  readonly omitted: number;
+  /** The Hamiltonian that is left, without symmetry shifts. */
+  readonly kept: SpinHamiltonian;
+}
+
+/** Double excitations that are summed over in about a second. */
+const MOST_DOUBLES = 3e6;
+/** Largest number of orbitals whose factors over several spin components are written out densely. */
+const MOST_DENSE = 8;
+
+/** Estimates of the energy error of truncation for the encodings of one Hamiltonian; what they share is computed once. */
+export class EnergyEstimates {
+  readonly #hamiltonian: SpinHamiltonian;
+  readonly #occupations: readonly number[] | null;
+  /** By what was dropped: variants of one factorisation share it whatever their shift. */
+  readonly #known = new Map<Encoding['residual'], TruncationEnergy | string>();
+  #given: { readonly occupied: Uint8Array; readonly energy: SecondOrder } | null = null;
+
+  /** @param occupations - of the reference determinant, or null: the lowest one that a search finds */
+  constructor(hamiltonian: SpinHamiltonian, occupations: readonly number[] | null) {
+    this.#hamiltonian = hamiltonian;
+    this.#occupations = occupations;
+  }
+
+  /**
+   * First and second order of the reference determinant, truncated against full.
+   *
+   * @param factorisation - that the encoding was made from; null for the sparse form
+   * @returns null where nothing was dropped, or a reason why there is no estimate
+   */
+  async of(
+    encoding: Encoding,
+    factorisation: Factorisation | null,
+    context: JobContext,
+  ): Promise<TruncationEnergy | string | null> {
+    const { residual } = encoding;
+    if (residual.oneNormBound === 0 && residual.frobenius === 0) return null;
+    let found = this.#known.get(residual);
+    if (found === undefined) {
+      found = await this.#estimate(encoding, factorisation, context);
+      this.#known.set(residual, found);
+    }
+    return found;
+  }
+
+  async #estimate(
+    encoding: Encoding,
+    factorisation: Factorisation | null,
+    context: JobContext,
+  ): Promise<TruncationEnergy | string> {
+    const h = this.#hamiltonian;
+    const modes = h.kind === 'spatial' ? 2 * h.orbitals : h.spinors;
+    const [filled, empty] = [h.electrons, modes - h.electrons];
+    if ((filled * (filled - 1) * empty * (empty - 1)) / 4 > MOST_DOUBLES) {
+      return 'the second-order sum runs over too many excitations';
+    }
+    const kept = await this.#kept(encoding, factorisation, context);
+    if (typeof kept === 'string') return kept;
+    this.#given ??= await this.#reference(context);
+    const { occupied, energy } = this.#given;
+    const truncated = await secondOrder(kept, occupied, energy, context);
+    return {
+      firstOrder: truncated.reference - energy.reference,
+      secondOrder: truncated.correlation - energy.correlation,
+      omitted: energy.omitted,
+      kept,
+    };
+  }
+
+  async #reference(context: JobContext) {
+    const h = this.#hamiltonian;
+    const occupied = this.#occupations
+      ? referenceDeterminant(this.#occupations, h.electrons)
+      : extremeDeterminant(determinantEnergies(h), h.electrons, 1).occupied;
+    return { occupied, energy: await secondOrder(h, occupied, null, context) };
+  }
+
+  /** The Hamiltonian that is left; a shift would change it outside its sector, and with it the orbital energies. */
+  async #kept(
+    encoding: Encoding,
+    factorisation: Factorisation | null,
+    context: JobContext,
+  ): Promise<SpinHamiltonian | string> {
+    const h = this.#hamiltonian;
+    try {
+      if (!factorisation) return encoding.rebuild();
+      const packed = h.kind === 'spatial' ? await hamiltonianOfFactors(h, factorisation, context) : null;
+      if (packed) return packed;
+      if (h.kind === 'spatial' && h.orbitals > MOST_DENSE) {
+        return 'what is left of factors over several spin components is too large to be written out';
+      }
+      const plain: VariantName = {
+        factorisation: h.kind === 'spatial' ? 'triplet' : 'spinor',
+        grouping: factorisation.grouping,
+        spin: 'index',
+        shift: 'none',
+        lookup: 'clean',
+      };
+      return (await buildEncoding(h, factorisation, plain, {}, context)).rebuild();
+    } catch (error) {
+      if (error instanceof InputError && error.toProblem().code === 'too-large-to-rebuild') {
+        return 'what is left of the factors is too large to be written out';
+      }
+      throw error;
+    }
+  }
+}
+
+/** Determinants drawn for {@link randomDeterminants}. */
+const SAMPLES = 400;
+
+/** What truncation does to determinants drawn at random, with the job's seed. */
+export function randomDeterminants(
+  hamiltonian: SpinHamiltonian,
+  { kept }: TruncationEnergy,
+  context: JobContext,
+): Promise<DeterminantStatistics> {
+  return determinantStatistics(hamiltonian, kept, hamiltonian.electrons, { samples: SAMPLES }, context);
+}
