@@ -109,24 +109,38 @@ function spinorTwoBody(blocks: readonly SpinorItems[]): TwoBody {
 }
 
 /**
- * ½‖κ‖_* over 2N modes, split: charge = ½‖κ⁰⊗1‖_* = ‖κ⁰‖_*, spin = the remainder, which is never negative. A row is a
- * Kramers pair.
+ * Most that λ may rise, as a part of it, where κ is listed plane by plane. A row over all 2N modes takes turns of the
+ * spin of every orbital: where only κ has such rows, they are a tenth of a step and more.
  */
-function oneBodySpinor(part: OneBody) {
+const DIVIDED = 0.01;
+
+/** ½‖κ‖_* over 2N modes, or the sum over its planes ‖κ⁰‖_* + Σ_k ‖κ^k‖_* where that is next to the same. */
+function oneBodySpinor(part: OneBody, twoBody: number, hasFullRows: boolean) {
   const { n } = part.kappa;
-  const charge = shiftedNorm(part.chargeValues, 0, n, 0);
+  const { charge, spin: planesSpin, planeRows } = oneBodyTriplet(part);
   const values = hermitianEigenvalues(toSpinOrbitals(part.kappa));
   const total = 0.5 * shiftedNorm(values, 0, 2 * n, 0);
+  const divided = !hasFullRows && charge + planesSpin + twoBody <= (1 + DIVIDED) * (total + twoBody);
+  if (divided || planesSpin === 0) {
+    const rows = planeRows.reduce((sum, own) => sum + own, 0);
+    return { charge, spin: planesSpin, rows, pairRows: 0, list: { whole: null, planes: planeRows } };
+  }
   const largest = Math.max(Math.abs(values[0]!), Math.abs(values[2 * n - 1]!));
-  const zero = KAPPA_ROUNDING * largest;
-  const rows = Math.ceil(countAbove(values, 0, 2 * n, 0, zero) / 2);
-  const real = part.spinNorms.every((a) => a <= zero);
-  return { charge, spin: Math.max(0, total - charge), rows, pairRows: 0, real };
+  // A row is a Kramers pair.
+  const rows = Math.ceil(countAbove(values, 0, 2 * n, 0, KAPPA_ROUNDING * largest) / 2);
+  // The split of one norm: what spin adds to ‖κ⁰‖_* is never negative.
+  const spin = Math.max(0, total - charge);
+  return { charge, spin, rows, pairRows: 0, list: { whole: rows, planes: planeRows } };
 }
 
 /** What the two forms of an encoding differ in. */
 interface Form {
-  readonly one: ReturnType<typeof oneBodyTriplet>;
+  readonly one: {
+    readonly charge: number;
+    readonly spin: number;
+    readonly rows: number;
+    readonly pairRows: number;
+  };
   readonly two: TwoBody;
   readonly sizes: Pick<EncodingShape, 'items' | 'spinors'>;
   /** Given the encoding's constant. */
@@ -149,14 +163,19 @@ async function spinorForm(
   oneBody: OneBody,
   ctx: JobContext,
 ): Promise<Form> {
-  const one = oneBodySpinor(oneBody);
   const items: SpinorItems[] = [];
   for (const block of blocks) items.push(await spinorItems(block, ctx));
+  const two = spinorTwoBody(items);
+  const hasFullRows = items.some(
+    (entry) => entry.kind === 'squares' && entry.items.some(({ real }) => !real),
+  );
+  const twoBody = Object.values(two.parts).reduce((sum, own) => sum + own, 0);
+  const { list, ...one } = oneBodySpinor(oneBody, twoBody, hasFullRows);
   return {
     one,
-    two: spinorTwoBody(items),
-    sizes: { spinors: spinorSizes(orbitals, items, one) },
-    programs: (constant) => ({ spinorProgram: () => spinorProgram(constant, items, oneBody, one) }),
+    two,
+    sizes: { spinors: spinorSizes(orbitals, items, list) },
+    programs: (constant) => ({ spinorProgram: () => spinorProgram(constant, items, oneBody, list) }),
   };
 }
 

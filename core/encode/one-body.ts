@@ -82,7 +82,7 @@ export function oneBodyPart(
   return { kappa, shift, chargeValues, spinNorms, constant };
 }
 
-/** One-norms and rows of the one-body item in the triplet form. */
+/** One-norms and rows of the one-body item in the triplet form; eigenvectors of each plane of κ. */
 export function oneBodyTriplet(part: OneBody) {
   const n = part.kappa.n;
   const charge = shiftedNorm(part.chargeValues, 0, n, 0);
@@ -92,5 +92,10 @@ export function oneBodyTriplet(part: OneBody) {
   for (const x of part.spinNorms) largest = Math.max(largest, x);
   const zero = KAPPA_ROUNDING * largest;
   const pairRows = countAbove(part.spinNorms, 0, part.spinNorms.length, 0, zero);
-  return { charge, spin, rows: countAbove(part.chargeValues, 0, n, 0, zero) + pairRows, pairRows };
+  const chargeRows = countAbove(part.chargeValues, 0, n, 0, zero);
+  const half = n >> 1;
+  // Eigenvalues ±a of each spin plane.
+  const values = (k: number) => 2 * countAbove(part.spinNorms, (k - 1) * half, k * half, 0, zero);
+  const planeRows = [chargeRows, values(1), values(2), values(3)] as const;
+  return { charge, spin, rows: chargeRows + pairRows, pairRows, planeRows };
 }

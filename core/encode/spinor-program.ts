@@ -64,15 +64,16 @@ export interface SpinorProgram {
    * are 0.
    */
   readonly phases: Float64Array | null;
-  /** λ of its face is the sum of its weights. */
-  readonly oneBody: SpinorItem;
+  /** Not squared: each stands for the sum of its rows, in hartree, λ being that of the weights. */
+  readonly oneBody: readonly SpinorItem[];
   readonly items: readonly SpinorItem[];
 }
 
-/** Sizes of the items of a spinor encoding, the one-body item last. */
+/** Sizes of the items of a spinor encoding, the one-body items last. */
 export interface SpinorSizes {
   readonly orbitals: number;
   readonly partners: boolean;
+  readonly oneBodyItems: number;
   readonly rows: Uint32Array;
   /** Place in {@link SPINOR_KINDS}. */
   readonly kinds: Uint8Array;
@@ -86,11 +87,36 @@ const REAL = 0;
 const AXIAL = 1;
 const FULL = 2;
 
-/** Sizes of the items in the order of the program: blocks as they come, the one-body item last. */
+/** How κ is listed: whole, or plane by plane with fewer angles and a larger λ. */
+export interface OneBodyRows {
+  /** Rows of κ over all 2N modes; null where its planes stand for themselves. */
+  readonly whole: number | null;
+  /** Rows of its charge and x, y, z planes. */
+  readonly planes: readonly [number, number, number, number];
+}
+
+interface OneBodyPlane {
+  readonly kind: SpinorKind;
+  readonly axis: 0 | 1 | 2 | 3;
+  readonly rows: number;
+}
+
+const oneBodyPlanes = ({ whole, planes }: OneBodyRows): OneBodyPlane[] =>
+  whole !== null
+    ? [{ kind: 'full', axis: 0, rows: whole }]
+    : ([0, 1, 2, 3] as const)
+        .map((axis): OneBodyPlane => ({ kind: axis === 0 ? 'real' : 'axial', axis, rows: planes[axis] }))
+        .filter(({ rows }) => rows > 0);
+
+/**
+ * Sizes of the items in the order of the program: blocks as they come, the one-body items last.
+ *
+ * @param oneBody - rows of κ as a whole, or of its charge and spin planes one by one
+ */
 export function spinorSizes(
   orbitals: number,
   blocks: readonly SpinorItems[],
-  oneBody: { readonly rows: number; readonly real: boolean },
+  oneBody: OneBodyRows,
 ): SpinorSizes {
   const all = [
     ...blocks.flatMap((entry) =>
@@ -98,11 +124,16 @@ export function spinorSizes(
         ? entry.items.map(({ rows, faces }) => ({ rows, kind: AXIAL, faced: faces.length > 1 }))
         : entry.items.map(({ rows, real }) => ({ rows, kind: real ? REAL : FULL, faced: false })),
     ),
-    { rows: oneBody.rows, kind: oneBody.real ? REAL : FULL, faced: false },
+    ...oneBodyPlanes(oneBody).map(({ rows, kind }) => ({
+      rows,
+      kind: SPINOR_KINDS.indexOf(kind),
+      faced: false,
+    })),
   ];
   return {
     orbitals,
     partners: true,
+    oneBodyItems: oneBodyPlanes(oneBody).length,
     rows: Uint32Array.from(all, (item) => item.rows),
     kinds: Uint8Array.from(all, (item) => item.kind),
     twoFaced: Uint8Array.from(all, (item) => (item.faced ? 1 : 0)),
@@ -115,14 +146,14 @@ export function spinorProgram(
   constant: number,
   blocks: readonly SpinorItems[],
   oneBody: OneBody,
-  one: { readonly rows: number; readonly real: boolean },
+  one: OneBodyRows,
 ): SpinorProgram {
   return {
     orbitals: oneBody.kappa.n,
     constant,
     partners: true,
     phases: null,
-    oneBody: oneBodyItem(oneBody.kappa, one),
+    oneBody: oneBodyPlanes(one).map((plane) => oneBodyItem(oneBody.kappa, plane)),
     items: blocks.flatMap((entry) =>
       entry.kind === 'triples'
         ? entry.items.map((item) => tripleItem(entry.block, item))
@@ -142,34 +173,36 @@ function rowsOf({ values, re, im, n }: SpinorVectors): SpinorRow[] {
 /** The `count` heaviest eigenvectors of a real symmetric plane. */
 function realVectors(plane: Float64Array, n: number, count: number): SpinorVectors {
   const { values, vectors } = symmetricEigen(plane, n);
+  return heaviest(n, values, vectors, new Float64Array(n * n), count);
+}
+
+function heaviest(
+  n: number,
+  values: Float64Array,
+  re: Float64Array,
+  im: Float64Array,
+  count: number,
+): SpinorVectors {
   const order = Array.from(values.keys())
     .sort((i, j) => Math.abs(values[j]!) - Math.abs(values[i]!))
     .slice(0, count);
-  return {
-    n,
-    values: Float64Array.from(order, (i) => values[i]!),
-    re: Float64Array.from(order.flatMap((i) => Array.from(vectors.subarray(i * n, (i + 1) * n)))),
-    im: new Float64Array(order.length * n),
-  };
+  const gather = (from: Float64Array) =>
+    Float64Array.from(order.flatMap((i) => Array.from(from.subarray(i * n, (i + 1) * n))));
+  return { n, values: Float64Array.from(order, (i) => values[i]!), re: gather(re), im: gather(im) };
 }
 
-function oneBodyItem(
-  kappa: TripletOperator,
-  one: { readonly rows: number; readonly real: boolean },
-): SpinorItem {
-  const rows = rowsOf(
-    one.real
-      ? realVectors(planeOf(kappa, 0), kappa.n, one.rows)
-      : partnerRows(toSpinOrbitals(kappa), false, one.rows),
-  );
+function oneBodyItem(kappa: TripletOperator, { kind, axis, rows }: OneBodyPlane): SpinorItem {
+  if (kind === 'full') return oneBodyOf(kind, 3, rowsOf(partnerRows(toSpinOrbitals(kappa), false, rows)));
+  const { n } = kappa;
+  if (axis === 0) return oneBodyOf(kind, 3, rowsOf(realVectors(planeOf(kappa, 0), n, rows)));
+  // κ^k = i·plane: eigenvectors along the axis, their partners against it.
+  const { values, re, im } = hermitianEigen({ n, re: new Float64Array(n * n), im: planeOf(kappa, axis) });
+  return oneBodyOf(kind, axis, rowsOf(heaviest(n, values, re, im, rows)));
+}
+
+function oneBodyOf(kind: SpinorKind, axis: 1 | 2 | 3, rows: readonly SpinorRow[]): SpinorItem {
   const lambda = rows.reduce((sum, row) => sum + row.faces[0]!.weight, 0);
-  return {
-    kind: one.real ? 'real' : 'full',
-    axis: 3,
-    paired: false,
-    faces: [{ sign: 1, odd: false, lambda }],
-    rows,
-  };
+  return { kind, axis, paired: false, faces: [{ sign: 1, odd: false, lambda }], rows };
 }
 
 function squareItem(block: SquareFactors, t: number, item: SpinorSquareItem): SpinorItem {
@@ -246,13 +279,12 @@ export function spinorFileProgram(
   const vectors = (matrix: ComplexMatrix, odd: boolean, count: number) =>
     phases ? partnerRows(turnPhases(matrix, phases), odd, count) : singleRows(matrix, count);
   const one = rowsOf(vectors(kappa, false, oneBodyRows));
-  const lambda = one.reduce((sum, row) => sum + row.faces[0]!.weight, 0);
   return {
     orbitals: m / 2,
     constant,
     partners: phases !== null,
     phases: phases?.some((x) => x !== 0) ? phases : null,
-    oneBody: { kind: 'full', axis: 3, paired: false, faces: [{ sign: 1, odd: false, lambda }], rows: one },
+    oneBody: [oneBodyOf('full', 3, one)],
     items: factors.map(({ block, t, shift, norm, rows }) => {
       const matrix = { n: m, re: new Float64Array(m * m), im: new Float64Array(m * m) };
       hermitianInto(matrix.re, matrix.im, 0, block.vectors, t * m * m, m);

@@ -184,6 +184,7 @@ function pairPhases(h: SpinorHamiltonian, factors: Factorisation, kappa: Complex
 const sizesOf = (m: number, rows: Uint32Array, partners: boolean): SpinorSizes => ({
   orbitals: m / 2,
   partners,
+  oneBodyItems: 1,
   rows,
   kinds: new Uint8Array(rows.length).fill(SPINOR_KINDS.indexOf('full')),
   twoFaced: new Uint8Array(rows.length),

@@ -1,4 +1,4 @@
-import type { EncodingShape } from '../encode';
+import { type EncodingShape, SPINOR_KINDS } from '../encode';
 import type { ErrorBudget } from './target';
 
 /** One bit width: what is used, and what the two formulas ask for. */
@@ -106,19 +106,39 @@ function keepErrors(shape: EncodingShape, { oneBody, twoBody }: LambdaSplit): Er
 
 /**
  * Angles on a grid of 2π/2^β move a unit vector by at most √n π/2^β for n angles: the metric of the sphere has
- * coefficients ≤ 1 (for spinors the phases together count as one more). A vector error δ costs 8δλ in a square and
- * 2δλ in a one-body term; statistically δ is (2π/2^β)/√12 · √((n + 2)/2), and rows add up like 1/√rows.
+ * coefficients ≤ 1. A vector error δ costs 8δλ in a square and 2δλ in a one-body term; statistically δ is
+ * (2π/2^β)/√12 · √((n + 2)/2), and rows add up like 1/√rows.
  */
 function rotationErrors(shape: EncodingShape, { oneBody, twoBody }: LambdaSplit): ErrorAtZeroBits | null {
   if (shape.kind === 'sparse') return null;
-  const angles = shape.kind === 'spinor' ? 2 * shape.orbitals : shape.orbitals - 1;
-  const worst = Math.PI * Math.sqrt(angles);
-  const typical = ((2 * Math.PI) / Math.sqrt(12)) * Math.sqrt((angles + 2) / 2);
+  const angles = anglesOf(shape);
+  const worst = (n: number) => Math.PI * Math.sqrt(n);
+  const typical = (n: number) => ((2 * Math.PI) / Math.sqrt(12)) * Math.sqrt((n + 2) / 2);
   return {
-    rigorous: worst * (8 * twoBody + 2 * oneBody),
+    rigorous: 8 * worst(angles.squares) * twoBody + 2 * worst(angles.oneBody) * oneBody,
     estimate:
-      typical *
-      ((4 * twoBody) / Math.sqrt(Math.max(shape.rows, 1)) +
-        (2 * oneBody) / Math.sqrt(Math.max(shape.oneBodyRows, 1))),
+      (4 * typical(angles.squares) * twoBody) / Math.sqrt(Math.max(shape.rows, 1)) +
+      (2 * typical(angles.oneBody) * oneBody) / Math.sqrt(Math.max(shape.oneBodyRows, 1)),
   };
 }
+
+/**
+ * n of the rows with most angles. The phases of a spinor's orbitals together count as two angles, for Σ r_p² dβ_p² is at
+ * most one of them and on average one; with their spins as five: (|dβ| + |dδ|)² + dθ².
+ */
+function anglesOf({ kind, orbitals, spinors }: EncodingShape): { squares: number; oneBody: number } {
+  const chain = orbitals - 1;
+  if (!spinors) {
+    const all = chain + (kind === 'spinor' ? MORE_ANGLES.full : 0);
+    return { squares: all, oneBody: all };
+  }
+  const first = spinors.kinds.length - spinors.oneBodyItems;
+  const most = (kinds: Uint8Array) =>
+    kinds.reduce((found, own) => Math.max(found, MORE_ANGLES[SPINOR_KINDS[own]!]), 0);
+  return {
+    squares: chain + most(spinors.kinds.subarray(0, first)),
+    oneBody: chain + most(spinors.kinds.subarray(first)),
+  };
+}
+
+const MORE_ANGLES = { real: 0, axial: 2, full: 5 } as const;

@@ -8,7 +8,8 @@ import { addIdentity, addProduct, addScaled, oneBodyOnSector, zeroMatrix } from 
  * of its rows, so that emitted circuits can be held against it. At most 8 modes; in the program's gauge.
  */
 export function spinorProgramOperator(program: SpinorProgram, basis: SectorBasis): ComplexMatrix {
-  const total = rowsOperator(program, program.oneBody, 0, 0, basis);
+  const total = zeroMatrix(basis.dim);
+  for (const item of program.oneBody) addScaled(total, rowsOperator(program, item, 0, 0, basis), 1);
   for (const item of program.items) {
     for (const [face, { sign, lambda }] of item.faces.entries()) {
       const norm = item.rows.reduce((sum, row) => sum + row.faces[face]!.weight, 0);

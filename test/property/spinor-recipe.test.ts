@@ -50,13 +50,16 @@ const programs = fc
       n: fc.integer({ min: 1, max: 4 }),
       partners: fc.constant(true),
       items: fc.array(itemShape, { minLength: 1, maxLength: 9 }),
-      oneBody: fc.record({ kind: kinds, rows }),
+      oneBody: fc.array(fc.record({ kind: kinds, rows }), { minLength: 1, maxLength: 4 }),
     }),
     fc.record({
       n: fc.integer({ min: 1, max: 4 }),
       partners: fc.constant(false),
       items: fc.array(single, { minLength: 1, maxLength: 5 }),
-      oneBody: fc.record({ kind: fc.constant<SpinorKind>('full'), rows }),
+      oneBody: fc.array(fc.record({ kind: fc.constant<SpinorKind>('full'), rows }), {
+        minLength: 1,
+        maxLength: 1,
+      }),
     }),
   )
   .map(
@@ -65,7 +68,7 @@ const programs = fc
       constant: 0,
       partners,
       phases: null,
-      oneBody: item(n, { ...oneBody, faces: 1, paired: false }),
+      oneBody: oneBody.map((shape) => item(n, { ...shape, faces: 1, paired: false })),
       items: items.map((shape) => item(n, shape)),
     }),
   );

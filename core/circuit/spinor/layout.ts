@@ -33,6 +33,7 @@ export type ItemFlag =
 export interface SpinorLayout extends SquaresLayout {
   readonly orbitals: number;
   readonly partners: boolean;
+  readonly oneBodyItems: number;
   readonly angleBits: number;
   /** In which uses of the rows the spins of orbitals are turned: in the first alone where only κ has any. */
   readonly spinUses: 'none' | 'first' | 'both';
@@ -63,12 +64,12 @@ export function spinorLayout(
   rotation: number,
   merge: readonly AngleGroup[],
 ): SpinorLayout {
-  const { orbitals, kinds, rows, partners } = sizes;
+  const { orbitals, kinds, rows, partners, oneBodyItems } = sizes;
   const squares = squaresLayout(sizes);
   const real = SPINOR_KINDS.indexOf('real');
   const full = SPINOR_KINDS.indexOf('full');
-  const last = kinds.length - 1;
-  const spinUses = !kinds.includes(full) ? 'none' : kinds.indexOf(full) === last ? 'first' : 'both';
+  const inSquares = kinds.subarray(0, kinds.length - oneBodyItems).includes(full);
+  const spinUses = inSquares ? 'both' : kinds.includes(full) ? 'first' : 'none';
   const hasPhases = orbitals > 1 && kinds.some((kind) => kind !== real);
   const has = { phases: hasPhases, spins: spinUses !== 'none' };
   const angleBits = rotation - 1;
@@ -97,6 +98,7 @@ export function spinorLayout(
     ...squares,
     orbitals,
     partners,
+    oneBodyItems,
     angleBits,
     spinUses,
     hasPhases,

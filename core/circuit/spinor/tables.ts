@@ -18,7 +18,7 @@ export interface SpinorBits extends KeepBits {
 export interface SpinorTables {
   readonly layout: SpinorLayout;
   readonly weights: WeightTables;
-  /** The one-body item is the last. */
+  /** The one-body items are the last. */
   readonly items: readonly SpinorItem[];
   /** By address. */
   readonly rows: ReadonlyMap<number, SpinorTableRow>;
@@ -31,10 +31,11 @@ export interface SpinorTableRow extends RoundedSpinorRow {
 
 /** Sizes of a program's items. */
 export function spinorSizesOf(program: SpinorProgram): SpinorSizes {
-  const items = [...program.items, program.oneBody];
+  const items = [...program.items, ...program.oneBody];
   return {
     orbitals: program.orbitals,
     partners: program.partners,
+    oneBodyItems: program.oneBody.length,
     rows: Uint32Array.from(items, (item) => item.rows.length),
     kinds: Uint8Array.from(items, (item) => SPINOR_KINDS.indexOf(item.kind)),
     twoFaced: Uint8Array.from(items, (item) => (item.faces.length > 1 ? 1 : 0)),
@@ -48,14 +49,16 @@ export function spinorTables(
   bits: SpinorBits,
   merge: readonly AngleGroup[],
 ): SpinorTables {
-  const items = [...program.items, program.oneBody];
+  const items = [...program.items, ...program.oneBody];
   for (const { faces } of items) {
     // SELECT takes the face itself for what changes.
     if (faces.length > 1 && faces[0]!.odd === faces[1]!.odd) {
       throw new RangeError('the two faces of an item are one even and one odd');
     }
   }
-  if (program.oneBody.faces[0]!.odd) throw new RangeError('the one-body item of a circuit is even');
+  if (program.oneBody.some(({ faces }) => faces[0]!.odd)) {
+    throw new RangeError('the one-body part of a circuit is even');
+  }
   const layout = spinorLayout(spinorSizesOf(program), bits.rotation, merge);
   const weights = weightTables(
     items.map(({ faces, rows }) => ({ lambda: faces.map((face) => face.lambda), rows })),
@@ -112,17 +115,16 @@ export function encodedSpinorProgram(program: SpinorProgram, tables: SpinorTable
       })),
     };
   });
-  const oneBody = encoded.pop()!;
-  const { lambda } = oneBody.faces[0]!;
+  const inHartree = (item: SpinorItem): SpinorItem => ({
+    ...item,
+    rows: item.rows.map((row) => ({
+      ...row,
+      faces: row.faces.map((face) => ({ ...face, weight: face.weight * item.faces[0]!.lambda })),
+    })),
+  });
   return {
     ...program,
-    items: encoded,
-    oneBody: {
-      ...oneBody,
-      rows: oneBody.rows.map((row) => ({
-        ...row,
-        faces: row.faces.map((face) => ({ ...face, weight: face.weight * lambda })),
-      })),
-    },
+    items: encoded.slice(0, program.items.length),
+    oneBody: encoded.slice(program.items.length).map(inHartree),
   };
 }

@@ -63,12 +63,12 @@ export const spinorAncillas = (wires: SpinorWires): number[] => squaresAncillas(
 /** The spinor form of an encoding by squares; see {@link SquaresForm}. */
 export function spinorForm(tables: SpinorTables, wires: SpinorWires, blocks: SpinorBlocks): SquaresForm {
   const { layout, items, weights } = tables;
-  const last = items.length - 1;
+  const isSquare = (t: number) => t < items.length - layout.oneBodyItems;
   const flag: Readonly<Record<ItemFlag, (t: number) => boolean>> = {
     phases: (t) => items[t]!.kind !== 'real',
-    'phases of a square': (t) => items[t]!.kind !== 'real' && t !== last,
+    'phases of a square': (t) => items[t]!.kind !== 'real' && isSquare(t),
     spins: (t) => items[t]!.kind === 'full',
-    'spins of a square': (t) => items[t]!.kind === 'full' && t !== last,
+    'spins of a square': (t) => items[t]!.kind === 'full' && isSquare(t),
     tilted: (t) => items[t]!.axis !== 3,
     'along y': (t) => items[t]!.axis === 2,
     odd: (t) => items[t]!.faces[0]!.odd,
@@ -79,6 +79,7 @@ export function spinorForm(tables: SpinorTables, wires: SpinorWires, blocks: Spi
   return {
     weights,
     blocks,
+    isSquare,
     isNegative: (t) => items[t]!.faces[0]!.sign < 0,
     isPaired: (t) => items[t]!.paired,
     flags: (t) => layout.flags.map((name) => flag[name](t)),

@@ -39,6 +39,8 @@ export const COMMON_FLAGS = 3;
 export interface SquaresForm {
   readonly weights: WeightTables;
   readonly blocks: SquaresBlocks;
+  /** Items that are squared; the others are the one-body part, applied once. */
+  readonly isSquare: (t: number) => boolean;
   readonly isNegative: (t: number) => boolean;
   readonly isPaired: (t: number) => boolean;
   /** Flags of an item of the form's own; every item has as many. */
@@ -52,7 +54,7 @@ export interface SquaresForm {
 /** Data of the item. */
 export interface ItemWires {
   readonly paired: number;
-  /** 0 for the one-body item. */
+  /** 0 for the one-body part. */
   readonly isSquare: number;
   readonly flags: readonly number[];
 }
@@ -172,11 +174,10 @@ export function squaresWalkStep(form: SquaresForm, wires: SquaresWires, control:
 /** Loads what depends on the item alone, applies the item, and takes the data back. */
 export function squaresItem(form: SquaresForm, wires: SquaresWires): Operation {
   const { itemCount, rowBits, sizeBits } = form.weights;
-  const last = itemCount - 1;
   const data = Array.from({ length: itemCount }, (_, t) => [
     form.isNegative(t),
     form.isPaired(t),
-    t !== last,
+    form.isSquare(t),
     ...form.flags(t),
   ]);
   const width = rowBits + data[0]!.length;
@@ -202,7 +203,7 @@ export function squaresItem(form: SquaresForm, wires: SquaresWires): Operation {
 
 /**
  * B₂†·R·B₁ with B = PREPARE†·SELECT·PREPARE over the rows of the item. For a square R = 2|0⟩⟨0| − 1 (up to sign)
- * and B₁ = B₂, which gives 2(M/Λ)² − 1 however the angles are rounded; for the one-body item R and the product in
+ * and B₁ = B₂, which gives 2(M/Λ)² − 1 however the angles are rounded; for a one-body item R and the product in
  * B₂ are switched off.
  */
 function square(

@@ -70,6 +70,7 @@ export function tripletForm(
   return {
     weights: tables,
     blocks,
+    isSquare: (t) => t < items.length - 1,
     isNegative: (t) => items[t]!.sign < 0,
     isPaired: (t) => items[t]!.paired,
     flags: () => [],

@@ -4,6 +4,7 @@ import { buildEncoding, type Encoding, parseVariant } from '../../../core/encode
 import { factorise } from '../../../core/factor';
 import {
   buildHamiltonian,
+  fromStoredForm,
   type SpinHamiltonian,
   type SpinorHamiltonian,
   spinorForm,
@@ -24,6 +25,16 @@ async function encode(h: SpinHamiltonian, name: string): Promise<Encoding> {
   const variant = parseVariant(name);
   if (variant.grouping === '-') throw new Error('spinor forms have a grouping');
   return buildEncoding(h, await factorise(h, { grouping: variant.grouping }, ctx), variant, {}, ctx);
+}
+
+/** The rows and the constant against H on the whole Fock space. */
+function expectSum(encoding: Encoding, h: SpinHamiltonian): void {
+  const program = encoding.spinorProgram!();
+  expect(spinorSizesOf(program)).toEqual(encoding.shape.spinors);
+  expect(programLambda(program)).toBeCloseTo(encoding.lambda.total, 10);
+  const sum = programOperator(program);
+  addScaled(sum, identity(sum.n), encoding.constant);
+  expect(distance(sum, inGauge(matrixOf(h), program.phases))).toBeLessThan(1e-10);
 }
 
 const proof = async (h: SpinHamiltonian, name: string) =>
@@ -98,12 +109,25 @@ describe('the rows of a spinor encoding', () => {
     ['a spinor file with a magnetic interaction', magnetic(spinorForm(all), 'two-body'), 'joint'],
   ])('%s: add up to H − c, with weights that add up to λ', async (_, h, grouping) => {
     const encoding = await encode(h, `spinor/${grouping}/index/none/clean`);
-    const program = encoding.spinorProgram!();
-    expect(spinorSizesOf(program)).toEqual(encoding.shape.spinors);
-    expect(programLambda(program)).toBeCloseTo(encoding.lambda.total, 10);
-    const sum = programOperator(program);
-    addScaled(sum, identity(sum.n), encoding.constant);
-    expect(distance(sum, inGauge(matrixOf(h), program.phases))).toBeLessThan(1e-10);
+    expectSum(encoding, h);
+    expect(encoding.spinorProgram!().oneBody.map(({ kind }) => kind)).toEqual(['full']);
+  });
+
+  it('list κ plane by plane where nothing else needs rows over all modes and λ hardly rises', async () => {
+    const weak = randomHamiltonian(2, 34, { charge: true, spinOrbit: 'multiple', spinSpin: false }, 3);
+    weak.h.planes.fill(0, 4);
+    const same = weak.g.spinOrbit!.same;
+    for (let i = 0; i < same.length; i++) same[i]! *= 1e-4;
+    const h = fromStoredForm(weak);
+    const encoding = await encode(h, 'spinor/separate/index/none/clean');
+    expectSum(encoding, h);
+    const { oneBody } = encoding.spinorProgram!();
+    expect(oneBody.map(({ kind, axis }) => [kind, axis])).toEqual([
+      ['real', 3],
+      ['axial', 1],
+      ['axial', 2],
+      ['axial', 3],
+    ]);
   });
 
   it('are fewer where the parts of a triple share them', async () => {

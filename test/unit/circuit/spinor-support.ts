@@ -171,14 +171,15 @@ export function squareOperator(program: SpinorProgram, item: SpinorItem, face: n
 }
 
 export const programLambda = (program: SpinorProgram) =>
-  [...program.items, program.oneBody].reduce(
+  [...program.items, ...program.oneBody].reduce(
     (sum, item) => sum + item.faces.reduce((own, face) => own + face.lambda, 0),
     0,
   );
 
 /** The operator a program encodes, H − c. */
 export function programOperator(program: SpinorProgram): Dense {
-  const out = factorOperator(program, program.oneBody, 0, 0);
+  const out = zeros(4 ** program.orbitals);
+  for (const item of program.oneBody) addScaled(out, factorOperator(program, item, 0, 0), 1);
   for (const item of program.items) {
     for (const [f, { lambda }] of item.faces.entries()) {
       for (const square of item.paired ? ([0, 1] as const) : ([0] as const)) {
@@ -210,7 +211,7 @@ export interface ItemShape {
 export function randomProgram(
   orbitals: number,
   partners: boolean,
-  oneBody: ItemShape,
+  oneBody: ItemShape | readonly ItemShape[],
   items: readonly ItemShape[],
   seed = 7,
 ): SpinorProgram {
@@ -238,14 +239,13 @@ export function randomProgram(
       rows: own,
     };
   };
-  const one = make(oneBody);
-  const lambda = factorNorm(one, 0);
+  const one = (Array.isArray(oneBody) ? oneBody : [oneBody]).map(make);
   return {
     orbitals,
     constant: 0,
     partners,
     phases: null,
-    oneBody: { ...one, faces: [{ ...one.faces[0]!, lambda }] },
+    oneBody: one.map((item) => ({ ...item, faces: [{ ...item.faces[0]!, lambda: factorNorm(item, 0) }] })),
     items: items.map(make),
   };
 }

@@ -83,6 +83,24 @@ const CASES: Case[] = [
     outcomes: 0,
   },
   {
+    name: 'separate, one-body part by planes, N = 2',
+    program: randomProgram(
+      2,
+      true,
+      [
+        { kind: 'real', rows: 2 },
+        { kind: 'axial', axis: 1, rows: 2 },
+        { kind: 'axial', axis: 2, rows: 2 },
+        { kind: 'axial', axis: 3, rows: 2 },
+      ],
+      SEPARATE.slice(0, 2),
+    ),
+    bits: BITS,
+    blocks: small,
+    merge: ['phases'],
+    outcomes: 'random',
+  },
+  {
     name: 'separate, phases merged, N = 2',
     program: randomProgram(2, true, { kind: 'full', rows: 2 }, SEPARATE, 8),
     bits: BITS,
@@ -167,12 +185,9 @@ describe.each(CASES)('spinor SELECT: $name', ({ program, bits, blocks, merge, ou
             };
           });
           const expected = zeros(block.n);
-          if (t === tables.items.length - 1) {
-            addScaled(
-              expected,
-              factorOperator(encoded, encoded.oneBody, 0, 0),
-              1 / encoded.oneBody.faces[0]!.lambda,
-            );
+          const single = encoded.oneBody[t - encoded.items.length];
+          if (single) {
+            addScaled(expected, factorOperator(encoded, single, 0, 0), 1 / single.faces[0]!.lambda);
           } else {
             addScaled(expected, squareOperator(encoded, encoded.items[t]!, face, square), 1);
           }
@@ -187,9 +202,9 @@ describe.each(CASES)('spinor SELECT: $name', ({ program, bits, blocks, merge, ou
   it('rounds vectors to within their bits', () => {
     const n = program.orbitals;
     const worst = (Math.sqrt(n + 4) * Math.PI) / 2 ** bits.rotation;
-    for (const [t, item] of [...encoded.items, encoded.oneBody].entries()) {
+    for (const [t, item] of [...encoded.items, ...encoded.oneBody].entries()) {
       for (const [j, row] of item.rows.entries()) {
-        const given = [...program.items, program.oneBody][t]!.rows[j]!;
+        const given = [...program.items, ...program.oneBody][t]!.rows[j]!;
         let x = 0;
         let y = 0;
         for (let i = 0; i < row.re.length; i++) {
