@@ -9,6 +9,23 @@ export interface Check {
   readonly ok: boolean;
 }
 
+/** Three views of what a variant's truncation does to the energy, hartree. */
+export interface TruncationEvidence {
+  /** Rigorous: no level moves by more. */
+  readonly oneNormBound: number;
+  /** Change of the reference determinant's energy in first and in second order. */
+  readonly firstOrder: number;
+  readonly secondOrder: number;
+  /** Over random determinants: mean and standard deviation of the shift, root mean square of the couplings. */
+  readonly random: {
+    readonly samples: number;
+    readonly mean: number;
+    readonly spread: number;
+    readonly singles: number;
+    readonly doubles: number;
+  };
+}
+
 /** What `verify --json` prints, keys in this order. Energies in hartree. */
 export interface Evidence {
   readonly schema: 'spinwright-evidence/1';
@@ -18,6 +35,8 @@ export interface Evidence {
     readonly exact: readonly number[];
     readonly variants: Readonly<Record<string, readonly number[]>>;
   };
+  /** By variant, where something was dropped: rigorous bound, perturbation theory and random determinants. */
+  readonly truncation: Readonly<Record<string, TruncationEvidence>>;
   readonly blockEncoding: Readonly<
     Record<string, { readonly maxError: number; readonly bound: number; readonly columns: number }>
   >;

@@ -5,7 +5,9 @@ import type { JobContext } from '../job';
 import { exactSpectrum, referenceEigenvalues, type Spectrum } from '../verify';
 import { proveBlock } from './block-proof';
 import { Encodings } from './encodings';
-import { type Check, check, type Evidence } from './evidence';
+import { EnergyEstimates } from './energy-estimate';
+import { truncationEvidence, windowChecks } from './energy-estimate-evidence';
+import { type Check, check, type Evidence, type TruncationEvidence } from './evidence';
 import { defaultVariants } from './run';
 import { hamiltonianOf, occupationsOf, type SystemRequest } from './system';
 
@@ -57,11 +59,15 @@ export async function runVerification(
     ...kramers(exact.values, hamiltonian.electrons, exact.dim),
   ];
 
-  const encodings = new Encodings(hamiltonian, request.threshold, occupationsOf(set, request));
+  const occupations = occupationsOf(set, request);
+  const encodings = new Encodings(hamiltonian, request.threshold, occupations);
+  const estimates = new EnergyEstimates(hamiltonian, occupations);
+  const truncation: Record<string, TruncationEvidence> = {};
   const spectra: Record<string, number[]> = {};
   const known = new Map<Encoding, Float64Array>();
   const blockEncoding: Record<string, Evidence['blockEncoding'][string]> = {};
-  for (const variant of request.variants ?? defaultVariants(set)) {
+  const variants = request.variants ?? defaultVariants(set);
+  for (const variant of variants) {
     const name = formatVariant(variant);
     const encoding = await encodings.of(variant, context);
     let levels = known.get(encoding);
@@ -79,6 +85,19 @@ export async function runVerification(
       );
     }
     spectra[name] = Array.from(levels);
+    const energy = await estimates.of(encoding, await encodings.factorisationOf(variant, context), context);
+    const dropped = await truncationEvidence(
+      name,
+      encoding.residual.oneNormBound,
+      hamiltonian,
+      energy,
+      ARITHMETIC,
+      context,
+    );
+    if (dropped) {
+      truncation[name] = dropped.evidence;
+      checks.push(...dropped.checks);
+    }
     const proof = await proveBlock(hamiltonian, encoding, variant, context);
     if (!proof) continue;
     const { maxError, bound, columns } = proof;
@@ -88,11 +107,13 @@ export async function runVerification(
       check(`${name}: emitted circuit against H, largest element`, maxError, 0, bound, ROUNDING_SOURCE),
     );
   }
+  checks.push(...(await windowChecks(set, request, variants, exact, ARITHMETIC, context)));
   return {
     schema: 'spinwright-evidence/1',
     electrons: hamiltonian.electrons,
     terms,
     spectrum: { exact: Array.from(exact.values), variants: spectra },
+    truncation,
     blockEncoding,
     checks,
   };
