@@ -50,6 +50,7 @@ export {
 export type { StepBits } from './squares/step';
 export type { WeightTables } from './squares/tables';
 export {
+  outerBorrows,
   outerPrepare,
   outerScratch,
   type PrepareWires,

@@ -167,15 +167,15 @@ function recipeOf(
   const widths = { keepBits: bits.keep, rotationBits: bits.rotation, phaseBits };
   switch (shape.kind) {
     case 'triplet':
-      // Borrowed (dirty) look-ups are not emitted yet: closed formulas stand in for them.
-      return shape.items && policy.mode !== 'dirty'
+      return shape.items
         ? tripletStep(shape.items, spin, widths, policy).recipe
         : tripletStepByFormula(shape, spin, widths, policy);
     case 'spinor':
-      return shape.spinors && policy.mode !== 'dirty'
+      return shape.spinors
         ? spinorStep(shape.spinors, widths, policy).recipe
         : spinorStepByFormula(shape, widths, policy);
     case 'sparse':
+      // The sparse table is not read through borrowed wires: a closed formula stands in for that.
       return shape.terms && policy.mode !== 'dirty'
         ? sparseStep(shape.terms, widths, policy).recipe
         : sparseStepByFormula(

@@ -44,11 +44,11 @@ const BITS = { keep: 20, innerKeep: 3, rotation: 16 };
 
 /** The block encoding of a variant at the bits of a proof; null where none is emitted. */
 export function provableBlock(encoding: Encoding, variant: VariantName): ProvableBlock | null {
-  if (variant.lookup === 'dirty') return null;
   const policy: LookupPolicy = { mode: variant.lookup, block: 'auto', qubitCap: null };
   if (encoding.program) return provableTriplet(encoding, encoding.program(), variant, policy);
   if (encoding.spinorProgram) return provableSpinor(encoding, encoding.spinorProgram(), policy);
-  if (encoding.sparseProgram) return provableSparse(encoding, encoding.sparseProgram(), policy);
+  if (encoding.sparseProgram && variant.lookup !== 'dirty')
+    return provableSparse(encoding, encoding.sparseProgram(), policy);
   return null;
 }
 
@@ -59,7 +59,7 @@ function provableTriplet(
   policy: LookupPolicy,
 ): ProvableBlock {
   const tables = tripletTables(program, BITS);
-  const blocks = chooseBlocks(tripletLayout(sizesOf(program), BITS), BITS, policy, null);
+  const blocks = chooseBlocks(program.orbitals, tripletLayout(sizesOf(program), BITS), BITS, policy, null);
   return {
     circuit: tripletBlock(tables, variant.spin, blocks),
     encoded: (basis) => programOperator(encodedProgram(program, tables), basis),

@@ -4,6 +4,7 @@ import {
   type LookupPolicy,
   type Machine,
   type Operation,
+  outerBorrows,
   outerPrepare,
   outerScratch,
   prepareGradient,
@@ -73,12 +74,12 @@ export function walkCircuit(
   const widths = { keepBits: keep, rotationBits: rotation, phaseBits: phaseBitsOf(estimate) };
   const policy: LookupPolicy = { mode: variant.lookup, block: 'auto', qubitCap: qubitsMax };
   const { items, spinors, terms } = encoding.shape;
-  if (policy.mode !== 'dirty' && encoding.program && items) {
+  if (encoding.program && items) {
     const { blocks } = tripletStep(items, variant.spin, widths, policy);
     const tables = tripletTables(encoding.program(), { keep, innerKeep: keep, rotation });
     return tripletWalk(tables, variant.spin, blocks);
   }
-  if (policy.mode !== 'dirty' && encoding.spinorProgram && spinors) {
+  if (encoding.spinorProgram && spinors) {
     const { layout, blocks } = spinorStep(spinors, widths, policy);
     const bits = { keep, innerKeep: keep, rotation };
     return spinorWalk(spinorTables(encoding.spinorProgram(), bits, layout.merged), blocks);
@@ -91,7 +92,7 @@ export function walkCircuit(
     code: 'no-circuit',
     where: `variant "${formatVariant(variant)}"`,
     found: 'an encoding without an emitted circuit',
-    expected: 'triplet factors, spinor factors or sparse terms, with clean or plain look-ups',
+    expected: 'triplet factors, spinor factors or, with clean or plain look-ups, sparse terms',
     mend: 'Choose such a variant, e.g. triplet/separate/swap-layers/median/clean.',
   });
 }
@@ -146,7 +147,8 @@ function squaresWalk({ weights, hasPaired, blocks, open }: SquaresEmitter): Walk
     emit(part, machine, { control, withGradient }) {
       if (part === 'prepare') {
         const lent = machine.allocateRegister(outerScratch({ weights, blocks }), 'alternate and keep');
-        outerPrepare({ weights, blocks }, prepareWires(weights, hasPaired, machine), lent).run(machine);
+        const idle = machine.allocateRegister(outerBorrows(blocks), 'borrowed');
+        outerPrepare({ weights, blocks }, prepareWires(weights, hasPaired, machine), lent, idle).run(machine);
         return;
       }
       const { gradient, step, blockEncoding } = open(machine);

@@ -30,6 +30,7 @@ function build(machine: Machine, table: AliasTable, read: number, erase: number)
     uniform: machine.allocateRegister(keepBits),
     output: machine.allocateRegister((n + keepBits) * read),
     carries: machine.allocateRegister(keepBits),
+    idle: [],
   };
   const source = {
     address: index,

@@ -55,7 +55,11 @@ const programs = fc
   });
 
 const block = fc.constantFrom(1, 2);
-const pairOfBlocks = fc.record({ read: block, erase: block });
+const pairOfBlocks = fc.oneof(
+  fc.record({ read: block, erase: block }),
+  // Every table is at least two bits wide, and as many wires are idle.
+  fc.record({ read: fc.constant(2), erase: block, slice: fc.constantFrom(1, 2) }),
+);
 
 it('the recipe counts the emitted walk step, part by part, and its peak of wires', () => {
   fc.assert(
@@ -107,6 +111,6 @@ it('the recipe counts the emitted walk step, part by part, and its peak of wires
         expect(peakOf(recipe).qubits).toBe(machine.peak);
       },
     ),
-    { numRuns: 80 },
+    { numRuns: 120 },
   );
 });

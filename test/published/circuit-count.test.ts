@@ -12,9 +12,11 @@ const VARIANTS = [
   'triplet/joint/swap-layers/median/clean',
   'triplet/separate/index/none/plain',
   'triplet/separate/swap-layers/median/clean',
+  'triplet/separate/swap-layers/median/dirty',
   'spinor/joint/index/median/clean',
   'spinor/separate/index/median/clean',
   'spinor/separate/index/none/plain',
+  'spinor/separate/index/median/dirty',
 ];
 
 describe.each(['oh_sto3g', 'ch2o_sto3g_8o', 'ch2o_631g_20o'])('%s', (name) => {

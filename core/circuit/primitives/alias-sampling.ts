@@ -1,6 +1,7 @@
 import { gate, type Operation, repeat, sequence } from '../gates/operation';
 import { carryStep } from './arithmetic';
-import { type Blocks, controlledSwap, erasureToffoli, lookUp, lookUpToffoli } from './look-up';
+import { type Blocks, controlledSwap, erasureToffoli } from './look-up';
+import { readTable, readToffoli } from './reading';
 import { hadamards } from './reflection';
 
 /**
@@ -85,10 +86,12 @@ function largestRemainders(weights: ArrayLike<number>, size: number, total: numb
 export interface AliasWires {
   /** ℵ wires: the uniform number the keep value is compared with; part of the state a reflection looks at. */
   readonly uniform: readonly number[];
-  /** k·(n + ℵ) wires of the look-up. */
+  /** Output wires of the look-up of n + ℵ bits. */
   readonly output: readonly number[];
   /** ℵ carries of the comparison, kept so that taking it back is free. */
   readonly carries: readonly number[];
+  /** Wires that the look-up may borrow. */
+  readonly idle: readonly number[];
 }
 
 export interface AliasSource {
@@ -107,7 +110,7 @@ export function aliasSamplingToffoli(
   blocks: Blocks,
 ): { prepare: number; unprepare: number } {
   return {
-    prepare: lookUpToffoli(tableBlocks.read, indexBits + keepBits, blocks.read) + keepBits + indexBits,
+    prepare: readToffoli(tableBlocks.read, indexBits + keepBits, blocks) + keepBits + indexBits,
     unprepare: erasureToffoli(tableBlocks.erase, blocks.erase) + indexBits,
   };
 }
@@ -154,7 +157,7 @@ export function aliasSampling(
   );
   return sequence(
     hadamards(wires.uniform),
-    lookUp(source.address, wires.output, table, blocks),
+    readTable(source.address, wires.output, table, blocks, wires.idle),
     compare,
     exchange,
   );

@@ -15,6 +15,8 @@ export interface Table {
 export interface Blocks {
   readonly read: number;
   readonly erase: number;
+  /** Bits at a time through borrowed wires, for k ≥ 2; undefined: through clean ones. See borrowed-look-up.ts. */
+  readonly slice?: number;
 }
 
 /**

@@ -9,6 +9,10 @@ import type { SpinorLayout } from './layout';
 import { type ProductBlocks, turnsSpins } from './product';
 import type { SpinorBlocks } from './walk';
 
+/** Wires of the spinor form in the plus state. */
+export const spinorPlus = ({ partners }: Pick<SpinorLayout, 'partners'>): readonly string[] =>
+  partners ? ['time-reversed partner'] : [];
+
 /** The walk step of the spinor form: see {@link squaresRecipe}. */
 export function spinorRecipe(
   layout: SpinorLayout,
@@ -22,7 +26,7 @@ export function spinorRecipe(
       { name: 'system', qubits: 2 * layout.orbitals },
       { name: 'phase gradient', qubits: gradientWires(layout.angleBits + 2) },
     ],
-    plus: layout.partners ? ['time-reversed partner'] : [],
+    plus: spinorPlus(layout),
     flags: layout.flags.length,
     aroundItem: layout.hasPaired
       ? {
@@ -80,11 +84,11 @@ function productRecipe(layout: SpinorLayout, blocks: ProductBlocks, second: bool
         'angle look-up',
         'select.lookup',
         { addresses: rowAddresses, width: rowWidth },
-        blocks.rows.read,
+        blocks.rows,
         second,
       ),
       ...groups.map(([group, table]) =>
-        loadLeaf(`${group} look-up`, 'select.lookup', table, blocks.groups[group], true),
+        loadLeaf(`${group} look-up`, 'select.lookup', table, { read: blocks.groups[group], erase: 1 }, true),
       ),
       {
         name: 'occupation in its frame',

@@ -3,11 +3,11 @@ import { countBlocks, lookUpToffoli } from '../primitives/look-up';
 import type { Subroutine } from '../recipe';
 import type { LookupPolicy } from '../recipes/scope';
 import { chooseTableBlocks } from '../squares/blocks';
-import { squaresTables } from '../squares/recipe';
+import { idleQubits, squaresTables } from '../squares/recipe';
 import { phaseEstimationPart, type StepBits, withinCap } from '../squares/step';
 import type { KeepBits } from '../squares/tables';
 import { ANGLE_GROUPS, type AngleGroup, type SpinorLayout, spinorLayout } from './layout';
-import { spinorRecipe } from './recipe';
+import { spinorPlus, spinorRecipe } from './recipe';
 import type { SpinorBlocks } from './walk';
 
 /** A recipe, and what its circuit is to be emitted with. */
@@ -65,6 +65,8 @@ function chooseBlocks(
   limit: number | null,
 ): SpinorBlocks {
   const { outer, items, inner } = squaresTables(layout, bits, layout.flags.length);
+  // Angle tables are wider than what is idle: they are not read through borrowed wires.
+  const idle = idleQubits(layout, bits, 2 * layout.orbitals, spinorPlus(layout));
   const largest = 2 ** layout.rowBits;
   const rows = { addresses: layout.rowAddresses, width: layout.rowWidth, limit: largest, main: true };
   const group = (name: AngleGroup) => {
@@ -72,9 +74,9 @@ function chooseBlocks(
     return table ? chooseTableBlocks({ ...table, limit: largest, controlled: true }, policy, limit).read : 1;
   };
   return {
-    outer: chooseTableBlocks(outer, policy, limit),
-    items: chooseTableBlocks(items, policy, limit),
-    inner: chooseTableBlocks(inner, policy, limit),
+    outer: chooseTableBlocks({ ...outer, idle: idle.outer }, policy, limit),
+    items: chooseTableBlocks({ ...items, idle: idle.items }, policy, limit),
+    inner: chooseTableBlocks({ ...inner, idle: idle.inner }, policy, limit),
     rows: chooseTableBlocks(rows, policy, limit),
     groups: { phases: group('phases'), spins: group('spins') },
   };

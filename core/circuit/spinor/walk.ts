@@ -79,6 +79,7 @@ export function spinorForm(tables: SpinorTables, wires: SpinorWires, blocks: Spi
   return {
     weights,
     blocks,
+    system: wires.system,
     isSquare,
     isNegative: (t) => items[t]!.faces[0]!.sign < 0,
     isPaired: (t) => items[t]!.paired,

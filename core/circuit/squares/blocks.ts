@@ -1,4 +1,5 @@
 import { bestBlock } from '../formulas';
+import { borrowedLookUpToffoli } from '../primitives/borrowed-look-up';
 import { type Blocks, countBlocks, erasureToffoli, lookUpToffoli } from '../primitives/look-up';
 import type { LookupPolicy } from '../recipes/scope';
 
@@ -11,21 +12,30 @@ export interface ChoosableTable {
   readonly controlled?: boolean;
   /** Takes the block that the policy gives, if it gives one. */
   readonly main?: boolean;
-  /** Toffoli that reading in blocks of k brings elsewhere. */
+  /** Toffoli that reading in blocks of k on clean wires brings elsewhere. */
   readonly extra?: (k: number) => number;
+  /** Wires that may be borrowed. @defaultValue 0 */
+  readonly idle?: number;
 }
 
 /**
- * Blocks with the fewest Toffoli: ⌈rows/k⌉ falls and b(k − 1) rises with k. `plain` reads every table row by row.
+ * Blocks with the fewest Toffoli: ⌈rows/k⌉ falls and b(k − 1) rises with k. `plain` reads every table row by row, and
+ * so does `dirty` where too few wires are idle to be worth borrowing.
  *
  * @param limit - largest k·width any look-up may hold, in wires, or null.
  */
 export function chooseTableBlocks(
-  { addresses, width, limit: largest, controlled = false, main = false, extra }: ChoosableTable,
+  table: ChoosableTable,
   policy: Pick<LookupPolicy, 'mode' | 'block'>,
   limit: number | null,
 ): Blocks {
+  const { addresses, width, limit: largest, controlled = false, main = false, extra } = table;
   if (addresses.length === 0) return { read: 1, erase: 1 };
+  const eraseBlock = bestBlock(largest, (k) => erasureToffoli(countBlocks(addresses, k), k, controlled));
+  if (policy.mode === 'dirty') {
+    const given = main && policy.block !== 'auto' ? policy.block : null;
+    return { ...borrowedBlocks(table, given, limit), erase: eraseBlock };
+  }
   const best = () =>
     bestBlock(
       largest,
@@ -34,8 +44,30 @@ export function chooseTableBlocks(
     );
   const read =
     policy.mode === 'plain' ? 1 : main && policy.block !== 'auto' ? Math.min(policy.block, largest) : best();
-  return {
-    read,
-    erase: bestBlock(largest, (k) => erasureToffoli(countBlocks(addresses, k), k, controlled)),
-  };
+  return { read, erase: eraseBlock };
+}
+
+/** The cheapest way through borrowed wires, or row by row. @param given - the only k to try, or null. */
+function borrowedBlocks(
+  { addresses, width, limit: largest, controlled = false, idle = 0 }: ChoosableTable,
+  given: number | null,
+  limit: number | null,
+): Omit<Blocks, 'erase'> {
+  let best: Omit<Blocks, 'erase'> = { read: 1 };
+  let least = lookUpToffoli(addresses.length, width, 1, controlled);
+  for (let k = 2; k <= largest && k - 1 <= idle && k <= (limit ?? k); k *= 2) {
+    if (given !== null && k !== given) continue;
+    const blocks = countBlocks(addresses, k);
+    const widest = Math.min(width, Math.floor(idle / (k - 1)));
+    // Of the slices that make as many passes, the narrowest is the cheapest.
+    for (let slices = Math.ceil(width / widest); slices <= width; slices++) {
+      const slice = Math.ceil(width / slices);
+      const cost = borrowedLookUpToffoli(blocks, width, { block: k, slice }, controlled);
+      if (cost < least) {
+        least = cost;
+        best = { read: k, slice };
+      }
+    }
+  }
+  return best;
 }

@@ -1,16 +1,12 @@
-import {
-  type Blocks,
-  countBlocks,
-  erasureToffoli,
-  erasureWires,
-  lookUpToffoli,
-  lookUpWires,
-} from '../primitives/look-up';
+import { type Blocks, countBlocks, erasureToffoli, erasureWires } from '../primitives/look-up';
+import { readToffoli, readWires } from '../primitives/reading';
 import type { StepPart, Subroutine } from '../recipe';
 
 export const LOW = 'G. H. Low, V. Kliuchnikov, L. Schaeffer, arXiv:1812.00954 (2018)';
 export const BERRY = 'D. W. Berry et al., Quantum 3, 208 (2019)';
 export const BABBUSH = 'R. Babbush et al., Phys. Rev. X 8, 041015 (2018)';
+export const COPIES =
+  '"Halving the cost of QROM", arXiv:2605.20334 (2026), count derived; equal to the emitted circuit';
 export const GIDNEY = 'C. Gidney, Quantum 2, 74 (2018)';
 export const DERIVED = 'derived; equal to the emitted circuit, see DEVELOPERS';
 
@@ -38,24 +34,37 @@ export interface TableSizes {
   readonly width: number;
 }
 
-/** A look-up in blocks of k; its output wires belong to the node around it. */
+/** A look-up; its output wires belong to the node around it. */
 export function loadLeaf(
   name: string,
   part: StepPart,
   { addresses, width }: TableSizes,
-  k: number,
+  how: Blocks,
   controlled = false,
 ): Subroutine {
-  const blocks = countBlocks(addresses, k);
+  const blocks = countBlocks(addresses, how.read);
+  const { formula, inputs, source } = readingText(width, how, controlled);
   return leaf({
     name,
     part,
-    toffoli: lookUpToffoli(blocks, width, k, controlled),
-    formula: controlled ? 'B − 1 + b(k − 1)' : 'B − 2 + b(k − 1)',
-    inputs: { rows: addresses.length, B: blocks, b: width, k },
-    source: `${LOW}; ${BERRY}`,
-    scratch: lookUpWires(addresses, k, controlled),
+    toffoli: readToffoli(blocks, width, how, controlled),
+    formula,
+    inputs: { rows: addresses.length, B: blocks, ...inputs },
+    source,
+    scratch: readWires(addresses, how, controlled),
   });
+}
+
+/** What a look-up costs in symbols, with B blocks. */
+export function readingText(width: number, { read: k, slice }: Blocks, controlled = false) {
+  const iteration = controlled ? 'B − 1' : 'B − 2';
+  return slice === undefined
+    ? { formula: `${iteration} + b(k − 1)`, inputs: { b: width, k }, source: `${LOW}; ${BERRY}` }
+    : {
+        formula: `(⌈b/c⌉ + 1)(${iteration}) + (b + c)(k − 1) + (k − 1 − log₂k), c bits at a time through borrowed wires`,
+        inputs: { b: width, k, c: slice },
+        source: COPIES,
+      };
 }
 
 export function eraseLeaf(

@@ -1,9 +1,19 @@
 import { aliasSamplingToffoli } from '../primitives/alias-sampling';
-import { type Blocks, erasureWires, lookUpWires } from '../primitives/look-up';
+import { type Blocks, erasureWires } from '../primitives/look-up';
+import { outputWires, readWires } from '../primitives/reading';
 import { reflectionToffoli } from '../primitives/reflection';
 import type { Subroutine } from '../recipe';
 import type { SquaresLayout } from './layout';
-import { BABBUSH, BERRY, blockCounts, eraseLeaf, LOW, leaf, loadLeaf, type TableSizes } from './leaves';
+import {
+  BABBUSH,
+  BERRY,
+  blockCounts,
+  eraseLeaf,
+  leaf,
+  loadLeaf,
+  readingText,
+  type TableSizes,
+} from './leaves';
 import type { KeepBits } from './tables';
 import { COMMON_FLAGS, type SquaresBlocks } from './walk';
 
@@ -40,15 +50,7 @@ export function squaresRecipe(
   blocks: SquaresBlocks,
   phase: PhaseEstimationPart,
 ): Subroutine {
-  const ancillas = [
-    { name: 'item', qubits: layout.itemBits },
-    { name: 'face', qubits: layout.hasFaces ? 1 : 0 },
-    { name: 'square of a pair', qubits: layout.hasPaired ? 1 : 0 },
-    { name: 'uniform number, outer', qubits: bits.keep },
-    { name: 'row', qubits: layout.rowBits },
-    { name: 'uniform number, inner', qubits: bits.innerKeep },
-    ...form.plus.map((name) => ({ name, qubits: 1 })),
-  ].filter((register) => register.qubits > 0);
+  const ancillas = ancillaRegisters(layout, bits, form.plus);
   const reflected = ancillas.reduce((sum, register) => sum + register.qubits, 0);
   return {
     name: form.name,
@@ -73,6 +75,37 @@ export function squaresRecipe(
         source: BABBUSH,
       }),
     ],
+  };
+}
+
+function ancillaRegisters(layout: SquaresLayout, bits: KeepBits, plus: readonly string[]) {
+  return [
+    { name: 'item', qubits: layout.itemBits },
+    { name: 'face', qubits: layout.hasFaces ? 1 : 0 },
+    { name: 'square of a pair', qubits: layout.hasPaired ? 1 : 0 },
+    { name: 'uniform number, outer', qubits: bits.keep },
+    { name: 'row', qubits: layout.rowBits },
+    { name: 'uniform number, inner', qubits: bits.innerKeep },
+    ...plus.map((name) => ({ name, qubits: 1 })),
+  ].filter((register) => register.qubits > 0);
+}
+
+/** Wires that the look-ups of each table may borrow: as many as `idleWires` lists. */
+export function idleQubits(
+  layout: SquaresLayout,
+  bits: KeepBits,
+  system: number,
+  plus: readonly string[],
+): { readonly outer: number; readonly items: number; readonly inner: number; readonly rows: number } {
+  const registers = ancillaRegisters(layout, bits, plus);
+  const all = system + registers.reduce((sum, { qubits }) => sum + qubits, 0);
+  const { itemBits, rowBits } = layout;
+  const face = layout.hasFaces ? 1 : 0;
+  return {
+    outer: all - itemBits - face,
+    items: all - itemBits,
+    inner: all - rowBits - itemBits - face,
+    rows: all - rowBits - itemBits,
   };
 }
 
@@ -107,9 +140,9 @@ function blockEncodingRecipe(
       ...samplingLeaves('outer PREPARE', outer, index, bits.keep, blocks.outer, 0),
       {
         name: 'item',
-        registers: [{ name: 'item data', qubits: items.width * blocks.items.read }],
+        registers: [{ name: 'item data', qubits: outputWires(items.width, blocks.items) }],
         children: [
-          loadLeaf('item data', 'prepare', items, blocks.items.read),
+          loadLeaf('item data', 'prepare', items, blocks.items),
           {
             name: 'square of the item, or the one-body part',
             ...(registers ? { registers } : {}),
@@ -123,7 +156,7 @@ function blockEncodingRecipe(
 }
 
 const samplingRegisters = (which: string, width: number, keepBits: number, blocks: Blocks) => [
-  { name: `alternate and keep, ${which}`, qubits: width * blocks.read },
+  { name: `alternate and keep, ${which}`, qubits: outputWires(width, blocks) },
   { name: `carries of the comparison, ${which}`, qubits: keepBits },
 ];
 
@@ -137,6 +170,7 @@ function samplingLeaves(
   t: number,
 ): Subroutine[] {
   const counts = blockCounts(table.addresses, blocks);
+  const reading = readingText(table.width, blocks);
   const { prepare, unprepare } = aliasSamplingToffoli(counts, index, keepBits, blocks);
   return [
     leaf({
@@ -144,10 +178,10 @@ function samplingLeaves(
       part: 'prepare',
       toffoli: prepare,
       t,
-      formula: 'B − 2 + b(k − 1) + keep + n: look-up, comparison, exchange',
-      inputs: { B: counts.read, b: table.width, k: blocks.read, keep: keepBits, n: index },
-      source: `${BABBUSH}; ${LOW}`,
-      scratch: lookUpWires(table.addresses, blocks.read),
+      formula: `${reading.formula}; + keep + n: comparison, exchange`,
+      inputs: { B: counts.read, ...reading.inputs, keep: keepBits, n: index },
+      source: `${BABBUSH}; ${reading.source}`,
+      scratch: readWires(table.addresses, blocks),
     }),
     leaf({
       name: `${name}, undone`,

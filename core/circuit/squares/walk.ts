@@ -1,7 +1,9 @@
 import type { Machine } from '../gates/machine';
 import { gate, nothing, type Operation, repeat, scratch, sequence, span, within } from '../gates/operation';
 import { aliasSampling } from '../primitives/alias-sampling';
-import { type Blocks, lookUp } from '../primitives/look-up';
+import { borrowedWires } from '../primitives/borrowed-look-up';
+import type { Blocks } from '../primitives/look-up';
+import { outputWires, readTable } from '../primitives/reading';
 import { controlledHadamard, flipZeros, hadamards } from '../primitives/reflection';
 import { firstAddresses } from '../primitives/unary-iteration';
 import type { WeightTables } from './tables';
@@ -39,6 +41,7 @@ export const COMMON_FLAGS = 3;
 export interface SquaresForm {
   readonly weights: WeightTables;
   readonly blocks: SquaresBlocks;
+  readonly system: readonly number[];
   /** Items that are squared; the others are the one-body part, applied once. */
   readonly isSquare: (t: number) => boolean;
   readonly isNegative: (t: number) => boolean;
@@ -107,13 +110,25 @@ export function squaresAncillas(wires: SquaresWires): number[] {
   ];
 }
 
+/** Wires that a look-up addressed by `address` may borrow: all that live through the step, but those. */
+export function idleWires(
+  system: readonly number[],
+  wires: SquaresWires,
+  address: readonly (number | null)[],
+): number[] {
+  return [...system, ...squaresAncillas(wires)].filter((wire) => !address.includes(wire));
+}
+
 /**
  * U with (⟨0|⊗1) U (|0⟩⊗1) = (H − c)/λ on the system: PREPARE† · SELECT · PREPARE with the squares of the items
  * inside SELECT. Everything allocated inside returns to |0⟩.
  */
 export function squaresBlockEncoding(form: SquaresForm, wires: SquaresWires): Operation {
   return scratch(outerScratch(form), (lent) =>
-    within(outerPrepare(form, wires, lent), squaresItem(form, wires)),
+    within(
+      outerPrepare(form, wires, lent, idleWires(form.system, wires, [...wires.item, wires.face])),
+      squaresItem(form, wires),
+    ),
   );
 }
 
@@ -122,18 +137,24 @@ type Prepared = Pick<SquaresForm, 'weights' | 'blocks'>;
 /** Wires that the outer PREPARE leaves in use: alternate and keep value, and the carries of their comparison. */
 export function outerScratch({ weights, blocks }: Prepared): number {
   const { keep } = weights.keepBits;
-  return (weights.outer.indexBits + keep) * blocks.outer.read + keep;
+  return outputWires(weights.outer.indexBits + keep, blocks.outer) + keep;
 }
+
+/** Wires that the look-up of the outer PREPARE borrows. */
+export const outerBorrows = ({ outer: { read, slice } }: Pick<SquaresBlocks, 'outer'>): number =>
+  slice === undefined ? 0 : borrowedWires({ block: read, slice });
 
 /**
  * Puts items, faces and squares into superposition with the square roots of their weights as amplitudes.
  *
  * @param lent - `outerScratch` wires in |0⟩, which stay entangled with the rest until the adjoint.
+ * @param idle - wires that its look-up may borrow.
  */
 export function outerPrepare(
   { weights, blocks }: Prepared,
   wires: PrepareWires,
   lent: readonly number[],
+  idle: readonly number[],
 ): Operation {
   const { outer, keepBits } = weights;
   const index = [...wires.item, ...(wires.face === null ? [] : [wires.face])];
@@ -143,6 +164,7 @@ export function outerPrepare(
       uniform: wires.outerUniform,
       output: lent.slice(0, -keepBits.keep),
       carries: lent.slice(-keepBits.keep),
+      idle,
     },
     {
       address: index,
@@ -186,7 +208,7 @@ export function squaresItem(form: SquaresForm, wires: SquaresWires): Operation {
     width,
     bit: (t: number, b: number) => (b < rowBits ? sizeBits[t]! > b : data[t]![b - rowBits]!),
   };
-  return scratch(width * form.blocks.items.read, (output) => {
+  return scratch(outputWires(width, form.blocks.items), (output) => {
     const sizes = output.slice(0, rowBits);
     const [negative, paired, isSquare, ...flags] = output.slice(rowBits, width) as [number, number, number];
     const item: ItemWires = { paired, isSquare, flags };
@@ -197,7 +219,9 @@ export function squaresItem(form: SquaresForm, wires: SquaresWires): Operation {
       wires.square === null ? nothing : gate('CZ', paired, wires.square),
       form.aroundItem(item, (extra) => square(form, wires, sizes, item, extra)),
     );
-    return within(span('item data', 'prepare', lookUp(wires.item, output, table, form.blocks.items)), apply);
+    const idle = idleWires(form.system, wires, wires.item);
+    const load = readTable(wires.item, output, table, form.blocks.items, idle);
+    return within(span('item data', 'prepare', load), apply);
   });
 }
 
@@ -255,7 +279,7 @@ function innerBlock(
   const uniform = allEqual
     ? hadamards(wires.row)
     : repeat(rowBits, (i) => controlledHadamard(sizes[i]!, wires.row[i]!));
-  return scratch((rowBits + innerKeep) * form.blocks.inner.read + innerKeep, (lent) => {
+  return scratch(outputWires(rowBits + innerKeep, form.blocks.inner) + innerKeep, (lent) => {
     const prepare = sequence(
       uniform,
       hadamards(wires.plus),
@@ -265,6 +289,7 @@ function innerBlock(
           uniform: wires.innerUniform,
           output: lent.slice(0, -innerKeep),
           carries: lent.slice(-innerKeep),
+          idle: idleWires(form.system, wires, address),
         },
         {
           address,

@@ -1,7 +1,8 @@
 import { countBlocks, erasureToffoli } from '../primitives/look-up';
 import type { LookupPolicy } from '../recipes/scope';
 import { chooseTableBlocks } from '../squares/blocks';
-import { squaresTables } from '../squares/recipe';
+import { idleQubits, squaresTables } from '../squares/recipe';
+import { TRIPLET_PLUS } from './recipe';
 import type { TripletLayout } from './sizes';
 import type { TripletBits } from './tables';
 import type { WalkBlocks } from './walk';
@@ -12,27 +13,30 @@ import type { WalkBlocks } from './walk';
  * @param limit - largest k·width any look-up may hold, in wires, or null.
  */
 export function chooseBlocks(
+  orbitals: number,
   layout: TripletLayout,
   bits: TripletBits,
   policy: Pick<LookupPolicy, 'mode' | 'block'>,
   limit: number | null,
 ): WalkBlocks {
   const { outer, items, inner } = squaresTables(layout, bits, 0);
+  const idle = idleQubits(layout, bits, 2 * orbitals, TRIPLET_PLUS);
   const { rowAddresses, rowWidth, pairAddresses, anglesWidth } = layout;
   const largest = 2 ** layout.rowBits;
-  const rows = { addresses: rowAddresses, width: rowWidth, limit: largest, main: true };
+  const rows = { addresses: rowAddresses, width: rowWidth, limit: largest, main: true, idle: idle.rows };
   const pairs = {
     addresses: pairAddresses,
     width: anglesWidth,
     limit: largest,
     controlled: true,
+    idle: idle.rows,
     // A second-vector table read in blocks must be erased too.
     extra: (k: number) => (k > 1 ? erasureToffoli(countBlocks(pairAddresses, k), k, true) : 0),
   };
   return {
-    outer: chooseTableBlocks(outer, policy, limit),
-    items: chooseTableBlocks(items, policy, limit),
-    inner: chooseTableBlocks(inner, policy, limit),
+    outer: chooseTableBlocks({ ...outer, idle: idle.outer }, policy, limit),
+    items: chooseTableBlocks({ ...items, idle: idle.items }, policy, limit),
+    inner: chooseTableBlocks({ ...inner, idle: idle.inner }, policy, limit),
     rows: chooseTableBlocks(rows, policy, limit),
     pairs: chooseTableBlocks(pairs, policy, limit),
   };

@@ -10,8 +10,9 @@ import {
   span,
   within,
 } from '../gates/operation';
-import { type Blocks, contentAfterSwaps, erase, lookUp, type Table } from '../primitives/look-up';
+import { type Blocks, erase, type Table } from '../primitives/look-up';
 import { majoranaRotation, type Rotate, swapLayer } from '../primitives/majorana';
+import { contentAfterReading, outputWires, readTable } from '../primitives/reading';
 import { FACE_FLAGS, IS_PAIR, ROW_FLAGS } from './rounded-row';
 import { isPairRow, rowBit, type TripletTables } from './tables';
 
@@ -31,6 +32,8 @@ export interface ProductWires {
   readonly face: number | null;
   /** Row address, lowest bit first. */
   readonly address: readonly number[];
+  /** Wires that a look-up may borrow. */
+  readonly idle: readonly number[];
 }
 
 export interface ProductBlocks {
@@ -53,18 +56,18 @@ export function product(
   enabled: number | null,
 ): Operation {
   const run = (machine: Machine, first: 'u' | 'v') => {
-    const output = machine.allocateRegister(tables.rowWidth * blocks.rows.read);
+    const output = machine.allocateRegister(outputWires(tables.rowWidth, blocks.rows));
     const row = splitRow(tables, output);
     const load = rowTable(tables, first);
     named(machine, 'angle look-up', 'select.lookup', () =>
-      lookUp(wires.address, output, load, blocks.rows, enabled).run(machine),
+      readTable(wires.address, output, load, blocks.rows, wires.idle, enabled).run(machine),
     );
     const body = productBody(tables, wires, spin, blocks, enabled, row);
     if (first === 'v') body.run(machine);
     else body.runAdjoint(machine);
     // The front of the register now holds the other vector, the copies behind it what was read at first.
     const now = rowTable(tables, first === 'v' ? 'u' : 'v');
-    const behind = contentAfterSwaps(load, blocks.rows.read);
+    const behind = contentAfterReading(load, blocks.rows);
     named(machine, 'angle erasure', 'select.lookup', () =>
       erase(
         machine,
@@ -173,6 +176,9 @@ function faceApplied(wires: ProductWires, row: RowWires, inner: Operation): Oper
   );
 }
 
+/** Whether a look-up can be added onto wires in use: row by row, or through borrowed wires. */
+export const addsOnto = ({ read, slice }: Blocks): boolean => read === 1 || slice !== undefined;
+
 /** XORs (angles of u) ⊕ (angles of v) into the angle register where the row has two vectors: self-inverse. */
 function exchangeVectors(
   tables: TripletTables,
@@ -188,13 +194,13 @@ function exchangeVectors(
     width: angles.length,
     bit: (address, bit) => rowBit(tables, 'u', address, bit) !== rowBit(tables, 'v', address, bit),
   };
-  if (blocks.pairs.read === 1) {
-    const once = lookUp(wires.address, angles, table, blocks.pairs, row.isPair);
+  if (addsOnto(blocks.pairs)) {
+    const once = readTable(wires.address, angles, table, blocks.pairs, wires.idle, row.isPair);
     return { run: (machine) => once.run(machine), runAdjoint: (machine) => once.run(machine) };
   }
-  return scratch(angles.length * blocks.pairs.read, (output) =>
+  return scratch(outputWires(angles.length, blocks.pairs), (output) =>
     within(
-      lookUp(wires.address, output, table, blocks.pairs, row.isPair),
+      readTable(wires.address, output, table, blocks.pairs, wires.idle, row.isPair),
       repeat(angles.length, (i) => gate('CX', output[i]!, angles[i]!)),
     ),
   );

@@ -1,14 +1,18 @@
 import type { Blocks } from '../primitives/look-up';
 import { majoranaRotationToffoli, swapLayerToffoli } from '../primitives/majorana';
 import { gradientWires } from '../primitives/phase-gradient';
+import { outputWires } from '../primitives/reading';
 import type { Subroutine } from '../recipe';
 import { DERIVED, eraseLeaf, GIDNEY, leaf, loadLeaf } from '../squares/leaves';
 import { type PhaseEstimationPart, squaresRecipe } from '../squares/recipe';
-import type { ProductBlocks, SpinTreatment } from './product';
+import { addsOnto, type ProductBlocks, type SpinTreatment } from './product';
 import { FACE_FLAGS } from './rounded-row';
 import type { TripletLayout } from './sizes';
 import type { TripletBits } from './tables';
 import type { WalkBlocks } from './walk';
+
+/** Wires of the triplet form in the plus state. */
+export const TRIPLET_PLUS = ['spin', 'Majorana kind'] as const;
 
 /** The walk step of the triplet form: see {@link squaresRecipe}. */
 export function tripletRecipe(
@@ -25,7 +29,7 @@ export function tripletRecipe(
       { name: 'system', qubits: 2 * orbitals },
       { name: 'phase gradient', qubits: gradientWires(layout.angleBits + 2) },
     ],
-    plus: ['spin', 'Majorana kind'],
+    plus: TRIPLET_PLUS,
     flags: 0,
     aroundItem: {},
     product: (second: boolean) => productRecipe(orbitals, layout, spin, blocks, second),
@@ -47,9 +51,9 @@ function productRecipe(
   const modulusBits = angleBits + 2;
   return {
     name: 'product of two rotated Majorana operators',
-    registers: [{ name: 'angles and row flags', qubits: rowWidth * blocks.rows.read }],
+    registers: [{ name: 'angles and row flags', qubits: outputWires(rowWidth, blocks.rows) }],
     children: [
-      loadLeaf('angle look-up', 'select.lookup', rows, blocks.rows.read, second),
+      loadLeaf('angle look-up', 'select.lookup', rows, blocks.rows, second),
       {
         name: 'Majorana operators',
         registers: layout.hasFaces ? [{ name: 'face of the row', qubits: FACE_FLAGS }] : [],
@@ -112,12 +116,12 @@ function productRecipe(
 /** The look-up of what turns the first vector into the second, where a row has two. */
 function secondVector(addresses: Uint32Array, width: number, blocks: Blocks): Subroutine[] {
   if (addresses.length === 0) return [];
-  const load = loadLeaf('second vector', 'select.lookup', { addresses, width }, blocks.read, true);
-  if (blocks.read === 1) return [load];
+  const load = loadLeaf('second vector', 'select.lookup', { addresses, width }, blocks, true);
+  if (addsOnto(blocks)) return [load];
   return [
     {
       name: 'second vector',
-      registers: [{ name: 'change of the angles', qubits: width * blocks.read }],
+      registers: [{ name: 'change of the angles', qubits: outputWires(width, blocks) }],
       children: [load, eraseLeaf('second vector, undone', 'select.lookup', addresses, blocks.erase, true)],
     },
   ];

@@ -26,7 +26,7 @@ export function tripletStep(
   const phase = phaseEstimationPart(phaseBits);
   return withinCap(
     (limit): TripletStep => {
-      const blocks = chooseBlocks(layout, bits, policy, limit);
+      const blocks = chooseBlocks(sizes.orbitals, layout, bits, policy, limit);
       return { recipe: tripletRecipe(sizes.orbitals, layout, bits, spin, blocks, phase), blocks };
     },
     ({ blocks }) => layout.rowWidth * blocks.rows.read,

@@ -3,6 +3,7 @@ import { gate, type Operation, sequence } from '../gates/operation';
 import type { Rotate } from '../primitives/majorana';
 import { gradientWires, rotateByGradient, rotateExactly } from '../primitives/phase-gradient';
 import {
+  idleWires,
   type SquaresBlocks,
   type SquaresForm,
   type SquaresWires,
@@ -70,6 +71,7 @@ export function tripletForm(
   return {
     weights: tables,
     blocks,
+    system: wires.system,
     isSquare: (t) => t < items.length - 1,
     isNegative: (t) => items[t]!.sign < 0,
     isPaired: (t) => items[t]!.paired,
@@ -78,7 +80,13 @@ export function tripletForm(
     aroundItem: ({ isSquare }, square) =>
       sequence(gate('X', isSquare), gate('S', isSquare), gate('X', isSquare), square([])),
     product: ({ address, isSquare, second }) =>
-      product(tables, { ...wires, address }, spin, blocks, second ? isSquare : null),
+      product(
+        tables,
+        { ...wires, address, idle: idleWires(wires.system, wires, address) },
+        spin,
+        blocks,
+        second ? isSquare : null,
+      ),
   };
 }
 

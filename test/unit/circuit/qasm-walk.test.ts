@@ -46,7 +46,7 @@ it('PREPARE read back gives the amplitudes of its table', () => {
   const circuit = (machine: Machine) => {
     const prepared = { weights: TABLES, blocks: BLOCKS };
     const lent = machine.allocateRegister(outerScratch(prepared), 'alternate and keep');
-    outerPrepare(prepared, prepareWires(TABLES, TABLES.hasPaired, machine), lent).run(machine);
+    outerPrepare(prepared, prepareWires(TABLES, TABLES.hasPaired, machine), lent, []).run(machine);
   };
   expect(expectSame(circuit, 1, [])).toBe(4);
 });

@@ -88,6 +88,14 @@ const BLOCKS: WalkBlocks[] = [
     rows: { read: 2, erase: 2 },
     pairs: { read: 2, erase: 2 },
   },
+  // Through borrowed wires: the system's and the index registers'.
+  {
+    outer: { read: 2, erase: 2, slice: 3 },
+    items: { read: 2, erase: 1, slice: 2 },
+    inner: { read: 2, erase: 1, slice: 4 },
+    rows: { read: 2, erase: 2, slice: 5 },
+    pairs: { read: 2, erase: 1, slice: 2 },
+  },
 ];
 
 /** Rounding of some ten thousand gates, and amplitudes the simulator drops: far below any angle or weight step. */
@@ -142,6 +150,7 @@ describe.each(['index', 'swap-layers'] as const)('triplet SELECT with spin by %s
     [2, 0, 'random' as const],
     [2, 1, 0 as const],
     [3, 0, 1 as const],
+    [2, 2, 1 as const],
   ])('gives every item of the encoded program, N = %i', (n, blocks, outcomes) => {
     const given = program(n);
     const tables = tripletTables(given, { keep: 3, innerKeep: n === 2 ? 3 : 1, rotation: 5 });
@@ -186,7 +195,7 @@ describe.each(['index', 'swap-layers'] as const)('triplet SELECT with spin by %s
     const given = { ...program(2), items: program(2).items.slice(2) };
     const tables = tripletTables(given, { keep: 1, innerKeep: 1, rotation: 4 });
     const block = simulate(tables, 'random', (machine, wires) => {
-      blockEncoding(tables, wires, spin, BLOCKS[0]!).run(machine);
+      blockEncoding(tables, wires, spin, BLOCKS[spin === 'index' ? 0 : 2]!).run(machine);
     });
     const encoded = encodedProgram(given, tables);
     const expected = zeros(block.n);
