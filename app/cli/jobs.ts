@@ -10,7 +10,7 @@ import {
   writeCircuit,
 } from '../../core/plan';
 import { loadInputs, openInputs, readReference } from './inputs';
-import { writeFolder, writeStreamed } from './output';
+import { refuseUsedFolder, writeFolder, writeStreamed } from './output';
 import type {
   CircuitRequest,
   CompareRequest,
@@ -81,6 +81,7 @@ async function circuit(request: CircuitRequest, context: JobContext): Promise<Re
 }
 
 async function encode(request: EncodeRequest, context: JobContext): Promise<Result> {
+  refuseUsedFolder(request.out.path);
   const set = await loadInputs(await openInputs(request, context), request.encode.terms, 'throw', context);
   const { document, arrays } = await encodeTables(set, request.encode, context);
   writeFolder(request.out, function* () {

@@ -8,6 +8,7 @@ import {
   readdirSync,
   renameSync,
   rmSync,
+  statSync,
   writeFileSync,
   writeSync,
 } from 'node:fs';
@@ -87,15 +88,11 @@ export async function writeStreamed<T>(
   }
 }
 
-/**
- * Writes the files of a reserved folder one by one.
- * @throws InputError `folder-in-use`, `cannot-write`
- */
+/** Writes the files of a reserved folder one by one. */
 export function writeFolder(
   { path, temporary }: OutputFile,
   files: () => Iterable<readonly [name: string, content: string | Uint8Array]>,
 ): void {
-  refuseUsedFolder(path);
   for (const [name, content] of files()) {
     try {
       mkdirSync(temporary, { recursive: true });
@@ -106,12 +103,15 @@ export function writeFolder(
   }
 }
 
-function refuseUsedFolder(path: string): void {
-  if (!existsSync(path) || readdirSync(path).length === 0) return;
+/** @throws InputError `folder-in-use` where the path is a file or a folder with files */
+export function refuseUsedFolder(path: string): void {
+  if (!existsSync(path)) return;
+  const isFolder = statSync(path).isDirectory();
+  if (isFolder && readdirSync(path).length === 0) return;
   throw new InputError({
     code: 'folder-in-use',
     where: path,
-    found: 'the folder holds files',
+    found: isFolder ? 'the folder holds files' : 'a file of that name',
     expected: 'a new or an empty folder',
     mend: 'Name another folder.',
   });

@@ -47,23 +47,26 @@ export function fermiWindow(electrons: number, occupations: ArrayLike<number>): 
   return inside < 0 || inside > 2 * orbitals.length ? null : { orbitals, electrons: inside, occupations };
 }
 
-/** The lowest levels of the window under H, under the program of the encoding, and under its rounded tables. */
+/**
+ * The lowest levels of the window under H, under the program of the encoding, and under its rounded tables.
+ *
+ * @param truncated - whether anything was dropped
+ */
 export async function windowEffect(
   hamiltonian: SpatialHamiltonian,
   given: TripletProgram,
   encoded: TripletProgram,
   occupations: ArrayLike<number>,
+  truncated: boolean,
   context: JobContext,
 ): Promise<WindowEffect | null> {
   const window = fermiWindow(hamiltonian.electrons, occupations);
   if (!window) return null;
   const exact = restrictToWindow(hamiltonian, window);
-  const [kept, rounded] = [
-    await windowOfProgram(given, window, context),
-    await windowOfProgram(encoded, window, context),
-  ];
-  const truncated = await levelShifts(exact, kept, STATES, context);
-  const both = await levelShifts(exact, rounded, STATES, context);
+  const both = await levelShifts(exact, await windowOfProgram(encoded, window, context), STATES, context);
+  const truncation = truncated
+    ? (await levelShifts(exact, await windowOfProgram(given, window, context), STATES, context)).largest
+    : 0;
   return {
     orbitals: window.orbitals.map((p) => p + 1),
     electrons: window.electrons,
@@ -71,6 +74,6 @@ export async function windowEffect(
     exact: Array.from(both.given),
     largestShift: both.largest,
     largestGapShift: both.largestGap,
-    truncationShift: truncated.largest,
+    truncationShift: truncation,
   };
 }

@@ -131,7 +131,14 @@ export async function encodeTables(
       bits,
       residual: encoding.residual,
       rounding: { worstCase: rigorous, estimate, realised: realised.bound, typical: realised.typical },
-      window: await windowEffect(hamiltonian, given, encoded, occupations, context),
+      window: await windowEffect(
+        hamiltonian,
+        given,
+        encoded,
+        occupations,
+        encoding.residual.oneNormBound > 0,
+        context,
+      ),
       sizes: {
         items: tables.items.length,
         rows: tables.rowAddresses.length,

@@ -1,6 +1,6 @@
 import type { TripletRow } from '../encode';
 import { isSymmetricPlane, type TripletOperator, toSpinOrbitals, zeroOperator } from '../hamiltonian';
-import { hermitianEigenvalues, symmetricEigenvalues } from '../linalg';
+import { antisymmetricNormsBatch, hermitianEigenvalues, symmetricEigenvalues } from '../linalg';
 
 /** Σ rows weight·op as a Hermitian operator less its identity part, and what rounding makes not Hermitian of it. */
 export interface RowsOperator {
@@ -94,6 +94,15 @@ function modeEigenvalues(operator: TripletOperator): Float64Array {
   const k = spins[0] ?? null;
   const symmetric = sector === 'even' ? plane(0) : k === null ? new Float64Array(n * n) : plane(k);
   const antisymmetric = sector === 'odd' ? plane(0) : k === null ? null : plane(k);
+  if (antisymmetric && symmetric.every((x) => x === 0)) {
+    const a = antisymmetricNormsBatch(antisymmetric, 1, n);
+    const values = new Float64Array(2 * n);
+    a.forEach((x, j) => {
+      values.fill(x, 4 * j, 4 * j + 2);
+      values.fill(-x, 4 * j + 2, 4 * j + 4);
+    });
+    return values.sort();
+  }
   const half = antisymmetric?.some((x) => x !== 0)
     ? hermitianEigenvalues({ n, re: symmetric.slice(), im: antisymmetric.slice() })
     : symmetricEigenvalues(symmetric, n);

@@ -72,7 +72,7 @@ function itemBound(n: number, given: TripletItem, encoded: TripletItem, electron
       const after = operatorOfRows(n, encoded.rows, face, 1 / weightOf(encoded, face), kinds);
       const change = normOfRows(addRows(after, before, -1), electrons);
       const old = normOfRows(before, electrons);
-      return { change, old, now: Math.min(old + change, normOfRows(after, electrons)), scalar: after.scalar };
+      return { change, old, now: old + change, scalar: after.scalar };
     });
     const [y, x] = norms;
     // λ[(Y + X)²− (Y − X)²] = 2λ{X, Y}: scalars of A rows cancel between the two squares.
