@@ -78,7 +78,8 @@ export function product(
       { size: main.length, content: contentAfterSwaps(load, blocks.rows.read) },
       ...groups.map((group, i) => ({
         size: added[i]!.length,
-        content: groupContent(tables, group, blocks.groups[group]),
+        // Nothing at rows outside the group, at which its look-up was switched off: a block never leaves an item.
+        content: contentAfterSwaps(groupTable(tables, group), blocks.groups[group]),
       })),
     ];
     named(machine, 'angle erasure', () =>
@@ -125,14 +126,6 @@ function groupTable(tables: SpinorTables, group: AngleGroup): Table {
     ...tables.layout.tables.get(group)!,
     bit: (address, bit) => groupBit(tables, group, address, bit),
   };
-}
-
-/** What the registers of a group hold: nothing at rows outside it, at which its look-up was switched off. */
-function groupContent(tables: SpinorTables, group: AngleGroup, block: number) {
-  const table = groupTable(tables, group);
-  const inside = new Set(table.addresses);
-  const content = contentAfterSwaps(table, block);
-  return (address: number, position: number) => inside.has(address) && content(address, position);
 }
 
 /** Registers of one row's angles and flags. */

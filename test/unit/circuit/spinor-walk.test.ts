@@ -11,6 +11,8 @@ import {
 } from '../../../core/circuit/spinor/walk';
 import { squaresBlockEncoding } from '../../../core/circuit/squares/walk';
 import type { SpinorProgram } from '../../../core/encode';
+import { hermitianEigenvalues } from '../../../core/linalg';
+import { restrict } from '../encode/fock-space';
 import { addScaled, zeros } from './majorana-algebra';
 import {
   distance,
@@ -216,6 +218,25 @@ describe.each(CASES)('spinor SELECT: $name', ({ program, bits, blocks, merge, ou
       }
     }
   });
+});
+
+it('keeps Kramers pairs exact however coarse the angles', () => {
+  for (const [items, seed] of [
+    [SEPARATE, 3],
+    [JOINT, 4],
+  ] as const) {
+    const program = randomProgram(2, true, { kind: 'full', rows: 2 }, items, seed);
+    const tables = spinorTables(program, { keep: 2, innerKeep: 2, rotation: 3 }, []);
+    const encoded = encodedSpinorProgram(program, tables);
+    for (const electrons of [1, 3]) {
+      const values = hermitianEigenvalues(restrict(programOperator(encoded), electrons));
+      const exact = hermitianEigenvalues(restrict(programOperator(program), electrons));
+      for (let i = 0; i < values.length; i += 2) {
+        expect(Math.abs(values[i + 1]! - values[i]!)).toBeLessThan(1e-12);
+      }
+      expect(Math.abs(values[0]! - exact[0]!)).toBeGreaterThan(1e-3);
+    }
+  }
 });
 
 it('is a block encoding of the encoded program with everything running, N = 2', () => {
