@@ -175,8 +175,7 @@ function recipeOf(
         ? spinorStep(shape.spinors, widths, policy).recipe
         : spinorStepByFormula(shape, widths, policy);
     case 'sparse':
-      // The sparse table is not read through borrowed wires: a closed formula stands in for that.
-      return shape.terms && policy.mode !== 'dirty'
+      return shape.terms
         ? sparseStep(shape.terms, widths, policy).recipe
         : sparseStepByFormula(
             {

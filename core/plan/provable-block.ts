@@ -47,8 +47,7 @@ export function provableBlock(encoding: Encoding, variant: VariantName): Provabl
   const policy: LookupPolicy = { mode: variant.lookup, block: 'auto', qubitCap: null };
   if (encoding.program) return provableTriplet(encoding, encoding.program(), variant, policy);
   if (encoding.spinorProgram) return provableSpinor(encoding, encoding.spinorProgram(), policy);
-  if (encoding.sparseProgram && variant.lookup !== 'dirty')
-    return provableSparse(encoding, encoding.sparseProgram(), policy);
+  if (encoding.sparseProgram) return provableSparse(encoding, encoding.sparseProgram(), policy);
   return null;
 }
 

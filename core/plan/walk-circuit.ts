@@ -84,7 +84,7 @@ export function walkCircuit(
     const bits = { keep, innerKeep: keep, rotation };
     return spinorWalk(spinorTables(encoding.spinorProgram(), bits, layout.merged), blocks);
   }
-  if (policy.mode !== 'dirty' && encoding.sparseProgram && terms) {
+  if (encoding.sparseProgram && terms) {
     const { bits, refinement, blocks } = sparseStep(terms, widths, policy);
     return sparseWalk(sparseTables(encoding.sparseProgram(), bits, refinement), blocks);
   }
@@ -92,7 +92,7 @@ export function walkCircuit(
     code: 'no-circuit',
     where: `variant "${formatVariant(variant)}"`,
     found: 'an encoding without an emitted circuit',
-    expected: 'triplet factors, spinor factors or, with clean or plain look-ups, sparse terms',
+    expected: 'triplet factors, spinor factors or sparse terms of spatial orbitals',
     mend: 'Choose such a variant, e.g. triplet/separate/swap-layers/median/clean.',
   });
 }

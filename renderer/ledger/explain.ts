@@ -109,9 +109,7 @@ const EXPLAIN: Readonly<Record<RowId, Explain>> = {
         ' + ',
       ),
       words('. '),
-      source(
-        e.lookup === 'dirty' ? 'Counted by closed formulas.' : 'Equal to the emitted circuit, gate by gate.',
-      ),
+      source('Equal to the emitted circuit, gate by gate.'),
     ],
     dearest(e),
   ],

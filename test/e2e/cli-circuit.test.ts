@@ -30,7 +30,11 @@ afterAll(() => rmSync(folder, { recursive: true, force: true }));
 
 describe('circuit --count-only', () => {
   it.each([
-    [FLUORINE, [SWAP, 'triplet/joint/index/none/plain', SPARSE], ['--terms', 'sf,so1,somf,so2,ss']],
+    [
+      FLUORINE,
+      [SWAP, 'triplet/joint/index/none/plain', 'spinor/separate/index/none/dirty', SPARSE],
+      ['--terms', 'sf,so1,somf,so2,ss'],
+    ],
     [FORMALDEHYDE, [SWAP, SPARSE], ['--terms', 'sf,so1,somf,so2', '--threshold', '1e-4', '--bits', '14']],
     [FORMALDEHYDE, [SWAP], ['--terms', 'sf', '--qubits-max', '700', '--threshold', 'auto']],
   ])('counts on %s what compare estimates', (set, variants, options) => {
@@ -164,9 +168,9 @@ describe('circuit --out', () => {
     expect(existsSync('x.qasm')).toBe(false);
   });
 
-  it('says which variants have no circuit, and where it cannot write', () => {
-    const spinor = args.map((arg) => (arg === SWAP ? 'triplet/separate/index/median/dirty' : arg));
-    expect(spinwright(...spinor, '--count-only')).toMatchObject({ status: 2 });
+  it('refuses a variant that does not exist, and says where it cannot write', () => {
+    const unknown = args.map((arg) => (arg === SWAP ? 'triplet/separate/index/median/unknown' : arg));
+    expect(spinwright(...unknown, '--count-only')).toMatchObject({ status: 2 });
     const { status, stderr } = spinwright(...args, '--out', join(FLUORINE, 'FCIDUMP', 'x.qasm'));
     expect(status).toBe(2);
     expect(stderr).toContain('cannot be written');

@@ -62,16 +62,17 @@ describe('sparse walk step', () => {
         programs,
         fc.record({ keep: fc.integer({ min: 1, max: 6 }), share: fc.integer({ min: 1, max: 5 }) }),
         fc.integer({ min: 0, max: 5 }),
-        fc.record({ read: block, erase: block }),
+        fc.oneof(
+          fc.record({ read: block, erase: block }),
+          fc.record({ read: fc.constantFrom(2, 4), erase: block, slice: fc.constantFrom(1, 3) }),
+        ),
         fc.boolean(),
         (program, bits, refinement, asked, controlled) => {
           const tables = sparseTables(program, bits, refinement);
           const { layout } = tables;
           const limit = layout.address.rows;
-          const blocks = {
-            read: asked.read <= limit ? asked.read : 1,
-            erase: asked.erase <= limit ? asked.erase : 1,
-          };
+          const erase = asked.erase <= limit ? asked.erase : 1;
+          const blocks = asked.read <= limit ? { ...asked, erase } : { read: 1, erase };
 
           const counter = new GateCounter({ toffoliOnly: true });
           const machine = new Machine(counter);

@@ -17,6 +17,8 @@ const VARIANTS = [
   'spinor/separate/index/median/clean',
   'spinor/separate/index/none/plain',
   'spinor/separate/index/median/dirty',
+  'sparse/-/index/none/clean',
+  'sparse/-/index/none/dirty',
 ];
 
 describe.each(['oh_sto3g', 'ch2o_sto3g_8o', 'ch2o_631g_20o'])('%s', (name) => {

@@ -65,6 +65,7 @@ export function borrowedLookUpToffoli(
  * @param output - as many wires as a row has bits.
  * @param borrowed - `borrowedWires` wires that neither the address, the output nor the control is among.
  * @param eraseBlock - rows a time of the erasure.
+ * @param flags - where the erasure keeps its flags, as for `lookUp`.
  */
 export function borrowedLookUp(
   register: readonly number[],
@@ -74,6 +75,7 @@ export function borrowedLookUp(
   how: BorrowedBlock,
   eraseBlock: number,
   control: number | null = null,
+  flags: 'fresh' | 'in output' = 'fresh',
 ): Operation {
   const { width, addresses } = table;
   const { block, slice } = how;
@@ -86,12 +88,12 @@ export function borrowedLookUp(
   const content = differences(table, block);
   const run = (machine: Machine): void => {
     const low = oneHot(register.slice(0, lowBits), null);
-    const flags = low.begin(machine);
+    const selected = low.begin(machine);
     /** The selected word, or what of it a last, shorter slice takes. */
     const copyTo = (s: number): void => {
       for (let j = 1; j < block; j++) {
         const from = word(j);
-        for (const [i, wire] of target(s).entries()) machine.gate('CCX', flags[j]!, from[i]!, wire);
+        for (const [i, wire] of target(s).entries()) machine.gate('CCX', selected[j]!, from[i]!, wire);
       }
     };
     for (let s = 0; s <= slices; s++) {
@@ -127,7 +129,11 @@ export function borrowedLookUp(
     spread();
     low.end(machine);
   };
-  return { run, runAdjoint: (machine) => eraseRow(machine, register, output, table, eraseBlock, control) };
+  const lent = flags === 'in output' ? output : [];
+  return {
+    run,
+    runAdjoint: (machine) => eraseRow(machine, register, output, table, eraseBlock, control, lent),
+  };
 }
 
 /**
@@ -224,6 +230,7 @@ function eraseRow(
   { addresses, bit }: Table,
   block: number,
   control: number | null,
+  lent: readonly number[] = [],
 ): void {
-  erase(machine, register, output, addresses, bit, block, control);
+  erase(machine, register, output, addresses, bit, block, control, lent);
 }

@@ -18,12 +18,14 @@ export function readTable(
   how: Blocks,
   idle: readonly number[],
   control: number | null = null,
+  flags: 'fresh' | 'in output' = 'fresh',
 ): Operation {
   const { read: block, erase, slice } = how;
-  if (slice === undefined) return lookUp(register, output, table, how, control);
+  if (slice === undefined) return lookUp(register, output, table, how, control, flags);
   const wires = borrowedWires({ block, slice });
   if (idle.length < wires) throw new RangeError(`${wires} wires to be borrowed, ${idle.length} are idle`);
-  return borrowedLookUp(register, output, idle.slice(0, wires), table, { block, slice }, erase, control);
+  const borrowed = idle.slice(0, wires);
+  return borrowedLookUp(register, output, borrowed, table, { block, slice }, erase, control, flags);
 }
 
 /** Wires that the result takes until it is erased. */

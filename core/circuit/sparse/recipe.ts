@@ -1,8 +1,10 @@
 import { constantComparisonToffoli } from '../primitives/arithmetic';
-import { type Blocks, erasureToffoli, lookUpToffoli, oneHotToffoli } from '../primitives/look-up';
+import { type Blocks, erasureToffoli, oneHotToffoli } from '../primitives/look-up';
+import { readToffoli } from '../primitives/reading';
 import { reflectionToffoli } from '../primitives/reflection';
 import { addressBits } from '../primitives/unary-iteration';
-import type { StepPart, Subroutine } from '../recipe';
+import type { Subroutine } from '../recipe';
+import { BABBUSH, BERRY, DERIVED, GIDNEY, leaf, readingText } from '../squares/leaves';
 import type { PhaseEstimationPart } from '../squares/recipe';
 import type { SparseLayout } from './layout';
 import { multipleToffoli } from './multiple';
@@ -10,34 +12,10 @@ import { orbitalExchangeToffoli, pairExchangeToffoli, pairsToffoli, pairsWires }
 import { kindExchangeT, selectedMajoranaToffoli, selectedMajoranaWires } from './selected-majorana';
 import { preparedWires } from './walk';
 
-const LOW = 'G. H. Low, V. Kliuchnikov, L. Schaeffer, arXiv:1812.00954 (2018)';
-const BERRY = 'D. W. Berry et al., Quantum 3, 208 (2019)';
-const BABBUSH = 'R. Babbush et al., Phys. Rev. X 8, 041015 (2018)';
-const GIDNEY = 'C. Gidney, Quantum 2, 74 (2018)';
-const DERIVED = 'derived; equal to the emitted circuit, see DEVELOPERS';
-
-interface Leaf {
-  readonly name: string;
-  readonly part: StepPart;
-  readonly times?: number;
-  readonly toffoli: number;
-  readonly t?: number;
-  readonly formula: string;
-  readonly inputs: Readonly<Record<string, number>>;
-  readonly source: string;
-  /** Wires lent while it runs. */
-  readonly scratch?: number;
-}
-
-const leaf = ({ scratch, ...rest }: Leaf): Subroutine => ({
-  ...rest,
-  ...(scratch ? { registers: [{ name: `scratch of ${rest.name}`, qubits: scratch }] } : {}),
-});
-
 /** Toffoli of reading and of erasing a table of `rows` rows without gaps. */
 export function tableToffoli(rows: number, width: number, blocks: Blocks): { read: number; erase: number } {
   return {
-    read: lookUpToffoli(Math.ceil(rows / blocks.read), width, blocks.read),
+    read: readToffoli(Math.ceil(rows / blocks.read), width, blocks),
     erase: erasureToffoli(Math.ceil(rows / blocks.erase), blocks.erase),
   };
 }
@@ -103,9 +81,10 @@ export function sparseRecipe(layout: SparseLayout, blocks: Blocks, phase: PhaseE
 
 function blockEncodingRecipe(layout: SparseLayout, blocks: Blocks): Subroutine {
   const { address, keepBits, wordWidth, rowWidth, share } = layout;
-  const held = preparedWires(layout, blocks.read);
+  const held = preparedWires(layout, blocks);
   const table = tableToffoli(address.rows, rowWidth, blocks);
   const read = Math.ceil(address.rows / blocks.read);
+  const reading = readingText(rowWidth, blocks);
   const erase = Math.ceil(address.rows / blocks.erase);
   return {
     name: 'block encoding',
@@ -129,10 +108,11 @@ function blockEncodingRecipe(layout: SparseLayout, blocks: Blocks): Subroutine {
         name: 'coefficient look-up',
         part: 'prepare',
         toffoli: table.read,
-        formula: 'B − 2 + b(k − 1)',
-        inputs: { rows: address.rows, B: read, b: rowWidth, k: blocks.read },
-        source: `${LOW}; ${BERRY}`,
-        scratch: iterationWires(read),
+        formula: reading.formula,
+        inputs: { rows: address.rows, B: read, ...reading.inputs },
+        source: reading.source,
+        // Through borrowed wires, the flags of the low address bits stay.
+        scratch: iterationWires(read) + (blocks.slice === undefined ? 0 : blocks.read),
       }),
       leaf({
         name: 'comparison',

@@ -1,11 +1,14 @@
 import type { TermSizes } from '../../encode';
 import { bestBlock } from '../formulas';
 import type { Blocks } from '../primitives/look-up';
+import { outputWires } from '../primitives/reading';
 import { addressBits } from '../primitives/unary-iteration';
 import type { Subroutine } from '../recipe';
 import type { LookupPolicy } from '../recipes/scope';
+import { borrowedBlocks } from '../squares/blocks';
 import { type SparseBits, type SparseLayout, shareBits, sparseLayout } from './layout';
 import { preparationToffoli, sparseRecipe, tableToffoli } from './recipe';
+import { sparseIdleQubits } from './walk';
 
 /** Most bits of the factor that are tried: a further one would save less than 1 % of the rows. */
 const MOST_REFINED = 6;
@@ -75,11 +78,8 @@ function cheapestTable(
   return best!;
 }
 
-function chooseBlocks(
-  { address, rowWidth }: SparseLayout,
-  { mode, block }: LookupPolicy,
-  limit: number | null,
-): Blocks {
+function chooseBlocks(layout: SparseLayout, { mode, block }: LookupPolicy, limit: number | null): Blocks {
+  const { address, rowWidth } = layout;
   const { rows } = address;
   const largest = Math.min(2 ** addressBits(rows), limit ?? Number.POSITIVE_INFINITY);
   const cost = (read: number, erase: number) => tableToffoli(rows, rowWidth, { read, erase });
@@ -89,14 +89,26 @@ function chooseBlocks(
       (k) => cost(k, 1).read,
       (k) => k <= largest,
     );
-  const read = mode === 'plain' ? 1 : block === 'auto' ? cheapest() : Math.min(block, largest);
+  const reading = (): Omit<Blocks, 'erase'> => {
+    if (mode === 'plain') return { read: 1 };
+    if (mode === 'clean') return { read: block === 'auto' ? cheapest() : Math.min(block, largest) };
+    const table = {
+      width: rowWidth,
+      limit: 2 ** addressBits(rows),
+      idle: sparseIdleQubits(layout),
+      blocksOf: (k: number) => Math.ceil(rows / k),
+    };
+    return borrowedBlocks(table, block === 'auto' ? null : block, limit);
+  };
+  const chosen = reading();
+  const output = outputWires(rowWidth, { ...chosen, erase: 1 });
   return {
-    read,
+    ...chosen,
     // No more flags than the measured output has wires for.
     erase: bestBlock(
       rows,
       (k) => cost(1, k).erase,
-      (k) => k <= read * rowWidth,
+      (k) => k <= output,
     ),
   };
 }

@@ -1,7 +1,8 @@
 import type { Machine } from '../gates/machine';
 import { gate, nothing, type Operation, repeat, scratch, sequence, span, within } from '../gates/operation';
 import { carryStep, lessThanConstant } from '../primitives/arithmetic';
-import { type Blocks, lookUp } from '../primitives/look-up';
+import type { Blocks } from '../primitives/look-up';
+import { outputWires, readTable } from '../primitives/reading';
 import { flipZeros, hadamards } from '../primitives/reflection';
 import { firstAddresses } from '../primitives/unary-iteration';
 import type { SparseLayout } from './layout';
@@ -39,10 +40,21 @@ export function sparseWires(layout: SparseLayout, machine: Machine): SparseWires
 }
 
 /** Wires whose all-zero state the block encoding is projected on. */
-export function sparseAncillas({ low, uniform, share, plus }: SparseWires): number[] {
-  const placing = plus.placing === null ? [] : [plus.placing];
-  return [...low, ...uniform, ...share, plus.order, ...plus.spins, ...plus.kinds, ...placing];
+export function sparseAncillas(wires: SparseWires): number[] {
+  return [...wires.low, ...wires.uniform, ...ownWires(wires)];
 }
+
+/** Index wires that no address is made of. */
+function ownWires({ share, plus }: SparseWires): number[] {
+  const placing = plus.placing === null ? [] : [plus.placing];
+  return [...share, plus.order, ...plus.spins, ...plus.kinds, ...placing];
+}
+
+/** Wires that the look-up may borrow; {@link sparseIdleQubits} many. */
+const sparseIdle = (wires: SparseWires): number[] => [...wires.system, ...ownWires(wires)];
+
+export const sparseIdleQubits = ({ orbitals, share, exchanged }: SparseLayout): number =>
+  2 * orbitals + (share?.bits ?? 0) + 5 + (exchanged ? 1 : 0);
 
 /**
  * U with (⟨0|⊗1) U (|0⟩⊗1) = (H − c)/λ on the system, the ancillas being `sparseAncillas` and everything allocated
@@ -70,10 +82,13 @@ export function sparseWalkStep(
 }
 
 /** Wires that hold what PREPARE works out, while SELECT runs. */
-export function preparedWires({ address, keepBits, wordWidth, rowWidth, share }: SparseLayout, k: number) {
+export function preparedWires(
+  { address, keepBits, wordWidth, rowWidth, share }: SparseLayout,
+  blocks: Blocks,
+) {
   return {
     multiple: multipleWires(address.factor, address.uniformBits),
-    output: rowWidth * k,
+    output: outputWires(rowWidth, blocks),
     carries: keepBits,
     chosen: wordWidth,
     share: share?.bits ?? 0,
@@ -84,7 +99,7 @@ export function preparedWires({ address, keepBits, wordWidth, rowWidth, share }:
 export function withTerm(tables: SparseTables, wires: SparseWires, blocks: Blocks): Operation {
   const { layout, program } = tables;
   const { address, keepBits, wordWidth } = layout;
-  const sizes = preparedWires(layout, blocks.read);
+  const sizes = preparedWires(layout, blocks);
   return scratch(
     Object.values(sizes).reduce((sum, size) => sum + size, 0),
     (lent) => {
@@ -109,7 +124,15 @@ export function withTerm(tables: SparseTables, wires: SparseWires, blocks: Block
         span(
           'coefficient look-up',
           'prepare',
-          lookUp([...wires.low, ...value.slice(uniformBits)], output, table, blocks, null, 'in output'),
+          readTable(
+            [...wires.low, ...value.slice(uniformBits)],
+            output,
+            table,
+            blocks,
+            sparseIdle(wires),
+            null,
+            'in output',
+          ),
         ),
         span(
           'comparison',

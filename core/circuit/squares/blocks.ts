@@ -34,7 +34,8 @@ export function chooseTableBlocks(
   const eraseBlock = bestBlock(largest, (k) => erasureToffoli(countBlocks(addresses, k), k, controlled));
   if (policy.mode === 'dirty') {
     const given = main && policy.block !== 'auto' ? policy.block : null;
-    return { ...borrowedBlocks(table, given, limit), erase: eraseBlock };
+    const sizes = { ...table, controlled, blocksOf: (k: number) => countBlocks(addresses, k) };
+    return { ...borrowedBlocks(sizes, given, limit), erase: eraseBlock };
   }
   const best = () =>
     bestBlock(
@@ -47,17 +48,28 @@ export function chooseTableBlocks(
   return { read, erase: eraseBlock };
 }
 
-/** The cheapest way through borrowed wires, or row by row. @param given - the only k to try, or null. */
-function borrowedBlocks(
-  { addresses, width, limit: largest, controlled = false, idle = 0 }: ChoosableTable,
+/** A table that may be read through borrowed wires. */
+export interface BorrowingTable extends Pick<ChoosableTable, 'width' | 'limit' | 'controlled' | 'idle'> {
+  /** Number of blocks of k rows. */
+  readonly blocksOf: (k: number) => number;
+}
+
+/**
+ * The cheapest way through borrowed wires, or row by row.
+ *
+ * @param given - the only k to try, or null.
+ * @param limit - most flags of low address bits, in wires, or null.
+ */
+export function borrowedBlocks(
+  { blocksOf, width, limit: largest, controlled = false, idle = 0 }: BorrowingTable,
   given: number | null,
   limit: number | null,
 ): Omit<Blocks, 'erase'> {
   let best: Omit<Blocks, 'erase'> = { read: 1 };
-  let least = lookUpToffoli(addresses.length, width, 1, controlled);
+  let least = lookUpToffoli(blocksOf(1), width, 1, controlled);
   for (let k = 2; k <= largest && k - 1 <= idle && k <= (limit ?? k); k *= 2) {
     if (given !== null && k !== given) continue;
-    const blocks = countBlocks(addresses, k);
+    const blocks = blocksOf(k);
     const widest = Math.min(width, Math.floor(idle / (k - 1)));
     // Of the slices that make as many passes, the narrowest is the cheapest.
     for (let slices = Math.ceil(width / widest); slices <= width; slices++) {

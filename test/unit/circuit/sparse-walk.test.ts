@@ -124,6 +124,8 @@ describe('sparse block encoding on Fock space', () => {
   const few = SPIN_FREE.slice(1, 4) as [Row, Row, Row];
   it.each([
     ['charge', program(2, SPIN_FREE), 1, { read: 2, erase: 4 }, 'random'],
+    // Through borrowed wires: the system's and the index registers'.
+    ['charge, dirty', program(2, SPIN_FREE), 1, { read: 4, erase: 4, slice: 2 }, 1],
     ['charge, three orbitals', program(3, [...few, [false, 0, 0, 2, 1, 2, 0, 0.7, -1]]), 0, ROW_BY_ROW, 1],
     ['one-body spin–orbit', program(2, [...few, ...ONE_BODY_SPIN]), 2, ROW_BY_ROW, 0],
     ['spin–same-orbit', program(2, [...few, ...SPIN_ORBIT]), 3, { read: 4, erase: 2 }, 1],
