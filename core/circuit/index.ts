@@ -27,7 +27,15 @@ export {
   sparseTables,
   steeringNumbers,
 } from './sparse/tables';
-export { sparseAncillas, sparseBlockEncoding, sparseWalkStep, sparseWires, withTerm } from './sparse/walk';
+export {
+  preparedSize,
+  sparseAncillas,
+  sparseBlockEncoding,
+  sparsePrepare,
+  sparseWalkStep,
+  sparseWires,
+  withTerm,
+} from './sparse/walk';
 export { ANGLE_GROUPS, type AngleGroup, type SpinorLayout, spinorLayout } from './spinor/layout';
 export { spinorRecipe } from './spinor/recipe';
 export { chooseSpinorTables, type SpinorStep, spinorStep } from './spinor/step';

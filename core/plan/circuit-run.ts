@@ -80,7 +80,7 @@ const MEANING_OF_PART: Readonly<Record<CircuitPart, string>> = {
  * Writes a part of a variant's walk as OpenQASM 3.
  *
  * @param write - takes the text piece by piece
- * @throws InputError `too-long` above {@link MOST_GATES}, `no-part`, `no-circuit`
+ * @throws InputError `too-long` above {@link MOST_GATES}, `no-circuit`
  */
 export async function writeCircuit(
   set: IntegralSet,
@@ -94,7 +94,6 @@ export async function writeCircuit(
   context.report('rounding the tables', 0, null);
   await context.checkpoint();
   const walk = walkCircuit(encoding, request.variant, estimate, request.qubitsMax);
-  if (!walk.parts.includes(part)) throw noPart(variant, part, walk.parts);
   const circuit = (machine: Machine) => {
     const control = part === 'walk-step' ? machine.allocateRegister(1, 'control')[0]! : null;
     walk.emit(part, machine, { control, withGradient: true });
@@ -137,15 +136,5 @@ function tooLong(variant: string, gates: number): InputError {
     found: `about ${gates.toPrecision(2)} gates`,
     expected: `at most ${MOST_GATES} for a text`,
     mend: 'Use --count-only, a smaller --window, fewer --bits or a higher --threshold.',
-  });
-}
-
-function noPart(variant: string, part: CircuitPart, parts: readonly CircuitPart[]): InputError {
-  return new InputError({
-    code: 'no-part',
-    where: `variant "${variant}"`,
-    found: `part ${part}, which is not emitted by itself`,
-    expected: parts.join(' or '),
-    mend: `Choose --part ${parts[0]}.`,
   });
 }

@@ -1,19 +1,23 @@
 import {
   type Blocks,
   bitsFor,
+  hadamards,
   type LookupPolicy,
   type Machine,
   type Operation,
   outerBorrows,
   outerPrepare,
   outerScratch,
+  preparedSize,
   prepareGradient,
   prepareWires,
   type SparseTables,
   type SpinorBlocks,
   type SpinorTables,
   type SquaresBlocks,
+  sparseAncillas,
   sparseBlockEncoding,
+  sparsePrepare,
   sparseStep,
   sparseTables,
   sparseWalkStep,
@@ -41,7 +45,6 @@ export type CircuitPart = (typeof CIRCUIT_PARTS)[number];
 
 /** The walk of one encoding, its tables rounded, ready to be emitted any number of times. */
 export interface WalkCircuit {
-  readonly parts: readonly CircuitPart[];
   /** Allocates the part's wires, named, and emits it once on them. What PREPARE alone lends stays in use. */
   emit(part: CircuitPart, machine: Machine, options: EmitOptions): void;
 }
@@ -143,7 +146,6 @@ interface SquaresEmitter {
 
 function squaresWalk({ weights, hasPaired, blocks, open }: SquaresEmitter): WalkCircuit {
   return {
-    parts: CIRCUIT_PARTS,
     emit(part, machine, { control, withGradient }) {
       if (part === 'prepare') {
         const lent = machine.allocateRegister(outerScratch({ weights, blocks }), 'alternate and keep');
@@ -164,9 +166,14 @@ function squaresWalk({ weights, hasPaired, blocks, open }: SquaresEmitter): Walk
 
 function sparseWalk(tables: SparseTables, blocks: Blocks): WalkCircuit {
   return {
-    parts: ['walk-step', 'block-encoding'],
     emit(part, machine, { control }) {
       const wires = sparseWires(tables.layout, machine);
+      if (part === 'prepare') {
+        const lent = machine.allocateRegister(preparedSize(tables.layout, blocks), 'prepared');
+        hadamards(sparseAncillas(wires)).run(machine);
+        sparsePrepare(tables, wires, blocks, lent).prepare.run(machine);
+        return;
+      }
       const operation =
         part === 'walk-step'
           ? sparseWalkStep(tables, wires, blocks, control)

@@ -126,6 +126,9 @@ describe('circuit --out', () => {
     expect([...parse(text)].length).toBeGreaterThan(50);
     expect(/\nqubit\[\d+\] system;/.test(text)).toBe(part !== 'prepare');
     expect(text).not.toContain('] control;');
+    const sparse = args.map((arg) => (arg === SWAP ? SPARSE : arg));
+    expect(spinwright(...sparse, '--part', part, '--out', file).status).toBe(0);
+    expect([...parse(readFileSync(file, 'utf8'))].length).toBeGreaterThan(50);
   });
 
   it('writes no text that is too long, and leaves nothing behind', () => {

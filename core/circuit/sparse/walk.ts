@@ -95,76 +95,98 @@ export function preparedWires(
   };
 }
 
-/** Finds the word of a coefficient from the address numbers, applies SELECT, and takes the word back. */
-export function withTerm(tables: SparseTables, wires: SparseWires, blocks: Blocks): Operation {
-  const { layout, program } = tables;
+/** PREPARE after its Hadamard gates, and what it leaves for SELECT. */
+interface Prepared {
+  readonly prepare: Operation;
+  /** Describes a coefficient. */
+  readonly word: readonly number[];
+  /** Whether a shared coefficient acts as spin–other-orbit; null where none is shared. */
+  readonly other: number | null;
+}
+
+/** Wires in |0⟩ that {@link sparsePrepare} takes. */
+export function preparedSize(layout: SparseLayout, blocks: Blocks): number {
+  return Object.values(preparedWires(layout, blocks)).reduce((sum, size) => sum + size, 0);
+}
+
+/**
+ * Finds the word of a coefficient from the address numbers.
+ *
+ * @param lent - `preparedSize` wires in |0⟩, which stay in use until the adjoint.
+ */
+export function sparsePrepare(
+  tables: SparseTables,
+  wires: SparseWires,
+  blocks: Blocks,
+  lent: readonly number[],
+): Prepared {
+  const { layout } = tables;
   const { address, keepBits, wordWidth } = layout;
   const sizes = preparedWires(layout, blocks);
-  return scratch(
-    Object.values(sizes).reduce((sum, size) => sum + size, 0),
-    (lent) => {
-      const free = [...lent];
-      const take = (size: number) => free.splice(0, size);
-      const { compute, value } = multiple(address.factor, wires.uniform, take(sizes.multiple));
-      const output = take(sizes.output);
-      const carries = take(sizes.carries);
-      const chosen = take(sizes.chosen);
-      const shareWires = take(sizes.share);
-      const { uniformBits } = address;
-      const word = output.slice(0, wordWidth);
-      const change = output.slice(wordWidth, 2 * wordWidth);
-      const table = {
-        addresses: firstAddresses(address.rows),
-        width: layout.rowWidth,
-        bit: (row: number, bit: number) => rowBit(tables, row, bit),
-      };
-      const stays = carries[keepBits - 1]!;
-      const prepare = sequence(
-        span('row number', 'prepare', compute),
-        span(
-          'coefficient look-up',
-          'prepare',
-          readTable(
-            [...wires.low, ...value.slice(uniformBits)],
-            output,
-            table,
-            blocks,
-            sparseIdle(wires),
-            null,
-            'in output',
-          ),
+  const free = [...lent];
+  const take = (size: number) => free.splice(0, size);
+  const { compute, value } = multiple(address.factor, wires.uniform, take(sizes.multiple));
+  const output = take(sizes.output);
+  const carries = take(sizes.carries);
+  const chosen = take(sizes.chosen);
+  const shareWires = take(sizes.share);
+  const { uniformBits } = address;
+  const word = output.slice(0, wordWidth);
+  const change = output.slice(wordWidth, 2 * wordWidth);
+  const table = {
+    addresses: firstAddresses(address.rows),
+    width: layout.rowWidth,
+    bit: (row: number, bit: number) => rowBit(tables, row, bit),
+  };
+  const stays = carries[keepBits - 1]!;
+  const prepare = sequence(
+    span('row number', 'prepare', compute),
+    span(
+      'coefficient look-up',
+      'prepare',
+      readTable(
+        [...wires.low, ...value.slice(uniformBits)],
+        output,
+        table,
+        blocks,
+        sparseIdle(wires),
+        null,
+        'in output',
+      ),
+    ),
+    span(
+      'comparison',
+      'prepare',
+      lessThan(
+        value.slice(uniformBits - keepBits, uniformBits),
+        output.slice(2 * wordWidth, layout.rowWidth),
+        carries,
+      ),
+    ),
+    span(
+      'choice of the word',
+      'prepare',
+      sequence(
+        gate('X', stays),
+        repeat(wordWidth, (i) =>
+          sequence(gate('AND', stays, change[i]!, chosen[i]!), gate('CX', chosen[i]!, word[i]!)),
         ),
-        span(
-          'comparison',
-          'prepare',
-          lessThan(
-            value.slice(uniformBits - keepBits, uniformBits),
-            output.slice(2 * wordWidth, layout.rowWidth),
-            carries,
-          ),
-        ),
-        span(
-          'choice of the word',
-          'prepare',
-          sequence(
-            gate('X', stays),
-            repeat(wordWidth, (i) =>
-              sequence(gate('AND', stays, change[i]!, chosen[i]!), gate('CX', chosen[i]!, word[i]!)),
-            ),
-          ),
-        ),
-        layout.share === null
-          ? nothing
-          : span(
-              'spin–orbit kind',
-              'prepare',
-              lessThanConstant(wires.share, layout.share.threshold, shareWires),
-            ),
-      );
-      const other = shareWires[shareWires.length - 1] ?? null;
-      return within(prepare, select(layout, wires.system, word, wires.plus, other, program.otherSign));
-    },
+      ),
+    ),
+    layout.share === null
+      ? nothing
+      : span('spin–orbit kind', 'prepare', lessThanConstant(wires.share, layout.share.threshold, shareWires)),
   );
+  return { prepare, word, other: shareWires[shareWires.length - 1] ?? null };
+}
+
+/** Finds the word of a coefficient, applies SELECT, and takes the word back. */
+export function withTerm(tables: SparseTables, wires: SparseWires, blocks: Blocks): Operation {
+  const { layout, program } = tables;
+  return scratch(preparedSize(layout, blocks), (lent) => {
+    const { prepare, word, other } = sparsePrepare(tables, wires, blocks, lent);
+    return within(prepare, select(layout, wires.system, word, wires.plus, other, program.otherSign));
+  });
 }
 
 /** [x < y] as the last carry of y + (2^ℵ − 1 − x); x, y are left changed, and all carries kept, until taken back. */
