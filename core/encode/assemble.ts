@@ -9,7 +9,7 @@ import { KAPPA_ROUNDING, type OneBody, oneBodyPart, oneBodyTriplet } from './one
 import { rebuildSpatial } from './rebuild';
 import { countAbove, shiftedNorm } from './shift';
 import { faceLambda, type SpinorItems, spinorItems } from './spinor-items';
-import { spinorProgram, spinorSizes } from './spinor-program';
+import { sparedBits, spinorProgram, spinorSizes } from './spinor-program';
 import { tripletProgram } from './triplet-program';
 import type { VariantName } from './variant';
 
@@ -114,6 +114,18 @@ function spinorTwoBody(blocks: readonly SpinorItems[]): TwoBody {
  */
 const DIVIDED = 0.01;
 
+/** λ of all triples. */
+function axialLambda(blocks: readonly SpinorItems[]): number {
+  let sum = 0;
+  for (const entry of blocks) {
+    if (entry.kind !== 'triples') continue;
+    for (const { triple, faces } of entry.items) {
+      for (const face of faces) sum += faceLambda(entry.block.strengths[triple]!, face);
+    }
+  }
+  return sum;
+}
+
 /** ½‖κ‖_* over 2N modes, or the sum over its planes ‖κ⁰‖_* + Σ_k ‖κ^k‖_* where that is next to the same. */
 function oneBodySpinor(part: OneBody, twoBody: number, hasFullRows: boolean) {
   const { n } = part.kappa;
@@ -142,7 +154,7 @@ interface Form {
     readonly pairRows: number;
   };
   readonly two: TwoBody;
-  readonly sizes: Pick<EncodingShape, 'items' | 'spinors'>;
+  readonly sizes: Pick<EncodingShape, 'items' | 'spinors' | 'axialParts'>;
   /** Given the encoding's constant. */
   readonly programs: (constant: number) => Pick<Encoding, 'program' | 'spinorProgram'>;
 }
@@ -171,11 +183,22 @@ async function spinorForm(
   );
   const twoBody = Object.values(two.parts).reduce((sum, own) => sum + own, 0);
   const { list, ...one } = oneBodySpinor(oneBody, twoBody, hasFullRows);
+  const axialParts =
+    hasFullRows || list.whole !== null
+      ? null
+      : {
+          squares: axialLambda(items) / Math.max(twoBody, Number.MIN_VALUE),
+          oneBody: one.spin / (one.charge + one.spin),
+        };
+  const spared = axialParts ? sparedBits({ oneBody: one.charge + one.spin, twoBody }, axialParts) : 0;
   return {
     one,
     two,
-    sizes: { spinors: spinorSizes(orbitals, items, list) },
-    programs: (constant) => ({ spinorProgram: () => spinorProgram(constant, items, oneBody, list) }),
+    sizes: {
+      spinors: spinorSizes(orbitals, items, list, spared),
+      ...(axialParts && spared > 0 ? { axialParts } : {}),
+    },
+    programs: (constant) => ({ spinorProgram: () => spinorProgram(constant, items, oneBody, list, spared) }),
   };
 }
 

@@ -2,7 +2,7 @@ import type { Residual } from '../factor/factors';
 import type { SpinHamiltonian } from '../hamiltonian';
 import type { TripletProgram } from './program';
 import type { SparseProgram, TermSizes } from './sparse-program';
-import type { SpinorProgram, SpinorSizes } from './spinor-program';
+import type { AxialParts, SpinorProgram, SpinorSizes } from './spinor-program';
 import type { VariantName } from './variant';
 
 /** λ in hartree, by part; the parts sum to `total`. Keys: design interfaces, "lambda.parts". */
@@ -39,6 +39,8 @@ export interface EncodingShape {
   readonly items?: ItemSizes;
   /** Spinor form only: the sizes item by item. */
   readonly spinors?: SpinorSizes;
+  /** Spinor form only, where axial rows have fewer angle bits than others. */
+  readonly axialParts?: AxialParts;
   /** Sparse form only: what its table and SELECT depend on. */
   readonly terms?: TermSizes;
 }

@@ -3,6 +3,7 @@ export type { Encoding, EncodingShape, ItemSizes, LambdaByPart } from './encodin
 export type { RowFace, TripletItem, TripletProgram, TripletRow } from './program';
 export { type SparseProgram, type TermKind, type TermSizes, termSizes } from './sparse-program';
 export {
+  type AxialParts,
   SPINOR_KINDS,
   type SpinorItem,
   type SpinorKind,

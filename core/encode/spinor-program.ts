@@ -64,6 +64,8 @@ export interface SpinorProgram {
    * are 0.
    */
   readonly phases: Float64Array | null;
+  /** As in {@link SpinorSizes}. */
+  readonly spared: number;
   /** Not squared: each stands for the sum of its rows, in hartree, λ being that of the weights. */
   readonly oneBody: readonly SpinorItem[];
   readonly items: readonly SpinorItem[];
@@ -74,6 +76,8 @@ export interface SpinorSizes {
   readonly orbitals: number;
   readonly partners: boolean;
   readonly oneBodyItems: number;
+  /** Bits that the angles of axial rows may lack, since these rows weigh so little; see {@link sparedBits}. */
+  readonly spared: number;
   readonly rows: Uint32Array;
   /** Place in {@link SPINOR_KINDS}. */
   readonly kinds: Uint8Array;
@@ -86,6 +90,27 @@ export interface SpinorSizes {
 const REAL = 0;
 const AXIAL = 1;
 const FULL = 2;
+
+/** Parts of λ₂ and λ₁ in axial rows. */
+export interface AxialParts {
+  readonly squares: number;
+  readonly oneBody: number;
+}
+
+/** The error of axial rows stays below this part of that of the others. */
+const SPARED = 1 / 4;
+
+/**
+ * Bits that angles of axial rows may lack: rounding moves a square by 8δλ and a one-body row by 2δλ, and a bit less
+ * doubles δ.
+ */
+export function sparedBits(lambda: { oneBody: number; twoBody: number }, axial: AxialParts): number {
+  const weigh = (squares: number, oneBody: number) =>
+    8 * squares * lambda.twoBody + 2 * oneBody * lambda.oneBody;
+  const own = weigh(axial.squares, axial.oneBody);
+  const others = weigh(1 - axial.squares, 1 - axial.oneBody);
+  return own > 0 && others > 0 ? Math.max(0, Math.floor(Math.log2((SPARED * others) / own))) : 0;
+}
 
 /** How κ is listed: whole, or plane by plane with fewer angles and a larger λ. */
 export interface OneBodyRows {
@@ -117,6 +142,7 @@ export function spinorSizes(
   orbitals: number,
   blocks: readonly SpinorItems[],
   oneBody: OneBodyRows,
+  spared: number,
 ): SpinorSizes {
   const all = [
     ...blocks.flatMap((entry) =>
@@ -134,6 +160,7 @@ export function spinorSizes(
     orbitals,
     partners: true,
     oneBodyItems: oneBodyPlanes(oneBody).length,
+    spared,
     rows: Uint32Array.from(all, (item) => item.rows),
     kinds: Uint8Array.from(all, (item) => item.kind),
     twoFaced: Uint8Array.from(all, (item) => (item.faced ? 1 : 0)),
@@ -147,12 +174,14 @@ export function spinorProgram(
   blocks: readonly SpinorItems[],
   oneBody: OneBody,
   one: OneBodyRows,
+  spared: number,
 ): SpinorProgram {
   return {
     orbitals: oneBody.kappa.n,
     constant,
     partners: true,
     phases: null,
+    spared,
     oneBody: oneBodyPlanes(one).map((plane) => oneBodyItem(oneBody.kappa, plane)),
     items: blocks.flatMap((entry) =>
       entry.kind === 'triples'
@@ -284,6 +313,7 @@ export function spinorFileProgram(
     constant,
     partners: phases !== null,
     phases: phases?.some((x) => x !== 0) ? phases : null,
+    spared: 0,
     oneBody: [oneBodyOf('full', 3, one)],
     items: factors.map(({ block, t, shift, norm, rows }) => {
       const matrix = { n: m, re: new Float64Array(m * m), im: new Float64Array(m * m) };

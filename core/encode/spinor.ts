@@ -185,6 +185,7 @@ const sizesOf = (m: number, rows: Uint32Array, partners: boolean): SpinorSizes =
   orbitals: m / 2,
   partners,
   oneBodyItems: 1,
+  spared: 0,
   rows,
   kinds: new Uint8Array(rows.length).fill(SPINOR_KINDS.indexOf('full')),
   twoFaced: new Uint8Array(rows.length),

@@ -114,27 +114,39 @@ function rotationErrors(shape: EncodingShape, { oneBody, twoBody }: LambdaSplit)
   const angles = anglesOf(shape);
   const worst = (n: number) => Math.PI * Math.sqrt(n);
   const typical = (n: number) => ((2 * Math.PI) / Math.sqrt(12)) * Math.sqrt((n + 2) / 2);
+  // Of rows with fewer bits: half a coarse step, and the half step that all are off.
+  const axial = shape.axialParts ?? { squares: 0, oneBody: 0 };
+  const coarse = 2 ** (shape.spinors?.spared ?? 0) + 1;
+  const mean = (size: (n: number) => number, n: number, part: number) =>
+    (1 - part) * size(n) + part * coarse * size(shape.orbitals + 1);
   return {
-    rigorous: 8 * worst(angles.squares) * twoBody + 2 * worst(angles.oneBody) * oneBody,
+    rigorous:
+      8 * mean(worst, angles.squares, axial.squares) * twoBody +
+      2 * mean(worst, angles.oneBody, axial.oneBody) * oneBody,
     estimate:
-      (4 * typical(angles.squares) * twoBody) / Math.sqrt(Math.max(shape.rows, 1)) +
-      (2 * typical(angles.oneBody) * oneBody) / Math.sqrt(Math.max(shape.oneBodyRows, 1)),
+      (4 * mean(typical, angles.squares, axial.squares) * twoBody) / Math.sqrt(Math.max(shape.rows, 1)) +
+      (2 * mean(typical, angles.oneBody, axial.oneBody) * oneBody) /
+        Math.sqrt(Math.max(shape.oneBodyRows, 1)),
   };
 }
 
 /**
- * n of the rows with most angles. The phases of a spinor's orbitals together count as two angles, for Σ r_p² dβ_p² is at
+ * n of the rows with most angles, those with fewer bits apart. The phases of a spinor's orbitals together count as two angles, for Σ r_p² dβ_p² is at
  * most one of them and on average one; with their spins as five: (|dβ| + |dδ|)² + dθ².
  */
-function anglesOf({ kind, orbitals, spinors }: EncodingShape): { squares: number; oneBody: number } {
+function anglesOf({ kind, orbitals, spinors, axialParts }: EncodingShape): {
+  squares: number;
+  oneBody: number;
+} {
   const chain = orbitals - 1;
   if (!spinors) {
     const all = chain + (kind === 'spinor' ? MORE_ANGLES.full : 0);
     return { squares: all, oneBody: all };
   }
+  const more = axialParts ? { ...MORE_ANGLES, axial: 0 } : MORE_ANGLES;
   const first = spinors.kinds.length - spinors.oneBodyItems;
   const most = (kinds: Uint8Array) =>
-    kinds.reduce((found, own) => Math.max(found, MORE_ANGLES[SPINOR_KINDS[own]!]), 0);
+    kinds.reduce((found, own) => Math.max(found, more[SPINOR_KINDS[own]!]), 0);
   return {
     squares: chain + most(spinors.kinds.subarray(0, first)),
     oneBody: chain + most(spinors.kinds.subarray(first)),

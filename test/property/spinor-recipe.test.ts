@@ -2,7 +2,7 @@ import fc from 'fast-check';
 import { expect, it } from 'vitest';
 import { GateCounter } from '../../core/circuit/gates/counter';
 import { Machine } from '../../core/circuit/gates/machine';
-import type { AngleGroup } from '../../core/circuit/spinor/layout';
+import type { Merge } from '../../core/circuit/spinor/layout';
 import { spinorRecipe } from '../../core/circuit/spinor/recipe';
 import { spinorSizesOf, spinorTables } from '../../core/circuit/spinor/tables';
 import { spinorWalkStep, spinorWires } from '../../core/circuit/spinor/walk';
@@ -50,12 +50,14 @@ const programs = fc
       n: fc.integer({ min: 1, max: 4 }),
       partners: fc.constant(true),
       items: fc.array(itemShape, { minLength: 1, maxLength: 9 }),
+      spared: fc.integer({ min: 0, max: 6 }),
       oneBody: fc.array(fc.record({ kind: kinds, rows }), { minLength: 1, maxLength: 4 }),
     }),
     fc.record({
       n: fc.integer({ min: 1, max: 4 }),
       partners: fc.constant(false),
       items: fc.array(single, { minLength: 1, maxLength: 5 }),
+      spared: fc.constant(0),
       oneBody: fc.array(fc.record({ kind: fc.constant<SpinorKind>('full'), rows }), {
         minLength: 1,
         maxLength: 1,
@@ -63,11 +65,12 @@ const programs = fc
     }),
   )
   .map(
-    ({ n, partners, items, oneBody }): SpinorProgram => ({
+    ({ n, partners, items, oneBody, spared }): SpinorProgram => ({
       orbitals: n,
       constant: 0,
       partners,
       phases: null,
+      spared,
       oneBody: oneBody.map((shape) => item(n, { ...shape, faces: 1, paired: false })),
       items: items.map((shape) => item(n, shape)),
     }),
@@ -85,7 +88,7 @@ it('the recipe counts the emitted walk step, part by part, and its peak of wires
         innerKeep: fc.integer({ min: 1, max: 5 }),
         rotation: fc.integer({ min: 4, max: 9 }),
       }),
-      fc.constantFrom<AngleGroup[]>([], ['phases'], ['spins'], ['phases', 'spins']),
+      fc.constantFrom<Merge[]>([], ['phases'], ['shared phases'], ['spins'], ['phases', 'spins']),
       fc.record({
         outer: pairOfBlocks,
         items: pairOfBlocks,

@@ -14,15 +14,16 @@ import { givens, givensChain, modePhase, tiltLayer } from '../primitives/givens'
 import { type Blocks, contentAfterSwaps, erase, lookUp, type Table } from '../primitives/look-up';
 import { type Rotate, swapLayer } from '../primitives/majorana';
 import type { ProductUse } from '../squares/walk';
-import { type AngleGroup, groupAngles, type ItemFlag, type SpinorLayout } from './layout';
+import { type AngleGroup, groupAngles, groupBits, type ItemFlag, type SpinorLayout } from './layout';
 import { groupBit, rowBit, type SpinorTables } from './tables';
 
 /** Wires that a product acts on or is steered by. */
 export interface ProductWires {
   readonly system: readonly number[];
-  /** Rotations by a loaded number: of the chain on half steps, of phases and spins on whole ones. */
+  /** Rotations by a loaded number: of the chain on half steps, of spins on whole ones, of phases on coarser ones. */
   readonly half: Rotate;
   readonly whole: Rotate;
+  readonly phase: Rotate;
   /** Which of two partners; null where rows stand for themselves. */
   readonly partner: number | null;
   readonly face: number | null;
@@ -72,7 +73,9 @@ export function product(
       );
     }
     const angles = splitAngles(layout, main, new Map(groups.map((group, i) => [group, added[i]!])));
-    centreInFrame(layout, wires, use, angles, reversed, flagged, enabled).run(machine);
+    withPhases(layout, flagged, angles, (own) =>
+      centreInFrame(layout, wires, use, own, reversed, flagged, enabled),
+    ).run(machine);
     // All registers at once: an erasure costs the same whatever it erases.
     const contents = [
       { size: main.length, content: contentAfterSwaps(load, blocks.rows.read) },
@@ -131,6 +134,8 @@ function groupTable(tables: SpinorTables, group: AngleGroup): Table {
 /** Registers of one row's angles and flags. */
 interface Angles {
   readonly chain: readonly (readonly number[])[];
+  /** What of shared phases stands behind each angle of the chain. */
+  readonly behind: readonly (readonly number[])[];
   readonly phases: readonly (readonly number[])[];
   /** θ, δ of each orbital in turn. */
   readonly spins: readonly (readonly number[])[];
@@ -143,28 +148,61 @@ function splitAngles(
   main: readonly number[],
   added: ReadonlyMap<AngleGroup, readonly number[]>,
 ): Angles {
-  const { angleBits, orbitals, chainWidth, merged, rowWidth, hasFaces } = layout;
-  const split = (register: readonly number[], count: number) =>
-    Array.from({ length: count }, (_, i) => register.slice(i * angleBits, (i + 1) * angleBits));
+  const { angleBits, wordBits, orbitals, chainWidth, merged, rowWidth, hasFaces } = layout;
+  const split = (register: readonly number[], count: number, width: number) =>
+    Array.from({ length: count }, (_, i) => register.slice(i * width, (i + 1) * width));
   const found = new Map(added);
   let at = chainWidth;
   for (const group of merged) {
-    const width = groupAngles(group, orbitals) * angleBits;
+    if (group === 'shared phases') continue;
+    const width = groupAngles(group, orbitals) * groupBits(group, layout);
     found.set(group, main.slice(at, at + width));
     at += width;
   }
   const of = (group: AngleGroup) => {
     const register = found.get(group);
-    return register ? split(register, groupAngles(group, orbitals)) : [];
+    return register ? split(register, groupAngles(group, orbitals), groupBits(group, layout)) : [];
   };
+  const words = split(main, orbitals - 1, wordBits);
   const flags = main.slice(at, rowWidth);
   return {
-    chain: split(main, orbitals - 1),
+    chain: words.map((word) => word.slice(0, angleBits)),
+    behind: words.map((word) => word.slice(angleBits)),
     phases: of('phases'),
     spins: of('spins'),
     sign: flags[0]!,
     signChange: hasFaces ? flags[1]! : -1,
   };
+}
+
+/**
+ * Takes shared phases out of the chain's low bits where the item has any, one AND a bit, and puts the angles of the
+ * chain into the middle of their coarse steps.
+ */
+function withPhases(
+  { sharedBits, angleBits, phaseBits }: SpinorLayout,
+  flagged: (flag: ItemFlag) => number,
+  angles: Angles,
+  body: (angles: Angles) => Operation,
+): Operation {
+  if (sharedBits === 0) return body(angles);
+  const { chain, behind } = angles;
+  const has = flagged('phases');
+  return scratch(chain.length * sharedBits, (lent) => {
+    const own = chain.map((_, p) => lent.slice(p * sharedBits, (p + 1) * sharedBits));
+    const takeOut = repeat(chain.length, (p) =>
+      sequence(
+        repeat(sharedBits, (i) =>
+          sequence(gate('AND', has, chain[p]![i]!, own[p]![i]!), gate('CX', own[p]![i]!, chain[p]![i]!)),
+        ),
+        gate('CX', has, chain[p]![angleBits - phaseBits - 1]!),
+      ),
+    );
+    return within(
+      span('phases out of the chain', 'select.other', takeOut),
+      body({ ...angles, phases: own.map((low, p) => [...low, ...behind[p]!]) }),
+    );
+  });
 }
 
 /** U Z U† and its signs. */
@@ -177,7 +215,7 @@ function centreInFrame(
   flagged: (flag: ItemFlag) => number,
   enabled: number | null,
 ): Operation {
-  const { system, half, whole, partner, face } = wires;
+  const { system, half, whole, phase, partner, face } = wires;
   const spins = turnsSpins(layout, use.second) ? angles.spins : [];
   const orbitalSpins = repeat(spins.length / 2, (p) => {
     const [up, down] = [system[2 * p]!, system[2 * p + 1]!];
@@ -194,7 +232,7 @@ function centreInFrame(
       span(
         'phases of the orbitals',
         'select.rotations',
-        repeat(angles.phases.length, (p) => modePhase(system[2 * p]!, angles.phases[p]!, whole, partner)),
+        repeat(angles.phases.length, (p) => modePhase(system[2 * p]!, angles.phases[p]!, phase, partner)),
       ),
       span('spins of the orbitals', 'select.rotations', orbitalSpins),
       tilted === null

@@ -50,22 +50,21 @@ export function spinorRecipe(
 
 /** SELECT: the occupation of one spinor. */
 function productRecipe(layout: SpinorLayout, blocks: ProductBlocks, second: boolean): Subroutine {
-  const { orbitals, angleBits, partners, hasAxes, rowAddresses, rowWidth } = layout;
+  const { orbitals, angleBits, phaseBits, sharedBits, partners, hasAxes, rowAddresses, rowWidth } = layout;
   const modulusBits = angleBits + 2;
   const spins = turnsSpins(layout, second);
   const groups = [...layout.tables].filter(([group]) => group === 'phases' || spins);
-  // Two more addend bits than are stored, and the carries.
-  const scratch = modulusBits;
-  const rotations = (name: string, angles: number, each: number, formula: string) =>
+  const rotations = (name: string, angles: number, each: number, formula: string, modulus = modulusBits) =>
     leaf({
       name,
       part: 'select.rotations',
       times: angles > 0 ? 2 : 0,
       toffoli: angles * each,
       formula,
-      inputs: { N: orbitals, β: modulusBits },
+      inputs: { N: orbitals, β: modulus },
       source: GIDNEY,
-      scratch: angles > 0 ? scratch : 0,
+      // Two more addend bits than are stored, and the carries.
+      scratch: angles > 0 ? modulus : 0,
     });
   const givensEach = givensToffoli(modulusBits);
   const phaseEach = rotationToffoli(modulusBits);
@@ -90,7 +89,7 @@ function productRecipe(layout: SpinorLayout, blocks: ProductBlocks, second: bool
       ...groups.map(([group, table]) =>
         loadLeaf(`${group} look-up`, 'select.lookup', table, { read: blocks.groups[group], erase: 1 }, true),
       ),
-      {
+      withPhases(orbitals - 1, sharedBits, {
         name: 'occupation in its frame',
         registers: partners && hasAxes ? [{ name: 'whether spins are swapped', qubits: 1 }] : [],
         children: [
@@ -107,8 +106,9 @@ function productRecipe(layout: SpinorLayout, blocks: ProductBlocks, second: bool
           rotations(
             'phases of the orbitals',
             layout.hasPhases ? orbitals - 1 : 0,
-            phaseEach,
+            rotationToffoli(phaseBits + 2),
             '(N − 1)(β − 2)',
+            phaseBits + 2,
           ),
           rotations(
             'spins of the orbitals',
@@ -137,8 +137,28 @@ function productRecipe(layout: SpinorLayout, blocks: ProductBlocks, second: bool
             scratch: partners ? 1 : 0,
           }),
         ],
-      },
+      }),
       eraseLeaf('angle erasure', 'select.lookup', rowAddresses, blocks.rows.erase, second),
+    ],
+  };
+}
+
+/** Takes shared phases out of the chain's words around what uses them. */
+function withPhases(words: number, sharedBits: number, inner: Subroutine): Subroutine {
+  if (sharedBits === 0) return inner;
+  return {
+    name: 'with phases out of the chain',
+    registers: [{ name: 'phases out of the chain', qubits: words * sharedBits }],
+    children: [
+      leaf({
+        name: 'phases out of the chain',
+        part: 'select.other',
+        toffoli: words * sharedBits,
+        formula: '(N − 1)·bits: one AND a shared bit, taken back by measurement',
+        inputs: { words, bits: sharedBits },
+        source: DERIVED,
+      }),
+      inner,
     ],
   };
 }

@@ -4,6 +4,9 @@ import { angleStep, roundedVector, roundVector } from '../squares/rounded-vector
 /**
  * A row rounded to angle numbers: w = r_p e^{iβ_p} (cos θ_p, e^{iδ_p} sin θ_p), r real over the orbitals. r stands on
  * half steps; β, θ and δ, all modulo π since r has signs, on whole steps: a row without them is met exactly.
+ *
+ * Axial rows may have coarser steps, 2^m of the others: the upper bits of r's numbers, in the middle of such a step,
+ * and those of β.
  */
 export interface RoundedSpinorRow {
   /** N − 1 numbers of r. */
@@ -16,12 +19,23 @@ export interface RoundedSpinorRow {
 
 const NONE = new Uint32Array(0);
 
-export function roundRow(kind: SpinorKind, row: SpinorRow, angleBits: number): RoundedSpinorRow {
+/** Bits of angles: of all, and of those of axial rows and of phases. */
+export interface AngleBits {
+  readonly angleBits: number;
+  readonly phaseBits: number;
+}
+
+export function roundRow(
+  kind: SpinorKind,
+  row: SpinorRow,
+  { angleBits, phaseBits }: AngleBits,
+): RoundedSpinorRow {
   if (kind === 'real') return { chain: roundVector(row.re, angleBits).numbers, phases: NONE, spins: NONE };
   const stride = kind === 'full' ? 2 : 1;
   const n = row.re.length / stride;
-  const step = angleStep(angleBits);
-  const count = 2 ** angleBits;
+  const chainBits = kind === 'axial' ? phaseBits : angleBits;
+  const step = angleStep(chainBits);
+  const count = 2 ** chainBits;
   // n_w does not know the phase of w: the last orbital's is taken for it.
   const last = (n - 1) * stride;
   const common = Math.atan2(row.im[last]!, row.re[last]!);
@@ -46,7 +60,9 @@ export function roundRow(kind: SpinorKind, row: SpinorRow, angleBits: number): R
     spins[2 * p + 1] = delta;
     r[p] = a * Math.cos(theta * step) + b * Math.sin(theta * step);
   }
-  return { chain: roundVector(r, angleBits).numbers, phases, spins };
+  const coarse = 2 ** (angleBits - chainBits);
+  const chain = roundVector(r, chainBits).numbers.map((x) => x * coarse + (coarse >> 1));
+  return { chain, phases, spins };
 }
 
 /** A component, turned by an angle. */
@@ -58,12 +74,12 @@ function turned({ re, im }: SpinorRow, i: number, angle: number): { size: number
 export function roundedRow(
   kind: SpinorKind,
   { chain, phases, spins }: RoundedSpinorRow,
-  angleBits: number,
+  { angleBits, phaseBits }: AngleBits,
 ): { re: Float64Array; im: Float64Array } {
   const r = roundedVector(chain, angleBits);
   const n = r.length;
   if (kind === 'real') return { re: r, im: new Float64Array(n) };
-  const step = angleStep(angleBits);
+  const step = angleStep(kind === 'axial' ? phaseBits : angleBits);
   const stride = kind === 'full' ? 2 : 1;
   const re = new Float64Array(n * stride);
   const im = new Float64Array(n * stride);

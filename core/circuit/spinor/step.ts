@@ -6,7 +6,7 @@ import { chooseTableBlocks } from '../squares/blocks';
 import { idleQubits, squaresTables } from '../squares/recipe';
 import { phaseEstimationPart, type StepBits, withinCap } from '../squares/step';
 import type { KeepBits } from '../squares/tables';
-import { ANGLE_GROUPS, type AngleGroup, type SpinorLayout, spinorLayout } from './layout';
+import { ANGLE_GROUPS, type AngleGroup, type Merge, type SpinorLayout, spinorLayout } from './layout';
 import { spinorPlus, spinorRecipe } from './recipe';
 import type { SpinorBlocks } from './walk';
 
@@ -45,7 +45,7 @@ export function chooseSpinorTables(
   policy: Pick<LookupPolicy, 'mode' | 'block'>,
   limit: number | null,
 ): Pick<SpinorStep, 'layout' | 'blocks'> {
-  const options: AngleGroup[][] = [[], ['phases'], ['spins'], [...ANGLE_GROUPS]];
+  const options: Merge[][] = [[], ['phases'], ['shared phases'], ['spins'], [...ANGLE_GROUPS]];
   let best: (Pick<SpinorStep, 'layout' | 'blocks'> & { toffoli: number }) | null = null;
   for (const merge of options) {
     const layout = spinorLayout(sizes, bits.rotation, merge);
@@ -82,9 +82,9 @@ function chooseBlocks(
   };
 }
 
-/** Of reading the angles once. */
+/** Of reading the angles once and taking shared phases apart. */
 function readToffoli(
-  { rowAddresses, rowWidth, tables }: SpinorLayout,
+  { rowAddresses, rowWidth, tables, orbitals, sharedBits }: SpinorLayout,
   { rows, groups }: SpinorBlocks,
 ): number {
   let sum = lookUpToffoli(countBlocks(rowAddresses, rows.read), rowWidth, rows.read);
@@ -92,5 +92,5 @@ function readToffoli(
     const k = groups[group];
     sum += lookUpToffoli(countBlocks(addresses, k), width, k, true);
   }
-  return sum;
+  return sum + (orbitals - 1) * sharedBits;
 }

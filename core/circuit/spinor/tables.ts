@@ -6,7 +6,14 @@ import {
   type WeightTables,
   weightTables,
 } from '../squares/tables';
-import { type AngleGroup, groupAngles, type SpinorLayout, spinorLayout } from './layout';
+import {
+  type AngleGroup,
+  groupAngles,
+  groupBits,
+  type Merge,
+  type SpinorLayout,
+  spinorLayout,
+} from './layout';
 import { type RoundedSpinorRow, roundedRow, roundRow } from './rounded-row';
 
 export interface SpinorBits extends KeepBits {
@@ -36,6 +43,7 @@ export function spinorSizesOf(program: SpinorProgram): SpinorSizes {
     orbitals: program.orbitals,
     partners: program.partners,
     oneBodyItems: program.oneBody.length,
+    spared: program.spared,
     rows: Uint32Array.from(items, (item) => item.rows.length),
     kinds: Uint8Array.from(items, (item) => SPINOR_KINDS.indexOf(item.kind)),
     twoFaced: Uint8Array.from(items, (item) => (item.faces.length > 1 ? 1 : 0)),
@@ -47,7 +55,7 @@ export function spinorSizesOf(program: SpinorProgram): SpinorSizes {
 export function spinorTables(
   program: SpinorProgram,
   bits: SpinorBits,
-  merge: readonly AngleGroup[],
+  merge: readonly Merge[],
 ): SpinorTables {
   const items = [...program.items, ...program.oneBody];
   for (const { faces } of items) {
@@ -68,7 +76,7 @@ export function spinorTables(
   for (const [t, item] of items.entries()) {
     for (const [j, row] of item.rows.entries()) {
       rows.set(t * 2 ** weights.rowBits + j, {
-        ...roundRow(item.kind, row, layout.angleBits),
+        ...roundRow(item.kind, row, layout),
         signs: row.faces.map((face) => face.sign),
       });
     }
@@ -78,19 +86,39 @@ export function spinorTables(
 
 /** Numbers of a group of a row; fewer than the group has where the row does not need them. */
 export function groupBit(tables: SpinorTables, group: AngleGroup, address: number, bit: number): boolean {
-  const { angleBits } = tables.layout;
-  const number = tables.rows.get(address)![group][Math.floor(bit / angleBits)] ?? 0;
-  return ((number >>> (bit % angleBits)) & 1) === 1;
+  const width = groupBits(group, tables.layout);
+  const number = tables.rows.get(address)![group][Math.floor(bit / width)] ?? 0;
+  return ((number >>> (bit % width)) & 1) === 1;
+}
+
+/** Bit of a word of the chain: the angle, in whose low bits and behind which a shared phase stands. */
+function wordBit(
+  { layout, items }: SpinorTables,
+  row: SpinorTableRow,
+  address: number,
+  bit: number,
+): boolean {
+  const { angleBits, sharedBits, wordBits, rowBits } = layout;
+  const word = Math.floor(bit / wordBits);
+  const at = bit % wordBits;
+  const isSet = (number: number, place: number) => ((number >>> place) & 1) === 1;
+  const sharesPhase = sharedBits > 0 && items[Math.floor(address / 2 ** rowBits)]!.kind === 'axial';
+  if (!sharesPhase) return at < angleBits && isSet(row.chain[word]!, at);
+  if (at < sharedBits) return isSet(row.phases[word]!, at);
+  if (at >= angleBits) return isSet(row.phases[word]!, sharedBits + at - angleBits);
+  // The rest of what a coarse step leaves out is put in by SELECT.
+  return at >= angleBits - layout.phaseBits && isSet(row.chain[word]!, at);
 }
 
 /** Bit of the main table's row: chain, merged groups, sign of the first face, change of the sign on the second. */
 export function rowBit(tables: SpinorTables, address: number, bit: number): boolean {
-  const { angleBits, orbitals, chainWidth, merged } = tables.layout;
+  const { orbitals, chainWidth, merged } = tables.layout;
   const row = tables.rows.get(address)!;
-  if (bit < chainWidth) return ((row.chain[Math.floor(bit / angleBits)]! >>> (bit % angleBits)) & 1) === 1;
+  if (bit < chainWidth) return wordBit(tables, row, address, bit);
   let rest = bit - chainWidth;
   for (const group of merged) {
-    const width = groupAngles(group, orbitals) * angleBits;
+    if (group === 'shared phases') continue;
+    const width = groupAngles(group, orbitals) * groupBits(group, tables.layout);
     if (rest < width) return groupBit(tables, group, address, rest);
     rest -= width;
   }
@@ -110,7 +138,7 @@ export function encodedSpinorProgram(program: SpinorProgram, tables: SpinorTable
       ...item,
       faces: item.faces.map((face, f) => ({ ...face, lambda: encodedLambda(weights, t, f) })),
       rows: item.rows.map((row, j) => ({
-        ...roundedRow(item.kind, rows.get(t * 2 ** weights.rowBits + j)!, layout.angleBits),
+        ...roundedRow(item.kind, rows.get(t * 2 ** weights.rowBits + j)!, layout),
         faces: row.faces.map((face, f) => ({ ...face, weight: own[f]![j]! })),
       })),
     };

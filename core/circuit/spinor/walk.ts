@@ -25,6 +25,8 @@ export interface SpinorWires extends SquaresWires {
   readonly gradient: readonly number[];
   readonly half: Rotate;
   readonly whole: Rotate;
+  /** By numbers on the coarser steps of phases, which the upper wires of the gradient serve. */
+  readonly phase: Rotate;
 }
 
 /**
@@ -43,16 +45,17 @@ export function spinorWires(
   const gradient =
     rotations === 'gradient' ? machine.allocateRegister(gradientWires(modulusBits), 'gradient') : [];
   const rotate =
-    (grid: Grid): Rotate =>
+    (grid: Grid, spared = 0): Rotate =>
     (target, angle) =>
       rotations === 'gradient'
-        ? rotateByGradient(target, angle, gradient, grid)
-        : rotateExactly(target, angle, modulusBits, grid);
+        ? rotateByGradient(target, angle, gradient.slice(spared), grid)
+        : rotateExactly(target, angle, modulusBits - spared, grid);
   return {
     system,
     gradient,
     half: rotate('half steps'),
     whole: rotate('whole steps'),
+    phase: rotate('whole steps', layout.angleBits - layout.phaseBits),
     ...squaresWires(weights, layout.hasPaired, layout.partners ? ['partner'] : [], machine),
   };
 }

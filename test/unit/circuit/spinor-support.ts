@@ -214,6 +214,7 @@ export function randomProgram(
   oneBody: ItemShape | readonly ItemShape[],
   items: readonly ItemShape[],
   seed = 7,
+  spared = 0,
 ): SpinorProgram {
   const random = randomNumbers(seed);
   const make = ({
@@ -245,6 +246,7 @@ export function randomProgram(
     constant: 0,
     partners,
     phases: null,
+    spared,
     oneBody: one.map((item) => ({ ...item, faces: [{ ...item.faces[0]!, lambda: factorNorm(item, 0) }] })),
     items: items.map(make),
   };

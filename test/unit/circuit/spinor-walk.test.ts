@@ -1,6 +1,6 @@
 import { describe, expect, it } from 'vitest';
 import { gate, sequence } from '../../../core/circuit/gates/operation';
-import type { AngleGroup } from '../../../core/circuit/spinor/layout';
+import type { Merge } from '../../../core/circuit/spinor/layout';
 import { encodedSpinorProgram, type SpinorBits, spinorTables } from '../../../core/circuit/spinor/tables';
 import {
   type SpinorBlocks,
@@ -62,7 +62,7 @@ interface Case {
   readonly program: SpinorProgram;
   readonly bits: SpinorBits;
   readonly blocks: SpinorBlocks;
-  readonly merge: readonly AngleGroup[];
+  readonly merge: readonly Merge[];
   readonly outcomes: 'random' | 0 | 1;
 }
 
@@ -102,6 +102,33 @@ const CASES: Case[] = [
     merge: ['phases'],
     outcomes: 'random',
   },
+  ...(
+    [
+      ['phases share the low bits of the chain', ['shared phases'], 3],
+      ['phases reach beyond the low bits', ['shared phases'], 2],
+      ['coarse phases merged', ['phases'], 2],
+      ['coarse phases in a table of their own', [], 3],
+    ] as [string, Merge[], number][]
+  ).map(
+    ([name, merge, spared]): Case => ({
+      name: `${name}, N = 2`,
+      program: randomProgram(
+        2,
+        true,
+        [
+          { kind: 'real', rows: 2 },
+          { kind: 'axial', axis: 2, rows: 2 },
+        ],
+        SEPARATE.slice(0, 2),
+        10,
+        spared,
+      ),
+      bits: { keep: 3, innerKeep: 2, rotation: 7 },
+      blocks: merge.length === 0 ? small : large,
+      merge,
+      outcomes: 'random',
+    }),
+  ),
   {
     name: 'separate, phases merged, N = 2',
     program: randomProgram(2, true, { kind: 'full', rows: 2 }, SEPARATE, 8),
@@ -203,10 +230,12 @@ describe.each(CASES)('spinor SELECT: $name', ({ program, bits, blocks, merge, ou
 
   it('rounds vectors to within their bits', () => {
     const n = program.orbitals;
-    const worst = (Math.sqrt(n + 4) * Math.PI) / 2 ** bits.rotation;
     for (const [t, item] of [...encoded.items, ...encoded.oneBody].entries()) {
       for (const [j, row] of item.rows.entries()) {
         const given = [...program.items, ...program.oneBody][t]!.rows[j]!;
+        const { angleBits, phaseBits } = tables.layout;
+        const coarse = item.kind === 'axial' ? 2 ** (angleBits - phaseBits) : 1;
+        const worst = ((coarse > 1 ? coarse + 1 : 1) * (Math.sqrt(n + 4) * Math.PI)) / 2 ** bits.rotation;
         let x = 0;
         let y = 0;
         for (let i = 0; i < row.re.length; i++) {
