@@ -77,7 +77,8 @@ function provableSpinor(
   return {
     circuit: spinorBlock(tables, blocks),
     encoded: (basis) => spinorProgramOperator(encodedSpinorProgram(program, tables), basis),
-    // |dq|² of an orbital's spinor q = e^{iβ}(cos θ, e^{iδ} sin θ) is at most dθ² + (|dβ| + |dδ|)².
+    // |dq|² of an orbital's spinor q = e^{iβ}(cos θ, e^{iδ} sin θ) is at most dθ² + (|dβ| + |dδ|)². Where axial rows
+    // are coarser there are no such q, and √(N − 1) of the others with a quarter of axial ones on top is less.
     bound: squaresBound(encoding, Math.sqrt(program.orbitals + 4)),
     phases: program.phases,
   };

@@ -153,6 +153,9 @@ describe('the emitted circuit encodes H', () => {
     ['spinor/joint/index/none/clean', [...SPIN_ORBIT, 'ss']],
   ])('fluorine 2p⁵, %s', async (name, terms) => {
     const h = buildHamiltonian(await loadSet(folder!), { terms });
+    const { spinors } = (await encode(h, name)).shape;
+    // Rows over all modes keep all their bits, and so do then the others.
+    expect(spinors!.spared > 0).toBe(!terms.includes('ss'));
     const found = await proof(h, name);
     expect(found.columns).toBe(6);
     expect(found.check.ok).toBe(true);
