@@ -11,7 +11,7 @@ export function inspectText(inspection: Inspection, columns: number): string {
   const lines = [
     ...(title ? [plainLine(title)] : []),
     `${space}, ${electrons} electrons, constant ${formatSignificant(constant, 12)} Eh; ` +
-      `${files.length} files, ${formatExactCount(bytes)} bytes`,
+      `${files.length} ${files.length === 1 ? 'file' : 'files'}, ${formatExactCount(bytes)} bytes`,
     '',
     ...textTable(
       [
