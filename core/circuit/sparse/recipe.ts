@@ -1,11 +1,18 @@
 import { constantComparisonToffoli } from '../primitives/arithmetic';
 import { type Blocks, erasureToffoli, oneHotToffoli } from '../primitives/look-up';
 import { readToffoli } from '../primitives/reading';
-import { reflectionToffoli } from '../primitives/reflection';
 import { addressBits } from '../primitives/unary-iteration';
 import type { Subroutine } from '../recipe';
-import { BABBUSH, BERRY, DERIVED, GIDNEY, leaf, readingText } from '../squares/leaves';
-import type { PhaseEstimationPart } from '../squares/recipe';
+import {
+  BABBUSH,
+  BERRY,
+  DERIVED,
+  GIDNEY,
+  leaf,
+  type PhaseEstimationPart,
+  readingText,
+  reflectionLeaves,
+} from '../squares/leaves';
 import type { SparseLayout } from './layout';
 import { multipleToffoli } from './multiple';
 import { orbitalExchangeToffoli, pairExchangeToffoli, pairsToffoli, pairsWires } from './select';
@@ -56,26 +63,7 @@ export function sparseRecipe(layout: SparseLayout, blocks: Blocks, phase: PhaseE
       ...phase.registers.filter((register) => register.qubits > 0),
       ...ancillas,
     ],
-    children: [
-      blockEncodingRecipe(layout, blocks),
-      leaf({
-        name: 'reflection of the walk',
-        part: 'reflections',
-        toffoli: reflectionToffoli(reflected),
-        formula: 'n − 2',
-        inputs: { n: reflected },
-        source: 'common practice, no source',
-        scratch: Math.max(0, reflected + phase.controls - 2),
-      }),
-      leaf({
-        name: 'control by the phase register',
-        part: 'control',
-        toffoli: phase.controls,
-        formula: 'one AND for each control of the reflection',
-        inputs: { controls: phase.controls },
-        source: BABBUSH,
-      }),
-    ],
+    children: [blockEncodingRecipe(layout, blocks), ...reflectionLeaves(reflected, phase)],
   };
 }
 

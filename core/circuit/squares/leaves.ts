@@ -1,5 +1,6 @@
 import { type Blocks, countBlocks, erasureToffoli, erasureWires } from '../primitives/look-up';
 import { readToffoli, readWires } from '../primitives/reading';
+import { reflectionToffoli } from '../primitives/reflection';
 import type { StepPart, Subroutine } from '../recipe';
 
 export const LOW = 'G. H. Low, V. Kliuchnikov, L. Schaeffer, arXiv:1812.00954 (2018)';
@@ -91,3 +92,33 @@ export const blockCounts = (addresses: Uint32Array, { read, erase }: Blocks) => 
   read: countBlocks(addresses, read),
   erase: countBlocks(addresses, erase),
 });
+
+/** What phase estimation adds to a walk step. */
+export interface PhaseEstimationPart {
+  readonly registers: readonly { readonly name: string; readonly qubits: number }[];
+  /** Toffoli a step: controls of the last reflection. */
+  readonly controls: number;
+}
+
+/** The walk's reflection about the zero state of `reflected` wires, and what its controls cost. */
+export function reflectionLeaves(reflected: number, phase: PhaseEstimationPart): Subroutine[] {
+  return [
+    leaf({
+      name: 'reflection of the walk',
+      part: 'reflections',
+      toffoli: reflectionToffoli(reflected),
+      formula: 'n − 2',
+      inputs: { n: reflected },
+      source: 'common practice, no source',
+      scratch: Math.max(0, reflected + phase.controls - 2),
+    }),
+    leaf({
+      name: 'control by the phase register',
+      part: 'control',
+      toffoli: phase.controls,
+      formula: 'one AND for each control of the reflection',
+      inputs: { controls: phase.controls },
+      source: BABBUSH,
+    }),
+  ];
+}

@@ -11,18 +11,13 @@ import {
   eraseLeaf,
   leaf,
   loadLeaf,
+  type PhaseEstimationPart,
   readingText,
+  reflectionLeaves,
   type TableSizes,
 } from './leaves';
 import type { KeepBits } from './tables';
 import { COMMON_FLAGS, type SquaresBlocks } from './walk';
-
-/** What phase estimation adds to a walk step. */
-export interface PhaseEstimationPart {
-  readonly registers: readonly { readonly name: string; readonly qubits: number }[];
-  /** Toffoli a step: controls of the last reflection. */
-  readonly controls: number;
-}
 
 /** What a form of encoding adds to the recipe of its squares. */
 export interface FormRecipe {
@@ -55,26 +50,7 @@ export function squaresRecipe(
   return {
     name: form.name,
     registers: [...form.registers, ...phase.registers.filter((register) => register.qubits > 0), ...ancillas],
-    children: [
-      blockEncodingRecipe(form, layout, bits, blocks),
-      leaf({
-        name: 'reflection of the walk',
-        part: 'reflections',
-        toffoli: reflectionToffoli(reflected),
-        formula: 'n − 2',
-        inputs: { n: reflected },
-        source: 'common practice, no source',
-        scratch: Math.max(0, reflected + phase.controls - 2),
-      }),
-      leaf({
-        name: 'control by the phase register',
-        part: 'control',
-        toffoli: phase.controls,
-        formula: 'one AND for each control of the reflection',
-        inputs: { controls: phase.controls },
-        source: BABBUSH,
-      }),
-    ],
+    children: [blockEncodingRecipe(form, layout, bits, blocks), ...reflectionLeaves(reflected, phase)],
   };
 }
 

@@ -1,5 +1,5 @@
 import type { Subroutine } from '../recipe';
-import type { PhaseEstimationPart } from './recipe';
+import type { PhaseEstimationPart } from './leaves';
 
 export interface StepBits {
   /** ℵ of all alias tables. */

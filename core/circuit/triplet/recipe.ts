@@ -3,8 +3,9 @@ import { majoranaRotationToffoli, swapLayerToffoli } from '../primitives/majoran
 import { gradientWires } from '../primitives/phase-gradient';
 import { outputWires } from '../primitives/reading';
 import type { Subroutine } from '../recipe';
+import type { PhaseEstimationPart } from '../squares/leaves';
 import { DERIVED, eraseLeaf, GIDNEY, leaf, loadLeaf } from '../squares/leaves';
-import { type PhaseEstimationPart, squaresRecipe } from '../squares/recipe';
+import { squaresRecipe } from '../squares/recipe';
 import { addsOnto, type ProductBlocks, type SpinTreatment } from './product';
 import { FACE_FLAGS } from './rounded-row';
 import type { TripletLayout } from './sizes';

@@ -1,6 +1,6 @@
 /**
- * OpenQASM 3.0 without calibration blocks and pragmas, as ordered choices: our transcription of the grammar that the
- * language's specification publishes (openqasm.com; A. Cross et al., ACM Trans. Quantum Comput. 3, 12 (2022)).
+ * OpenQASM 3.0 without calibration blocks and pragmas, as ordered choices: the grammar that the language's
+ * specification publishes, written out by us (openqasm.com; A. Cross et al., ACM Trans. Quantum Comput. 3, 12 (2022)).
  * Words in quotes are tokens, words in capitals kinds of tokens; `?`, `*`, `+` as usual; a name is a rule.
  * Precedence of operators: ** over unary over * / % over + − over shifts over comparisons over & ^ | && ||.
  */
