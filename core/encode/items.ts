@@ -71,6 +71,15 @@ export interface TripleItem {
   readonly pairRows: number;
 }
 
+/** Shift of S in the same-orbit part of a triple: as {@link shiftOf}. */
+function tripleShiftOf(block: TripleFactors, t: number, shift: ShiftAxis): number {
+  if (shift === 'none' || block.sameScale === 0) return 0;
+  const { n } = block;
+  return shift === 'optimised' && block.shifts
+    ? block.shifts[t]!
+    : median(block.symmetricValues, t * n, (t + 1) * n);
+}
+
 export function tripleItems(block: TripleFactors, shift: ShiftAxis): TripleItem[] {
   const { n, count, antisymmetricNorms: a, symmetricValues: s } = block;
   const half = n >> 1;
@@ -78,7 +87,7 @@ export function tripleItems(block: TripleFactors, shift: ShiftAxis): TripleItem[
   return Array.from({ length: count }, (_, t) => {
     const from = t * n;
     const to = from + n;
-    const c = shift !== 'none' && block.sameScale !== 0 ? median(s, from, to) : 0;
+    const c = tripleShiftOf(block, t, shift);
     const largest = Math.max(Math.abs(s[from]!), Math.abs(s[to - 1]!));
     const pairRows = countAbove(a, t * half, (t + 1) * half, 0, ROW_ZERO * a[t * half]!);
     // One list of vectors serves both parts; a vector counts where either part gives it weight.

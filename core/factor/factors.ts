@@ -59,6 +59,11 @@ export interface TripleFactors {
   readonly antisymmetricNorms: Float64Array;
   /** count × n: the eigenvalues of each S_i, ascending. */
   readonly symmetricValues: Float64Array;
+  /**
+   * Optimised shifts c_i of S_i in the same-orbit part, in the units of `symmetricValues`; absent where none were
+   * sought.
+   */
+  readonly shifts?: Float64Array;
 }
 
 /**

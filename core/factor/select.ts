@@ -23,6 +23,7 @@ export function selectFactors<Block extends FactorBlock>(block: Block, kept: rea
       symmetric: rows(block.symmetric, block.symmetric.length / Math.max(1, block.count), kept),
       antisymmetricNorms: rows(block.antisymmetricNorms, block.n >> 1, kept),
       symmetricValues: rows(block.symmetricValues, block.n, kept),
+      ...(block.shifts ? { shifts: rows(block.shifts, 1, kept) } : {}),
     };
   }
   const [dim, width] =
@@ -35,5 +36,6 @@ export function selectFactors<Block extends FactorBlock>(block: Block, kept: rea
     weights: rows(block.weights, 1, kept),
     vectors: rows(block.vectors, dim, kept),
     spectra: rows(block.spectra, width, kept),
+    ...(block.kind === 'squares' && block.shifts ? { shifts: rows(block.shifts, 1, kept) } : {}),
   };
 }
