@@ -11,6 +11,20 @@ export type {
   SquareFactors,
   TripleFactors,
 } from './factors';
+export { approximateCharge, hypercontractedHamiltonian } from './hypercontraction/approximation';
+export type {
+  HypercontractedFactors,
+  HypercontractedLambda,
+  Hypercontraction,
+  HypercontractionOptions,
+  HypercontractionPoint,
+} from './hypercontraction/block';
+export { hypercontract } from './hypercontraction/hypercontract';
+export {
+  hypercontractedLambda,
+  hypercontractedNorm,
+  hypercontractedOneBody,
+} from './hypercontraction/one-body';
 export { jointDimensions, jointRefusal, MAX_SECTOR } from './joint';
 export { kramersPhases } from './kramers-phases';
 export { lcuNorms } from './one-norms';
