@@ -25,7 +25,8 @@ export {
   toSpinOrbitals,
   zeroOperator,
 } from './operators';
-export { rotateOrbitals, rotateSpin } from './rotate';
+export { rotatedSquare, rotateOrbitals, rotateSpin, squareOfTriangle } from './rotate';
+export { rotatePairsTask } from './rotate-pairs';
 export { spinorForm } from './spinor-form';
 export {
   coulombBlock,

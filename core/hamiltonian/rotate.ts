@@ -1,8 +1,10 @@
 import { numAntisymmetricPairs, numSymmetricPairs } from '../integrals/integral-set';
+import type { JobContext } from '../job';
 import { multiply, transpose } from '../linalg';
 import { fromStoredForm } from './forms';
 import type { SpatialHamiltonian, TwoElectronTensor } from './hamiltonian';
 import type { TripletOperator } from './operators';
+import { rotatePairs } from './rotate-pairs';
 import { spinSpinComponent } from './super-matrix';
 
 type Component = 1 | 2 | 3;
@@ -62,59 +64,111 @@ function mixPairs(values: Float64Array, rotation: ArrayLike<number>): Float64Arr
 
 /**
  * The same Hamiltonian over orbitals φ'_p = Σ_q U_pq φ_q. No eigenvalue changes, and λ only as far as the
- * factorisation depends on the basis.
+ * factorisation depends on the basis. Uᵀ turns it back.
  *
  * @param u - N×N real orthogonal, row-major. Not checked.
- * @remarks Cost O(N⁶) in the pair space; meant for tens of orbitals.
+ * @remarks Cost O(N⁵), in parallel pieces.
  */
-export function rotateOrbitals(hamiltonian: SpatialHamiltonian, u: Float64Array): SpatialHamiltonian {
+export async function rotateOrbitals(
+  hamiltonian: SpatialHamiltonian,
+  u: Float64Array,
+  context: JobContext,
+): Promise<SpatialHamiltonian> {
   const { orbitals: n, g } = hamiltonian;
-  const npair = numSymmetricPairs(n);
-  const nanti = numAntisymmetricPairs(n);
-  const [symmetric, antisymmetric] = pairRotations(n, u);
-  const sandwich = (left: Float64Array, a: Float64Array, rows: number, right: Float64Array, cols: number) =>
-    multiply(multiply(left, a, rows, rows, cols), right, rows, cols, cols, { transposeB: true });
-  const triangle = (values: Float64Array, offset: number): Float64Array => {
-    const full = new Float64Array(npair * npair);
-    for (let a = 0, i = offset; a < npair; a++) {
-      for (let b = 0; b <= a; b++, i++) {
-        full[a * npair + b] = values[i]!;
-        full[b * npair + a] = values[i]!;
-      }
-    }
-    const rotated = sandwich(symmetric, full, npair, symmetric, npair);
-    const packed = new Float64Array((npair * (npair + 1)) / 2);
-    for (let a = 0, i = 0; a < npair; a++) {
-      // Both triangles are averaged: rounding must not make the result depend on which one is kept.
-      for (let b = 0; b <= a; b++, i++) packed[i] = (rotated[a * npair + b]! + rotated[b * npair + a]!) / 2;
-    }
-    return packed;
-  };
-  const rectangles = (w: Float64Array): Float64Array => {
-    const rotated = new Float64Array(w.length);
-    const size = nanti * npair;
-    for (let k = 0; k < 3 && size > 0; k++) {
-      const block = w.subarray(k * size, (k + 1) * size);
-      rotated.set(sandwich(antisymmetric, block, nanti, symmetric, npair), k * size);
-    }
-    return rotated;
-  };
   const { charge, spinOrbit, spinSpin } = g;
+  const rectangles = async (w: Float64Array): Promise<Float64Array> => {
+    const size = w.length / 3;
+    const parts: Float64Array[] = [];
+    for (let k = 0; k < 3; k++)
+      parts.push(await rotatedRectangle(n, w.subarray(k * size, (k + 1) * size), u, context));
+    return concatenated(parts);
+  };
+  const triangles = async (values: Float64Array): Promise<Float64Array> => {
+    const size = values.length / 6;
+    const parts: Float64Array[] = [];
+    for (let kl = 0; kl < 6; kl++) {
+      parts.push(await rotatedTriangle(n, values.subarray(kl * size, (kl + 1) * size), u, context));
+    }
+    return concatenated(parts);
+  };
   const rotated: TwoElectronTensor = {
-    charge: charge && triangle(charge, 0),
+    charge: charge && (await rotatedTriangle(n, charge, u, context)),
     spinOrbit: spinOrbit && {
-      same: rectangles(spinOrbit.same),
-      other: spinOrbit.other instanceof Float64Array ? rectangles(spinOrbit.other) : spinOrbit.other,
+      same: await rectangles(spinOrbit.same),
+      other: spinOrbit.other instanceof Float64Array ? await rectangles(spinOrbit.other) : spinOrbit.other,
     },
-    spinSpin: spinSpin && joined(spinSpin, (kl) => triangle(spinSpin, (kl * spinSpin.length) / 6)),
+    spinSpin: spinSpin && (await triangles(spinSpin)),
   };
   return fromStoredForm({ ...hamiltonian, h: rotateOperator(hamiltonian.h, u), g: rotated });
 }
 
-function joined(like: Float64Array, part: (kl: number) => Float64Array): Float64Array {
-  const values = new Float64Array(like.length);
-  for (let kl = 0; kl < 6; kl++) values.set(part(kl), (kl * like.length) / 6);
-  return values;
+/** A pairs-triangle over turned orbitals. */
+async function rotatedTriangle(
+  n: number,
+  values: Float64Array,
+  u: Float64Array,
+  context: JobContext,
+): Promise<Float64Array> {
+  const full = await rotatedSquare(n, squareOfTriangle(n, values), u, context);
+  const npair = numSymmetricPairs(n);
+  const packed = new Float64Array((npair * (npair + 1)) / 2);
+  for (let a = 0, i = 0; a < npair; a++) {
+    // Both triangles are averaged: rounding must not make the result depend on which one is kept.
+    for (let b = 0; b <= a; b++, i++) packed[i] = (full[a * npair + b]! + full[b * npair + a]!) / 2;
+  }
+  return packed;
+}
+
+/** A pairs-triangle written out, npair × npair. */
+export function squareOfTriangle(n: number, values: Float64Array): Float64Array {
+  const npair = numSymmetricPairs(n);
+  const full = new Float64Array(npair * npair);
+  for (let a = 0, i = 0; a < npair; a++) {
+    for (let b = 0; b <= a; b++, i++) {
+      full[a * npair + b] = values[i]!;
+      full[b * npair + a] = values[i]!;
+    }
+  }
+  return full;
+}
+
+/** Bare integrals over npair × npair symmetric pairs, both pairs turned. */
+export async function rotatedSquare(
+  n: number,
+  full: Float64Array,
+  u: Float64Array,
+  context: JobContext,
+): Promise<Float64Array> {
+  const npair = numSymmetricPairs(n);
+  const side = { n, symmetric: true, rows: npair, u };
+  const half = await rotatePairs({ ...side, values: full }, context);
+  return rotatePairs({ ...side, values: transpose(half, npair, npair) }, context);
+}
+
+/** nanti × npair: antisymmetric pairs by symmetric ones. */
+async function rotatedRectangle(
+  n: number,
+  w: Float64Array,
+  u: Float64Array,
+  context: JobContext,
+): Promise<Float64Array> {
+  const npair = numSymmetricPairs(n);
+  const nanti = numAntisymmetricPairs(n);
+  if (nanti === 0) return w;
+  const half = await rotatePairs({ n, symmetric: true, rows: nanti, values: w, u }, context);
+  const turned = transpose(half, nanti, npair);
+  const whole = await rotatePairs({ n, symmetric: false, rows: npair, values: turned, u }, context);
+  return transpose(whole, npair, nanti);
+}
+
+function concatenated(parts: readonly Float64Array[]): Float64Array {
+  const out = new Float64Array(parts.reduce((sum, part) => sum + part.length, 0));
+  let at = 0;
+  for (const part of parts) {
+    out.set(part, at);
+    at += part.length;
+  }
+  return out;
 }
 
 function rotateOperator(operator: TripletOperator, u: Float64Array): TripletOperator {
@@ -126,29 +180,4 @@ function rotateOperator(operator: TripletOperator, u: Float64Array): TripletOper
     planes.set(multiply(multiply(u, plane, n, n, n), ut, n, n, n), mu * n * n);
   }
   return { ...operator, planes };
-}
-
-/**
- * How bare integrals over pairs turn: (p'q'| = Σ_{r≥s} P_{[pq],[rs]} (rs| with P = U_pr U_qs + U_ps U_qr, once for
- * r = s, and for antisymmetric pairs U_pr U_qs − U_ps U_qr.
- */
-function pairRotations(n: number, u: Float64Array): [Float64Array, Float64Array] {
-  const npair = numSymmetricPairs(n);
-  const nanti = numAntisymmetricPairs(n);
-  const symmetric = new Float64Array(npair * npair);
-  const antisymmetric = new Float64Array(nanti * nanti);
-  for (let p = 0, a = 0, c = 0; p < n; p++) {
-    for (let q = 0; q <= p; q++, a++) {
-      for (let r = 0, b = 0, d = 0; r < n; r++) {
-        for (let s = 0; s <= r; s++, b++) {
-          const straight = u[p * n + r]! * u[q * n + s]!;
-          const crossed = u[p * n + s]! * u[q * n + r]!;
-          symmetric[a * npair + b] = r === s ? straight : straight + crossed;
-          if (q < p && s < r) antisymmetric[c * nanti + d++] = straight - crossed;
-        }
-      }
-      if (q < p) c++;
-    }
-  }
-  return [symmetric, antisymmetric];
 }

@@ -8,6 +8,7 @@ export {
   type RowSource,
 } from './cholesky';
 export { type ClusteredBasis, clusterBasis, clusterTriples } from './cluster';
+export { antisymmetricExponential, polished } from './exponential';
 export {
   hermitianEigen,
   hermitianEigenAsync,

@@ -1,9 +1,13 @@
 import { encodeTasks } from '../encode';
 import { factorTasks } from '../factor';
+import { rotatePairsTask } from '../hamiltonian';
 import type { Task } from '../job';
 
 const TASKS: ReadonlyMap<string, Task<unknown, unknown>> = new Map(
-  [...factorTasks, ...encodeTasks].map((task) => [task.name, task as Task<unknown, unknown>]),
+  [rotatePairsTask, ...factorTasks, ...encodeTasks].map((task) => [
+    task.name,
+    task as Task<unknown, unknown>,
+  ]),
 );
 
 /** Names of all tasks that workers can run. */

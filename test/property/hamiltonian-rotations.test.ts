@@ -1,7 +1,8 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
 import { rotateOrbitals, rotateSpin, tensorElement, toSpinOrbitals } from '../../core/hamiltonian';
-import { hermitianEigenvalues } from '../../core/linalg';
+import { inlineContext } from '../../core/job';
+import { hermitianEigenvalues, transpose } from '../../core/linalg';
 import { fockMatrix } from '../../core/verify';
 import {
   largestDifference,
@@ -51,12 +52,12 @@ describe('changes of basis leave the spectrum of the whole Fock space', () => {
     );
   });
 
-  it('rotation of the orbitals', () => {
-    fc.assert(
-      fc.property(seeds, fc.constantFrom(2, 3), (seed, n) => {
+  it('rotation of the orbitals', async () => {
+    await fc.assert(
+      fc.asyncProperty(seeds, fc.constantFrom(2, 3), async (seed, n) => {
         const hamiltonian = randomHamiltonian(n, seed);
         const q = randomOrthogonal(n, uniform(seed + 2));
-        const turned = rotateOrbitals(hamiltonian, q);
+        const turned = await rotateOrbitals(hamiltonian, q, inlineContext());
         const difference = largestDifference(
           spectrum(fockMatrix(turned, 'product')),
           spectrum(fockMatrix(hamiltonian, 'product')),
@@ -67,11 +68,11 @@ describe('changes of basis leave the spectrum of the whole Fock space', () => {
     );
   });
 
-  it('orbital rotation is the four-index transformation', () => {
+  it('orbital rotation is the four-index transformation', async () => {
     const n = 3;
     const hamiltonian = randomHamiltonian(n, 99);
     const u = randomOrthogonal(n, uniform(4));
-    const turned = rotateOrbitals(hamiltonian, u);
+    const turned = await rotateOrbitals(hamiltonian, u, inlineContext());
     for (const [mu, nu] of [
       [0, 0],
       [2, 0],
@@ -96,6 +97,27 @@ describe('changes of basis leave the spectrum of the whole Fock space', () => {
         expect(y).toBeCloseTo(im, 12);
       }
     }
+  });
+
+  it('the transpose turns the orbitals back', async () => {
+    await fc.assert(
+      fc.asyncProperty(seeds, fc.integer({ min: 1, max: 6 }), async (seed, n) => {
+        const hamiltonian = randomHamiltonian(n, seed);
+        const u = randomOrthogonal(n, uniform(seed + 3));
+        const turned = await rotateOrbitals(hamiltonian, u, inlineContext());
+        const back = await rotateOrbitals(turned, transpose(u, n, n), inlineContext());
+        const { g } = hamiltonian;
+        expect(largestDifference(back.h.planes, hamiltonian.h.planes)).toBeLessThan(1e-12);
+        expect(largestDifference(back.k.planes, hamiltonian.k.planes)).toBeLessThan(1e-12);
+        expect(largestDifference(back.g.charge!, g.charge!)).toBeLessThan(1e-12);
+        expect(largestDifference(back.g.spinOrbit!.same, g.spinOrbit!.same)).toBeLessThan(1e-12);
+        expect(
+          largestDifference(back.g.spinOrbit!.other as Float64Array, g.spinOrbit!.other as Float64Array),
+        ).toBeLessThan(1e-12);
+        expect(largestDifference(back.g.spinSpin!, g.spinSpin!)).toBeLessThan(1e-12);
+      }),
+      { numRuns: 10 },
+    );
   });
 
   it('spin rotation by 90° about z takes x to y', () => {
