@@ -39,5 +39,6 @@ export {
   spinSpinBlock,
   vectorFromOperator,
 } from './super-matrix';
+export { type SymmetryShift, shiftedHamiltonian } from './symmetry-shift';
 export { tensorElement } from './tensor-element';
 export { type OrbitalWindow, restrictToWindow } from './window';
