@@ -27,6 +27,7 @@ export {
 export { type MultiplyOptions, multiply, multiplyAsync, transpose } from './multiply';
 export { hermitianNuclearNorm, sumOfSizes, symmetricNuclearNorm } from './norms';
 export { householderQr, type ThinQr } from './qr';
+export { randomSource } from './random';
 export { type SingularOptions, singularValues } from './singular';
 export {
   symmetricEigen,
