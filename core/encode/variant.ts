@@ -44,11 +44,18 @@ export function formatVariant(name: VariantName): string {
 /** Why a combination cannot be had, as found, expected and mend; null where it can. */
 function objection(name: VariantName): { found: string; expected: string; mend: string } | null {
   const { factorisation, grouping, spin, shift } = name;
-  if (factorisation === 'hypercontracted' || factorisation === 'mixed') {
+  if (factorisation === 'hypercontracted') {
     return {
       found: `factorisation "${factorisation}", which this version does not make yet`,
-      expected: 'sparse, triplet, compressed or spinor',
-      mend: 'Choose one of these four.',
+      expected: 'sparse, triplet, compressed, mixed or spinor',
+      mend: 'Choose one of these five.',
+    };
+  }
+  if (factorisation === 'mixed' && (grouping !== 'separate' || shift !== 'optimised')) {
+    return {
+      found: `grouping "${grouping}" and shift "${shift}" with a mixed encoding`,
+      expected: 'separate and optimised: every part has its own treatment',
+      mend: 'Write mixed/separate/…/optimised/….',
     };
   }
   if (factorisation === 'compressed' && (grouping !== 'separate' || shift !== 'optimised')) {

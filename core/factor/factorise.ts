@@ -18,6 +18,8 @@ export interface FactoriseOptions {
    * @defaultValue 1 everywhere, the reference of the Majorana form
    */
   readonly occupations?: ArrayLike<number>;
+  /** Separate grouping: spin–orbit triples and spin–spin factors are all kept, for {@link lightParts}. @defaultValue false */
+  readonly keepSpinParts?: boolean;
 }
 
 /** Cholesky may leave this part of the threshold; the rest is for whole factors. */
@@ -53,7 +55,12 @@ export async function factorise(
       ? { blocks: await jointFactors(hamiltonian, ctx), notes: [], remainder: null }
       : await separateFactors(hamiltonian, threshold, ctx);
   await ctx.checkpoint();
-  const kept = await truncate(blocks, hamiltonian.orbitals, threshold, occupations, remainder, ctx);
+  const { keepSpinParts = false } = options;
+  const kept = await truncate(
+    blocks,
+    { n: hamiltonian.orbitals, threshold, occupations, remainder, keepSpinParts },
+    ctx,
+  );
   return { grouping, notes, ...kept };
 }
 

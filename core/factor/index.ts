@@ -27,6 +27,7 @@ export {
 } from './hypercontraction/one-body';
 export { jointDimensions, jointRefusal, MAX_SECTOR } from './joint';
 export { kramersPhases } from './kramers-phases';
+export { type LightParts, lightParts, type Thinned } from './light-parts';
 export { lcuNorms } from './one-norms';
 export { hermitianInto } from './spinor-elements';
 export { factorTasks } from './tasks';

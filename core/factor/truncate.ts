@@ -52,6 +52,18 @@ export function weightSizes(block: SpatialBlock): Float64Array {
   return block.kind === 'triples' ? block.strengths : block.weights.map(Math.abs);
 }
 
+export interface TruncateOptions {
+  /** Orbitals. */
+  readonly n: number;
+  /** Hartree, ≥ 0. */
+  readonly threshold: number;
+  /** Of the mean field, n numbers 0…2. */
+  readonly occupations: ArrayLike<number>;
+  readonly remainder: Remainder | null;
+  /** Only Coulomb factors may be dropped. */
+  readonly keepSpinParts: boolean;
+}
+
 /** Factors between two checkpoints: some 10 ms for 50 orbitals. */
 const FOLDED_AT_ONCE = 16;
 /** Budgets tried until the replacement's share fits into the threshold. */
@@ -66,17 +78,18 @@ const TRIES = 6;
  */
 export async function truncate(
   blocks: readonly SpatialBlock[],
-  n: number,
-  threshold: number,
-  occupations: ArrayLike<number>,
-  remainder: Remainder | null,
+  { n, threshold, occupations, remainder, keepSpinParts }: TruncateOptions,
   ctx: JobContext,
 ): Promise<
   Pick<Factorisation, 'residual' | 'foldedMeanField' | 'foldedConstant'> & { blocks: SpatialBlock[] }
 > {
   // Nuclear norm ≤ √n · Frobenius norm, so the remainder's one-norm is at most ¼ n · trace.
   const leftOut = remainder ? 0.25 * n * remainder.trace : 0;
-  const norms = blocks.map(lcuNorms);
+  const norms = blocks.map((block) =>
+    keepSpinParts && block.part !== 'coulomb'
+      ? new Float64Array(block.count).fill(Number.POSITIVE_INFINITY)
+      : lcuNorms(block),
+  );
   const sizes = blocks.map(weightSizes);
   const allowed = Math.max(0, threshold - leftOut);
   let budget = allowed;

@@ -3,7 +3,7 @@ import { type Encoding, formatVariant, type VariantName } from '../encode';
 import type { IntegralSet } from '../integrals';
 import { InputError, type JobContext } from '../job';
 import { type CircuitCount, countWalkStep } from './circuit-count';
-import { costOf, targetOf, thresholdOf } from './costing';
+import { costOf, targetOf, thresholdOf, toleranceOf } from './costing';
 import { Encodings } from './encodings';
 import type { ComparisonRequest } from './request';
 import { hamiltonianOf, occupationsOf } from './system';
@@ -43,6 +43,7 @@ async function plan(set: IntegralSet, request: CircuitRequest, context: JobConte
     hamiltonianOf(set, request),
     thresholdOf(request, target),
     occupationsOf(set, request),
+    toleranceOf(target),
   );
   const reason = encodings.refusal(request.variant);
   if (reason !== null) {

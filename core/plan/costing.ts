@@ -32,7 +32,12 @@ export function targetOf({ target, overlaps }: CostRequest): TargetRequest {
 
 /** What truncation may drop, hartree; `auto` is the error budget's share. */
 export function thresholdOf({ threshold }: CostRequest, target: TargetRequest): number {
-  return threshold === 'auto' ? errorBudget(target, confidenceFactor(target.accuracy)).truncation : threshold;
+  return threshold === 'auto' ? toleranceOf(target) : threshold;
+}
+
+/** The error budget's share for truncation, hartree. */
+export function toleranceOf(target: TargetRequest): number {
+  return errorBudget(target, confidenceFactor(target.accuracy)).truncation;
 }
 
 /** The costs of an encoding under a request. */

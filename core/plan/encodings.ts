@@ -1,7 +1,8 @@
 import { buildEncoding, type Encoding, formatVariant, type VariantName } from '../encode';
 import { compressFactors, type Factorisation, factorise, type Grouping, jointRefusal } from '../factor';
-import type { SpinHamiltonian } from '../hamiltonian';
+import type { SpatialHamiltonian, SpinHamiltonian } from '../hamiltonian';
 import type { JobContext } from '../job';
+import { thinLightParts } from './light-parts';
 
 /**
  * Encodings of one Hamiltonian at one threshold. What variants have in common is computed once: a factorisation
@@ -11,17 +12,25 @@ export class Encodings {
   readonly #hamiltonian: SpinHamiltonian;
   readonly #threshold: number;
   readonly #occupations: readonly number[] | null;
+  readonly #tolerance: number;
   readonly #factorisations = new Map<string, Factorisation>();
   readonly #encodings = new Map<string, Encoding>();
 
   /**
    * @param threshold - sum of LCU norms that truncation may drop, hartree
    * @param occupations - reference of the mean field that stands for dropped factors; null: none
+   * @param tolerance - of mixed encodings: what thinning of the spin-dependent parts may change, hartree
    */
-  constructor(hamiltonian: SpinHamiltonian, threshold: number, occupations: readonly number[] | null) {
+  constructor(
+    hamiltonian: SpinHamiltonian,
+    threshold: number,
+    occupations: readonly number[] | null,
+    tolerance: number,
+  ) {
     this.#hamiltonian = hamiltonian;
     this.#threshold = threshold;
     this.#occupations = occupations;
+    this.#tolerance = tolerance;
   }
 
   /** Why the variant is left out though its name is sound, or null. */
@@ -50,28 +59,40 @@ export class Encodings {
 
   /** The factorisation of the grouping, its Coulomb factors mixed or their shifts optimised where the variant says so. */
   async #optimised(variant: VariantName, grouping: Grouping, context: JobContext): Promise<Factorisation> {
-    const given = await this.#factorised(grouping, context);
+    const mixed = variant.factorisation === 'mixed';
+    const given = await this.#factorised(grouping, mixed, context);
     if (variant.shift !== 'optimised' || this.#hamiltonian.kind !== 'spatial') return given;
     const key = `${variant.factorisation}, optimised`;
     let found = this.#factorisations.get(key);
     if (!found) {
-      const keepFactors = variant.factorisation !== 'compressed';
+      const keepFactors = variant.factorisation !== 'compressed' && !mixed;
       found = await compressFactors(this.#hamiltonian, given, { keepFactors }, context);
+      if (mixed) found = await this.#thinned(this.#hamiltonian, found, context);
       this.#factorisations.set(key, found);
     }
     return found;
   }
 
-  async #factorised(grouping: Grouping, context: JobContext): Promise<Factorisation> {
-    let found = this.#factorisations.get(grouping);
+  /** Spin-dependent parts thinned by what they mean for the energy. */
+  async #thinned(h: SpatialHamiltonian, whole: Factorisation, context: JobContext): Promise<Factorisation> {
+    const occupations = this.#occupations ?? new Array<number>(h.orbitals).fill(1);
+    const { factorisation, note } = await thinLightParts(h, whole, occupations, this.#tolerance, context);
+    return { ...factorisation, notes: [...factorisation.notes, note] };
+  }
+
+  /** @param keepSpinParts - every factor of the spin-dependent parts, whatever the threshold */
+  async #factorised(grouping: Grouping, keepSpinParts: boolean, context: JobContext): Promise<Factorisation> {
+    const key = keepSpinParts ? `${grouping}, whole` : grouping;
+    let found = this.#factorisations.get(key);
     if (!found) {
       const options = {
         grouping,
         threshold: this.#threshold,
+        keepSpinParts,
         ...(this.#occupations ? { occupations: this.#occupations } : {}),
       };
       found = await factorise(this.#hamiltonian, options, context);
-      this.#factorisations.set(grouping, found);
+      this.#factorisations.set(key, found);
     }
     return found;
   }

@@ -55,7 +55,7 @@ export async function windowChecks(
   const orbitals = window.orbitals.map((orbital) => orbital - 1);
   const inside = Math.round(orbitals.reduce((sum, p) => sum + occupations[p]!, 0));
   const choice = { orbitals, electrons: window.electrons ?? inside, occupations };
-  const encodings = new Encodings(hamiltonian, threshold, occupations);
+  const encodings = new Encodings(hamiltonian, threshold, occupations, threshold);
   const estimates = new EnergyEstimates(hamiltonian, occupations);
   const checks: Check[] = [];
   const seen = new Set<TruncationEnergy>();

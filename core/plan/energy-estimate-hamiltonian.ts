@@ -1,4 +1,4 @@
-import type { Factorisation, SquareFactors, TripleFactors } from '../factor';
+import { type Factorisation, type SquareFactors, sectorLayout, type TripleFactors } from '../factor';
 import { addScaled, fromProductForm, type SpatialHamiltonian } from '../hamiltonian';
 import { numAntisymmetricPairs, numSymmetricPairs, pairsTriangleLength } from '../integrals/integral-set';
 import type { JobContext } from '../job';
@@ -23,8 +23,10 @@ export async function hamiltonianOfFactors(
   const nanti = numAntisymmetricPairs(n);
   const charges = blocks.filter(isCharge);
   const triples = blocks.filter((block): block is TripleFactors => block.kind === 'triples');
-  if (charges.length + triples.length < blocks.length) return null;
+  const dipolar = blocks.filter(isSpinSpin);
+  if (charges.length + triples.length + dipolar.length < blocks.length) return null;
   const flops =
+    dipolar.reduce((sum, { count }) => sum + 12 * npair * npair * count, 0) +
     charges.reduce((sum, { count }) => sum + 2 * npair * npair * count, 0) +
     triples.reduce((sum, { count }) => sum + 2 * nanti * npair * count, 0);
   if (flops > MOST_FLOPS) return null;
@@ -64,6 +66,7 @@ export async function hamiltonianOfFactors(
       }
     }
   }
+  const spinSpin = await spinSpinOf(n, dipolar, unscale, context);
   const k = foldedMeanField && 'planes' in foldedMeanField ? addScaled(h.k, foldedMeanField) : h.k;
   return fromProductForm({
     orbitals: n,
@@ -71,8 +74,55 @@ export async function hamiltonianOfFactors(
     terms: h.terms,
     constant: h.constant + foldedConstant,
     k,
-    g: { charge, spinOrbit: same && other ? { same, other } : null, spinSpin: null },
+    g: { charge, spinOrbit: same && other ? { same, other } : null, spinSpin },
   });
+}
+
+/** Six pairs-triangles xx, xy, xz, yy, yz, zz of Σ w L ⊗ L; the sum over all factors is symmetric in the pairs. */
+async function spinSpinOf(
+  n: number,
+  blocks: readonly SquareFactors[],
+  unscale: Float64Array,
+  context: JobContext,
+): Promise<Float64Array | null> {
+  if (blocks.length === 0) return null;
+  const npair = numSymmetricPairs(n);
+  const length = pairsTriangleLength(n);
+  const out = new Float64Array(6 * length);
+  for (const { sector, planes, count, dim, vectors, weights } of blocks) {
+    const { slots } = sectorLayout(sector, planes, n);
+    const columns = slots.map(({ offset }) => {
+      const rows = new Float64Array(count * npair);
+      for (let t = 0; t < count; t++) {
+        for (let i = 0; i < npair; i++) rows[t * npair + i] = unscale[i]! * vectors[t * dim + offset + i]!;
+      }
+      return rows;
+    });
+    const weighted = columns.map((rows) => rows.map((x, i) => x * weights[Math.floor(i / npair)]!));
+    let component = 0;
+    for (let a = 0; a < 3; a++) {
+      for (let b = a; b < 3; b++) {
+        const g = await multiplyAsync(
+          weighted[a]!,
+          columns[b]!,
+          npair,
+          count,
+          npair,
+          { transposeA: true },
+          context,
+        );
+        for (let i = 0, at = component * length; i < npair; i++) {
+          for (let j = 0; j <= i; j++) out[at++]! += (g[i * npair + j]! + g[j * npair + i]!) / 2;
+        }
+        component++;
+      }
+    }
+  }
+  return out;
+}
+
+function isSpinSpin(block: Factorisation['blocks'][number]): block is SquareFactors {
+  return block.kind === 'squares' && block.part === 'spin-spin';
 }
 
 function isCharge(block: Factorisation['blocks'][number]): block is SquareFactors {

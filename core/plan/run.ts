@@ -12,7 +12,7 @@ import type { IntegralSet, SelectableTerm } from '../integrals';
 import { Cancelled, InputError, type JobContext, type Problem } from '../job';
 import { toHartree } from '../units';
 import type { VariantEstimate } from './comparison';
-import { costOf, targetOf, thresholdOf } from './costing';
+import { costOf, targetOf, thresholdOf, toleranceOf } from './costing';
 import { Encodings } from './encodings';
 import { EnergyEstimates, type TruncationEnergy } from './energy-estimate';
 import { Floors } from './floors';
@@ -60,7 +60,12 @@ export async function runComparison(
   const hartree = toHartree(request.target.value, request.target.unit);
   const target = targetOf(request);
   const terms = hamiltonian.kind === 'spatial' ? hamiltonian.terms : heldTerms(set);
-  const encodings = new Encodings(hamiltonian, thresholdOf(request, target), occupationsOf(set, request));
+  const encodings = new Encodings(
+    hamiltonian,
+    thresholdOf(request, target),
+    occupationsOf(set, request),
+    toleranceOf(target),
+  );
   const floors = new Floors(hamiltonian, MAX_DETERMINANTS);
   const energies = new EnergyEstimates(hamiltonian, occupationsOf(set, request));
 

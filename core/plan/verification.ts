@@ -60,7 +60,7 @@ export async function runVerification(
   ];
 
   const occupations = occupationsOf(set, request);
-  const encodings = new Encodings(hamiltonian, request.threshold, occupations);
+  const encodings = new Encodings(hamiltonian, request.threshold, occupations, request.threshold);
   const estimates = new EnergyEstimates(hamiltonian, occupations);
   const truncation: Record<string, TruncationEvidence> = {};
   const spectra: Record<string, number[]> = {};

@@ -21,4 +21,5 @@ export { exactSpectrum, type Spectrum, type SpectrumOptions } from './spectrum';
 export { spinorBlock } from './spinor-block';
 export { spinorProgramOperator } from './spinor-block-operator';
 export { tripletBlock } from './triplet-block';
+export { type WindowCouplings, windowCouplings } from './window-couplings';
 export { type LevelShifts, levelShifts, windowOfProgram } from './window-levels';

@@ -1,4 +1,4 @@
-import { type AXES, DEFAULT_VARIANTS, formatVariant, parseVariant } from '../../core/encode';
+import { AXES, DEFAULT_VARIANTS, expandVariants, formatVariant, parseVariant } from '../../core/encode';
 import { InputError } from '../../core/job';
 
 export type Axis = keyof typeof AXES;
@@ -25,7 +25,7 @@ export const VALUE_WORDS: Readonly<Record<string, string>> = {
 
 /** Values that can be reckoned today; the others have no encoding yet. */
 export const OFFERED: Readonly<Record<Axis, readonly string[]>> = {
-  factorisation: ['sparse', 'triplet', 'compressed', 'spinor'],
+  factorisation: ['sparse', 'triplet', 'compressed', 'mixed', 'spinor'],
   grouping: ['joint', 'separate'],
   spin: ['index', 'swap-layers'],
   shift: ['none', 'median', 'optimised'],
@@ -49,21 +49,36 @@ export function whyNot(name: string): string | null {
 /** Every sound variant with the given values, all offered ones where an axis is not given. */
 export function product(chosen: Readonly<Partial<Record<Axis, readonly string[]>>>): string[] {
   const names = new Set<string>();
-  const pick = (axis: Axis) => chosen[axis] ?? OFFERED[axis];
-  for (const factorisation of pick('factorisation')) {
-    // An axis without meaning for the factorisation takes its only value instead of being crossed.
-    const sparse = factorisation === 'sparse';
-    const compressed = factorisation === 'compressed';
-    const layered = compressed || factorisation === 'triplet';
-    for (const grouping of sparse ? ['-'] : compressed ? ['separate'] : pick('grouping'))
-      for (const spin of layered ? pick('spin') : ['index'])
-        for (const shift of sparse ? ['none'] : compressed ? ['optimised'] : pick('shift'))
-          for (const lookup of pick('lookup')) {
+  for (const factorisation of chosen.factorisation ?? OFFERED.factorisation) {
+    const [groupings, spins, shifts, lookups] = AXIS_NAMES.slice(1).map((axis) => {
+      const sound = soundValues(factorisation, axis);
+      // An axis without a choice for the factorisation takes its only value instead of being crossed.
+      return sound.length === 1 ? sound : sound.filter((value) => (chosen[axis] ?? sound).includes(value));
+    }) as [string[], string[], string[], string[]];
+    for (const grouping of groupings)
+      for (const spin of spins)
+        for (const shift of shifts)
+          for (const lookup of lookups) {
             const name = [factorisation, grouping, spin, shift, lookup].join('/');
             if (whyNot(name) === null) names.add(name);
           }
   }
   return [...names];
+}
+
+/** Values of an axis that some sound variant of a factorisation has. */
+function soundValues(factorisation: string, axis: Axis): string[] {
+  const patterns = AXES[axis].map((value) =>
+    AXIS_NAMES.map((own) => (own === 'factorisation' ? factorisation : own === axis ? value : '*')).join('/'),
+  );
+  return AXES[axis].filter((_, i) => {
+    try {
+      return expandVariants(patterns[i]!).length > 0;
+    } catch (error) {
+      if (error instanceof InputError) return false;
+      throw error;
+    }
+  });
 }
 
 const wordOf = (name: string, axis: Axis) => name.split('/')[AXIS_NAMES.indexOf(axis)]!;
