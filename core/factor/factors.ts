@@ -82,6 +82,8 @@ export interface SpinorFactors {
   readonly vectors: Float64Array;
   /** count × M eigenvalues, ascending. */
   readonly spectra: Float64Array;
+  /** Optimised shifts c_t, in the units of `spectra`; absent where none were sought. */
+  readonly shifts?: Float64Array;
 }
 
 export type FactorBlock = SquareFactors | TripleFactors | SpinorFactors;

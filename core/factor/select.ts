@@ -36,6 +36,6 @@ export function selectFactors<Block extends FactorBlock>(block: Block, kept: rea
     weights: rows(block.weights, 1, kept),
     vectors: rows(block.vectors, dim, kept),
     spectra: rows(block.spectra, width, kept),
-    ...(block.kind === 'squares' && block.shifts ? { shifts: rows(block.shifts, 1, kept) } : {}),
+    ...(block.shifts ? { shifts: rows(block.shifts, 1, kept) } : {}),
   };
 }

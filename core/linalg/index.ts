@@ -27,6 +27,12 @@ export {
 export { type MultiplyOptions, multiply, multiplyAsync, transpose } from './multiply';
 export { hermitianNuclearNorm, sumOfSizes, symmetricNuclearNorm } from './norms';
 export { householderQr, type ThinQr } from './qr';
+export {
+  minimiseSmooth,
+  type QuasiNewtonOptions,
+  type QuasiNewtonResult,
+  type SmoothValue,
+} from './quasi-newton';
 export { randomSource } from './random';
 export { type SingularOptions, singularValues } from './singular';
 export {
