@@ -4,6 +4,7 @@ import { toSpinOrbitals } from '../hamiltonian';
 import type { JobContext } from '../job';
 import { hermitianEigenvalues } from '../linalg';
 import type { Encoding, EncodingShape, ItemSizes, LambdaByPart } from './encoding';
+import { explicitShift } from './explicit-shift';
 import { type BlockItems, itemsOf } from './items';
 import { KAPPA_ROUNDING, type OneBody, oneBodyPart, oneBodyTriplet } from './one-body';
 import { rebuildSpatial } from './rebuild';
@@ -240,6 +241,7 @@ export async function encodeSpatial(
     residual: factorisation.residual,
     notes: factorisation.notes,
     rebuild: () => rebuildSpatial(h, factorisation, blocks, oneBody),
+    symmetryShift: () => explicitShift(h, blocks, oneBody.shift),
     ...programs(constant),
   };
 }

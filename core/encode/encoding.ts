@@ -1,5 +1,5 @@
 import type { Residual } from '../factor/factors';
-import type { SpinHamiltonian } from '../hamiltonian';
+import type { SpinHamiltonian, SymmetryShift } from '../hamiltonian';
 import type { TripletProgram } from './program';
 import type { SparseProgram, TermSizes } from './sparse-program';
 import type { AxialParts, SpinorProgram, SpinorSizes } from './spinor-program';
@@ -75,6 +75,11 @@ export interface Encoding {
   rebuild(): SpinHamiltonian;
   /** Triplet form only: all rows with their vectors, for circuits and exported tables. Made anew at each call. */
   readonly program?: () => TripletProgram;
+  /**
+   * Forms over orbitals: the ξ that all shifts together amount to. What the encoding stands for is H + ξ (N̂ − η) on all
+   * of Fock space, apart from what was dropped.
+   */
+  readonly symmetryShift?: () => SymmetryShift;
   /** Spinor form only: the same. */
   readonly spinorProgram?: () => SpinorProgram;
   /** Sparse form only: all coefficients, as above. */

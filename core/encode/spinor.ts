@@ -6,7 +6,7 @@ import type { Encoding, EncodingShape } from './encoding';
 import { ROW_ZERO } from './items';
 import { countAbove, median, shiftedNorm } from './shift';
 import { SPINOR_KINDS, type SpinorSizes, spinorFileProgram, turnPhases } from './spinor-program';
-import type { VariantName } from './variant';
+import type { ShiftAxis, VariantName } from './variant';
 
 interface Item {
   readonly shift: number;
@@ -22,7 +22,7 @@ interface Item {
 const EVEN = 1e-7;
 
 /** One-norm, trace and shift of each factor. */
-function itemsOf(block: SpinorFactors, shifted: boolean): Item[] {
+function itemsOf(block: SpinorFactors, axis: ShiftAxis): Item[] {
   const m = block.spinors;
   const { spectra } = block;
   return Array.from({ length: block.count }, (_, t) => {
@@ -30,7 +30,7 @@ function itemsOf(block: SpinorFactors, shifted: boolean): Item[] {
     const to = from + m;
     let trace = 0;
     for (let i = from; i < to; i++) trace += spectra[i]! / 2;
-    const shift = shifted && block.part !== 'odd' ? median(spectra, from, to) : 0;
+    const shift = axis === 'none' || block.part === 'odd' ? 0 : shiftOf(block, t, axis);
     const largest = Math.max(Math.abs(spectra[from]!), Math.abs(spectra[to - 1]!));
     return {
       shift,
@@ -41,6 +41,12 @@ function itemsOf(block: SpinorFactors, shifted: boolean): Item[] {
   });
 }
 
+/** What was optimised where the factors carry that, else the median. */
+function shiftOf(block: SpinorFactors, t: number, axis: ShiftAxis): number {
+  const m = block.spinors;
+  return axis === 'optimised' && block.shifts ? block.shifts[t]! : median(block.spectra, t * m, (t + 1) * m);
+}
+
 /**
  * Spinor encoding of complex spinor integrals over M modes: λ = ½‖κ‖_* + ¼ Σ |w| (½‖L^t‖_*)². T_PP has the identity
  * part ½, so M = L − τ with τ = ½ tr L, and N̂ − M/2 takes the place of N̂ − N in the shift.
@@ -48,7 +54,7 @@ function itemsOf(block: SpinorFactors, shifted: boolean): Item[] {
 export function encodeSpinors(h: SpinorHamiltonian, factors: Factorisation, variant: VariantName): Encoding {
   const m = h.spinors;
   const size = m * m;
-  const shifted = variant.shift === 'median';
+  const shifted = variant.shift !== 'none';
   const excess = h.electrons - m / 2;
   const re = Float64Array.from(h.k.re);
   const im = Float64Array.from(h.k.im);
@@ -61,7 +67,7 @@ export function encodeSpinors(h: SpinorHamiltonian, factors: Factorisation, vari
   }
   const blocks = factors.blocks.map((block) => {
     if (block.kind !== 'spinor-squares') throw new RangeError('spatial factors for a spinor Hamiltonian');
-    return { block, items: itemsOf(block, shifted) };
+    return { block, items: itemsOf(block, variant.shift) };
   });
   const lRe = new Float64Array(size);
   const lIm = new Float64Array(size);

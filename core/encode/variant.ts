@@ -65,13 +65,6 @@ function objection(name: VariantName): { found: string; expected: string; mend: 
       mend: 'Write compressed/separate/…/optimised/….',
     };
   }
-  if (shift === 'optimised' && (factorisation === 'spinor' || grouping === 'joint')) {
-    return {
-      found: `shift "optimised" with ${grouping} ${factorisation} factors`,
-      expected: 'triplet or compressed factors in separate grouping, whose Coulomb part it acts on',
-      mend: 'Choose "median".',
-    };
-  }
   if (factorisation === 'sparse') {
     if (grouping !== '-') {
       return {

@@ -29,5 +29,7 @@ export { jointDimensions, jointRefusal, MAX_SECTOR } from './joint';
 export { kramersPhases } from './kramers-phases';
 export { type LightParts, lightParts, type Thinned } from './light-parts';
 export { lcuNorms } from './one-norms';
+export { type SpinOrbitCore, spinOrbitCores, triplesOfCore } from './spin-orbit-core';
+export { type OptimisedShifts, optimiseShifts, type ShiftOptions } from './shifts/optimise';
 export { hermitianInto } from './spinor-elements';
 export { factorTasks } from './tasks';

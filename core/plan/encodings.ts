@@ -1,5 +1,12 @@
 import { buildEncoding, type Encoding, formatVariant, type VariantName } from '../encode';
-import { compressFactors, type Factorisation, factorise, type Grouping, jointRefusal } from '../factor';
+import {
+  compressFactors,
+  type Factorisation,
+  factorise,
+  type Grouping,
+  jointRefusal,
+  optimiseShifts,
+} from '../factor';
 import type { SpatialHamiltonian, SpinHamiltonian } from '../hamiltonian';
 import type { JobContext } from '../job';
 import { thinLightParts } from './light-parts';
@@ -47,9 +54,20 @@ export class Encodings {
       const factorisation = await this.factorisationOf(variant, context);
       const options = { threshold: this.#threshold };
       encoding = await buildEncoding(this.#hamiltonian, factorisation, variant, options, context);
+      if (variant.factorisation === 'spinor' && variant.shift === 'optimised') {
+        encoding = await this.#notAboveMedian(encoding, variant, context);
+      }
       this.#encodings.set(key, encoding);
     }
     return encoding;
+  }
+
+  /** Shifts that are best for the triplet form need not be for the spinor one: then its medians stay. */
+  async #notAboveMedian(optimised: Encoding, variant: VariantName, context: JobContext): Promise<Encoding> {
+    const median = await this.of({ ...variant, shift: 'median' }, context);
+    if (optimised.lambda.total <= median.lambda.total) return optimised;
+    const note = 'median shifts: those that are best in the triplet form have a larger λ here';
+    return { ...median, variant, notes: [...(median.notes ?? []), note] };
   }
 
   /** What the variant's encoding is made from; null for the sparse form. */
@@ -57,17 +75,22 @@ export class Encodings {
     return variant.grouping === '-' ? null : this.#optimised(variant, variant.grouping, context);
   }
 
-  /** The factorisation of the grouping, its Coulomb factors mixed or their shifts optimised where the variant says so. */
+  /** The factorisation of the grouping, its factors mixed and their shifts optimised where the variant says so. */
   async #optimised(variant: VariantName, grouping: Grouping, context: JobContext): Promise<Factorisation> {
     const mixed = variant.factorisation === 'mixed';
     const given = await this.#factorised(grouping, mixed, context);
-    if (variant.shift !== 'optimised' || this.#hamiltonian.kind !== 'spatial') return given;
-    const key = `${variant.factorisation}, optimised`;
+    if (variant.shift !== 'optimised') return given;
+    const changed = variant.factorisation === 'compressed' || mixed ? variant.factorisation : 'as they are';
+    const key = `${grouping}, ${changed}, optimised`;
     let found = this.#factorisations.get(key);
     if (!found) {
-      const keepFactors = variant.factorisation !== 'compressed' && !mixed;
-      found = await compressFactors(this.#hamiltonian, given, { keepFactors }, context);
-      if (mixed) found = await this.#thinned(this.#hamiltonian, found, context);
+      found = given;
+      const h = this.#hamiltonian;
+      if (changed !== 'as they are' && h.kind === 'spatial') {
+        found = await compressFactors(h, found, {}, context);
+        if (mixed) found = await this.#thinned(h, found, context);
+      }
+      ({ factorisation: found } = await optimiseShifts(h, found, {}, context));
       this.#factorisations.set(key, found);
     }
     return found;

@@ -1,0 +1,72 @@
+import { describe, expect, it } from 'vitest';
+import { buildEncoding, expandVariants, formatVariant, parseVariant } from '../../../core/encode';
+import { factorise, optimiseShifts } from '../../../core/factor';
+import {
+  buildHamiltonian,
+  restrictToWindow,
+  type SpatialHamiltonian,
+  shiftedHamiltonian,
+} from '../../../core/hamiltonian';
+import { inlineContext } from '../../../core/job';
+import { hermitianEigenvalues } from '../../../core/linalg';
+import { findSet, loadSet } from '../../published/data-set';
+import { largestDifference, randomHamiltonian } from '../hamiltonian/random-hamiltonian';
+import { matrixOf, restrict } from './fock-space';
+
+const ctx = inlineContext();
+
+async function systems(): Promise<[string, SpatialHamiltonian][]> {
+  const found: [string, SpatialHamiltonian][] = [
+    ['random, 2 orbitals, 3 electrons', randomHamiltonian(2, 11, undefined, 3)],
+    ['random, 3 orbitals, 2 electrons', randomHamiltonian(3, 12, undefined, 2)],
+  ];
+  for (const name of ['f_sto3g_2p', 'c_631g_2p', 'br_def2svp_4p', 'oh_sto3g']) {
+    const folder = findSet(name);
+    if (!folder) continue;
+    const whole = buildHamiltonian(await loadSet(folder)) as SpatialHamiltonian;
+    const h =
+      whole.orbitals <= 3
+        ? whole
+        : restrictToWindow(whole, { orbitals: [1, 2, 3], electrons: 5, occupations: [2, 2, 2, 1, 0] });
+    found.push([name, h]);
+  }
+  return found;
+}
+
+const all = await systems();
+const NAMES = expandVariants('triplet/*/index/*/clean, spinor/*/index/*/clean')
+  .filter(({ shift }) => shift !== 'none')
+  .map(formatVariant);
+
+describe.each(all)('shifts of %s', (_, h) => {
+  const before = matrixOf(h);
+  describe.each(NAMES)('%s', (name) => {
+    const variant = parseVariant(name);
+    const made = (async () => {
+      const given = await factorise(h, { grouping: variant.grouping as 'joint' | 'separate' }, ctx);
+      const factors =
+        variant.shift === 'optimised' ? (await optimiseShifts(h, given, {}, ctx)).factorisation : given;
+      return buildEncoding(h, factors, variant, {}, ctx);
+    })();
+
+    it('amount to H + ξ (N̂ − η) with the ξ that is reported, on all of Fock space', async () => {
+      const encoding = await made;
+      const found = matrixOf(encoding.rebuild());
+      const expected = matrixOf(shiftedHamiltonian(h, encoding.symmetryShift!()));
+      expect(largestDifference(found.re, expected.re)).toBeLessThan(1e-10);
+      expect(largestDifference(found.im, expected.im)).toBeLessThan(1e-10);
+    });
+
+    it('leave the levels of the sector and change those of its neighbours', async () => {
+      const after = matrixOf((await made).rebuild());
+      const moved = (electrons: number) =>
+        largestDifference(
+          hermitianEigenvalues(restrict(after, electrons)),
+          hermitianEigenvalues(restrict(before, electrons)),
+        );
+      expect(moved(h.electrons)).toBeLessThan(1e-9);
+      expect(moved(h.electrons - 1)).toBeGreaterThan(1e-3);
+      expect(moved(h.electrons + 1)).toBeGreaterThan(1e-3);
+    });
+  });
+});
