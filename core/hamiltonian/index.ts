@@ -25,7 +25,7 @@ export {
   toSpinOrbitals,
   zeroOperator,
 } from './operators';
-export { rotatedSquare, rotateOrbitals, rotateSpin, squareOfTriangle } from './rotate';
+export { rotatedSquare, rotateOrbitals, rotateSpin, squareOfTriangle, turnedSpinPlanes } from './rotate';
 export { rotatePairsTask } from './rotate-pairs';
 export { spinorForm } from './spinor-form';
 export {

@@ -18,17 +18,8 @@ const COMPONENTS: readonly Component[] = [1, 2, 3];
  */
 export function rotateSpin(hamiltonian: SpatialHamiltonian, rotation: ArrayLike<number>): SpatialHamiltonian {
   const { orbitals: n, g } = hamiltonian;
-  const mix = (planes: Float64Array, offset: number, size: number): Float64Array => {
-    const mixed = planes.slice();
-    for (let l = 0; l < 3; l++) {
-      for (let i = 0; i < size; i++) {
-        let sum = 0;
-        for (let k = 0; k < 3; k++) sum += rotation[3 * k + l]! * planes[offset + k * size + i]!;
-        mixed[offset + l * size + i] = sum;
-      }
-    }
-    return mixed;
-  };
+  const mix = (planes: Float64Array, offset: number, size: number) =>
+    mixedComponents(planes, offset, size, rotation);
   const size = numAntisymmetricPairs(n) * numSymmetricPairs(n);
   const { spinOrbit, spinSpin } = g;
   const rotated: TwoElectronTensor = {
@@ -41,6 +32,29 @@ export function rotateSpin(hamiltonian: SpatialHamiltonian, rotation: ArrayLike<
   };
   const h = { ...hamiltonian.h, planes: mix(hamiltonian.h.planes, n * n, n * n) };
   return fromStoredForm({ ...hamiltonian, h, g: rotated });
+}
+
+/** The four planes of an operator with its spin axes turned: L^l → Σ_k R_kl L^k, the charge plane as it was. */
+export function turnedSpinPlanes(planes: Float64Array, n: number, rotation: ArrayLike<number>): Float64Array {
+  return mixedComponents(planes, n * n, n * n, rotation);
+}
+
+/** Three components of `size` numbers from `offset`, x^l → Σ_k R_kl x^k; what stands before them is copied. */
+function mixedComponents(
+  values: Float64Array,
+  offset: number,
+  size: number,
+  rotation: ArrayLike<number>,
+): Float64Array {
+  const mixed = values.slice();
+  for (let l = 0; l < 3; l++) {
+    for (let i = 0; i < size; i++) {
+      let sum = 0;
+      for (let k = 0; k < 3; k++) sum += rotation[3 * k + l]! * values[offset + k * size + i]!;
+      mixed[offset + l * size + i] = sum;
+    }
+  }
+  return mixed;
 }
 
 /** g^kl → Σ R_mk R_nl g^mn over six triangles. */

@@ -49,8 +49,7 @@ export function majoranaNorm({ n, h, g }: SpinFree, epsilon: number, withGradien
     lambda += size(one[i]!);
     slopes[i] = slope(one[i]!);
   }
-  const multiplicity = new Float64Array(npair).fill(2);
-  for (let p = 0; p < n; p++) multiplicity[pair[p * n + p]!] = 1;
+  const multiplicity = multiplicities(n, pair);
   for (let a = 0, i = 0; a < npair; a++) {
     for (let b = 0; b < npair; b++, i++) {
       const weight = 0.25 * multiplicity[a]! * multiplicity[b]!;
@@ -89,9 +88,34 @@ export function majoranaNorm({ n, h, g }: SpinFree, epsilon: number, withGradien
   return { lambda, gradient: generatorGradient(n, h, g, slopes, d, pair, multiplicity) };
 }
 
+/**
+ * −Σ_p (pp|pp) and its gradient: orbitals of largest self-repulsion are localised ones (C. Edmiston and K. Ruedenberg,
+ * Rev. Mod. Phys. 35, 457 (1963)).
+ */
+export function selfRepulsion({ n, h, g }: SpinFree): NormValue {
+  const npair = numSymmetricPairs(n);
+  const pair = pairTable(n);
+  const d = new Float64Array(npair * npair);
+  let lambda = 0;
+  for (let p = 0; p < n; p++) {
+    const at = pair[p * n + p]! * (npair + 1);
+    lambda -= g[at]!;
+    d[at] = -1;
+  }
+  const multiplicity = multiplicities(n, pair);
+  return { lambda, gradient: generatorGradient(n, h, g, new Float64Array(n * n), d, pair, multiplicity) };
+}
+
 /** Number of the symmetric pair of p and q at p·n + q. */
 function pairTable(n: number): Int32Array {
   return Int32Array.from({ length: n * n }, (_, i) => symmetricPair(Math.floor(i / n), i % n));
+}
+
+/** How many of pq, qp there are. */
+function multiplicities(n: number, pair: Int32Array): Float64Array {
+  const out = new Float64Array(numSymmetricPairs(n)).fill(2);
+  for (let p = 0; p < n; p++) out[pair[p * n + p]!] = 1;
+  return out;
 }
 
 /** h_pq + Σ_r (pq|rr) − ½ Σ_r (pr|rq). */
