@@ -57,7 +57,7 @@ const HERMITIAN = 1e-7;
 
 function refuseNotHermitian(spinor: SpinorHamiltonian): void {
   let largest = 0;
-  for (const plane of [spinor.k.re, spinor.g.re]) {
+  for (const plane of [spinor.k.re, spinor.k.im, spinor.g.re, spinor.g.im]) {
     for (let i = 0; i < plane.length; i++) largest = Math.max(largest, Math.abs(plane[i]!));
   }
   const defect = hamiltonianDefect(spinor);
