@@ -2,12 +2,12 @@ import { rotatedSquare, type SpatialHamiltonian } from '../../hamiltonian';
 import type { JobContext } from '../../job';
 import { antisymmetricExponential, multiply, polished, randomSource } from '../../linalg';
 import { Directions, dot, type GroupValue } from './descent';
-import { majoranaNorm, type SpinFree, spinFreePart } from './majorana-norm';
+import { majoranaNorm, type NormValue, type SpinFree, selfRepulsion, spinFreePart } from './majorana-norm';
 
 export interface OrbitalFrameOptions {
   /** Steps at each smoothing width. @defaultValue 80 */
   readonly steps?: number;
-  /** Starts besides the one next to the given orbitals. @defaultValue 2 up to 24 orbitals, else 0 */
+  /** Starts from random orbitals, after the given and the localised ones. @defaultValue 3 up to 24 orbitals, else 0 */
   readonly restarts?: number;
 }
 
@@ -21,8 +21,8 @@ export interface OrbitalFrame {
 }
 
 /** Smoothing widths, hartree: each is a start for the next. The last is below what a coefficient is worth. */
-const WIDTHS = [1e-2, 1e-3, 1e-4];
-/** Root mean square angle by which the first start leaves the given orbitals: symmetry makes them a saddle. */
+const WIDTHS = [3e-2, 3e-3, 3e-4];
+/** Root mean square angle by which a start leaves the given orbitals: symmetry makes them a saddle. */
 const KICK = 0.02;
 /** Steps that together lower λ by less than this part end a width. */
 const SETTLED = 2e-5;
@@ -30,7 +30,11 @@ const SETTLED_STEPS = 5;
 /** Largest angle of one step, radians. */
 const LONGEST = 0.4;
 const MAX_BACKTRACKS = 8;
+/** Above this, a descent takes a minute, and only the start that is rarely bad is followed. */
 const CHEAP_ORBITALS = 24;
+
+/** How a descent starts: near the given orbitals, from localised ones, or anywhere. */
+type Start = 'given' | 'localised' | 'random';
 
 /**
  * Orbitals in which the sparse form is light: the one-norm of the merged Majorana strings of the spin-free part is
@@ -38,8 +42,9 @@ const CHEAP_ORBITALS = 24;
  * frame compares the true λ.
  *
  * Minimising this norm over orbital rotations is the proposal of E. Koridon et al., Phys. Rev. Research 3, 033127
- * (2021). Here by quasi-Newton steps on the orthogonal group, the norm smoothed with a width that goes down, from a
- * point close to the given orbitals and, where that is cheap, from random ones. Local minima: no claim to the lowest.
+ * (2021). Here by quasi-Newton steps on the orthogonal group, the norm smoothed with a width that goes down, from
+ * localised orbitals and, where that is cheap, from the given and from random ones. There are many local minima, a few
+ * percent apart: no claim to the lowest.
  *
  * @returns null where there is no two-electron charge part. The frame is never worse in its own norm than the given one.
  * @throws Cancelled
@@ -52,21 +57,24 @@ export async function orbitalFrame(
   const part = spinFreePart(hamiltonian);
   if (!part) return null;
   const { n } = part;
-  const restarts = options.restarts ?? (n <= CHEAP_ORBITALS ? 2 : 0);
+  const cheap = n <= CHEAP_ORBITALS;
+  const starts: Start[] = cheap ? ['given', 'localised'] : ['localised'];
+  for (let i = 0; i < (options.restarts ?? (cheap ? 3 : 0)); i++) starts.push('random');
   const steps = options.steps ?? 80;
   const before = majoranaNorm(part, 0, false).lambda;
   let rotation = identity(n);
   let after = before;
   const random = randomSource(context.seed);
-  const total = (restarts + 1) * WIDTHS.length * steps;
+  const stages = WIDTHS.length + 1;
+  const total = starts.length * stages * steps;
   let evaluations = 0;
-  for (let start = 0; start <= restarts; start++) {
-    const descent = new Descent(part, turnedAtRandom(n, start === 0 ? KICK : 1, random));
-    for (const [stage, width] of WIDTHS.entries()) {
-      const done = (start * WIDTHS.length + stage) * steps;
-      await descent.run(width, steps, context, (step) => {
-        context.report('turning orbitals', done + step, total);
-      });
+  for (const [i, start] of starts.entries()) {
+    const descent = new Descent(part, turnedAtRandom(n, start === 'random' ? 1 : KICK, random));
+    const stage = (at: number) => (step: number) =>
+      context.report('turning orbitals', (i * stages + at) * steps + step, total);
+    if (start === 'localised') await descent.run(selfRepulsion, steps, context, stage(0));
+    for (const [at, width] of WIDTHS.entries()) {
+      await descent.run((turned) => majoranaNorm(turned, width, true), steps, context, stage(at + 1));
     }
     const found = await descent.norm(context);
     evaluations += descent.evaluations;
@@ -77,6 +85,8 @@ export async function orbitalFrame(
   context.report('turning orbitals', total, total);
   return { rotation: polished(rotation, n), norm: { before, after }, evaluations };
 }
+
+type Objective = (turned: SpinFree) => NormValue;
 
 /** One descent on the orthogonal group. Every point is made from the given integrals, so that rounding does not add up. */
 class Descent {
@@ -95,19 +105,19 @@ class Descent {
   }
 
   async run(
-    width: number,
+    objective: Objective,
     steps: number,
     context: JobContext,
     onStep: (step: number) => void,
   ): Promise<void> {
     const { n } = this.#part;
     const directions = new Directions();
-    let value = await this.#value(this.rotation, width, context);
+    let value = await this.#value(this.rotation, objective, context);
     const history: number[] = [value.lambda];
     let length = LONGEST / 4;
     for (let step = 0; step < steps; step++) {
       onStep(step);
-      const moved = await this.#search(value, directions.next(value.gradient), length, width, context);
+      const moved = await this.#search(value, directions.next(value.gradient), length, objective, context);
       if (!moved) break;
       directions.learn(
         moved.step,
@@ -119,7 +129,7 @@ class Descent {
       length = Number.POSITIVE_INFINITY;
       history.push(value.lambda);
       const earlier = history[history.length - 1 - SETTLED_STEPS];
-      if (earlier !== undefined && earlier - value.lambda < SETTLED * value.lambda) break;
+      if (earlier !== undefined && earlier - value.lambda < SETTLED * Math.abs(value.lambda)) break;
     }
   }
 
@@ -128,7 +138,7 @@ class Descent {
     value: GroupValue,
     direction: Float64Array,
     longest: number,
-    width: number,
+    objective: Objective,
     context: JobContext,
   ): Promise<{ readonly value: GroupValue; readonly step: Float64Array } | null> {
     const { n } = this.#part;
@@ -144,15 +154,15 @@ class Descent {
     for (let attempt = 0; attempt < MAX_BACKTRACKS; attempt++, length *= 0.35) {
       const step = direction.map((x) => length * x);
       const u = multiply(antisymmetricExponential(step, n), this.rotation, n, n, n);
-      const found = await this.#value(u, width, context);
+      const found = await this.#value(u, objective, context);
       if (found.lambda <= value.lambda + 1e-4 * length * slope) return { value: found, step };
     }
     return null;
   }
 
-  async #value(u: Float64Array, width: number, context: JobContext): Promise<GroupValue> {
+  async #value(u: Float64Array, objective: Objective, context: JobContext): Promise<GroupValue> {
     this.evaluations++;
-    const { lambda, gradient } = majoranaNorm(await this.#turned(u, context), width, true);
+    const { lambda, gradient } = objective(await this.#turned(u, context));
     await context.checkpoint();
     return { lambda, gradient: gradient! };
   }

@@ -1,8 +1,8 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
-import { majoranaNorm, spinFreePart } from '../../../../core/encode/frame/majorana-norm';
+import { majoranaNorm, selfRepulsion, spinFreePart } from '../../../../core/encode/frame/majorana-norm';
 import { orbitalFrame } from '../../../../core/encode/frame/orbital';
-import { rotateOrbitals } from '../../../../core/hamiltonian';
+import { rotateOrbitals, tensorElement } from '../../../../core/hamiltonian';
 import { Cancelled, inlineContext } from '../../../../core/job';
 import { antisymmetricExponential, multiply } from '../../../../core/linalg';
 import { fockMatrix } from '../../../../core/verify';
@@ -34,6 +34,30 @@ describe('one-norm of the merged Majorana strings of a spin-free Hamiltonian', (
       }),
       { numRuns: 12 },
     );
+  });
+
+  it('self-repulsion has the gradient that finite differences give', async () => {
+    const n = 4;
+    const hamiltonian = spinFree(n, 77);
+    const x = antisymmetric(n, 78);
+    const at = async (t: number) => {
+      const turned = await rotateOrbitals(
+        hamiltonian,
+        antisymmetricExponential(
+          x.map((v) => t * v),
+          n,
+        ),
+        ctx,
+      );
+      return selfRepulsion(spinFreePart(turned)!).lambda;
+    };
+    const { gradient, lambda } = selfRepulsion(spinFreePart(hamiltonian)!);
+    let diagonal = 0;
+    for (let p = 0; p < n; p++) diagonal -= tensorElement(hamiltonian.g, n, 0, 0, p, p, p, p)[0];
+    expect(lambda).toBeCloseTo(diagonal, 13);
+    const slope = gradient!.reduce((sum, g, i) => sum + 0.5 * g * x[i]!, 0);
+    expect(((await at(1e-4)) - (await at(-1e-4))) / 2e-4).toBeCloseTo(slope, 5);
+    expect(Math.abs(slope)).toBeGreaterThan(1e-3);
   });
 
   it('has the gradient that finite differences of turned orbitals give', async () => {
