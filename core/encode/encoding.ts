@@ -56,6 +56,8 @@ export interface ItemSizes {
   readonly twoFaced: Uint8Array;
   /** Whether any item is a pair of squares. */
   readonly hasPaired: boolean;
+  /** Products of two vectors of a library, if there are any. */
+  readonly products?: { readonly count: number; readonly vectors: number };
 }
 
 /** One variant's encoding, ready for counting and for rebuilding H. */
@@ -73,13 +75,13 @@ export interface Encoding {
    * encoding gives the same operator in the η-electron sector only.
    */
   rebuild(): SpinHamiltonian;
-  /** Triplet form only: all rows with their vectors, for circuits and exported tables. Made anew at each call. */
-  readonly program?: () => TripletProgram;
   /**
    * Forms over orbitals: the ξ that all shifts together amount to. What the encoding stands for is H + ξ (N̂ − η) on all
    * of Fock space, apart from what was dropped.
    */
   readonly symmetryShift?: () => SymmetryShift;
+  /** Triplet form only: all rows with their vectors, for circuits and exported tables. Made anew at each call. */
+  readonly program?: () => TripletProgram;
   /** Spinor form only: the same. */
   readonly spinorProgram?: () => SpinorProgram;
   /** Sparse form only: all coefficients, as above. */

@@ -1,6 +1,6 @@
 export { buildEncoding, type EncodingOptions } from './build';
 export type { Encoding, EncodingShape, ItemSizes, LambdaByPart } from './encoding';
-export type { RowFace, TripletItem, TripletProgram, TripletRow } from './program';
+export type { RowFace, TripletItem, TripletProgram, TripletRow, VectorProducts } from './program';
 export { type SparseProgram, type TermKind, type TermSizes, termSizes } from './sparse-program';
 export {
   type AxialParts,

@@ -38,11 +38,29 @@ export interface TripletItem {
   readonly rows: readonly TripletRow[];
 }
 
-/** H − constant = Σ one-body rows + Σ items, λ = Σ of all weights and λ's. */
+/**
+ * Products of two charge operators M(u) = ½ Σ_σ iγ_{u,σ,0}γ_{u,σ,1} = T⁰(u) − 1, each an S row without weight, of a
+ * library of vectors: sign·λ·½{M_m, M_n} for m < n, sign·λ·(2M_m² − 1) for m = n. All arrays have the same length.
+ */
+export interface VectorProducts {
+  /** N numbers each, unit vectors. */
+  readonly vectors: readonly Float64Array[];
+  /** m ≤ n of each product. */
+  readonly first: Uint32Array;
+  readonly second: Uint32Array;
+  /** Hartree, ≥ 0. */
+  readonly lambda: Float64Array;
+  /** 1 or −1. */
+  readonly sign: Int8Array;
+}
+
+/** H − constant = Σ one-body rows + Σ items + Σ products, λ = Σ of all weights and λ's. */
 export interface TripletProgram {
   readonly orbitals: number;
   readonly constant: number;
   /** One face each. */
   readonly oneBody: readonly TripletRow[];
   readonly items: readonly TripletItem[];
+  /** Absent where there are none. */
+  readonly products?: VectorProducts;
 }

@@ -7,7 +7,7 @@ import { tripletRecipe } from '../../core/circuit/triplet/recipe';
 import { sizesOf, tripletLayout } from '../../core/circuit/triplet/sizes';
 import { isPairRow, tripletTables } from '../../core/circuit/triplet/tables';
 import { walkStep, walkWires } from '../../core/circuit/triplet/walk';
-import type { TripletItem, TripletProgram, TripletRow } from '../../core/encode/program';
+import type { TripletItem, TripletProgram, TripletRow, VectorProducts } from '../../core/encode/program';
 import { peakOf, stepCost } from '../../core/estimate';
 import type { Mu } from '../../core/hamiltonian/operators';
 
@@ -28,13 +28,33 @@ const itemShape = fc.record({
   paired: fc.boolean(),
 });
 
+/** Numbers of vectors of each product; how many vectors there are follows from the largest. */
+const productPairs = fc.oneof(
+  fc.constant(null),
+  fc.array(fc.tuple(fc.integer({ min: 0, max: 9 }), fc.integer({ min: 0, max: 9 })), {
+    minLength: 1,
+    maxLength: 30,
+  }),
+);
+
+function products(n: number, pairs: readonly (readonly [number, number])[]): VectorProducts {
+  return {
+    vectors: Array.from({ length: 1 + Math.max(...pairs.flat()) }, () => row(n, 'S', 1).u),
+    first: Uint32Array.from(pairs, (pair) => Math.min(...pair)),
+    second: Uint32Array.from(pairs, (pair) => Math.max(...pair)),
+    lambda: new Float64Array(pairs.length).fill(1),
+    sign: new Int8Array(pairs.length).fill(1),
+  };
+}
+
 const programs = fc
   .record({
     n: fc.integer({ min: 2, max: 5 }),
     items: fc.array(itemShape, { minLength: 1, maxLength: 9 }),
     oneBody: fc.record({ pairs: fc.integer({ min: 0, max: 4 }), singles: fc.integer({ min: 1, max: 5 }) }),
+    pairs: productPairs,
   })
-  .map(({ n, items, oneBody }): TripletProgram => {
+  .map(({ n, items, oneBody, pairs }): TripletProgram => {
     const rows = (pairs: number, singles: number, faces: number) => [
       ...Array.from({ length: pairs }, () => row(n, 'A', faces)),
       ...Array.from({ length: singles }, () => row(n, 'S', faces)),
@@ -42,6 +62,7 @@ const programs = fc
     return {
       orbitals: n,
       constant: 0,
+      ...(pairs ? { products: products(n, pairs) } : {}),
       oneBody: rows(oneBody.pairs, oneBody.singles, 1),
       items: items.map(
         (item): TripletItem => ({

@@ -1,5 +1,6 @@
 import { SPINOR_KINDS, type SpinorSizes } from '../../encode';
-import { raggedAddresses, type SquaresLayout, squaresLayout } from '../squares/layout';
+import { raggedAddresses } from '../squares/indexing';
+import { type SquaresLayout, squaresLayout } from '../squares/layout';
 
 /**
  * Groups of angles beside those of the chain that only some rows have: phases of the orbitals (rows that are not
@@ -112,7 +113,7 @@ export function spinorLayout(sizes: SpinorSizes, rotation: number, merge: readon
   const tables = new Map(
     ANGLE_GROUPS.filter((group) => has[group] && !inMain(group)).map((group) => [
       group,
-      { width: groupWidth(group, widths), addresses: raggedAddresses(rows, squares.rowBits, owns[group]) },
+      { width: groupWidth(group, widths), addresses: raggedAddresses(rows, squares.bases, owns[group]) },
     ]),
   );
   const hasAxes = kinds.includes(SPINOR_KINDS.indexOf('axial'));

@@ -53,7 +53,7 @@ export function product(
   reversed: number | null,
 ): Operation {
   const { layout } = tables;
-  const enabled = use.second ? use.isSquare : null;
+  const enabled = use.second ? use.isTwofold : null;
   const flagged = (flag: ItemFlag) => use.flags[layout.flags.indexOf(flag)]!;
   const groups = [...layout.tables.keys()].filter(
     (group) => group === 'phases' || turnsSpins(layout, use.second),

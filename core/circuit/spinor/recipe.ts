@@ -11,8 +11,10 @@ import { type ProductBlocks, turnsSpins } from './product';
 import type { SpinorBlocks } from './walk';
 
 /** Wires of the spinor form in the plus state. */
-export const spinorPlus = ({ partners }: Pick<SpinorLayout, 'partners'>): readonly string[] =>
-  partners ? ['time-reversed partner'] : [];
+export const spinorPlus = ({ partners }: Pick<SpinorLayout, 'partners'>) => ({
+  plus: partners ? ['time-reversed partner'] : [],
+  standIns: [],
+});
 
 /** The walk step of the spinor form: see {@link squaresRecipe}. */
 export function spinorRecipe(
@@ -27,7 +29,7 @@ export function spinorRecipe(
       { name: 'system', qubits: 2 * layout.orbitals },
       { name: 'phase gradient', qubits: gradientWires(layout.angleBits + 2) },
     ],
-    plus: spinorPlus(layout),
+    ...spinorPlus(layout),
     flags: layout.flags.length,
     aroundItem: layout.hasPaired
       ? {

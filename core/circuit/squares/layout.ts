@@ -1,62 +1,37 @@
-import { addressBits, firstAddresses } from '../primitives/unary-iteration';
-
-/** Sizes of the items of an encoding by squares, the one-body item last. */
-export interface SquaresSizes {
-  /** Rows of each item. */
-  readonly rows: Uint32Array;
-  /** 1 where the item has two faces. */
-  readonly twoFaced: Uint8Array;
-  /** Whether any item is a pair of squares. */
-  readonly hasPaired: boolean;
-}
+import { firstAddresses } from '../primitives/unary-iteration';
+import { type Indexing, indexingOf, libraryAddresses, raggedAddresses, type SquaresSizes } from './indexing';
 
 /** Addresses of the tables that PREPARE reads, from sizes alone: those of the tables that are filled. */
-export interface SquaresLayout {
-  readonly itemBits: number;
-  readonly rowBits: number;
-  readonly hasFaces: boolean;
+export interface SquaresLayout extends Indexing {
   readonly hasPaired: boolean;
-  /** Whether all items put the same number of row bits in superposition. */
+  /** Whether all entries put the same number of row bits in superposition. */
   readonly equalSizes: boolean;
   readonly outerAddresses: Uint32Array;
   readonly itemAddresses: Uint32Array;
   readonly innerAddresses: Uint32Array;
   readonly rowAddresses: Uint32Array;
+  /** Bits of a row's address that rows of one item differ in, or all of them: a table is read 2^these rows at a time at most. */
+  readonly blockBits: number;
 }
 
 export function squaresLayout(sizes: SquaresSizes): SquaresLayout {
   const { rows, twoFaced, hasPaired } = sizes;
-  const itemBits = Math.max(1, addressBits(rows.length));
-  const sizeBits = Uint8Array.from(rows, (count) => addressBits(count));
-  const rowBits = Math.max(1, ...sizeBits);
-  const hasFaces = twoFaced.includes(1);
+  const indexing = indexingOf(sizes);
+  const { sizeBits, rowBits, bases, faceOffset, places } = indexing;
   const buckets = Uint32Array.from(sizeBits, (b) => 2 ** b);
-  const second = raggedAddresses(buckets, rowBits, (t) => twoFaced[t] === 1);
+  const library = libraryAddresses(places);
+  const second = raggedAddresses(buckets, bases, (t) => twoFaced[t] === 1);
   return {
-    itemBits,
-    rowBits,
-    hasFaces,
+    ...indexing,
     hasPaired,
-    equalSizes: sizeBits.every((b) => b === rowBits),
-    outerAddresses: firstAddresses(2 ** (itemBits + (hasFaces ? 1 : 0))),
-    itemAddresses: firstAddresses(rows.length),
+    equalSizes: !places && sizeBits.every((b) => b === rowBits),
+    outerAddresses: firstAddresses(2 ** indexing.outerBits),
+    itemAddresses: firstAddresses(places ? places.entries : rows.length),
     innerAddresses: Uint32Array.from([
-      ...raggedAddresses(buckets, rowBits),
-      ...second.map((address) => address + 2 ** (itemBits + rowBits)),
+      ...Uint32Array.from([...raggedAddresses(buckets, bases), ...library]).sort(),
+      ...second.map((address) => address + faceOffset),
     ]),
-    rowAddresses: raggedAddresses(rows, rowBits),
+    rowAddresses: Uint32Array.from([...raggedAddresses(rows, bases), ...library]).sort(),
+    blockBits: places ? places.placeBits : rowBits,
   };
-}
-
-/** item·2^{rowBits} + row number for the first `counts[t]` rows of every item that `keep` lets through. */
-export function raggedAddresses(
-  counts: ArrayLike<number>,
-  rowBits: number,
-  keep: (t: number) => boolean = () => true,
-): Uint32Array {
-  const out: number[] = [];
-  for (let t = 0; t < counts.length; t++) {
-    if (keep(t)) for (let j = 0; j < counts[t]!; j++) out.push(t * 2 ** rowBits + j);
-  }
-  return Uint32Array.from(out);
 }

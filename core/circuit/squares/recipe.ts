@@ -3,11 +3,13 @@ import { type Blocks, erasureWires } from '../primitives/look-up';
 import { outputWires, readWires } from '../primitives/reading';
 import { reflectionToffoli } from '../primitives/reflection';
 import type { Subroutine } from '../recipe';
+import { itemDataWidth } from './item-data';
 import type { SquaresLayout } from './layout';
 import {
   BABBUSH,
   BERRY,
   blockCounts,
+  DERIVED,
   eraseLeaf,
   leaf,
   loadLeaf,
@@ -17,7 +19,7 @@ import {
   type TableSizes,
 } from './leaves';
 import type { KeepBits } from './tables';
-import { COMMON_FLAGS, type SquaresBlocks } from './walk';
+import type { SquaresBlocks } from './walk';
 
 /** What a form of encoding adds to the recipe of its squares. */
 export interface FormRecipe {
@@ -26,6 +28,8 @@ export interface FormRecipe {
   readonly registers: readonly { readonly name: string; readonly qubits: number }[];
   /** Wires in the plus state beside the row number, by name. */
   readonly plus: readonly string[];
+  /** What takes the place of the first of these in the second use of a product, by name. */
+  readonly standIns: readonly string[];
   /** Flags of an item of the form's own. */
   readonly flags: number;
   /** Around the square: wires it lends, and what is done before and after. */
@@ -45,7 +49,7 @@ export function squaresRecipe(
   blocks: SquaresBlocks,
   phase: PhaseEstimationPart,
 ): Subroutine {
-  const ancillas = ancillaRegisters(layout, bits, form.plus);
+  const ancillas = ancillaRegisters(layout, bits, form);
   const reflected = ancillas.reduce((sum, register) => sum + register.qubits, 0);
   return {
     name: form.name,
@@ -54,15 +58,18 @@ export function squaresRecipe(
   };
 }
 
-function ancillaRegisters(layout: SquaresLayout, bits: KeepBits, plus: readonly string[]) {
+type PlusWires = Pick<FormRecipe, 'plus' | 'standIns'>;
+
+function ancillaRegisters(layout: SquaresLayout, bits: KeepBits, { plus, standIns }: PlusWires) {
+  const square = layout.places ? 'square of a pair, or order of a product' : 'square of a pair';
   return [
     { name: 'item', qubits: layout.itemBits },
-    { name: 'face', qubits: layout.hasFaces ? 1 : 0 },
-    { name: 'square of a pair', qubits: layout.hasPaired ? 1 : 0 },
+    { name: 'face', qubits: layout.outerBits - layout.itemBits },
+    { name: square, qubits: layout.hasPaired || layout.places ? 1 : 0 },
     { name: 'uniform number, outer', qubits: bits.keep },
     { name: 'row', qubits: layout.rowBits },
     { name: 'uniform number, inner', qubits: bits.innerKeep },
-    ...plus.map((name) => ({ name, qubits: 1 })),
+    ...[...plus, ...(layout.places ? standIns : [])].map((name) => ({ name, qubits: 1 })),
   ].filter((register) => register.qubits > 0);
 }
 
@@ -71,32 +78,31 @@ export function idleQubits(
   layout: SquaresLayout,
   bits: KeepBits,
   system: number,
-  plus: readonly string[],
+  plus: PlusWires,
 ): { readonly outer: number; readonly items: number; readonly inner: number; readonly rows: number } {
   const registers = ancillaRegisters(layout, bits, plus);
   const all = system + registers.reduce((sum, { qubits }) => sum + qubits, 0);
-  const { itemBits, rowBits } = layout;
-  const face = layout.hasFaces ? 1 : 0;
+  const { itemBits, outerBits, rowBits, places } = layout;
   return {
-    outer: all - itemBits - face,
+    outer: all - outerBits,
     items: all - itemBits,
-    inner: all - rowBits - itemBits - face,
-    rows: all - rowBits - itemBits,
+    // Beside the row number, what a datum of the entry says is no register of the step.
+    inner: all - rowBits - (places ? 0 : outerBits),
+    rows: all - rowBits - (places ? 0 : itemBits),
   };
 }
 
 /** Tables that PREPARE reads. */
 export function squaresTables(layout: SquaresLayout, bits: KeepBits, flags: number) {
-  const { itemBits, rowBits } = layout;
-  const index = itemBits + (layout.hasFaces ? 1 : 0);
+  const { itemBits, outerBits, rowBits, blockBits } = layout;
   return {
-    outer: { addresses: layout.outerAddresses, width: index + bits.keep, limit: 2 ** index },
+    outer: { addresses: layout.outerAddresses, width: outerBits + bits.keep, limit: 2 ** outerBits },
     items: {
       addresses: layout.itemAddresses,
-      width: rowBits + COMMON_FLAGS + flags,
+      width: itemDataWidth(layout, flags),
       limit: 2 ** itemBits,
     },
-    inner: { addresses: layout.innerAddresses, width: rowBits + bits.innerKeep, limit: 2 ** rowBits },
+    inner: { addresses: layout.innerAddresses, width: rowBits + bits.innerKeep, limit: 2 ** blockBits },
   };
 }
 
@@ -107,13 +113,12 @@ function blockEncodingRecipe(
   blocks: SquaresBlocks,
 ): Subroutine {
   const { outer, items } = squaresTables(layout, bits, form.flags);
-  const index = layout.itemBits + (layout.hasFaces ? 1 : 0);
   const { registers, children } = form.aroundItem;
   return {
     name: 'block encoding',
     registers: samplingRegisters('outer', outer.width, bits.keep, blocks.outer),
     children: [
-      ...samplingLeaves('outer PREPARE', outer, index, bits.keep, blocks.outer, 0),
+      ...samplingLeaves('outer PREPARE', outer, layout.outerBits, bits.keep, blocks.outer, 0),
       {
         name: 'item',
         registers: [{ name: 'item data', qubits: outputWires(items.width, blocks.items) }],
@@ -122,7 +127,7 @@ function blockEncodingRecipe(
           {
             name: 'square of the item, or the one-body part',
             ...(registers ? { registers } : {}),
-            children: [...(children ?? []), ...squareRecipe(form, layout, bits, blocks)],
+            children: [...(children ?? []), ...usesRecipe(form, layout, bits, blocks)],
           },
           eraseLeaf('item data, undone', 'prepare', items.addresses, blocks.items.erase),
         ],
@@ -169,6 +174,43 @@ function samplingLeaves(
       source: `${BABBUSH}; ${BERRY}`,
       scratch: erasureWires(table.addresses, blocks.erase),
     }),
+  ];
+}
+
+/** Both uses of the rows, with what orders the vectors of a product around them. */
+function usesRecipe(
+  form: FormRecipe,
+  layout: SquaresLayout,
+  bits: KeepBits,
+  blocks: SquaresBlocks,
+): Subroutine[] {
+  const uses = squareRecipe(form, layout, bits, blocks);
+  if (!layout.places) return uses;
+  const { changeBits } = layout.places;
+  return [
+    {
+      name: 'both uses',
+      registers: [{ name: 'change of the first vector', qubits: changeBits }],
+      children: [
+        leaf({
+          name: 'order of a product',
+          part: 'select.other',
+          toffoli: changeBits,
+          formula: '⌈log₂M⌉: one AND a bit of the vector numbers',
+          inputs: { bits: changeBits },
+          source: DERIVED,
+        }),
+        ...uses,
+        leaf({
+          name: 'spins of a product',
+          part: 'select.other',
+          toffoli: form.standIns.length,
+          formula: 'one controlled swap',
+          inputs: {},
+          source: DERIVED,
+        }),
+      ],
+    },
   ];
 }
 

@@ -1,5 +1,5 @@
 import { type AliasTable, aliasTable } from '../primitives/alias-sampling';
-import { addressBits } from '../primitives/unary-iteration';
+import { type Indexing, indexingOf } from './indexing';
 
 /** Bits of the alias tables. */
 export interface KeepBits {
@@ -16,63 +16,92 @@ export interface WeightedItem {
 }
 
 /**
- * The weights of an encoding by squares, rounded to alias tables. A row's address is item·2^{rowBits} + row number,
- * the one-body item being the last item; the inner alias tables have the face as a further, highest bit.
+ * Products of two row operators out of a library: sign·λ·½{M_m, M_n} for m < n, sign·λ·(2M_m² − 1) for m = n, every
+ * M_m of norm 1. All arrays have the same length.
  */
-export interface WeightTables {
+export interface WeightedProducts {
+  /** Number of vectors in the library. */
+  readonly vectors: { readonly length: number };
+  /** m ≤ n of each. */
+  readonly first: Uint32Array;
+  readonly second: Uint32Array;
+  /** Hartree, ≥ 0. */
+  readonly lambda: Float64Array;
+  readonly sign: Int8Array;
+}
+
+/**
+ * The weights of an encoding by squares, rounded to alias tables. Rows are numbered as {@link Indexing} says, the
+ * one-body item being the last item; the inner alias tables have the face as a further, highest bit.
+ */
+export interface WeightTables extends Indexing {
   readonly keepBits: KeepBits;
   readonly itemCount: number;
-  readonly itemBits: number;
-  readonly hasFaces: boolean;
-  readonly rowBits: number;
-  /** Bits of the row number that each item puts in superposition. */
-  readonly sizeBits: Uint8Array;
-  /** Over the item number, with the face as highest bit. */
+  /** Over the outer index. */
   readonly outer: AliasTable;
   /** By address, face included. */
   readonly inner: readonly (AliasTable & { readonly base: number })[];
-  /** Σ λ over all items, what the outer probabilities are parts of; hartree. */
+  /** Σ λ over all items and products, what the outer probabilities are parts of; hartree. */
   readonly lambda: number;
+  /** Those of `places`. */
+  readonly products: WeightedProducts | null;
 }
 
-export function weightTables(items: readonly WeightedItem[], bits: KeepBits): WeightTables {
-  const itemBits = Math.max(1, addressBits(items.length));
-  const hasFaces = items.some((item) => item.lambda.length > 1);
-  const sizeBits = Uint8Array.from(items, (item) => addressBits(item.rows.length));
-  const rowBits = Math.max(1, ...sizeBits);
-  const outerWeights = new Float64Array(2 ** (itemBits + (hasFaces ? 1 : 0)));
+export function weightTables(
+  items: readonly WeightedItem[],
+  bits: KeepBits,
+  products: WeightedProducts | null = null,
+): WeightTables {
+  const indexing = indexingOf({
+    rows: Uint32Array.from(items, (item) => item.rows.length),
+    twoFaced: Uint8Array.from(items, (item) => (item.lambda.length > 1 ? 1 : 0)),
+    ...(products ? { products: { count: products.lambda.length, vectors: products.vectors.length } } : {}),
+  });
+  const { outerBits, sizeBits, bases, faceOffset, firstEntry, nextFace, places } = indexing;
+  const outerWeights = new Float64Array(2 ** outerBits);
   const inner: (AliasTable & { base: number })[] = [];
   let lambda = 0;
-  for (const face of hasFaces ? [0, 1] : [0]) {
+  for (const face of indexing.hasFaces ? [0, 1] : [0]) {
     for (const [t, item] of items.entries()) {
       if (item.lambda[face] === undefined) continue;
-      const index = face * 2 ** itemBits + t;
-      outerWeights[index] = item.lambda[face];
+      outerWeights[firstEntry[t]! + face * nextFace] = item.lambda[face];
       lambda += item.lambda[face];
       const weights = item.rows.map((row) => row.faces[face]!.weight);
-      inner.push({ ...aliasTable(weights, sizeBits[t]!, bits.innerKeep), base: index * 2 ** rowBits });
+      const table = aliasTable(weights, sizeBits[t]!, bits.innerKeep);
+      inner.push({ ...table, base: bases[t]! + face * faceOffset });
     }
   }
+  if (places && products) {
+    outerWeights.set(products.lambda, places.firstProduct);
+    for (const x of products.lambda) lambda += x;
+    // A vector is drawn for sure.
+    const single = aliasTable([1], 0, bits.innerKeep);
+    for (let m = 0; m < places.vectors; m++) inner.push({ ...single, base: places.library + m });
+  }
   return {
+    ...indexing,
     keepBits: { keep: bits.keep, innerKeep: bits.innerKeep },
     itemCount: items.length,
-    itemBits,
-    hasFaces,
-    rowBits,
-    sizeBits,
-    outer: aliasTable(outerWeights, itemBits + (hasFaces ? 1 : 0), bits.keep),
+    outer: aliasTable(outerWeights, outerBits, bits.keep),
     inner,
     lambda,
+    products,
   };
 }
 
 /** λ of an item's face as the outer table holds it, hartree. */
 export function encodedLambda(tables: WeightTables, t: number, face: number): number {
-  return tables.lambda * tables.outer.probabilities[face * 2 ** tables.itemBits + t]!;
+  return tables.lambda * tables.outer.probabilities[tables.firstEntry[t]! + face * tables.nextFace]!;
+}
+
+/** λ of all products as the outer table holds them, hartree. */
+export function encodedProducts({ lambda, outer, places }: WeightTables): Float64Array {
+  if (!places) return new Float64Array(0);
+  return outer.probabilities.slice(places.firstProduct, places.entries).map((p) => lambda * p);
 }
 
 /** Weights of an item's rows on a face as the inner table holds them, as parts of their sum. */
 export function encodedWeights(tables: WeightTables, t: number, face: number): Float64Array {
-  const base = (face * 2 ** tables.itemBits + t) * 2 ** tables.rowBits;
+  const base = tables.bases[t]! + face * tables.faceOffset;
   return tables.inner.find((table) => table.base === base)!.probabilities;
 }

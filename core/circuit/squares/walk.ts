@@ -2,10 +2,11 @@ import type { Machine } from '../gates/machine';
 import { gate, nothing, type Operation, repeat, scratch, sequence, span, within } from '../gates/operation';
 import { aliasSampling } from '../primitives/alias-sampling';
 import { borrowedWires } from '../primitives/borrowed-look-up';
-import type { Blocks } from '../primitives/look-up';
+import { type Blocks, controlledSwap } from '../primitives/look-up';
 import { outputWires, readTable } from '../primitives/reading';
 import { controlledHadamard, flipZeros, hadamards } from '../primitives/reflection';
 import { firstAddresses } from '../primitives/unary-iteration';
+import { type ItemDataWires, type ItemFacts, itemDataTable, itemDataWires } from './item-data';
 import type { WeightTables } from './tables';
 
 /** Blocks of the tables that PREPARE reads. */
@@ -17,11 +18,11 @@ export interface SquaresBlocks {
 
 /** Wires that the outer PREPARE puts into superposition. */
 export interface PrepareWires {
-  /** Item number, lowest bit first. */
+  /** Number of the item, or of the entry where there are products; lowest bit first. */
   readonly item: readonly number[];
-  /** Which of the two faces of an item; null where none has two. */
+  /** Which of the two faces of an item; null where none has two, or it is a datum of the entry. */
   readonly face: number | null;
-  /** Which of the two squares of a paired item; null where no item is paired. */
+  /** Which of the two squares of a paired item, or which vector of a product comes first; null without such. */
   readonly square: number | null;
   readonly outerUniform: readonly number[];
 }
@@ -32,40 +33,27 @@ export interface SquaresWires extends PrepareWires {
   readonly innerUniform: readonly number[];
   /** Wires in the plus state beside the row number: spin, Majorana kind, partner. */
   readonly plus: readonly number[];
+  /** Stand-ins of the first of these in the second use of a product; empty where there are none. */
+  readonly standIns: readonly number[];
 }
 
-/** Item data beside the number of row bits: three flags that every form has, then the form's own. */
-export const COMMON_FLAGS = 3;
-
 /** What a form of encoding adds to the squares: flags of its items, and SELECT of one row. */
-export interface SquaresForm {
-  readonly weights: WeightTables;
+export interface SquaresForm extends ItemFacts {
   readonly blocks: SquaresBlocks;
   readonly system: readonly number[];
-  /** Items that are squared; the others are the one-body part, applied once. */
-  readonly isSquare: (t: number) => boolean;
-  readonly isNegative: (t: number) => boolean;
-  readonly isPaired: (t: number) => boolean;
-  /** Flags of an item of the form's own; every item has as many. */
-  readonly flags: (t: number) => readonly boolean[];
   /** What goes around the square of an item, which it may lend further wires. */
   readonly aroundItem: (item: ItemWires, square: (extra: readonly number[]) => Operation) => Operation;
   /** SELECT of one row: its adjoint applies the adjoint. */
   readonly product: (use: ProductUse) => Operation;
 }
 
-/** Data of the item. */
-export interface ItemWires {
-  readonly paired: number;
-  /** 0 for the one-body part. */
-  readonly isSquare: number;
-  readonly flags: readonly number[];
-}
+/** Data of the item that a form may look at. */
+export type ItemWires = Pick<ItemDataWires, 'paired' | 'isSquare' | 'isTwofold' | 'face' | 'flags'>;
 
 export interface ProductUse extends ItemWires {
   /** Of the row, lowest bit first. */
   readonly address: readonly number[];
-  /** The use after the inner reflection, which must do nothing where `isSquare` is 0. */
+  /** The second use, which must do nothing where `isTwofold` is 0. */
   readonly second: boolean;
   /** What the form lent itself. */
   readonly extra: readonly number[];
@@ -76,24 +64,30 @@ export function prepareWires(weights: WeightTables, hasPaired: boolean, machine:
   const allocate = (size: number, name: string) => machine.allocateRegister(size, name);
   return {
     item: allocate(weights.itemBits, 'item'),
-    face: allocate(weights.hasFaces ? 1 : 0, 'face')[0] ?? null,
-    square: allocate(hasPaired ? 1 : 0, 'square')[0] ?? null,
+    face: allocate(weights.outerBits - weights.itemBits, 'face')[0] ?? null,
+    square: allocate(hasPaired || weights.places ? 1 : 0, 'square')[0] ?? null,
     outerUniform: allocate(weights.keepBits.keep, 'outer uniform'),
   };
 }
 
-/** @param plus - names of the wires in the plus state. */
+/**
+ * @param plus - names of the wires in the plus state
+ * @param standIns - names of those that take the place of the first of these in the second use of a product
+ */
 export function squaresWires(
   weights: WeightTables,
   hasPaired: boolean,
   plus: readonly string[],
   machine: Machine,
+  standIns: readonly string[] = [],
 ): SquaresWires {
+  const each = (names: readonly string[]) => names.flatMap((name) => machine.allocateRegister(1, name));
   return {
     ...prepareWires(weights, hasPaired, machine),
     row: machine.allocateRegister(weights.rowBits, 'row'),
     innerUniform: machine.allocateRegister(weights.keepBits.innerKeep, 'inner uniform'),
-    plus: plus.flatMap((name) => machine.allocateRegister(1, name)),
+    plus: each(plus),
+    standIns: each(weights.places ? standIns : []),
   };
 }
 
@@ -107,6 +101,7 @@ export function squaresAncillas(wires: SquaresWires): number[] {
     ...wires.row,
     ...wires.innerUniform,
     ...wires.plus,
+    ...wires.standIns,
   ];
 }
 
@@ -195,29 +190,15 @@ export function squaresWalkStep(form: SquaresForm, wires: SquaresWires, control:
 
 /** Loads what depends on the item alone, applies the item, and takes the data back. */
 export function squaresItem(form: SquaresForm, wires: SquaresWires): Operation {
-  const { itemCount, rowBits, sizeBits } = form.weights;
-  const data = Array.from({ length: itemCount }, (_, t) => [
-    form.isNegative(t),
-    form.isPaired(t),
-    form.isSquare(t),
-    ...form.flags(t),
-  ]);
-  const width = rowBits + data[0]!.length;
-  const table = {
-    addresses: firstAddresses(itemCount),
-    width,
-    bit: (t: number, b: number) => (b < rowBits ? sizeBits[t]! > b : data[t]![b - rowBits]!),
-  };
-  return scratch(outputWires(width, form.blocks.items), (output) => {
-    const sizes = output.slice(0, rowBits);
-    const [negative, paired, isSquare, ...flags] = output.slice(rowBits, width) as [number, number, number];
-    const item: ItemWires = { paired, isSquare, flags };
+  const table = itemDataTable(form);
+  return scratch(outputWires(table.width, form.blocks.items), (output) => {
+    const data = itemDataWires(form.weights, form.flags(0).length, output);
     const apply = sequence(
       // 2|0⟩⟨0| − 1 is −1 times the flip.
-      gate('Z', isSquare),
-      gate('Z', negative),
-      wires.square === null ? nothing : gate('CZ', paired, wires.square),
-      form.aroundItem(item, (extra) => square(form, wires, sizes, item, extra)),
+      gate('Z', data.isSquare),
+      gate('Z', data.negative),
+      wires.square === null ? nothing : gate('CZ', data.paired, wires.square),
+      form.aroundItem(data, (extra) => twoUses(form, wires, data, extra)),
     );
     const idle = idleWires(form.system, wires, wires.item);
     const load = readTable(wires.item, output, table, form.blocks.items, idle);
@@ -228,54 +209,131 @@ export function squaresItem(form: SquaresForm, wires: SquaresWires): Operation {
 /**
  * B₂†·R·B₁ with B = PREPARE†·SELECT·PREPARE over the rows of the item. For a square R = 2|0⟩⟨0| − 1 (up to sign)
  * and B₁ = B₂, which gives 2(M/Λ)² − 1 however the angles are rounded; for a one-body item R and the product in
- * B₂ are switched off.
+ * B₂ are switched off; for a product R is, see {@link productOrder}.
  */
-function square(
+function twoUses(
   form: SquaresForm,
   wires: SquaresWires,
-  sizes: readonly number[],
-  item: ItemWires,
+  data: ItemDataWires,
   extra: readonly number[],
 ): Operation {
+  if (form.weights.places) return productOrder(form, wires, data, extra);
   const address = [...wires.row, ...wires.item];
   const use = (second: boolean) =>
-    innerBlock(form, wires, sizes, form.product({ ...item, address, second, extra }));
-  const zeros = [...wires.row, ...wires.innerUniform, ...wires.plus];
-  const reflection = span('inner reflection', 'reflections', flipZeros(zeros, [item.isSquare]));
-  const first = use(false);
-  const second = use(true);
+    innerBlock(
+      form,
+      wires,
+      data,
+      address,
+      form.product({ ...data, face: wires.face, address, second, extra }),
+    );
+  return oneAfterTheOther(use(false), innerReflection(wires, data), use(true));
+}
+
+/** second†·between·first, `between` its own adjoint. */
+function oneAfterTheOther(first: Operation, between: Operation, second: Operation): Operation {
   return {
     run(machine) {
       first.run(machine);
-      reflection.run(machine);
+      between.run(machine);
       second.runAdjoint(machine);
     },
     runAdjoint(machine) {
       second.run(machine);
-      reflection.run(machine);
+      between.runAdjoint(machine);
       first.runAdjoint(machine);
     },
   };
 }
 
+function innerReflection(wires: SquaresWires, { isSquare }: ItemDataWires): Operation {
+  const zeros = [...wires.row, ...wires.innerUniform, ...wires.plus];
+  return span('inner reflection', 'reflections', flipZeros(zeros, [isSquare]));
+}
+
+/**
+ * Both uses where some entries are products of two vectors.
+ *
+ * P_n(τ)·P_m(σ) goes from order 0 to order 1, with the spins σ and τ changing wires; from order 1 to 0 the vectors
+ * have changed places, and so have the spins. The two are each other's adjoints, so the whole is Hermitian, and with
+ * the order and both spins projected on the plus state it is ½{M_m, M_n}, M = ½(P_↑ + P_↓). One AND a bit in which
+ * vectors are told apart, and one for the spins.
+ */
+function productOrder(
+  form: SquaresForm,
+  wires: SquaresWires,
+  data: ItemDataWires,
+  extra: readonly number[],
+): Operation {
+  const { rowBits } = form.weights;
+  const { place, change, isSquare, isTwofold } = data;
+  const order = wires.square!;
+  const address = [...wires.row, ...place.slice(rowBits)];
+  const product = form.product;
+  // Twofold and no square: a product.
+  const asProduct = gate('CX', isSquare, isTwofold);
+  const exchangeSpins = within(
+    asProduct,
+    span(
+      'spins of a product',
+      'select.other',
+      repeat(wires.standIns.length, (i) => swapped(isTwofold, wires.plus[i]!, wires.standIns[i]!)),
+    ),
+  );
+  return sequence(
+    scratch(change.length, (first) => {
+      const use = (second: boolean) => {
+        const moved = sequence(
+          repeat(change.length, (i) => gate('CX', first[i]!, place[i]!)),
+          second ? repeat(change.length, (i) => gate('CX', change[i]!, place[i]!)) : nothing,
+          repeat(rowBits, (i) => gate('CX', place[i]!, wires.row[i]!)),
+        );
+        return within(
+          moved,
+          innerBlock(form, wires, data, address, product({ ...data, address, second, extra })),
+        );
+      };
+      return within(
+        span(
+          'order of a product',
+          'select.other',
+          repeat(change.length, (i) => gate('AND', order, change[i]!, first[i]!)),
+        ),
+        oneAfterTheOther(use(false), sequence(innerReflection(wires, data), exchangeSpins), use(true)),
+      );
+    }),
+    within(asProduct, gate('CX', isTwofold, order)),
+  );
+}
+
+function swapped(control: number, a: number, b: number): Operation {
+  const run = (machine: Machine) => controlledSwap(machine, control, a, b);
+  return { run, runAdjoint: run };
+}
+
+/** @param address - of the row, without a face that belongs to the outer index or the entry */
 function innerBlock(
   form: SquaresForm,
   wires: SquaresWires,
-  sizes: readonly number[],
+  { sizes, face: faceOfEntry }: ItemDataWires,
+  rowAddress: readonly number[],
   product: Operation,
 ): Operation {
-  const { keepBits, rowBits, sizeBits, inner } = form.weights;
+  const { keepBits, rowBits, sizeBits, inner, places } = form.weights;
   const { innerKeep } = keepBits;
-  const address = [...wires.row, ...wires.item, ...(wires.face === null ? [] : [wires.face])];
+  const face = wires.face ?? faceOfEntry;
+  const address = [...rowAddress, ...(face === null ? [] : [face])];
   const entries = new Map(
     inner.flatMap((table) =>
+      // The index that alternates stand for is the low part of the address.
       Array.from(
         table.keep,
-        (keep, j) => [table.base + j, { keep, alternate: table.alternate[j]! }] as const,
+        (keep, j) =>
+          [table.base + j, { keep, alternate: (table.base % 2 ** rowBits) + table.alternate[j]! }] as const,
       ),
     ),
   );
-  const allEqual = sizeBits.every((size) => size === rowBits);
+  const allEqual = !places && sizeBits.every((size) => size === rowBits);
   const uniform = allEqual
     ? hadamards(wires.row)
     : repeat(rowBits, (i) => controlledHadamard(sizes[i]!, wires.row[i]!));

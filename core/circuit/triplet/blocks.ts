@@ -2,7 +2,7 @@ import { countBlocks, erasureToffoli } from '../primitives/look-up';
 import type { LookupPolicy } from '../recipes/scope';
 import { chooseTableBlocks } from '../squares/blocks';
 import { idleQubits, squaresTables } from '../squares/recipe';
-import { TRIPLET_PLUS } from './recipe';
+import { TRIPLET_WIRES } from './recipe';
 import type { TripletLayout } from './sizes';
 import type { TripletBits } from './tables';
 import type { WalkBlocks } from './walk';
@@ -20,9 +20,9 @@ export function chooseBlocks(
   limit: number | null,
 ): WalkBlocks {
   const { outer, items, inner } = squaresTables(layout, bits, 0);
-  const idle = idleQubits(layout, bits, 2 * orbitals, TRIPLET_PLUS);
+  const idle = idleQubits(layout, bits, 2 * orbitals, TRIPLET_WIRES);
   const { rowAddresses, rowWidth, pairAddresses, anglesWidth } = layout;
-  const largest = 2 ** layout.rowBits;
+  const largest = 2 ** layout.blockBits;
   const rows = { addresses: rowAddresses, width: rowWidth, limit: largest, main: true, idle: idle.rows };
   const pairs = {
     addresses: pairAddresses,

@@ -13,7 +13,10 @@ import type { TripletBits } from './tables';
 import type { WalkBlocks } from './walk';
 
 /** Wires of the triplet form in the plus state. */
-export const TRIPLET_PLUS = ['spin', 'Majorana kind'] as const;
+export const TRIPLET_WIRES = {
+  plus: ['spin', 'Majorana kind'],
+  standIns: ['spin of a second vector'],
+} as const;
 
 /** The walk step of the triplet form: see {@link squaresRecipe}. */
 export function tripletRecipe(
@@ -30,7 +33,7 @@ export function tripletRecipe(
       { name: 'system', qubits: 2 * orbitals },
       { name: 'phase gradient', qubits: gradientWires(layout.angleBits + 2) },
     ],
-    plus: TRIPLET_PLUS,
+    ...TRIPLET_WIRES,
     flags: 0,
     aroundItem: {},
     product: (second: boolean) => productRecipe(orbitals, layout, spin, blocks, second),

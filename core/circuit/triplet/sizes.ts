@@ -1,5 +1,6 @@
 import type { ItemSizes, TripletItem, TripletProgram } from '../../encode';
-import { raggedAddresses, type SquaresLayout, squaresLayout } from '../squares/layout';
+import { raggedAddresses } from '../squares/indexing';
+import { type SquaresLayout, squaresLayout } from '../squares/layout';
 import { FACE_FLAGS, ROW_FLAGS } from './rounded-row';
 import type { TripletBits } from './tables';
 
@@ -13,6 +14,9 @@ export function sizesOf(program: TripletProgram): ItemSizes {
     pairRows: Uint32Array.from(items, (item) => item.rows.filter((row) => row.kind === 'A').length),
     twoFaced: Uint8Array.from(items, (item) => (item.lambda.length > 1 ? 1 : 0)),
     hasPaired: program.items.some((item) => item.paired),
+    ...(program.products
+      ? { products: { count: program.products.lambda.length, vectors: program.products.vectors.length } }
+      : {}),
   };
 }
 
@@ -35,6 +39,6 @@ export function tripletLayout(sizes: ItemSizes, bits: Pick<TripletBits, 'rotatio
     angleBits,
     anglesWidth,
     rowWidth: anglesWidth + ROW_FLAGS + (squares.hasFaces ? FACE_FLAGS : 0),
-    pairAddresses: raggedAddresses(sizes.pairRows, squares.rowBits),
+    pairAddresses: raggedAddresses(sizes.pairRows, squares.bases),
   };
 }

@@ -1,7 +1,8 @@
-import type { TripletItem, TripletProgram } from '../../encode/program';
+import type { TripletItem, TripletProgram, TripletRow } from '../../encode/program';
 import { roundedVector } from '../squares/rounded-vector';
 import {
   encodedLambda,
+  encodedProducts,
   encodedWeights,
   type KeepBits,
   type WeightTables,
@@ -39,13 +40,16 @@ export function tripletTables(program: TripletProgram, bits: TripletBits): Tripl
     ...item,
     rows: [...item.rows.filter((row) => row.kind === 'A'), ...item.rows.filter((row) => row.kind === 'S')],
   }));
-  const weights = weightTables(items, bits);
+  const weights = weightTables(items, bits, program.products);
   const angleBits = bits.rotation - 1;
   const rows = new Map<number, RoundedRow>();
   for (const [t, item] of items.entries()) {
     for (const [j, row] of item.rows.entries()) {
-      rows.set(t * 2 ** weights.rowBits + j, roundRow(row, item.paired, angleBits));
+      rows.set(weights.bases[t]! + j, roundRow(row, item.paired, angleBits));
     }
+  }
+  for (const [m, u] of (program.products?.vectors ?? []).entries()) {
+    rows.set(weights.places!.library + m, roundRow(vectorRow(u), false, angleBits));
   }
   return {
     ...weights,
@@ -54,11 +58,19 @@ export function tripletTables(program: TripletProgram, bits: TripletBits): Tripl
     items,
     hasPaired: items.some((item) => item.paired),
     rows,
-    rowAddresses: Uint32Array.from(rows.keys()),
+    rowAddresses: Uint32Array.from(rows.keys()).sort(),
     angleBits,
     rowWidth: (program.orbitals - 1) * angleBits + ROW_FLAGS + (weights.hasFaces ? FACE_FLAGS : 0),
   };
 }
+
+/** M(u) as a row. */
+const vectorRow = (u: Float64Array): TripletRow => ({
+  kind: 'S',
+  u,
+  v: u,
+  faces: [{ mu: 0, weight: 1, sign: 1 }],
+});
 
 /** Bit `bit` of the angle table's row at `address`, with the angles of its first or second vector. */
 export function rowBit(tables: TripletTables, vector: 'u' | 'v', address: number, bit: number): boolean {
@@ -76,7 +88,7 @@ export const isPairRow = (tables: TripletTables, address: number): boolean =>
  * difference of the two is the whole rounding error.
  */
 export function encodedProgram(program: TripletProgram, tables: TripletTables): TripletProgram {
-  const { rowBits, angleBits, items } = tables;
+  const { bases, angleBits, items, places } = tables;
   const encoded = items.map((item, t): TripletItem => {
     const weights = item.lambda.map((_, face) => encodedWeights(tables, t, face));
     return {
@@ -84,7 +96,7 @@ export function encodedProgram(program: TripletProgram, tables: TripletTables): 
       paired: item.paired,
       lambda: item.lambda.map((_, face) => encodedLambda(tables, t, face)),
       rows: item.rows.map((row, j) => {
-        const rounded = tables.rows.get(t * 2 ** rowBits + j)!;
+        const rounded = tables.rows.get(bases[t]! + j)!;
         const u = roundedVector(rounded.u, angleBits);
         return {
           kind: row.kind,
@@ -100,6 +112,13 @@ export function encodedProgram(program: TripletProgram, tables: TripletTables): 
     };
   });
   const oneBody = encoded.pop()!;
+  const products = program.products && {
+    ...program.products,
+    vectors: program.products.vectors.map((_, m) =>
+      roundedVector(tables.rows.get(places!.library + m)!.u, angleBits),
+    ),
+    lambda: encodedProducts(tables),
+  };
   return {
     orbitals: program.orbitals,
     constant: program.constant,
@@ -108,5 +127,6 @@ export function encodedProgram(program: TripletProgram, tables: TripletTables): 
       ...row,
       faces: row.faces.map((face) => ({ ...face, weight: face.weight * oneBody.lambda[0]! })),
     })),
+    ...(products ? { products } : {}),
   };
 }

@@ -43,7 +43,7 @@ export function walkWires(
   const system = machine.allocateRegister(2 * tables.orbitals, 'system');
   const gradient =
     rotations === 'gradient' ? machine.allocateRegister(gradientWires(modulusBits), 'gradient') : [];
-  const index = squaresWires(tables, tables.hasPaired, ['sigma', 'kind'], machine);
+  const index = squaresWires(tables, tables.hasPaired, ['sigma', 'kind'], machine, ['second sigma']);
   return {
     system,
     gradient,
@@ -76,16 +76,16 @@ export function tripletForm(
     isNegative: (t) => items[t]!.sign < 0,
     isPaired: (t) => items[t]!.paired,
     flags: () => [],
-    // The one-body product lacks a factor i, which the squares do not.
-    aroundItem: ({ isSquare }, square) =>
-      sequence(gate('X', isSquare), gate('S', isSquare), gate('X', isSquare), square([])),
-    product: ({ address, isSquare, second }) =>
+    // The one-body product lacks a factor i, which cancels where there are two uses.
+    aroundItem: ({ isTwofold }, square) =>
+      sequence(gate('X', isTwofold), gate('S', isTwofold), gate('X', isTwofold), square([])),
+    product: ({ address, face, isTwofold, second }) =>
       product(
         tables,
-        { ...wires, address, idle: idleWires(wires.system, wires, address) },
+        { ...wires, face, address, idle: idleWires(wires.system, wires, address) },
         spin,
         blocks,
-        second ? isSquare : null,
+        second ? isTwofold : null,
       ),
   };
 }

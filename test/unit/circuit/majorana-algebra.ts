@@ -1,4 +1,4 @@
-import type { TripletItem, TripletProgram, TripletRow } from '../../../core/encode/program';
+import type { TripletItem, TripletProgram, TripletRow, VectorProducts } from '../../../core/encode/program';
 import type { Mu } from '../../../core/hamiltonian/operators';
 
 /**
@@ -151,9 +151,26 @@ export const factorNorm = (item: TripletItem, face: number) =>
 /** λ of a program. */
 export const programLambda = (program: TripletProgram) =>
   program.oneBody.reduce((sum, row) => sum + row.faces[0]!.weight, 0) +
-  program.items.reduce((sum, item) => sum + item.lambda.reduce((a, b) => a + b, 0), 0);
+  program.items.reduce((sum, item) => sum + item.lambda.reduce((a, b) => a + b, 0), 0) +
+  (program.products?.lambda.reduce((a, b) => a + b, 0) ?? 0);
 
-/** The operator a program encodes, H − c: one-body rows and Σ sign·λ·(2(M/Λ)² − 1). */
+/** A product without its λ: sign·½{M_m, M_n}, or sign·(2M_m² − 1), M(u) = T⁰(u) − 1. */
+export function productOperator(orbitals: number, products: VectorProducts, p: number): Dense {
+  const charge = (i: number) => {
+    const u = products.vectors[i]!;
+    return rowOperator(orbitals, { kind: 'S', u, v: u, faces: [{ mu: 0, weight: 1, sign: 1 }] }, 0);
+  };
+  const [m, n] = [products.first[p]!, products.second[p]!];
+  const [a, b] = [charge(m), charge(n)];
+  const sign = products.sign[p]!;
+  const out = zeros(4 ** orbitals);
+  addScaled(out, times(a, b), (m === n ? 1 : 0.5) * sign);
+  addScaled(out, times(b, a), (m === n ? 1 : 0.5) * sign);
+  if (m === n) for (let i = 0; i < out.n; i++) out.re[i * out.n + i]! -= sign;
+  return out;
+}
+
+/** The operator a program encodes, H − c: one-body rows, Σ sign·λ·(2(M/Λ)² − 1) and products. */
 export function programOperator(program: TripletProgram): Dense {
   const n = program.orbitals;
   const out = zeros(4 ** n);
@@ -167,6 +184,9 @@ export function programOperator(program: TripletProgram): Dense {
         for (let i = 0; i < out.n; i++) out.re[i * out.n + i]! -= scale;
       }
     }
+  }
+  for (const [p, lambda] of (program.products?.lambda ?? new Float64Array(0)).entries()) {
+    addScaled(out, productOperator(n, program.products!, p), lambda);
   }
   return out;
 }
