@@ -4,7 +4,7 @@ import { textTable } from './text-table';
 
 /** What was written, and what rounding and truncation do to the energy. */
 export function encodeText(tables: TablesDocument, path: string): string {
-  const { variant, bits, sizes, arrays, lambda, rounding, residual, window } = tables;
+  const { form, variant, arrays, lambda, rounding, residual, window } = tables;
   const energy = (x: number) => formatSignificant(x, 3);
   const rows: [string, number, string][] = [
     ['worst case', rounding.worstCase, 'rigorous, from sizes and lambda alone'],
@@ -22,8 +22,9 @@ export function encodeText(tables: TablesDocument, path: string): string {
     );
   }
   return `${[
-    `Wrote ${path}: ${variant}, ${formatExactCount(sizes.items)} items, ${formatExactCount(sizes.rows)} rows, ${bits.keep} bits of keep values, ${bits.rotation} of angles.`,
-    `tables.json says how to read the ${arrays.length} arrays. lambda ${formatSignificant(lambda.total, 6)} Eh.`,
+    `Wrote ${path}: ${variant}, tables of the ${form} form, ${contentsOf(tables)}, ${bitsOf(tables)}.`,
+    `${arrays.length} arrays, ${sizeOf(tables)}; tables.json says how to read them. Read back, they are the rounded program number for number.`,
+    `lambda ${formatSignificant(lambda.total, 6)} Eh.`,
     '',
     ...textTable(
       [
@@ -34,4 +35,35 @@ export function encodeText(tables: TablesDocument, path: string): string {
       rows.map(([name, value, meaning]) => [name, energy(value), meaning]),
     ),
   ].join('\n')}\n`;
+}
+
+/** Sizes that a reader knows by name. */
+const CONTENTS = [
+  ['items', 'items'],
+  ['rows', 'rows'],
+] as const;
+
+const contentsOf = ({ sizes }: TablesDocument): string =>
+  CONTENTS.flatMap(([name, word]) =>
+    sizes[name] === undefined ? [] : [`${formatExactCount(sizes[name])} ${word}`],
+  ).join(', ');
+
+function bitsOf({ bits, sizes }: TablesDocument): string {
+  const { keep, rotation, phase } = bits;
+  const words = [`${keep} bits of keep values`];
+  if (rotation !== undefined) words.push(`${rotation} of angles`);
+  if (phase !== undefined && rotation !== undefined && phase + 1 < rotation && sizes.phaseRows) {
+    words.push(`${phase + 1} in light rows`);
+  }
+  return words.join(', ');
+}
+
+/** Of the numbers of all arrays. */
+function sizeOf({ arrays }: TablesDocument): string {
+  const bytes = arrays.reduce(
+    (sum, { type, shape }) =>
+      sum + Number(type.slice(2)) * shape.reduce((product, extent) => product * extent, 1),
+    0,
+  );
+  return bytes < 1e6 ? `${formatSignificant(bytes / 1e3, 3)} kB` : `${formatSignificant(bytes / 1e6, 3)} MB`;
 }

@@ -2,15 +2,14 @@ import { SURFACE_CODE_DEFAULTS, whatif } from '../../core/estimate';
 import type { JobContext } from '../../core/job';
 import {
   countCircuit,
-  encodeTables,
   inspectIntegrals,
-  npyBytes,
   runComparison,
   runVerification,
   writeCircuit,
 } from '../../core/plan';
+import { writeEncoding } from './encode-files';
 import { loadInputs, openInputs, readReference } from './inputs';
-import { refuseUsedFolder, writeFolder, writeStreamed } from './output';
+import { refuseUsedFolder, writeStreamed } from './output';
 import type {
   CircuitRequest,
   CompareRequest,
@@ -81,12 +80,8 @@ async function circuit(request: CircuitRequest, context: JobContext): Promise<Re
 }
 
 async function encode(request: EncodeRequest, context: JobContext): Promise<Result> {
-  refuseUsedFolder(request.out.path);
+  const { out } = request;
+  refuseUsedFolder(out.path);
   const set = await loadInputs(await openInputs(request, context), request.encode.terms, 'throw', context);
-  const { document, arrays } = await encodeTables(set, request.encode, context);
-  writeFolder(request.out, function* () {
-    yield ['tables.json', `${JSON.stringify(document, null, 2)}\n`] as const;
-    for (const array of arrays) yield [`${array.name}.npy`, npyBytes(array)] as const;
-  });
-  return { command: 'encode', tables: document, out: request.out };
+  return { command: 'encode', tables: await writeEncoding(set, request.encode, out, context), out };
 }

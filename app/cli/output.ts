@@ -88,18 +88,35 @@ export async function writeStreamed<T>(
   }
 }
 
-/** Writes the files of a reserved folder one by one. */
-export function writeFolder(
+/**
+ * Writes the files of a reserved folder one after the other, piece by piece.
+ *
+ * @param produce - calls `append` with a file's name and its next bytes; a name that was left does not come again
+ */
+export async function writeFolder<T>(
   { path, temporary }: OutputFile,
-  files: () => Iterable<readonly [name: string, content: string | Uint8Array]>,
-): void {
-  for (const [name, content] of files()) {
-    try {
-      mkdirSync(temporary, { recursive: true });
-      writeFileSync(join(temporary, name), content, { flag: 'wx' });
-    } catch (error) {
-      throw cannotWrite(path, error);
-    }
+  produce: (append: (name: string, bytes: Uint8Array) => void) => Promise<T>,
+): Promise<T> {
+  let open: { readonly name: string; readonly file: number } | null = null;
+  const close = () => {
+    if (open) closeSync(open.file);
+    open = null;
+  };
+  try {
+    return await produce((name, bytes) => {
+      try {
+        if (open?.name !== name) {
+          close();
+          mkdirSync(temporary, { recursive: true });
+          open = { name, file: openSync(join(temporary, name), 'wx') };
+        }
+        for (let done = 0; done < bytes.length; ) done += writeSync(open.file, bytes, done);
+      } catch (error) {
+        throw cannotWrite(path, error);
+      }
+    });
+  } finally {
+    close();
   }
 }
 

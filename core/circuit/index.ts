@@ -38,6 +38,7 @@ export {
 } from './sparse/walk';
 export { ANGLE_GROUPS, type AngleGroup, type SpinorLayout, spinorLayout } from './spinor/layout';
 export { spinorRecipe } from './spinor/recipe';
+export { roundedRow as roundedSpinorRow } from './spinor/rounded-row';
 export { chooseSpinorTables, type SpinorStep, spinorStep } from './spinor/step';
 export {
   encodedSpinorProgram,
@@ -55,6 +56,7 @@ export {
   spinorWires,
   withSpinorItem,
 } from './spinor/walk';
+export { roundedVector } from './squares/rounded-vector';
 export type { StepBits } from './squares/step';
 export type { WeightTables } from './squares/tables';
 export {

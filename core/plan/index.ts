@@ -8,10 +8,16 @@ export {
 } from './circuit-run';
 export type { Comparison, Target, TermSummary, VariantEstimate } from './comparison';
 export { comparisonDocument, variantDocument } from './document';
-export { type EncodedTables, encodeTables, type TablesDocument } from './encode-tables';
-export { npyBytes } from './encode-tables-npy';
-export { readTables } from './encode-tables-read';
+export {
+  type EncodedTables,
+  encodeTables,
+  type FormProgram,
+  readTables,
+  type TablesDocument,
+  writeTables,
+} from './encode-tables';
 export type { Check, Evidence } from './evidence';
+export { FRAME_CHOICES, type FrameChoice, type FrameRecord, type FrameRequest } from './frame';
 export { type Inspection, inspectIntegrals } from './inspection';
 export { recommend } from './recommendation';
 export {

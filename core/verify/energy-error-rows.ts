@@ -60,16 +60,22 @@ export function addRows(a: RowsOperator, b: RowsOperator, scale: number): RowsOp
 }
 
 /**
- * Largest |expectation value| of Σ_j d_j (n_j − ½), the Hermitian part, over 2N modes: ½Σ|d_j| on Fock space; with η
- * electrons the η largest or smallest d_j less half the trace. Exact where the operator is of one time-reversal
- * sector, else the sum of both (triangle inequality).
+ * Largest |expectation value| of Σ_j d_j (n_j − ½), the Hermitian part, over 2N modes. Exact where the operator is of one
+ * time-reversal sector, else the sum of both (triangle inequality).
  */
 export function normOfRows({ even, odd }: RowsOperator, electrons: number | null): number {
-  return normOf(even, electrons) + normOf(odd, electrons);
+  return (
+    largestExpectation(modeEigenvalues(even), electrons) + largestExpectation(modeEigenvalues(odd), electrons)
+  );
 }
 
-function normOf(operator: TripletOperator, electrons: number | null): number {
-  const values = modeEigenvalues(operator);
+/**
+ * Largest |expectation value| of Σ_j d_j (n_j − ½): ½Σ|d_j| on Fock space; with η electrons the η largest or smallest
+ * d_j less half the trace.
+ *
+ * @param values - d_j, ascending
+ */
+export function largestExpectation(values: Float64Array, electrons: number | null): number {
   let [trace, below, size] = [0, 0, 0];
   for (const [j, d] of values.entries()) {
     trace += d;

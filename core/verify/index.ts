@@ -7,6 +7,7 @@ export {
 export { type DeterminantStatistics, determinantStatistics } from './determinant-statistics';
 export { binomial, type SectorBasis, sectorBasis } from './determinants';
 export { type RealisedRounding, realisedRounding } from './energy-error';
+export { realisedSpinorRounding } from './energy-error-spinor';
 export { type Form, fockMatrix, oneBodyFockMatrix, spinorFockMatrix } from './fock';
 export { programOperator } from './program-operator';
 export { REFERENCE_LEVELS, referenceEigenvalues } from './reference';
@@ -23,3 +24,4 @@ export { spinorProgramOperator } from './spinor-block-operator';
 export { tripletBlock } from './triplet-block';
 export { type WindowCouplings, windowCouplings } from './window-couplings';
 export { type LevelShifts, levelShifts, windowOfProgram } from './window-levels';
+export { windowOfSpinorProgram } from './window-levels-spinor';

@@ -56,7 +56,7 @@ export async function windowOfProgram(program: TripletProgram, window: OrbitalWi
 }
 
 /** Accumulates constant, h and g of the window. */
-class WindowSum {
+export class WindowSum {
   constant = 0;
   readonly h: { readonly re: Float64Array; readonly im: Float64Array };
   readonly g: { readonly re: Float64Array; readonly im: Float64Array };

@@ -1,3 +1,4 @@
+export { Crc32 } from './crc';
 export { readFcidump } from './fcidump';
 export { openWithModule } from './h5-file';
 export type { H5Module } from './h5-module';

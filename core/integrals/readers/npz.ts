@@ -3,6 +3,7 @@ import { InputError, type JobContext } from '../../job';
 import type { RawArray } from '../raw';
 import type { ByteSource } from '../source';
 import { forEachChunk, refuseEmpty } from './chunks';
+import { Crc32 } from './crc';
 import { clipped, refuseTraps } from './limits';
 import { NpyAssembler } from './npy';
 import { damaged, dataOffset, readDirectory, type ZipMember } from './zip';
@@ -92,7 +93,7 @@ function unfold(where: string, inflate: Inflate, piece: Uint8Array): void {
 /** Lets through exactly what the directory promised, and no other bytes. */
 class CheckedSink {
   private received = 0;
-  private crc = 0xffffffff;
+  private readonly crc = new Crc32();
 
   constructor(
     private readonly where: string,
@@ -105,7 +106,7 @@ class CheckedSink {
     if (this.received > this.member.unpacked) {
       throw damaged(this.where, `more than the ${this.member.unpacked} bytes that the directory says`);
     }
-    this.crc = crc32(this.crc, bytes);
+    this.crc.push(bytes);
     this.assembler.push(bytes);
   }
 
@@ -114,19 +115,6 @@ class CheckedSink {
     if (received !== member.unpacked) {
       throw damaged(this.where, `${received} of ${member.unpacked} bytes`);
     }
-    if ((this.crc ^ 0xffffffff) >>> 0 !== member.crc) throw damaged(this.where, 'a wrong checksum');
+    if (this.crc.value !== member.crc) throw damaged(this.where, 'a wrong checksum');
   }
-}
-
-/** CRC-32 of ISO 3309, reflected polynomial 0xEDB88320, as ZIP uses it. */
-const CRC_TABLE = Int32Array.from({ length: 256 }, (_, n) => {
-  let c = n;
-  for (let bit = 0; bit < 8; bit++) c = c & 1 ? 0xedb88320 ^ (c >>> 1) : c >>> 1;
-  return c;
-});
-
-function crc32(start: number, bytes: Uint8Array): number {
-  let crc = start;
-  for (let i = 0; i < bytes.length; i++) crc = CRC_TABLE[(crc ^ bytes[i]) & 255] ^ (crc >>> 8);
-  return crc;
 }

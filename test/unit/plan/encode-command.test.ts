@@ -1,19 +1,30 @@
-import { existsSync, mkdtempSync, readdirSync, readFileSync, rmSync, writeFileSync } from 'node:fs';
+import {
+  existsSync,
+  mkdirSync,
+  mkdtempSync,
+  readdirSync,
+  readFileSync,
+  rmSync,
+  truncateSync,
+  writeFileSync,
+} from 'node:fs';
 import { tmpdir } from 'node:os';
 import { join } from 'node:path';
-import { afterAll, expect, it } from 'vitest';
+import { afterAll, describe, expect, it } from 'vitest';
+import { folderFiles } from '../../../app/cli/files';
 import { answer } from '../../../app/cli/jobs';
-import { removePending } from '../../../app/cli/output';
+import { removePending, writeFolder } from '../../../app/cli/output';
 import { printResult } from '../../../app/cli/print';
 import { parseCall } from '../../../app/cli/program';
-import { parseNpyHeader } from '../../../core/integrals/readers/npy-header';
-import { InputError, inlineContext } from '../../../core/job';
+import { InputError, inlineContext, type JobContext } from '../../../core/job';
 import { readTables, type TablesDocument } from '../../../core/plan';
 
 const folder = mkdtempSync(join(tmpdir(), 'spinwright-encode-'));
 afterAll(() => rmSync(folder, { recursive: true }));
 
-const call = (out: string) =>
+const TRIPLET = 'triplet/separate/swap-layers/median/clean';
+
+const call = (out: string, variant = TRIPLET) =>
   parseCall(
     [
       ...[
@@ -25,28 +36,18 @@ const call = (out: string) =>
         '5cm-1',
         '--quiet',
       ],
-      ...['--variant', 'triplet/separate/swap-layers/median/clean', '--threshold', '1e-4', '--out', out],
+      ...['--variant', variant, '--threshold', '1e-4', '--out', out],
     ],
     'demo',
     () => {},
   );
 
-/** The values of a little-endian .npy file, without the reader of the core. */
-function values(path: string): ArrayLike<number> {
-  const bytes = readFileSync(path);
-  const start = 10 + bytes.readUInt16LE(8);
-  expect(start % 64).toBe(0);
-  parseNpyHeader(path, bytes.subarray(10, start).toString('latin1'));
-  const descr = /'descr': '(...)'/.exec(bytes.subarray(10, start).toString('latin1'))![1]!;
-  const data = bytes.buffer.slice(bytes.byteOffset + start, bytes.byteOffset + bytes.length) as ArrayBuffer;
-  if (descr === '<f8') return new Float64Array(data);
-  if (descr === '<u4') return new Uint32Array(data);
-  return descr === '|i1' ? new Int8Array(data) : new Uint8Array(data);
-}
-
-it('encode writes a folder, whole, that stands for the program', async () => {
-  const out = join(folder, 'tables');
-  const { request, manner } = call(out);
+it.each([
+  [TRIPLET, 'triplet'],
+  ['spinor/separate/index/median/clean', 'spinor'],
+])('encode writes a folder, whole, that stands for the program: %s', async (variant, form) => {
+  const out = join(folder, form);
+  const { request, manner } = call(out, variant);
   const result = await answer(request, inlineContext());
   expect(existsSync(out)).toBe(false);
   let text = '';
@@ -57,16 +58,25 @@ it('encode writes a folder, whole, that stands for the program', async () => {
   const stream = { write, isTTY: false } as never;
   expect(printResult(result, manner, stream, stream)).toBe(0);
   expect(text).toMatch(/realised bound +\S+ +rigorous/);
+  expect(text).toContain(`tables of the ${form} form`);
 
   const document = JSON.parse(readFileSync(join(out, 'tables.json'), 'utf8')) as TablesDocument;
   expect(readdirSync(out).sort()).toEqual(['tables.json', ...document.arrays.map(({ file }) => file)].sort());
-  expect(readdirSync(folder)).toEqual(['tables']);
-  const arrays = new Map(document.arrays.map(({ name, file }) => [name, values(join(out, file))]));
-  const program = readTables(document, arrays);
-  expect(program.items.length + 1).toBe(document.sizes.items);
-  const lambda = program.items.flatMap((item) => item.lambda).reduce((sum, x) => sum + x, 0);
+  expect(readdirSync(folder).filter((name) => name.startsWith('.'))).toEqual([]);
+  expect(text).toContain(`${document.arrays.length} arrays`);
+  const stored = await readTables(await folderFiles(out), inlineContext());
+  expect(stored.form).toBe(form);
+  if (stored.form === 'sparse') throw new Error('another form');
+  const { program } = stored;
+  const oneBody = 'spared' in program ? program.oneBody.length : 1;
+  expect(program.items.length + oneBody).toBe(document.sizes.items);
+  const lambda =
+    'spared' in program
+      ? program.items.flatMap((item) => item.faces.map((face) => face.lambda))
+      : program.items.flatMap((item) => item.lambda);
   // Rounded to multiples of 2^−(n + ℵ) of λ.
-  expect(Math.abs(lambda - document.lambda.twoBody)).toBeLessThan(1e-5);
+  const total = lambda.reduce((sum, x) => sum + x, 0);
+  expect(Math.abs(total - document.lambda.twoBody)).toBeLessThan(1e-5);
 });
 
 it('encode leaves a folder with files alone', async () => {
@@ -82,4 +92,52 @@ it('encode leaves a folder with files alone', async () => {
   expect(readFileSync(join(folder, 'mine'), 'utf8')).toBe('x');
   const onFile = await answer(call(join(folder, 'mine')).request, inlineContext()).catch((e: unknown) => e);
   expect((onFile as InputError).toProblem().code).toBe('folder-in-use');
+});
+
+/** A context that stops the job, or does something, once a stage is reached. */
+function atStage(stage: RegExp, act: () => void): JobContext {
+  const context: JobContext = {
+    ...inlineContext(),
+    report: (name) => {
+      if (stage.test(name)) act();
+    },
+  };
+  return context;
+}
+
+describe('encode leaves nothing half-written', () => {
+  it('where it is stopped in the middle', async () => {
+    const out = join(folder, 'stopped');
+    const { request } = call(out);
+    const stop = atStage(/^writing inner_keep/, () => {
+      throw new Error('stopped');
+    });
+    await expect(answer(request, stop)).rejects.toThrow('stopped');
+    expect(existsSync(out)).toBe(false);
+    removePending();
+    expect(readdirSync(folder).filter((name) => name.includes('stopped'))).toEqual([]);
+  });
+
+  it('where the disk loses some of it before it is put in place', async () => {
+    const out = join(folder, 'lost');
+    const { request } = call(out);
+    if (request.command !== 'encode') throw new Error('another command');
+    const { temporary } = request.out;
+    const lose = atStage(/^reading tables.json/, () => truncateSync(join(temporary, 'row_angles.npy'), 100));
+    await expect(answer(request, lose)).rejects.toBeInstanceOf(InputError);
+    expect(existsSync(out)).toBe(false);
+    removePending();
+  });
+
+  it('where a file cannot be written', async () => {
+    const temporary = join(folder, 'taken');
+    mkdirSync(temporary);
+    writeFileSync(join(temporary, 'a'), '');
+    const produce = async (append: (name: string, bytes: Uint8Array) => void) =>
+      append('a', new Uint8Array(1));
+    await expect(writeFolder({ path: join(folder, 'shown'), temporary }, produce)).rejects.toMatchObject({
+      code: 'cannot-write',
+      where: join(folder, 'shown'),
+    });
+  });
 });

@@ -1,7 +1,11 @@
-import type { TripletProgram } from '../encode';
-import { type OrbitalWindow, restrictToWindow, type SpatialHamiltonian } from '../hamiltonian';
-import type { JobContext } from '../job';
-import { levelShifts, windowOfProgram } from '../verify';
+import {
+  type OrbitalWindow,
+  restrictToWindow,
+  type SpatialHamiltonian,
+  type SpinHamiltonian,
+} from '../../hamiltonian';
+import type { JobContext } from '../../job';
+import { levelShifts } from '../../verify';
 
 /** What an encoding does to the lowest levels of an orbital window, hartree. */
 export interface WindowEffect {
@@ -47,26 +51,27 @@ export function fermiWindow(electrons: number, occupations: ArrayLike<number>): 
   return inside < 0 || inside > 2 * orbitals.length ? null : { orbitals, electrons: inside, occupations };
 }
 
-/**
- * The lowest levels of the window under H, under the program of the encoding, and under its rounded tables.
- *
- * @param truncated - whether anything was dropped
- */
+/** What programs stand for over a window of orbitals. */
+export interface Windowed {
+  /** Of the encoding before rounding. */
+  given(window: OrbitalWindow): Promise<SpinHamiltonian>;
+  encoded(window: OrbitalWindow): Promise<SpinHamiltonian>;
+  /** Whether anything was dropped. */
+  readonly truncated: boolean;
+}
+
+/** The lowest levels of the window under H, under the program of the encoding, and under its rounded tables. */
 export async function windowEffect(
   hamiltonian: SpatialHamiltonian,
-  given: TripletProgram,
-  encoded: TripletProgram,
+  { given, encoded, truncated }: Windowed,
   occupations: ArrayLike<number>,
-  truncated: boolean,
   context: JobContext,
 ): Promise<WindowEffect | null> {
   const window = fermiWindow(hamiltonian.electrons, occupations);
   if (!window) return null;
   const exact = restrictToWindow(hamiltonian, window);
-  const both = await levelShifts(exact, await windowOfProgram(encoded, window, context), STATES, context);
-  const truncation = truncated
-    ? (await levelShifts(exact, await windowOfProgram(given, window, context), STATES, context)).largest
-    : 0;
+  const both = await levelShifts(exact, await encoded(window), STATES, context);
+  const truncation = truncated ? (await levelShifts(exact, await given(window), STATES, context)).largest : 0;
   return {
     orbitals: window.orbitals.map((p) => p + 1),
     electrons: window.electrons,

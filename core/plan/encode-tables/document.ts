@@ -1,0 +1,57 @@
+import type { LambdaByPart } from '../../encode';
+import type { ElementName, Sizes } from './arrays';
+import type { FormName } from './form';
+import type { WindowEffect } from './levels';
+
+export const TABLES_SCHEMA = 'spinwright-tables/2';
+export const TABLES_FILE = 'tables.json';
+
+/** What rounding to the bits of the tables may change, hartree. */
+export interface RoundingSummary {
+  /** Worst case over all roundings, from λ and sizes alone; rigorous. */
+  readonly worstCase: number;
+  /** Statistical estimate from λ and sizes alone. */
+  readonly estimate: number;
+  /** From the rounded rows themselves, in the sector of the electrons; rigorous. */
+  readonly realised: number;
+  /** The same with items adding up as if independent; no bound. */
+  readonly typical: number;
+}
+
+/** One array, and the file that holds it. */
+export interface WrittenArray {
+  readonly name: string;
+  readonly file: string;
+  readonly type: ElementName;
+  readonly shape: readonly number[];
+  /** The extents by the names that `sizes` has them under. */
+  readonly extents: readonly (string | number)[];
+  readonly meaning: string;
+  /** Of the numbers, without the header of the file. */
+  readonly crc32: number;
+}
+
+/** `tables.json` of an exported encoding: describes itself and the arrays beside it. */
+export interface TablesDocument {
+  readonly schema: typeof TABLES_SCHEMA;
+  readonly form: FormName;
+  readonly variant: string;
+  readonly orbitals: number;
+  readonly electrons: number;
+  readonly terms: readonly string[];
+  readonly constant: number;
+  readonly lambda: LambdaByPart;
+  readonly bits: Sizes;
+  /** Extents of the arrays, and what else reading needs. */
+  readonly sizes: Sizes;
+  readonly residual: {
+    readonly frobenius: number;
+    readonly oneNormBound: number;
+    readonly dropped: number;
+  };
+  readonly rounding: RoundingSummary;
+  /** Lowest levels of an orbital window around the Fermi level; null where none can be chosen. */
+  readonly window: WindowEffect | null;
+  readonly conventions: Readonly<Record<string, string>>;
+  readonly arrays: readonly WrittenArray[];
+}

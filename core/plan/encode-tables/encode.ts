@@ -1,0 +1,134 @@
+import type { LookupPolicy } from '../../circuit';
+import { type Encoding, formatVariant } from '../../encode';
+import { roundingError } from '../../estimate';
+import { heldTerms } from '../../hamiltonian';
+import type { IntegralSet } from '../../integrals';
+import { InputError, type JobContext } from '../../job';
+import type { CircuitRequest } from '../circuit-run';
+import { costOf, targetOf, thresholdOf, toleranceOf } from '../costing';
+import { Encodings } from '../encodings';
+import { hamiltonianOf, occupationsOf } from '../system';
+import { TABLES_SCHEMA, type TablesDocument } from './document';
+import type { FormName, FormProgram, RoundedTables, RoundingChoice } from './form';
+import { FORMS } from './forms';
+import { windowEffect } from './levels';
+
+/** The rounded tables of a variant, not written yet. */
+export interface EncodedTables {
+  /** The document but for its list of arrays. */
+  readonly summary: Omit<TablesDocument, 'arrays'>;
+  readonly rounded: Pick<RoundedTables<FormName>, 'data'>;
+  /** The program that the tables encode exactly. */
+  readonly encoded: FormProgram;
+}
+
+/** Keep values and angle numbers are written as 32-bit numbers. */
+const MOST_BITS = 32;
+
+/**
+ * The rounded tables of one variant, with what rounding and truncation do to the energy.
+ *
+ * @throws InputError `left-out`, `no-tables`, `too-many-bits`
+ */
+export async function encodeTables(
+  set: IntegralSet,
+  request: CircuitRequest,
+  context: JobContext,
+): Promise<EncodedTables> {
+  const variant = formatVariant(request.variant);
+  const refuse = (code: string, found: string, expected: string, mend: string): InputError =>
+    new InputError({ code, where: `variant "${variant}"`, found, expected, mend });
+  const hamiltonian = hamiltonianOf(set, request);
+  const target = targetOf(request);
+  const occupations = occupationsOf(set, request);
+  const encodings = new Encodings(
+    hamiltonian,
+    thresholdOf(request, target),
+    occupations,
+    toleranceOf(target),
+  );
+  const reason = encodings.refusal(request.variant);
+  if (reason !== null) {
+    throw refuse(
+      'left-out',
+      reason,
+      'an encoding that can be made',
+      'Choose another grouping, e.g. separate.',
+    );
+  }
+  const encoding = await encodings.of(request.variant, context);
+  const { bits: used } = costOf(encoding, request.variant, target, request);
+  if (used.keep > MOST_BITS || used.rotation > MOST_BITS) {
+    throw refuse(
+      'too-many-bits',
+      `${used.keep} bits of keep values, ${used.rotation} of angles`,
+      `at most ${MOST_BITS} each`,
+      'Give fewer with --bits.',
+    );
+  }
+  context.report('rounding the tables', 0, null);
+  await context.checkpoint();
+  const policy: LookupPolicy = {
+    mode: request.variant.lookup,
+    block: 'auto',
+    qubitCap: request.qubitsMax,
+  };
+  const found = roundAs(encoding, { bits: used, policy });
+  if (!found) {
+    throw refuse(
+      'no-tables',
+      'an encoding whose rows cannot be listed',
+      'one with a circuit: an odd number of spinors has none',
+      'Choose another variant, or leave a spinor out.',
+    );
+  }
+  const { form, conventions, rounded, encoded } = found;
+  const { rigorous, estimate } = roundingError(encoding.shape, encoding.lambda, used);
+  const realised = await rounded.rounding(hamiltonian.electrons, context);
+  const { inWindow } = rounded;
+  const window =
+    hamiltonian.kind === 'spatial' && occupations && inWindow
+      ? await windowEffect(
+          hamiltonian,
+          {
+            given: (own) => inWindow(rounded.given, own, context),
+            encoded: (own) => inWindow(rounded.encoded, own, context),
+            truncated: encoding.residual.oneNormBound > 0,
+          },
+          occupations,
+          context,
+        )
+      : null;
+  return {
+    rounded,
+    encoded,
+    summary: {
+      schema: TABLES_SCHEMA,
+      form,
+      variant,
+      orbitals: rounded.encoded.orbitals,
+      electrons: hamiltonian.electrons,
+      terms: hamiltonian.kind === 'spatial' ? hamiltonian.terms : heldTerms(set),
+      constant: encoding.constant,
+      lambda: encoding.lambda,
+      bits: rounded.bits,
+      sizes: rounded.sizes,
+      residual: encoding.residual,
+      rounding: { worstCase: rigorous, estimate, realised: realised.bound, typical: realised.typical },
+      window,
+      conventions,
+    },
+  };
+}
+
+/** The tables in the first form that the encoding is of. */
+function roundAs(encoding: Encoding, how: RoundingChoice) {
+  for (const known of FORMS) {
+    const { form, conventions } = known;
+    const rounded = known.round(encoding, how) as RoundedTables<FormName> | null;
+    if (rounded) {
+      return { form, conventions, rounded, encoded: { form, program: rounded.encoded } as FormProgram };
+    }
+  }
+  return null;
+}

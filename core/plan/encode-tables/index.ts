@@ -1,0 +1,5 @@
+export { TABLES_FILE, type TablesDocument } from './document';
+export { type EncodedTables, encodeTables } from './encode';
+export type { FormProgram } from './form';
+export { readTables } from './read';
+export { writeTables } from './write';
