@@ -4,6 +4,7 @@ import { InputError, type JobContext } from '../job';
 import { encodeSpatial } from './assemble';
 import type { Encoding } from './encoding';
 import { encodeSparse } from './sparse';
+import { encodeShiftedSparse } from './sparse-shift/encode';
 import { encodeSpinors } from './spinor';
 import { formatVariant, type VariantName } from './variant';
 
@@ -36,7 +37,8 @@ export async function buildEncoding(
     });
   }
   if (hamiltonian.kind === 'spatial' && variant.factorisation === 'sparse') {
-    return encodeSparse(hamiltonian, variant, options.threshold ?? 0, ctx);
+    const encode = variant.shift === 'none' ? encodeSparse : encodeShiftedSparse;
+    return encode(hamiltonian, variant, options.threshold ?? 0, ctx);
   }
   if (factorisation?.grouping !== variant.grouping) {
     throw new RangeError(`variant ${name} needs a ${variant.grouping} factorisation`);

@@ -82,9 +82,9 @@ function objection(name: VariantName): { found: string; expected: string; mend: 
     }
     if (shift !== 'none') {
       return {
-        found: `shift "${shift}" with the sparse form: a median shift acts on the eigenvalues of factors`,
-        expected: 'shift "none"',
-        mend: 'Write sparse/-/index/none/….',
+        found: 'shift "median" with the sparse form: it acts on the eigenvalues of factors',
+        expected: 'shift "none" or "optimised"',
+        mend: 'Write sparse/-/index/none/… or sparse/-/index/optimised/….',
       };
     }
     return null;

@@ -44,7 +44,7 @@ export async function minimiseSmooth(
     evaluations++;
     return evaluate(x);
   };
-  let x = Float64Array.from(start);
+  let x: Float64Array = Float64Array.from(start);
   let here = await at(x);
   const pairs: Pair[] = [];
   const values = [here.value];

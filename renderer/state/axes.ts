@@ -52,8 +52,9 @@ export function product(chosen: Readonly<Partial<Record<Axis, readonly string[]>
   for (const factorisation of chosen.factorisation ?? OFFERED.factorisation) {
     const [groupings, spins, shifts, lookups] = AXIS_NAMES.slice(1).map((axis) => {
       const sound = soundValues(factorisation, axis);
-      // An axis without a choice for the factorisation takes its only value instead of being crossed.
-      return sound.length === 1 ? sound : sound.filter((value) => (chosen[axis] ?? sound).includes(value));
+      const fitting = sound.filter((value) => (chosen[axis] ?? sound).includes(value));
+      // Where nothing chosen fits the factorisation, it takes its first (or only) value instead of being left out.
+      return fitting.length > 0 ? fitting : sound.slice(0, 1);
     }) as [string[], string[], string[], string[]];
     for (const grouping of groupings)
       for (const spin of spins)

@@ -5,7 +5,20 @@ describe('axes', () => {
   it('offers sound combinations only', () => {
     for (const name of product({})) expect(whyNot(name)).toBeNull();
     expect(whyNot('sparse/-/swap-layers/none/clean')).toContain('swap layers');
-    expect(product({ factorisation: ['sparse'], lookup: ['clean'] })).toEqual(['sparse/-/index/none/clean']);
+    expect(product({ factorisation: ['sparse'], lookup: ['clean'] })).toEqual([
+      'sparse/-/index/none/clean',
+      'sparse/-/index/optimised/clean',
+    ]);
+    const medians = product({ factorisation: ['sparse'], shift: ['median'], lookup: ['clean'] });
+    expect(medians).toEqual(['sparse/-/index/none/clean']);
+    for (const name of [
+      'triplet/joint/index',
+      'spinor/joint/index',
+      'spinor/separate/index',
+      'sparse/-/index',
+    ]) {
+      expect(product({})).toContain(`${name}/optimised/clean`);
+    }
   });
 
   it('adds the combinations of a word with the words in use, and takes them away again', () => {
@@ -32,8 +45,6 @@ describe('axes', () => {
   });
 
   it('finds its way back from nothing', () => {
-    expect(toggled([], 'factorisation', 'sparse').every((n) => n.startsWith('sparse/-/index/none/'))).toBe(
-      true,
-    );
+    expect(toggled([], 'factorisation', 'sparse').every((n) => n.startsWith('sparse/-/index/'))).toBe(true);
   });
 });
