@@ -1,8 +1,16 @@
 import { eigenTask } from './eigenvectors';
-import { mixingTask } from './mixing/objective';
+import { mixingTask } from './mixing/squares';
+import { tripleMixingTask } from './mixing/triples';
 import { spectraTask } from './spectra';
 import { hermitianSpectraTask } from './spinor';
 import { svdTask } from './triples';
 
 /** Tasks that workers must know by name to run factorisations in parallel. */
-export const factorTasks = [eigenTask, spectraTask, svdTask, hermitianSpectraTask, mixingTask] as const;
+export const factorTasks = [
+  eigenTask,
+  spectraTask,
+  svdTask,
+  hermitianSpectraTask,
+  mixingTask,
+  tripleMixingTask,
+] as const;

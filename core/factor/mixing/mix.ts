@@ -1,254 +1,224 @@
-import { numSymmetricPairs } from '../../integrals/integral-set';
+import { numAntisymmetricPairs, numSymmetricPairs } from '../../integrals/integral-set';
 import type { JobContext } from '../../job';
 import { multiply } from '../../linalg';
-import {
-  type MixingPoint,
-  type MixingProblem,
-  type MixingValue,
-  mixingValue,
-  withMedianShifts,
-} from './objective';
+import { matrixBlocks } from '../components';
+import { descend, WIDTHS } from './descent';
+import { exponential, uniformNumbers } from './exponential';
+import { type SquarePoint, type SquareSetting, slotScales, squareProblem } from './squares';
+import { arrayOf, checkSameTensor, type MixingState, type MixingStore } from './state';
+import { type TriplePoint, type TripleSetting, tripleProblem } from './triples';
 
 export interface MixingOptions {
   /**
-   * Number of factors, at least the rank: further ones start near zero and give the mixing more freedom, at the price
-   * of more rows. @defaultValue the rank
+   * Number of factors; above the rank: further ones start near zero and give the mixing more freedom, at the price of
+   * more rows. @defaultValue the rank
    */
   readonly factors?: number;
-  /** Leaves the factors as they are and optimises the shifts alone: a convex problem. @defaultValue false */
-  readonly keepFactors?: boolean;
-  /** Steps at each smoothing width. @defaultValue 60 */
+  /** Most steps at each smoothing width. @defaultValue 60 */
   readonly steps?: number;
-  /** Continues from here instead of from the columns. */
-  readonly start?: MixingPoint;
-  /** Told of every better point, so that a stopped run leaves its best. */
-  readonly onBest?: (point: MixingPoint, lambda: number) => void;
+  /** Hartree: two steps running that lower λ by less end a width. @defaultValue 2e-6 of the part's λ */
+  readonly settled?: number;
+  readonly store?: MixingStore;
 }
 
-export interface MixingResult extends MixingPoint {
-  /** λ of the charge part and κ⁰ with these factors and shifts, hartree. */
+export interface Mixed<Point> {
+  readonly point: Point;
+  /** λ of the part and of the planes of κ that its shifts act on, hartree. */
   readonly lambda: number;
-  readonly steps: number;
+  readonly evaluations: number;
 }
 
-/** Smoothing widths, relative to the largest column: each is a start for the next, and the last is next to nothing. */
-const WIDTHS = [0.05, 0.02, 0.007, 0.002, 0.0007];
-/** A step that lowers λ by less than this part ends a width. */
+const STEPS = 60;
 const SETTLED = 2e-6;
-const MAX_BACKTRACKS = 12;
+/** Vectors that a stored state is tried on. */
+const PROBES = 3;
 
 /**
- * Mixes factors among themselves so that λ becomes least: G = Σ v vᵀ is unchanged when the columns are multiplied by
- * an orthogonal matrix, but the nuclear norms, and with them λ, are not. Shifts are optimised together with the
- * mixing. The residual of G stays what it was, to rounding.
- *
- * Conjugate gradients on the orthogonal group (steps exp(−sA), A antisymmetric; Polak–Ribière with restarts),
- * nuclear norms smoothed by √(x² + δ²) with δ going down. The idea of choosing factors by their one-norm under a
+ * Mixes factors among themselves so that λ becomes least: G = Σ σ v vᵀ stays what it was, to rounding, and with it
+ * every residual. Shifts are optimised together with the mixing. The idea of choosing factors by their one-norm under a
  * fixed tensor is that of compressed double factorisation (e.g. O. Oumarou et al., Quantum 8, 1371 (2024), quoted from
  * memory); mixing exact factors instead of fitting new ones is our own.
  *
- * @param columns - count × n(n+1)/2 pair coordinates of the factors, weights inside; not modified
- * @throws Cancelled when stopped; `onBest` has then seen the best so far.
+ * @param columns - signs.length × dim coordinates of the factors, weights inside; not modified
+ * @param part - its name in the store and in progress
+ * @throws Cancelled when stopped: the store has then been told of the best so far; InputError `other-mixing-state`
  */
-export async function mixFactors(
-  problem: MixingProblem,
+export async function mixSquares(
+  setting: SquareSetting,
   columns: Float64Array,
-  count: number,
+  signs: Int8Array,
+  part: string,
   options: MixingOptions,
   ctx: JobContext,
-): Promise<MixingResult> {
-  const npair = numSymmetricPairs(problem.n);
-  const maxSteps = options.steps ?? 60;
-  const scale = largestNorm(columns, count, npair);
-  let point = options.start ?? spread(columns, count, npair, options.factors ?? count, ctx.seed);
-  let best: MixingPoint = point;
-  let bestLambda = (await mixingValue(problem, point, 0, ctx)).lambda;
-  let taken = 0;
-  for (const [stage, width] of WIDTHS.entries()) {
-    const delta = width * scale;
-    let value = await mixingValue(problem, point, delta, ctx);
-    let direction: Direction | null = null;
-    let length = 1;
-    for (let step = 0; step < maxSteps; step++) {
-      ctx.report('mixing factors', stage * maxSteps + step, WIDTHS.length * maxSteps);
-      await ctx.checkpoint();
-      direction = nextDirection(point, value, direction, npair, options.keepFactors ?? false);
-      const moved = await search(problem, point, value, direction, length, delta, ctx);
-      if (!moved) break;
-      const gain = value.lambda - moved.value.lambda;
-      point = moved.point;
-      value = moved.value;
-      length = moved.length * 1.6;
-      taken++;
-      if (gain < SETTLED * value.lambda) break;
-    }
-    // Smoothing rounds off the kink at the median, which is where a shift without effect on κ belongs.
-    for (const candidate of [point, withMedianShifts(problem.n, point)]) {
-      const { lambda } = await mixingValue(problem, candidate, 0, ctx);
-      if (lambda >= bestLambda) continue;
-      best = candidate;
-      bestLambda = lambda;
-      options.onBest?.(best, bestLambda);
-    }
-  }
-  ctx.report('mixing factors', WIDTHS.length * maxSteps, WIDTHS.length * maxSteps);
-  return { ...best, lambda: bestLambda, steps: taken };
-}
-
-function largestNorm(columns: Float64Array, count: number, npair: number): number {
-  let largest = 0;
-  for (let t = 0; t < count; t++) {
-    let sum = 0;
-    for (let i = t * npair; i < (t + 1) * npair; i++) sum += columns[i]! * columns[i]!;
-    largest = Math.max(largest, sum);
-  }
-  return Math.sqrt(largest);
-}
-
-/** Starting point: the columns, followed by empty ones into which a small seeded rotation lets some of them leak. */
-function spread(
-  columns: Float64Array,
-  count: number,
-  npair: number,
-  factors: number,
-  seed: number,
-): MixingPoint {
-  const total = Math.max(count, factors);
-  const padded = new Float64Array(total * npair);
-  padded.set(columns.subarray(0, count * npair));
-  const start = { count: total, columns: padded, shifts: new Float64Array(total) };
-  if (total === count) return start;
-  let state = seed | 0;
-  const random = () => {
-    state = (state + 0x6d2b79f5) | 0;
-    let x = Math.imul(state ^ (state >>> 15), 1 | state);
-    x = (x + Math.imul(x ^ (x >>> 7), 61 | x)) ^ x;
-    return ((x ^ (x >>> 14)) >>> 0) / 4294967296 - 0.5;
+): Promise<Mixed<SquarePoint>> {
+  const { dim } = setting.layout;
+  const given = signs.length;
+  const count = Math.max(given, options.factors ?? given);
+  const padded: SquarePoint = {
+    count,
+    columns: resized(columns, count * dim),
+    shifts: new Float64Array(count),
+    signs: Int8Array.from({ length: count }, (_, t) => signs[t % given]!),
+    classes: classesOf(columns, given, dim, count),
   };
-  const mixing = new Float64Array(total * total);
-  for (let s = 0; s < total; s++) {
-    for (let t = 0; t < s; t++) {
-      const x = (0.4 / Math.sqrt(total)) * random();
-      mixing[s * total + t] = x;
-      mixing[t * total + s] = -x;
-    }
-  }
-  return { ...start, columns: rotated(padded, mixing, total, npair, 1) };
-}
-
-/** Descent direction: an antisymmetric matrix for the mixing, a vector for the shifts. */
-interface Direction {
-  readonly mixing: Float64Array;
-  readonly shifts: Float64Array;
-  /** The gradient it was made from, and that gradient's squared length. */
-  readonly gradient: { readonly mixing: Float64Array; readonly shifts: Float64Array };
-  readonly square: number;
-  /** Rate at which λ falls along it. */
-  readonly slope: number;
-}
-
-function nextDirection(
-  { count, columns }: MixingPoint,
-  value: MixingValue,
-  previous: Direction | null,
-  npair: number,
-  keepFactors: boolean,
-): Direction {
-  // d λ/dε along W → exp(−εA)W is −⟨A, (∂λ/∂W) Wᵀ⟩: the antisymmetric part is the gradient.
-  const mixing = new Float64Array(count * count);
-  const product = keepFactors
-    ? mixing
-    : multiply(value.columns, columns, count, npair, count, { transposeB: true });
-  for (let s = 0; s < count && !keepFactors; s++) {
-    for (let t = 0; t < count; t++) {
-      mixing[s * count + t] = 0.5 * (product[s * count + t]! - product[t * count + s]!);
-    }
-  }
-  const gradient = { mixing, shifts: value.shifts };
-  const inner = (a: Direction['gradient'], b: Direction['gradient']) =>
-    dot(a.mixing, b.mixing) + dot(a.shifts, b.shifts);
-  const square = inner(gradient, gradient);
-  if (previous) {
-    const beta = Math.max(0, (square - inner(gradient, previous.gradient)) / previous.square);
-    const combined = {
-      mixing: combine(mixing, previous.mixing, beta),
-      shifts: combine(value.shifts, previous.shifts, beta),
-    };
-    const slope = inner(gradient, combined);
-    if (slope > 0) return { ...combined, gradient, square, slope };
-  }
-  return { ...gradient, gradient, square, slope: square };
-}
-
-/** Backtracking until λ falls as it should; null where no step does. */
-async function search(
-  problem: MixingProblem,
-  point: MixingPoint,
-  value: MixingValue,
-  direction: Direction,
-  start: number,
-  delta: number,
-  ctx: JobContext,
-) {
-  const npair = numSymmetricPairs(problem.n);
-  let length = start;
-  for (let attempt = 0; attempt < MAX_BACKTRACKS; attempt++, length *= 0.4) {
-    await ctx.checkpoint();
-    const moved: MixingPoint = {
-      count: point.count,
-      columns: rotated(point.columns, direction.mixing, point.count, npair, -length),
-      shifts: combine(point.shifts, direction.shifts, -length),
-    };
-    const found = await mixingValue(problem, moved, delta, ctx);
-    if (found.lambda <= value.lambda - 1e-4 * length * direction.slope) {
-      return { point: moved, value: found, length };
-    }
-  }
-  return null;
+  const problem = squareProblem(setting, slotScales(setting.layout, columns), ctx);
+  const saved = savedOf(options, part, count);
+  const probes = probesOf(dim);
+  const action = ({ columns: v }: SquarePoint) => {
+    const overlaps = multiply(v, probes, count, dim, PROBES, { transposeB: true });
+    for (let i = 0; i < overlaps.length; i++) overlaps[i]! *= padded.signs[Math.floor(i / PROBES)]!;
+    return multiply(overlaps, v, PROBES, count, dim, { transposeA: true });
+  };
+  const start = saved
+    ? {
+        ...padded,
+        columns: arrayOf(part, saved, 'columns', count * dim),
+        shifts: arrayOf(part, saved, 'shifts', count),
+      }
+    : leaking(padded, given, ctx.seed, (point, leak) => ({
+        ...point,
+        columns: multiply(leak, point.columns, count, count, dim),
+      }));
+  if (saved) checkSameTensor(part, action(padded), action(start));
+  return run(problem, start, part, saved, options, ctx, ({ columns, shifts }) => ({ columns, shifts }));
 }
 
 /**
- * exp(scale·A) W. The exponential is taken by its power series at norm ≤ ½ and squared back: orthogonal to rounding,
- * and made of matrix products only, which the kernels are good at.
+ * The same for triples of one Cartesian component: Σ a ⊗ S stays what it was.
+ *
+ * @param given - the triples, their strengths inside; not modified
  */
-function rotated(
-  columns: Float64Array,
-  antisymmetric: Float64Array,
-  count: number,
-  npair: number,
-  scale: number,
-): Float64Array {
-  // The Frobenius norm over √2 bounds the largest |eigenvalue|, since they come in ± pairs.
-  const norm = Math.abs(scale) * Math.sqrt(dot(antisymmetric, antisymmetric) / 2);
-  if (norm === 0) return columns;
-  const squarings = Math.max(0, Math.ceil(Math.log2(2 * norm)));
-  const small = antisymmetric.map((x) => (x * scale) / 2 ** squarings);
-  let term: Float64Array = small;
-  let exponential: Float64Array = Float64Array.from(small);
-  for (let i = 0; i < count; i++) exponential[i * count + i]! += 1;
-  for (let k = 2; k <= 18; k++) {
-    term = multiply(small, term, count, count, count);
-    let largest = 0;
-    for (let i = 0; i < term.length; i++) {
-      term[i]! /= k;
-      exponential[i]! += term[i]!;
-      largest = Math.max(largest, Math.abs(term[i]!));
+export async function mixTriples(
+  setting: TripleSetting,
+  given: Omit<TriplePoint, 'classes'>,
+  part: string,
+  options: MixingOptions,
+  ctx: JobContext,
+): Promise<Mixed<TriplePoint>> {
+  const { n } = setting;
+  const [nanti, npair] = [numAntisymmetricPairs(n), numSymmetricPairs(n)];
+  const count = Math.max(given.count, options.factors ?? given.count);
+  const padded: TriplePoint = {
+    count,
+    antisymmetric: resized(given.antisymmetric, count * nanti),
+    symmetric: resized(given.symmetric, count * npair),
+    shifts: new Float64Array(count),
+    classes: classesOf(sideBySide(given, nanti, npair), given.count, nanti + npair, count),
+  };
+  const problem = tripleProblem(setting, given, ctx);
+  const saved = savedOf(options, part, count);
+  const probes = probesOf(npair);
+  const action = ({ antisymmetric: a, symmetric: s }: TriplePoint) =>
+    multiply(multiply(s, probes, count, npair, PROBES, { transposeB: true }), a, PROBES, count, nanti, {
+      transposeA: true,
+    });
+  const start = saved
+    ? {
+        ...padded,
+        antisymmetric: arrayOf(part, saved, 'antisymmetric', count * nanti),
+        symmetric: arrayOf(part, saved, 'symmetric', count * npair),
+        shifts: arrayOf(part, saved, 'shifts', count),
+      }
+    : leaking(padded, given.count, ctx.seed, (point, leak) => ({
+        ...point,
+        antisymmetric: multiply(leak, point.antisymmetric, count, count, nanti),
+        symmetric: multiply(leak, point.symmetric, count, count, npair),
+      }));
+  if (saved) checkSameTensor(part, action(padded), action(start));
+  return run(problem, start, part, saved, options, ctx, ({ antisymmetric, symmetric, shifts }) => ({
+    antisymmetric,
+    symmetric,
+    shifts,
+  }));
+}
+
+async function run<Point extends { readonly count: number }>(
+  problem: Parameters<typeof descend<Point>>[0],
+  start: Point,
+  part: string,
+  saved: MixingState | null,
+  { steps = STEPS, settled, store }: MixingOptions,
+  ctx: JobContext,
+  arraysOf: (point: Point) => Record<string, Float64Array>,
+): Promise<Mixed<Point>> {
+  const { exact } = await problem.value(start, 0);
+  if (saved?.done) return { point: start, lambda: exact, evaluations: 1 };
+  const save = (point: Point, lambda: number, stage: number, done: boolean) =>
+    store?.save(part, { stage, done, lambda, count: point.count, arrays: arraysOf(point) });
+  const stage = Math.min(WIDTHS.length - 1, Math.max(0, Math.trunc(saved?.stage ?? 0)));
+  const found = await descend(
+    problem,
+    start,
+    {
+      steps,
+      settled: settled ?? SETTLED * exact,
+      stage,
+      label: `mixing factors, ${part}`,
+      onBest: (point, lambda, at) => save(point, lambda, at, false),
+    },
+    ctx,
+  );
+  save(found.point, found.lambda, WIDTHS.length - 1, true);
+  return found;
+}
+
+function savedOf({ store }: MixingOptions, part: string, count: number): MixingState | null {
+  const saved = store?.load(part) ?? null;
+  return saved && saved.count === count ? saved : null;
+}
+
+function resized(values: Float64Array, length: number): Float64Array {
+  const out = new Float64Array(length);
+  out.set(values);
+  return out;
+}
+
+/** Fixed numbers: what they are does not matter, only that both sides meet the same. */
+function probesOf(width: number): Float64Array {
+  const random = uniformNumbers(12345);
+  return Float64Array.from({ length: PROBES * width }, random);
+}
+
+/** Lets a little of the factors leak into the empty ones by a small seeded rotation. */
+function leaking<
+  Point extends { readonly count: number; readonly classes: Int32Array; readonly signs?: Int8Array },
+>(padded: Point, given: number, seed: number, turn: (point: Point, rotation: Float64Array) => Point): Point {
+  const { count, classes, signs } = padded;
+  if (count === given) return padded;
+  const random = uniformNumbers(seed);
+  const generator = new Float64Array(count * count);
+  for (let s = given; s < count; s++) {
+    for (let t = 0; t < given; t++) {
+      const x = (0.4 / Math.sqrt(count)) * random();
+      if (classes[s] !== classes[t] || signs?.[s] !== signs?.[t]) continue;
+      generator[s * count + t] = x;
+      generator[t * count + s] = -x;
     }
-    if (largest < 1e-17) break;
   }
-  for (let i = 0; i < squarings; i++) exponential = multiply(exponential, exponential, count, count, count);
-  return multiply(exponential, columns, count, count, npair);
+  return turn(padded, exponential(generator, count, 1));
 }
 
-function dot(a: Float64Array, b: Float64Array): number {
-  let sum = 0;
-  for (let i = 0; i < a.length; i++) sum += a[i]! * b[i]!;
-  return sum;
+/** Factors that exact zeros keep apart; the empty ones are dealt out to the classes in turn. */
+function classesOf(rows: Float64Array, given: number, dim: number, count: number): Int32Array {
+  const classes = new Int32Array(count);
+  matrixBlocks(rows, given, dim).forEach((block, i) => {
+    for (const t of block.rows) classes[t] = i;
+  });
+  for (let t = given; t < count; t++) classes[t] = classes[t % given]!;
+  return classes;
 }
 
-/** a + scale·b. */
-function combine(a: Float64Array, b: Float64Array, scale: number): Float64Array {
-  const out = Float64Array.from(a);
-  for (let i = 0; i < out.length; i++) out[i]! += scale * b[i]!;
+/** count × (nanti + npair): a and S of each triple in one row. */
+function sideBySide(
+  { count, antisymmetric, symmetric }: Omit<TriplePoint, 'classes'>,
+  nanti: number,
+  npair: number,
+): Float64Array {
+  const out = new Float64Array(count * (nanti + npair));
+  for (let t = 0; t < count; t++) {
+    const at = t * (nanti + npair);
+    out.set(antisymmetric.subarray(t * nanti, (t + 1) * nanti), at);
+    out.set(symmetric.subarray(t * npair, (t + 1) * npair), at + nanti);
+  }
   return out;
 }
