@@ -87,7 +87,8 @@ export class Encodings {
       found = given;
       const h = this.#hamiltonian;
       if (changed !== 'as they are' && h.kind === 'spatial') {
-        found = await compressFactors(h, found, {}, context);
+        // Thinning needs the spin-dependent factors as their decomposition orders them.
+        found = await compressFactors(h, found, { chargeOnly: mixed }, context);
         if (mixed) found = await this.#thinned(h, found, context);
       }
       ({ factorisation: found } = await optimiseShifts(h, found, {}, context));
