@@ -1,5 +1,7 @@
 export { buildEncoding, type EncodingOptions } from './build';
 export type { Encoding, EncodingShape, ItemSizes, LambdaByPart } from './encoding';
+export { type OrbitalFrame, type OrbitalFrameOptions, orbitalFrame } from './frame/orbital';
+export { rotationOf, type SpinFrame, spinFrame } from './frame/spin';
 export type { RowFace, TripletItem, TripletProgram, TripletRow, VectorProducts } from './program';
 export { type SparseProgram, type TermKind, type TermSizes, termSizes } from './sparse-program';
 export {

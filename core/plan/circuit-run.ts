@@ -5,6 +5,7 @@ import { InputError, type JobContext } from '../job';
 import { type CircuitCount, countWalkStep } from './circuit-count';
 import { costOf, targetOf, thresholdOf, toleranceOf } from './costing';
 import { Encodings } from './encodings';
+import { FramedEncodings } from './framed-encodings';
 import type { ComparisonRequest } from './request';
 import { hamiltonianOf, occupationsOf } from './system';
 import { type CircuitEstimate, type CircuitPart, walkCircuit } from './walk-circuit';
@@ -39,11 +40,12 @@ interface Planned {
 
 async function plan(set: IntegralSet, request: CircuitRequest, context: JobContext): Promise<Planned> {
   const target = targetOf(request);
-  const encodings = new Encodings(
+  const threshold = thresholdOf(request, target);
+  const occupations = occupationsOf(set, request);
+  const encodings = new FramedEncodings(
     hamiltonianOf(set, request),
-    thresholdOf(request, target),
-    occupationsOf(set, request),
-    toleranceOf(target),
+    (h) => new Encodings(h, threshold, occupations, toleranceOf(target)),
+    request.frames,
   );
   const reason = encodings.refusal(request.variant);
   if (reason !== null) {

@@ -1,6 +1,7 @@
 import type { StepPart, Subroutine } from '../circuit/recipe';
 import type { PhysicalEstimate } from '../estimate/estimate';
 import type { EnergyUnit } from '../units';
+import type { FrameRecord } from './frame';
 
 /** What is asked of phase estimation. */
 export interface Target {
@@ -72,5 +73,7 @@ export interface Comparison {
   };
   readonly target: Target;
   readonly variants: readonly VariantEstimate[];
+  /** Frames that were sought; absent where none was asked for. */
+  readonly frames?: readonly FrameRecord[];
   readonly recommendation: { readonly variant: string | null; readonly reasons: readonly string[] };
 }

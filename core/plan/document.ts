@@ -1,5 +1,6 @@
 import { STEP_PARTS } from '../circuit/recipe';
 import type { Comparison, VariantEstimate } from './comparison';
+import type { FrameRecord } from './frame';
 
 /**
  * The comparison as `compare --json` prints it: the keys of the published schema in their order, nothing else.
@@ -10,6 +11,7 @@ export function comparisonDocument({
   hamiltonian,
   target,
   variants,
+  frames,
   recommendation,
 }: Comparison): object {
   const { orbitals, electrons, constant, terms } = hamiltonian;
@@ -23,7 +25,23 @@ export function comparisonDocument({
     },
     target: { value: target.value, unit: target.unit, hartree: target.hartree },
     variants: variants.map(variantDocument),
+    ...(frames ? { frames: frames.map(frameDocument) } : {}),
     recommendation: { variant: recommendation.variant, reasons: recommendation.reasons },
+  };
+}
+
+/** A frame in the order of the schema. */
+export function frameDocument(frame: FrameRecord): object {
+  const { kind, variants, judgedBy, turned, rotation, lambda, rows, evaluations } = frame;
+  return {
+    kind,
+    variants,
+    judgedBy,
+    turned,
+    rotation,
+    lambda: { before: lambda.before, after: lambda.after },
+    rows: { before: rows.before, after: rows.after },
+    evaluations,
   };
 }
 

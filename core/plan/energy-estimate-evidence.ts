@@ -6,6 +6,7 @@ import { exactSpectrum, type Spectrum } from '../verify';
 import { Encodings } from './encodings';
 import { EnergyEstimates, randomDeterminants, type TruncationEnergy } from './energy-estimate';
 import { type Check, check, type TruncationEvidence } from './evidence';
+import { FramedEncodings } from './framed-encodings';
 import { hamiltonianOf, occupationsOf, type SystemRequest } from './system';
 
 const DIAGONAL = 'no expectation value moves by more than the one-norm of what was dropped';
@@ -14,13 +15,12 @@ const DIAGONAL = 'no expectation value moves by more than the one-norm of what w
 export async function truncationEvidence(
   name: string,
   oneNormBound: number,
-  hamiltonian: ReturnType<typeof hamiltonianOf>,
   energy: TruncationEnergy | string | null,
   rounding: number,
   context: JobContext,
 ): Promise<{ readonly evidence: TruncationEvidence; readonly checks: readonly Check[] } | null> {
   if (energy === null || typeof energy === 'string') return null;
-  const random = await randomDeterminants(hamiltonian, energy, context);
+  const random = await randomDeterminants(energy, context);
   const { firstOrder, secondOrder } = energy;
   const largest = Math.max(Math.abs(random.mean), random.spread, random.singles, random.doubles);
   const tolerance = oneNormBound + rounding;
@@ -55,14 +55,20 @@ export async function windowChecks(
   const orbitals = window.orbitals.map((orbital) => orbital - 1);
   const inside = Math.round(orbitals.reduce((sum, p) => sum + occupations[p]!, 0));
   const choice = { orbitals, electrons: window.electrons ?? inside, occupations };
-  const encodings = new Encodings(hamiltonian, threshold, occupations, threshold);
+  const encodings = new FramedEncodings(
+    hamiltonian,
+    (h) => new Encodings(h, threshold, occupations, threshold),
+    request.frames,
+  );
   const estimates = new EnergyEstimates(hamiltonian, occupations);
   const checks: Check[] = [];
   const seen = new Set<TruncationEnergy>();
   for (const variant of variants) {
     if (encodings.refusal(variant) !== null) continue;
     const encoding = await encodings.of(variant, context);
-    const energy = await estimates.of(encoding, await encodings.factorisationOf(variant, context), context);
+    const factorisation = await encodings.factorisationOf(variant, context);
+    const frame = await encodings.frameOf(variant, context);
+    const energy = await estimates.of(encoding, factorisation, context, frame);
     if (energy === null || typeof energy === 'string' || seen.has(energy) || energy.kept.kind !== 'spatial') {
       continue;
     }

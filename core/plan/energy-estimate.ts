@@ -12,6 +12,7 @@ import {
   secondOrder,
 } from '../verify';
 import { hamiltonianOfFactors } from './energy-estimate-hamiltonian';
+import { type Frame, turnedBack } from './frame';
 
 /** What an encoding's truncation means for the energy, hartree. */
 export interface TruncationEnergy {
@@ -23,7 +24,8 @@ export interface TruncationEnergy {
   readonly secondOrder: number;
   /** Excitations left out as too close to the determinant. */
   readonly omitted: number;
-  /** The Hamiltonian that is left, without symmetry shifts. */
+  /** The whole Hamiltonian, and what is left of it, without symmetry shifts, over one basis. */
+  readonly whole: SpinHamiltonian;
   readonly kept: SpinHamiltonian;
 }
 
@@ -38,6 +40,7 @@ export class EnergyEstimates {
   readonly #occupations: readonly number[] | null;
   /** By what was dropped: variants of one factorisation share it whatever their shift. */
   readonly #known = new Map<Encoding['residual'], TruncationEnergy | string>();
+  readonly #framed = new Map<SpinHamiltonian, EnergyEstimates>();
   #given: { readonly occupied: Uint8Array; readonly energy: SecondOrder } | null = null;
 
   /** @param occupations - of the reference determinant, or null: the lowest one that a search finds */
@@ -50,19 +53,35 @@ export class EnergyEstimates {
    * First and second order of the reference determinant, truncated against full.
    *
    * @param factorisation - that the encoding was made from; null for the sparse form
+   * @param frame - basis of both, null for the given one
    * @returns null where nothing was dropped, or a reason why there is no estimate
    */
   async of(
     encoding: Encoding,
     factorisation: Factorisation | null,
     context: JobContext,
+    frame: Frame | null = null,
   ): Promise<TruncationEnergy | string | null> {
     const { residual } = encoding;
     if (residual.oneNormBound === 0 && residual.frobenius === 0) return null;
+    // Occupations are those of the given orbitals, so turned ones are turned back; spin axes need not be.
+    const turned = frame?.record.turned ? frame : null;
+    if (turned?.record.kind === 'spin') {
+      return this.#estimatesOf(turned.hamiltonian).of(encoding, factorisation, context);
+    }
     let found = this.#known.get(residual);
     if (found === undefined) {
-      found = await this.#estimate(encoding, factorisation, context);
+      found = await this.#estimate(encoding, factorisation, turned, context);
       this.#known.set(residual, found);
+    }
+    return found;
+  }
+
+  #estimatesOf(hamiltonian: SpinHamiltonian): EnergyEstimates {
+    let found = this.#framed.get(hamiltonian);
+    if (!found) {
+      found = new EnergyEstimates(hamiltonian, this.#occupations);
+      this.#framed.set(hamiltonian, found);
     }
     return found;
   }
@@ -70,6 +89,7 @@ export class EnergyEstimates {
   async #estimate(
     encoding: Encoding,
     factorisation: Factorisation | null,
+    frame: Frame | null,
     context: JobContext,
   ): Promise<TruncationEnergy | string> {
     const h = this.#hamiltonian;
@@ -78,7 +98,7 @@ export class EnergyEstimates {
     if ((filled * (filled - 1) * empty * (empty - 1)) / 4 > MOST_DOUBLES) {
       return 'the second-order sum runs over too many excitations';
     }
-    const kept = await this.#kept(encoding, factorisation, context);
+    const kept = await this.#kept(encoding, factorisation, frame, context);
     if (typeof kept === 'string') return kept;
     this.#given ??= await this.#reference(context);
     const { occupied, energy } = this.#given;
@@ -87,6 +107,7 @@ export class EnergyEstimates {
       firstOrder: truncated.reference - energy.reference,
       secondOrder: truncated.correlation - energy.correlation,
       omitted: energy.omitted,
+      whole: h,
       kept,
     };
   }
@@ -103,11 +124,15 @@ export class EnergyEstimates {
   async #kept(
     encoding: Encoding,
     factorisation: Factorisation | null,
+    frame: Frame | null,
     context: JobContext,
   ): Promise<SpinHamiltonian | string> {
     const h = this.#hamiltonian;
     try {
-      if (!factorisation) return encoding.rebuild();
+      if (!factorisation) {
+        const rebuilt = encoding.rebuild();
+        return frame && rebuilt.kind === 'spatial' ? await turnedBack(rebuilt, frame, context) : rebuilt;
+      }
       const packed = h.kind === 'spatial' ? await hamiltonianOfFactors(h, factorisation, context) : null;
       if (packed) return packed;
       if (h.kind === 'spatial' && h.orbitals > MOST_DENSE) {
@@ -135,9 +160,8 @@ const SAMPLES = 400;
 
 /** What truncation does to determinants drawn at random, with the job's seed. */
 export function randomDeterminants(
-  hamiltonian: SpinHamiltonian,
-  { kept }: TruncationEnergy,
+  { whole, kept }: TruncationEnergy,
   context: JobContext,
 ): Promise<DeterminantStatistics> {
-  return determinantStatistics(hamiltonian, kept, hamiltonian.electrons, { samples: SAMPLES }, context);
+  return determinantStatistics(whole, kept, whole.electrons, { samples: SAMPLES }, context);
 }

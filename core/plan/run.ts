@@ -16,6 +16,7 @@ import { costOf, targetOf, thresholdOf, toleranceOf } from './costing';
 import { Encodings } from './encodings';
 import { EnergyEstimates, type TruncationEnergy } from './energy-estimate';
 import { Floors } from './floors';
+import { FramedEncodings } from './framed-encodings';
 import { recommend } from './recommendation';
 import type { ComparisonRequest, ComparisonRun, VariantOutcome } from './request';
 import { hamiltonianOf, occupationsOf } from './system';
@@ -60,14 +61,15 @@ export async function runComparison(
   const hartree = toHartree(request.target.value, request.target.unit);
   const target = targetOf(request);
   const terms = hamiltonian.kind === 'spatial' ? hamiltonian.terms : heldTerms(set);
-  const encodings = new Encodings(
+  const threshold = thresholdOf(request, target);
+  const occupations = occupationsOf(set, request);
+  const encodings = new FramedEncodings(
     hamiltonian,
-    thresholdOf(request, target),
-    occupationsOf(set, request),
-    toleranceOf(target),
+    (h) => new Encodings(h, threshold, occupations, toleranceOf(target)),
+    request.frames,
   );
   const floors = new Floors(hamiltonian, MAX_DETERMINANTS);
-  const energies = new EnergyEstimates(hamiltonian, occupationsOf(set, request));
+  const energies = new EnergyEstimates(hamiltonian, occupations);
 
   const variants = request.variants ?? defaultVariants(set);
   const outcomes: VariantOutcome[] = [];
@@ -83,7 +85,8 @@ export async function runComparison(
           const encoding = await encodings.of(variant, named);
           events.onEncoded?.(name, encoding.shape);
           const factorisation = await encodings.factorisationOf(variant, named);
-          const energy = await energies.of(encoding, factorisation, named);
+          const frame = await encodings.frameOf(variant, named);
+          const energy = await energies.of(encoding, factorisation, named, frame);
           const estimate = await estimateOf(encoding, energy, variant, terms, request, target, floors, named);
           const missing = typeof energy === 'string' ? [`no estimate of the energy error: ${energy}`] : [];
           return { estimate, notes: [...(encoding.notes ?? []), ...missing] };
@@ -92,6 +95,7 @@ export async function runComparison(
     events.onOutcome?.(outcome);
   }
 
+  const frames = encodings.records();
   const estimates = outcomes.flatMap((outcome) => (outcome.status === 'done' ? [outcome.estimate] : []));
   return {
     comparison: {
@@ -104,6 +108,7 @@ export async function runComparison(
       },
       target: { value: request.target.value, unit: request.target.unit, hartree },
       variants: estimates,
+      ...(frames.length > 0 ? { frames } : {}),
       recommendation: recommend(estimates, request.qubitsMax),
     },
     outcomes,

@@ -1,6 +1,7 @@
 import { buildHamiltonian, restrictToWindow, type SpinHamiltonian } from '../hamiltonian';
 import type { IntegralSet, SelectableTerm } from '../integrals';
 import { InputError } from '../job';
+import type { FrameRequest } from './frame';
 
 /** Some orbitals of the set; the others keep their occupations as a mean field. */
 export interface OrbitalChoice {
@@ -20,6 +21,8 @@ export interface SystemRequest {
   readonly occupations: readonly number[] | null;
   /** Absent or null: all orbitals. */
   readonly window?: OrbitalChoice | null;
+  /** Absent: spin axes and orbitals as the files have them. */
+  readonly frames?: FrameRequest;
 }
 
 /**

@@ -8,6 +8,9 @@ import { Encodings } from './encodings';
 import { EnergyEstimates } from './energy-estimate';
 import { truncationEvidence, windowChecks } from './energy-estimate-evidence';
 import { type Check, check, type Evidence, type TruncationEvidence } from './evidence';
+import type { Frame } from './frame';
+import { frameChecks } from './frame-checks';
+import { FramedEncodings } from './framed-encodings';
 import { defaultVariants } from './run';
 import { hamiltonianOf, occupationsOf, type SystemRequest } from './system';
 
@@ -60,7 +63,12 @@ export async function runVerification(
   ];
 
   const occupations = occupationsOf(set, request);
-  const encodings = new Encodings(hamiltonian, request.threshold, occupations, request.threshold);
+  const encodings = new FramedEncodings(
+    hamiltonian,
+    (h) => new Encodings(h, request.threshold, occupations, request.threshold),
+    request.frames,
+  );
+  const checkedFrames = new Set<Frame>();
   const estimates = new EnergyEstimates(hamiltonian, occupations);
   const truncation: Record<string, TruncationEvidence> = {};
   const spectra: Record<string, number[]> = {};
@@ -70,6 +78,11 @@ export async function runVerification(
   for (const variant of variants) {
     const name = formatVariant(variant);
     const encoding = await encodings.of(variant, context);
+    const frame = await encodings.frameOf(variant, context);
+    if (frame && !checkedFrames.has(frame)) {
+      checkedFrames.add(frame);
+      checks.push(...(await frameChecks(hamiltonian, frame, exact, request.states, ARITHMETIC, context)));
+    }
     let levels = known.get(encoding);
     if (!levels) {
       const encoded = await exactSpectrum(encoding.rebuild(), states, context);
@@ -85,11 +98,11 @@ export async function runVerification(
       );
     }
     spectra[name] = Array.from(levels);
-    const energy = await estimates.of(encoding, await encodings.factorisationOf(variant, context), context);
+    const factorisation = await encodings.factorisationOf(variant, context);
+    const energy = await estimates.of(encoding, factorisation, context, frame);
     const dropped = await truncationEvidence(
       name,
       encoding.residual.oneNormBound,
-      hamiltonian,
       energy,
       ARITHMETIC,
       context,
@@ -98,7 +111,7 @@ export async function runVerification(
       truncation[name] = dropped.evidence;
       checks.push(...dropped.checks);
     }
-    const proof = await proveBlock(hamiltonian, encoding, variant, context);
+    const proof = await proveBlock(frame?.hamiltonian ?? hamiltonian, encoding, variant, context);
     if (!proof) continue;
     const { maxError, bound, columns } = proof;
     blockEncoding[name] = { maxError, bound, columns };

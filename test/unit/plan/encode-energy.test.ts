@@ -54,7 +54,7 @@ describe('energy error of truncation', () => {
       expect(Math.abs(energy.firstOrder)).toBeLessThanOrEqual(bound);
       // Second order of one determinant in a minimal basis: found within a third; the bound is 200 times too large.
       expect(Math.abs(estimate - shift)).toBeLessThan(0.4 * Math.abs(shift));
-      const { mean, spread, singles, doubles } = await randomDeterminants(hamiltonian, energy, ctx);
+      const { mean, spread, singles, doubles } = await randomDeterminants(energy, ctx);
       for (const x of [mean, spread, singles, doubles]) expect(Math.abs(x)).toBeLessThanOrEqual(bound);
       // The same estimate for what shares the factorisation, computed once.
       expect(await estimates.of(encoding, factorisation, ctx)).toBe(energy);
