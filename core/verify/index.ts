@@ -1,4 +1,5 @@
 export { type OpenBlock, type SteeredBlock, simulatedBlock } from './block-encoding';
+export { denseSector, type WatchedStates, watchedStates } from './couplings';
 export {
   type DeterminantEnergies,
   determinantEnergies,
@@ -13,6 +14,7 @@ export { programOperator } from './program-operator';
 export { REFERENCE_LEVELS, referenceEigenvalues } from './reference';
 export { referenceDeterminant, type SecondOrder, secondOrder } from './second-order';
 export { MAX_SECTOR_DIMENSION, type SectorMatrix, sectorMatrix } from './sector-matrix';
+export { singleExcitations } from './single-excitations';
 export { multiplySparse } from './sparse';
 export { sparseBlock } from './sparse-block';
 export { sparseProgramOperator } from './sparse-block-operator';
@@ -22,6 +24,6 @@ export { exactSpectrum, type Spectrum, type SpectrumOptions } from './spectrum';
 export { spinorBlock } from './spinor-block';
 export { spinorProgramOperator } from './spinor-block-operator';
 export { tripletBlock } from './triplet-block';
-export { type WindowCouplings, windowCouplings } from './window-couplings';
+
 export { type LevelShifts, levelShifts, windowOfProgram } from './window-levels';
 export { windowOfSpinorProgram } from './window-levels-spinor';

@@ -1,0 +1,99 @@
+import { normalOrder, type OrbitalWindow, restrictToWindow, type SpatialHamiltonian } from '../hamiltonian';
+import type { JobContext } from '../job';
+import type { ComplexMatrix } from '../linalg';
+import { denseSector, singleExcitations, type WatchedStates, watchedStates } from '../verify';
+
+/** Orbitals in which all determinants are taken: at most 252 of them, diagonalised in a second. */
+const ALL = 5;
+/** Orbitals in which a closed shell and its single excitations are taken: at most 257 determinants. */
+const SINGLES = 16;
+/** States that are watched in each of the two, counted with multiplicity. */
+const STATES = { all: 12, singles: 40 } as const;
+
+/** Low states of a Hamiltonian near the Fermi level, found once; see {@link lowStates}. */
+export interface LowStates {
+  /** In words, for a note. */
+  readonly description: string;
+  /**
+   * How much the levels and couplings of these states change from one operator to another, to first order; hartree.
+   * Both are over all orbitals of the set.
+   */
+  readonly change: (a: SpatialHamiltonian, b: SpatialHamiltonian) => Promise<number>;
+}
+
+interface Space {
+  readonly matrixOf: (h: SpatialHamiltonian) => Promise<ComplexMatrix>;
+  readonly states: number;
+}
+
+/**
+ * The lowest states among all determinants of five orbitals about the Fermi level and, where the reference is a closed
+ * shell, among the single excitations of sixteen. Other orbitals are frozen with their occupations.
+ */
+export async function lowStates(
+  h: SpatialHamiltonian,
+  occupations: readonly number[],
+  context: JobContext,
+): Promise<LowStates> {
+  const order = orderAboutFermiLevel(h, occupations);
+  const few = windowOf(h, order.slice(0, ALL), occupations);
+  const spaces: Space[] = [
+    { matrixOf: (a) => denseSector(restrictToWindow(a, few), context), states: STATES.all },
+  ];
+  let description = `all determinants of ${few.orbitals.length} orbitals`;
+  if (occupations.every((x) => x === 0 || x === 2) && h.orbitals > ALL) {
+    const many = windowOf(h, order.slice(0, SINGLES), occupations);
+    const occupied = Uint8Array.from(
+      many.orbitals.flatMap((p) => [occupations[p]! / 2, occupations[p]! / 2]),
+    );
+    spaces.push({
+      matrixOf: async (a) => singleExcitations(restrictToWindow(a, many), occupied),
+      states: STATES.singles,
+    });
+    description += ` and single excitations of ${many.orbitals.length}`;
+  }
+  const watched: (WatchedStates & Pick<Space, 'matrixOf'>)[] = [];
+  for (const { matrixOf, states } of spaces) {
+    context.report('low states near the Fermi level', watched.length, spaces.length);
+    await context.checkpoint();
+    watched.push({ matrixOf, ...watchedStates(await matrixOf(h), states) });
+  }
+  return {
+    description,
+    async change(a, b) {
+      let most = 0;
+      for (const { matrixOf, change } of watched) {
+        await context.checkpoint();
+        most = Math.max(most, change(await matrixOf(a), await matrixOf(b)));
+      }
+      return most;
+    },
+  };
+}
+
+/** Partly filled orbitals first, then in turn the next below and the next above, by the diagonal of the Fock operator. */
+function orderAboutFermiLevel(h: SpatialHamiltonian, occupations: readonly number[]): number[] {
+  const { orbitals: n } = h;
+  const half = Float64Array.from(occupations, (x) => x / 2);
+  const { even } = normalOrder({ ...h, g: { ...h.g, spinOrbit: null, spinSpin: null } }, half, half);
+  const level = (p: number) => even.planes[p * n + p]!;
+  const byEnergy = Array.from({ length: n }, (_, p) => p).sort((p, q) => level(p) - level(q) || p - q);
+  const filled = byEnergy.filter((p) => occupations[p] === 2).reverse();
+  const empty = byEnergy.filter((p) => occupations[p] === 0);
+  const order = byEnergy.filter((p) => occupations[p] !== 0 && occupations[p] !== 2);
+  for (let below = true; order.length < n; below = !below) {
+    const next = (below ? filled : empty).shift() ?? (below ? empty : filled).shift();
+    if (next !== undefined) order.push(next);
+  }
+  return order;
+}
+
+function windowOf(
+  h: SpatialHamiltonian,
+  chosen: readonly number[],
+  occupations: readonly number[],
+): OrbitalWindow {
+  const orbitals = [...chosen].sort((p, q) => p - q);
+  const frozen = occupations.reduce((sum, x, p) => (orbitals.includes(p) ? sum : sum + x), 0);
+  return { orbitals, electrons: Math.round(h.electrons - frozen), occupations };
+}
