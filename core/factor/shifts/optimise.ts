@@ -65,7 +65,11 @@ export async function optimiseShifts(
 /** Shifts that the factors carry already, or null. */
 function carried(problem: ShiftProblem, blocks: readonly FactorBlock[]): Float64Array | null {
   const found = Float64Array.from(
-    problem.groups.flatMap(({ block, items }) => items.map((t) => blocks[block]!.shifts?.[t] ?? Number.NaN)),
+    problem.groups.flatMap(({ block, items }) => {
+      const own = blocks[block]!;
+      const shifts = 'shifts' in own ? own.shifts : undefined;
+      return items.map((t) => shifts?.[t] ?? Number.NaN);
+    }),
   );
   return found.some(Number.isNaN) ? null : found;
 }
