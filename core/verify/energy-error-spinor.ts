@@ -53,7 +53,7 @@ export async function realisedSpinorRounding(
     bound += x;
     squares += x * x;
   }
-  return { bound, typical: Math.sqrt(squares), oneBody, items, electrons };
+  return { bound, typical: Math.sqrt(squares), oneBody, items, products: new Float64Array(0), electrons };
 }
 
 /** x·op of a row. */

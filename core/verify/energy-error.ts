@@ -1,17 +1,19 @@
-import type { TripletItem, TripletProgram } from '../encode';
+import type { TripletItem, TripletProgram, VectorProducts } from '../encode';
 import type { JobContext } from '../job';
-import { addRows, normOfRows, operatorOfRows } from './energy-error-rows';
+import { addRows, largestExpectation, normOfRows, operatorOfRows } from './energy-error-rows';
 
 /** What rounding a program's weights and vectors changes of H, hartree. */
 export interface RealisedRounding {
-  /** Rigorous: no level of the sector moves by more. Sum of {@link oneBody} and {@link items}. */
+  /** Rigorous: no level of the sector moves by more. Sum of {@link oneBody}, {@link items} and {@link products}. */
   readonly bound: number;
-  /** √(oneBody² + Σ items²): the size to expect where items err independently. Not a bound. */
+  /** Root of the sum of squares instead: the size to expect where they err independently. Not a bound. */
   readonly typical: number;
   /** Operator norm of the difference of the one-body rows, exact but for a time-odd remainder. */
   readonly oneBody: number;
   /** Bound of each item. */
   readonly items: Float64Array;
+  /** Bound of each product of two vectors. */
+  readonly products: Float64Array;
   /** Fock space (null) or the electrons of the sector that the norms are taken in. */
   readonly electrons: number | null;
 }
@@ -24,8 +26,9 @@ const AT_ONCE = 8;
  *
  * A square is s·λ(2B†B − 1), B = Σ weight/Λ·op of norm ≤ 1. With B' = B + Δ the difference is
  * s(λ' − λ)(2B'†B' − 1) + 2sλ(B'†B' − B†B), of norm ≤ |λ' − λ| + 2λ[‖Δ‖(‖B‖ + ‖B'‖) + c²], c the scalar that rounded A
- * rows leave. A paired item is 2sλ{X, Y}, X its A rows and Y its S rows, likewise. All norms are operator norms of
- * one-body operators, from their eigenvalues.
+ * rows leave. A paired item is 2sλ{X, Y}, X its A rows and Y its S rows, likewise. A product sλ·½{M, M'} of norm ≤ 1 changes by
+ * ≤ |λ' − λ| + λ(‖ΔM‖ + ‖ΔM'‖), a square sλ(2M² − 1) by twice the latter. All norms are operator norms of one-body
+ * operators, from their eigenvalues.
  *
  * @param encoded - with the same rows in the same order of each kind, as `encodedProgram` gives them
  * @param electrons - of the sector, or null for all of Fock space, where norms are larger
@@ -52,12 +55,35 @@ export async function realisedRounding(
     }
     items[t] = itemBound(n, item, encoded.items[t]!, electrons);
   }
+  const products = productBounds(given.products, encoded.products, electrons);
   let [bound, squares] = [oneBody, oneBody ** 2];
-  for (const x of items) {
-    bound += x;
-    squares += x * x;
+  for (const errors of [items, products]) {
+    for (const x of errors) {
+      bound += x;
+      squares += x * x;
+    }
   }
-  return { bound, typical: Math.sqrt(squares), oneBody, items, electrons };
+  return { bound, typical: Math.sqrt(squares), oneBody, items, products, electrons };
+}
+
+function productBounds(
+  given: VectorProducts | undefined,
+  encoded: VectorProducts | undefined,
+  electrons: number | null,
+): Float64Array {
+  if (!given || !encoded) return new Float64Array(0);
+  // T⁰(u') − T⁰(u) has the eigenvalues ± sin of the angle between them, for either spin.
+  const change = given.vectors.map((u, m) => {
+    const v = encoded.vectors[m]!;
+    const apart = u.reduce((sum, x, p) => sum + (x - v[p]!) ** 2, 0) / 2;
+    const sine = Math.sqrt(Math.max(0, apart * (2 - apart)));
+    const values = new Float64Array(2 * u.length).fill(-sine, 0, 2).fill(sine, -2);
+    return largestExpectation(values, electrons);
+  });
+  return given.lambda.map((lambda, i) => {
+    const [m, n] = [given.first[i]!, given.second[i]!];
+    return Math.abs(encoded.lambda[i]! - lambda) + lambda * (m === n ? 2 : 1) * (change[m]! + change[n]!);
+  });
 }
 
 function itemBound(n: number, given: TripletItem, encoded: TripletItem, electrons: number | null): number {

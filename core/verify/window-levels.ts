@@ -1,4 +1,4 @@
-import type { TripletProgram } from '../encode';
+import type { TripletProgram, VectorProducts } from '../encode';
 import {
   type OrbitalWindow,
   type SpinHamiltonian,
@@ -6,7 +6,7 @@ import {
   toSpinOrbitals,
 } from '../hamiltonian';
 import type { JobContext } from '../job';
-import type { ComplexMatrix } from '../linalg';
+import { type ComplexMatrix, symmetricEigen } from '../linalg';
 import { operatorOfRows, type RowsOperator } from './energy-error-rows';
 import { exactSpectrum } from './spectrum';
 
@@ -51,6 +51,7 @@ export async function windowOfProgram(program: TripletProgram, window: OrbitalWi
       target.addSquare(sum(y, x, -1), -2 * sign * total);
     }
   }
+  if (program.products) addProducts(target, n, program.products);
   const { constant, h, g } = target;
   return spinorFromStoredForm({ spinors: size, electrons: window.electrons, constant, h, g });
 }
@@ -145,6 +146,33 @@ export class WindowSum {
         this.h.im[a * m + b]! += scale * im[P * n + Q]!;
       });
     });
+  }
+}
+
+/** Σ C_mn M_m M_n as squares of M(y) = Σ y_m M_m over the eigenvectors y of C. */
+function addProducts(target: WindowSum, n: number, products: VectorProducts): void {
+  const { vectors, first, second, lambda, sign } = products;
+  const count = vectors.length;
+  const c = new Float64Array(count * count);
+  for (const [i, own] of lambda.entries()) {
+    const [a, b] = [first[i]!, second[i]!];
+    const x = sign[i]! * own;
+    if (a === b) target.constant -= x;
+    // Twice ½ on the diagonal: 2M² − 1.
+    const share = a === b ? x : x / 2;
+    c[a * count + b]! += share;
+    c[b * count + a]! += share;
+  }
+  const { values, vectors: y } = symmetricEigen(c, count);
+  for (const [k, value] of values.entries()) {
+    if (value === 0) continue;
+    const rows = vectors.map((u, m) => ({
+      kind: 'S' as const,
+      u,
+      v: u,
+      faces: [{ mu: 0 as const, weight: y[k * count + m]!, sign: 1 as const }],
+    }));
+    target.addSquare(spinMatrix(operatorOfRows(n, rows, 0, 1)), 2 * value);
   }
 }
 

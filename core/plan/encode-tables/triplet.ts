@@ -5,6 +5,7 @@ import { realisedRounding, windowOfProgram } from '../../verify';
 import { type ArrayLayout, byRow, type Numbers, type Pieces, whole } from './arrays';
 import { COMMON_CONVENTIONS } from './conventions';
 import type { StoredTables, TablesForm } from './form';
+import { PRODUCTS_ARRAYS, PRODUCTS_CONVENTIONS, productsData, readProducts } from './products';
 import { readSquares, SQUARES_ARRAYS, SQUARES_CONVENTIONS, type StoredItem, squaresData } from './squares';
 
 const ARRAYS: readonly ArrayLayout[] = [
@@ -19,6 +20,7 @@ const ARRAYS: readonly ArrayLayout[] = [
     meaning: 'positions of the rows with a second vector, ascending',
   },
   { name: 'pair_angles', type: '<u4', shape: ['pairRows', 'angles'], meaning: 'angle numbers of v' },
+  ...PRODUCTS_ARRAYS,
 ];
 
 /** Columns of the flags. */
@@ -41,6 +43,7 @@ export const TRIPLET: TablesForm<'triplet'> = {
       'u = (cos t0, sin t0 cos t1, ..., sin t0 ... sin t_(N-2)), t = (number + 1/2) * 2 pi / 2^rotation, rotation - 1 bits a number',
     flags:
       'columns 0-3 s, r, m, sign; 4 A row; 5 A row of a paired item; where items have a second face, 6-9 what changes of s, r, m, sign on it (xor)',
+    ...PRODUCTS_CONVENTIONS,
     ...SQUARES_CONVENTIONS,
   },
   arrays: ARRAYS,
@@ -56,12 +59,13 @@ export const TRIPLET: TablesForm<'triplet'> = {
       tables.items.map(({ lambda, paired, rows }) => ({ faces: lambda.length, paired, rows: rows.length })),
     );
     const rows = rowData(tables, squares.addresses);
+    const products = productsData(tables);
     return {
       bits,
-      sizes: { ...squares.sizes, ...rows.sizes },
+      sizes: { ...squares.sizes, ...rows.sizes, ...products.sizes },
       given,
       encoded,
-      data: { ...squares.data, ...rows.data },
+      data: { ...squares.data, ...rows.data, ...products.data },
       rounding: (electrons, context) => realisedRounding(given, encoded, electrons, context),
       inWindow: windowOfProgram,
     };
@@ -80,6 +84,7 @@ export const TRIPLET: TablesForm<'triplet'> = {
       }),
     );
     const oneBody = items.pop()!;
+    const products = await readProducts(stored, squares.outer, stored.bits('rotation') - 1);
     return {
       orbitals: stored.orbitals,
       constant: stored.constant,
@@ -88,6 +93,7 @@ export const TRIPLET: TablesForm<'triplet'> = {
         ...row,
         faces: row.faces.map((face) => ({ ...face, weight: face.weight * oneBody.lambda[0]! })),
       })),
+      ...(products ? { products } : {}),
     };
   },
 };

@@ -7,7 +7,8 @@ import { FORMS } from './forms';
 import { npyHeader } from './npy';
 
 /**
- * Writes the tables piece by piece, the document last: a folder without it is not whole. Little-endian machines only.
+ * Writes the tables piece by piece, the document last: a folder without it is not whole. Arrays without numbers are left
+ * out. Little-endian machines only.
  *
  * @param append - adds bytes to a file of the folder; one file is finished before the next begins
  */
@@ -23,10 +24,11 @@ export async function writeTables(
     const shape = shapeOf(layout, summary.sizes);
     const pieces = rounded.data[name];
     if (!shape || !pieces) throw new Error(`array ${name} has no extents or no numbers`);
+    const total = shape.reduce((product, extent) => product * extent, 1);
+    if (total === 0) continue;
     const file = `${name}.npy`;
     append(file, npyHeader(type, shape));
     const crc = new Crc32();
-    const total = shape.reduce((product, extent) => product * extent, 1);
     let done = 0;
     for (const piece of pieces()) {
       const bytes = new Uint8Array(piece.buffer, piece.byteOffset, piece.byteLength);

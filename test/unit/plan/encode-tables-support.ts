@@ -1,10 +1,20 @@
 import { loadInputs, openInputs } from '../../../app/cli/inputs';
-import { parseVariant } from '../../../core/encode';
+import type { LookupPolicy } from '../../../core/circuit';
+import { type Encoding, parseVariant } from '../../../core/encode';
 import type { SpinHamiltonian } from '../../../core/hamiltonian';
 import { fileSetFromMemory, type IntegralSet } from '../../../core/integrals';
 import { inlineContext } from '../../../core/job';
 import type { ComplexMatrix } from '../../../core/linalg';
-import { encodeTables, readTables, type TablesDocument, writeTables } from '../../../core/plan';
+import {
+  encodeTables,
+  type FormProgram,
+  readTables,
+  type TablesDocument,
+  writeTables,
+} from '../../../core/plan';
+import { TABLES_SCHEMA } from '../../../core/plan/encode-tables/document';
+import type { FormName } from '../../../core/plan/encode-tables/form';
+import { FORMS } from '../../../core/plan/encode-tables/forms';
 import { type SectorBasis, sectorMatrix } from '../../../core/verify';
 
 export const ctx = inlineContext();
@@ -59,9 +69,10 @@ export async function roundTrip(set: IntegralSet, how: ReturnType<typeof request
   return { tables, document, files, stored: await readFiles(files) };
 }
 
-/** The numbers of an array, found without the reader of the core. */
+/** The numbers of an array, found without the reader of the core; none where it is left out. */
 export function numbersOf(document: TablesDocument, files: ReadonlyMap<string, Uint8Array>, name: string) {
-  const listed = document.arrays.find((array) => array.name === name)!;
+  const listed = document.arrays.find((array) => array.name === name);
+  if (!listed) return [];
   const bytes = files.get(listed.file)!;
   const from = 10 + bytes[8]! + 256 * bytes[9]!;
   const data = bytes.slice(from).buffer;
@@ -113,4 +124,24 @@ export function shifted(a: ComplexMatrix, x: number): ComplexMatrix {
   const re = a.re.slice();
   for (let i = 0; i < a.n; i++) re[i * a.n + i]! += x;
   return { ...a, re };
+}
+
+/** A program written and read back without a set of integrals around it: what is written, and what is read. */
+export async function throughForm(
+  name: FormName,
+  encoding: Partial<Encoding>,
+  bits: { readonly keep: number; readonly rotation: number },
+) {
+  const form = FORMS.find((known) => known.form === name)!;
+  const policy: LookupPolicy = { mode: 'clean', block: 'auto', qubitCap: null };
+  const rounded = form.round(encoding as Encoding, { bits, policy })!;
+  const encoded = { form: name, program: rounded.encoded } as FormProgram;
+  const { orbitals, constant } = rounded.encoded;
+  const summary = { schema: TABLES_SCHEMA, form: name, orbitals, constant } as TablesDocument;
+  const { files } = await filesOf({
+    rounded,
+    encoded,
+    summary: { ...summary, bits: rounded.bits, sizes: rounded.sizes },
+  });
+  return { encoded, files, stored: await readFiles(files) };
 }
