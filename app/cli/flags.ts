@@ -1,5 +1,5 @@
 import { expandVariants } from '../../core/encode';
-import type { ComparisonRequest, Meaning, OrbitalChoice } from '../../core/plan';
+import type { ComparisonRequest, FrameChoice, FrameRequest, Meaning, OrbitalChoice } from '../../core/plan';
 import type { CompareRequest, Manner } from './request';
 import {
   parseBits,
@@ -55,7 +55,16 @@ export function selection(flags: Flags) {
     electrons: electronsOf(flags),
     occupations: occupations === null ? null : parseOccupations(occupations),
     window: windowOf(flags),
+    ...framesOf(flags),
   };
+}
+
+/** Nothing where both frames are as given, so that such a request is what it always was. */
+function framesOf(flags: Flags): { readonly frames?: FrameRequest } {
+  const [spin, orbital] = [flags.spinFrame, flags.orbitalFrame].map(
+    (flag) => String(flag ?? 'given') as FrameChoice,
+  );
+  return spin === 'given' && orbital === 'given' ? {} : { frames: { spin: spin!, orbital: orbital! } };
 }
 
 function windowOf(flags: Flags): OrbitalChoice | null {

@@ -1,5 +1,5 @@
 import { Command, CommanderError, Option } from 'commander';
-import { MEANINGS } from '../../core/plan';
+import { FRAME_CHOICES, MEANINGS } from '../../core/plan';
 import { version } from '../../package.json';
 import { addCircuit } from './circuit-command';
 import { addEncode } from './encode-command';
@@ -154,7 +154,17 @@ function selecting(command: Command): Command {
     .option('--electrons <n>', 'electrons in the orbitals')
     .option('--occupations <list>', 'reference occupations, 0 to 2 an orbital, for mean fields')
     .option('--window <orbitals>', 'keep these orbitals, such as 3-6,9; the others become a mean field')
-    .option('--window-electrons <n>', 'electrons in the window; else what the occupations leave there');
+    .option('--window-electrons <n>', 'electrons in the window; else what the occupations leave there')
+    .addOption(
+      new Option('--spin-frame <how>', 'spin axes of the forms over spin components, for a smaller lambda')
+        .choices([...FRAME_CHOICES])
+        .default('given'),
+    )
+    .addOption(
+      new Option('--orbital-frame <how>', 'orbitals of the sparse form, for a smaller lambda')
+        .choices([...FRAME_CHOICES])
+        .default('given'),
+    );
 }
 
 function comparing(command: Command): Command {
