@@ -20,6 +20,11 @@ export interface FactoriseOptions {
   readonly occupations?: ArrayLike<number>;
   /** Separate grouping: spin–orbit triples and spin–spin factors are all kept, for {@link lightParts}. @defaultValue false */
   readonly keepSpinParts?: boolean;
+  /**
+   * Separate grouping: what truncation drops is chosen with the Coulomb factors, but these are left out of blocks, residual
+   * and mean field, because something else stands for them. @defaultValue false
+   */
+  readonly withoutCoulomb?: boolean;
 }
 
 /** Cholesky may leave this part of the threshold; the rest is for whole factors. */
@@ -55,10 +60,10 @@ export async function factorise(
       ? { blocks: await jointFactors(hamiltonian, ctx), notes: [], remainder: null }
       : await separateFactors(hamiltonian, threshold, ctx);
   await ctx.checkpoint();
-  const { keepSpinParts = false } = options;
+  const { keepSpinParts = false, withoutCoulomb = false } = options;
   const kept = await truncate(
     blocks,
-    { n: hamiltonian.orbitals, threshold, occupations, remainder, keepSpinParts },
+    { n: hamiltonian.orbitals, threshold, occupations, remainder, keepSpinParts, withoutCoulomb },
     ctx,
   );
   return { grouping, notes, ...kept };

@@ -1,5 +1,9 @@
 import type { Mu, Sector, TripletOperator } from '../hamiltonian';
 import type { ComplexMatrix } from '../linalg';
+import type { Residual } from './dropped';
+import type { HypercontractedFactors } from './hypercontraction/block';
+
+export type { Residual } from './dropped';
 
 /** Which physical part of the two-electron tensor a block factorises. */
 export type BlockPart = 'coulomb' | 'spin-orbit' | 'spin-spin' | 'even' | 'odd';
@@ -86,20 +90,10 @@ export interface SpinorFactors {
   readonly shifts?: Float64Array;
 }
 
-export type FactorBlock = SquareFactors | TripleFactors | SpinorFactors;
+export type FactorBlock = SquareFactors | TripleFactors | SpinorFactors | HypercontractedFactors;
 
 /** Grouping of the two-body part. */
 export type Grouping = 'joint' | 'separate';
-
-/** What truncation dropped. */
-export interface Residual {
-  /** Frobenius norm of the dropped part of g over all indices, hartree. */
-  readonly frobenius: number;
-  /** LCU one-norm of the dropped part: rigorous bound on any eigenvalue's shift, hartree. */
-  readonly oneNormBound: number;
-  /** Factors, triples or coefficients dropped. */
-  readonly dropped: number;
-}
 
 export interface Factorisation {
   readonly grouping: Grouping;

@@ -1,5 +1,6 @@
 import { sectorLayout } from './elements';
 import type { FactorBlock, SpinorFactors, SquareFactors, TripleFactors } from './factors';
+import { hypercontractedNorm } from './hypercontraction/one-body';
 
 function sumOfSizes(values: Float64Array, from: number, to: number): number {
   let sum = 0;
@@ -46,7 +47,7 @@ export function spinorOneNorms(block: SpinorFactors): Float64Array {
 
 /**
  * LCU one-norm of each factor or triple, hartree: ¼|w|Λ² (the ¼ from qubitising the square), and for a triple
- * (sameScale + otherScale)·s·Λ_a·Λ_S.
+ * (sameScale + otherScale)·s·Λ_a·Λ_S. A hypercontracted part counts as one.
  */
 export function lcuNorms(block: FactorBlock): Float64Array {
   if (block.kind === 'triples') {
@@ -54,6 +55,7 @@ export function lcuNorms(block: FactorBlock): Float64Array {
     const scale = Math.abs(block.sameScale) + Math.abs(block.otherScale);
     return block.strengths.map((strength, t) => scale * strength * a[t]! * s[t]!);
   }
+  if (block.kind === 'hypercontracted') return Float64Array.of(hypercontractedNorm(block));
   const norms = block.kind === 'squares' ? squareOneNorms(block) : spinorOneNorms(block);
   return norms.map((norm, t) => 0.25 * Math.abs(block.weights[t]!) * norm * norm);
 }

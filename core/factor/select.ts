@@ -9,9 +9,13 @@ function rows(data: Float64Array, width: number, kept: readonly number[]): Float
   return out;
 }
 
-/** The block with the factors `kept` alone, in that order. */
+/**
+ * The block with the factors `kept` alone, in that order.
+ * @throws RangeError for a hypercontracted block, which is no list of factors
+ */
 export function selectFactors<Block extends FactorBlock>(block: Block, kept: readonly number[]): Block {
   const count = kept.length;
+  if (block.kind === 'hypercontracted') throw new RangeError('a hypercontracted part is taken as a whole');
   if (block.kind === 'triples') {
     const width = block.antisymmetric.length / Math.max(1, block.count);
     return {

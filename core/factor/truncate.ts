@@ -62,6 +62,8 @@ export interface TruncateOptions {
   readonly remainder: Remainder | null;
   /** Only Coulomb factors may be dropped. */
   readonly keepSpinParts: boolean;
+  /** Coulomb factors have a part in the choice of what is dropped, but are all left out: something else stands for them. */
+  readonly withoutCoulomb: boolean;
 }
 
 /** Factors between two checkpoints: some 10 ms for 50 orbitals. */
@@ -78,7 +80,7 @@ const TRIES = 6;
  */
 export async function truncate(
   blocks: readonly SpatialBlock[],
-  { n, threshold, occupations, remainder, keepSpinParts }: TruncateOptions,
+  { n, threshold, occupations, remainder, keepSpinParts, withoutCoulomb }: TruncateOptions,
   ctx: JobContext,
 ): Promise<
   Pick<Factorisation, 'residual' | 'foldedMeanField' | 'foldedConstant'> & { blocks: SpatialBlock[] }
@@ -100,6 +102,9 @@ export async function truncate(
     choice = chooseKept(norms, sizes, budget);
     fold = await foldDropped(blocks, choice.dropped, n, occupations, ctx);
   }
+  if (withoutCoulomb) {
+    return onlySpinParts(blocks, choice, n, occupations, ctx);
+  }
   const { folded } = fold;
   let { constant } = fold;
   if (remainder) {
@@ -119,6 +124,35 @@ export async function truncate(
     },
     foldedMeanField: count > 0 || remainder ? folded : null,
     foldedConstant: constant,
+  };
+}
+
+/** The same choice with the Coulomb block taken out. */
+async function onlySpinParts(
+  blocks: readonly SpatialBlock[],
+  { kept, dropped }: Pick<ReturnType<typeof chooseKept>, 'kept' | 'dropped'>,
+  n: number,
+  occupations: ArrayLike<number>,
+  ctx: JobContext,
+) {
+  const spin = [...blocks.keys()].filter((b) => blocks[b]!.part !== 'coulomb');
+  const own = spin.map((b) => blocks[b]!);
+  const out = spin.map((b) => dropped[b]!);
+  const fold = await foldDropped(own, out, n, occupations, ctx);
+  const sum = own.reduce((all, block, b) => {
+    const norms = lcuNorms(block);
+    return out[b]!.reduce((part, t) => part + norms[t]!, all);
+  }, 0);
+  const count = out.reduce((all, list) => all + list.length, 0);
+  return {
+    blocks: spin.map((b) => selectFactors(blocks[b]!, kept[b]!)),
+    residual: {
+      frobenius: Math.sqrt(own.reduce((all, block, b) => all + frobeniusSquareOf(block, out[b]!), 0)),
+      oneNormBound: sum + fold.replacement,
+      dropped: count,
+    },
+    foldedMeanField: count > 0 ? fold.folded : null,
+    foldedConstant: fold.constant,
   };
 }
 

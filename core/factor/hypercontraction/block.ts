@@ -1,5 +1,5 @@
 import type { TripletOperator } from '../../hamiltonian';
-import type { Residual } from '../factors';
+import type { Residual } from '../dropped';
 
 /**
  * The charge part as a tensor hypercontraction (J. Lee et al., PRX Quantum 2, 030305 (2021)),
