@@ -1,5 +1,5 @@
 import type { Residual } from '../factor/factors';
-import type { SpinHamiltonian, SymmetryShift } from '../hamiltonian';
+import type { SpinHamiltonian, SpinorShift, SymmetryShift } from '../hamiltonian';
 import type { TripletProgram } from './program';
 import type { SparseProgram, TermSizes } from './sparse-program';
 import type { AxialParts, SpinorProgram, SpinorSizes } from './spinor-program';
@@ -80,6 +80,8 @@ export interface Encoding {
    * of Fock space, apart from what was dropped.
    */
   readonly symmetryShift?: () => SymmetryShift;
+  /** The same of spinor integrals. */
+  readonly spinorShift?: () => SpinorShift;
   /** Triplet form only: all rows with their vectors, for circuits and exported tables. Made anew at each call. */
   readonly program?: () => TripletProgram;
   /** Spinor form only: the same. */

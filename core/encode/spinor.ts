@@ -1,5 +1,5 @@
 import { type Factorisation, hermitianInto, kramersPhases, type SpinorFactors } from '../factor';
-import { type SpinorHamiltonian, spinorFromProductForm } from '../hamiltonian';
+import { type SpinorHamiltonian, type SpinorShift, spinorFromProductForm } from '../hamiltonian';
 import { type ComplexMatrix, hermitianEigenvalues } from '../linalg';
 import { sumLambda } from './assemble';
 import type { Encoding, EncodingShape } from './encoding';
@@ -163,8 +163,34 @@ export function encodeSpinors(h: SpinorHamiltonian, factors: Factorisation, vari
     residual: factors.residual,
     notes: factors.notes,
     rebuild,
+    spinorShift: () => explicitSpinorShift(h, blocks, shift),
     ...(shape.spinors ? { spinorProgram: program } : {}),
   };
+}
+
+/** The ξ that all shifts together amount to: as in explicit-shift.ts with N̂ − M/2 for N̂ − N. */
+function explicitSpinorShift(
+  { spinors: m, electrons }: SpinorHamiltonian,
+  blocks: readonly { readonly block: SpinorFactors; readonly items: readonly Item[] }[],
+  oneBodyShift: number,
+): SpinorShift {
+  const operator = { n: m, re: new Float64Array(m * m), im: new Float64Array(m * m) };
+  const [re, im] = [new Float64Array(m * m), new Float64Array(m * m)];
+  let scalar = -oneBodyShift;
+  for (const { block, items } of blocks) {
+    items.forEach(({ shift, trace }, t) => {
+      if (shift === 0) return;
+      const w = block.weights[t]!;
+      hermitianInto(re, im, 0, block.vectors, t * m * m, m);
+      for (let i = 0; i < m * m; i++) {
+        operator.re[i]! -= w * shift * re[i]!;
+        operator.im[i]! -= w * shift * im[i]!;
+      }
+      for (let p = 0; p < m; p++) operator.re[p * m + p]! += 0.5 * w * shift * shift;
+      scalar += w * shift * (trace + 0.5 * shift * (electrons - m));
+    });
+  }
+  return { scalar, operator };
 }
 
 /** Phases that make spinors 2m, 2m + 1 partners of each other; null where the Hamiltonian has no Kramers pairs. */

@@ -39,6 +39,12 @@ export {
   spinSpinBlock,
   vectorFromOperator,
 } from './super-matrix';
-export { type SymmetryShift, shiftedHamiltonian } from './symmetry-shift';
+export {
+  oppositeShift,
+  type SpinorShift,
+  type SymmetryShift,
+  shiftedHamiltonian,
+  shiftedSpinorHamiltonian,
+} from './symmetry-shift';
 export { tensorElement } from './tensor-element';
 export { type OrbitalWindow, restrictToWindow } from './window';

@@ -1,7 +1,8 @@
 import { numAntisymmetricPairs, numSymmetricPairs, pairsTriangleLength } from '../integrals/integral-set';
 import { InputError } from '../job';
-import { fromProductForm } from './forms';
-import type { SpatialHamiltonian, TwoElectronTensor } from './hamiltonian';
+import type { ComplexMatrix } from '../linalg';
+import { fromProductForm, spinorFromProductForm } from './forms';
+import type { SpatialHamiltonian, SpinorHamiltonian, TwoElectronTensor } from './hamiltonian';
 import { hermiticityDefect, planeOf, type TripletOperator } from './operators';
 
 /**
@@ -13,6 +14,17 @@ export interface SymmetryShift {
   readonly scalar: number;
   /** Even sector, as every part of a field-free Hamiltonian; hartree. */
   readonly operator: TripletOperator;
+}
+
+/** The same over M spinors: ξ = scalar + Σ_PQ ξ_PQ a†_P a_Q, Hermitian. Hartree. */
+export interface SpinorShift {
+  readonly scalar: number;
+  readonly operator: ComplexMatrix;
+}
+
+/** −ξ. */
+export function oppositeShift({ scalar, operator }: SymmetryShift): SymmetryShift {
+  return { scalar: -scalar, operator: { ...operator, planes: operator.planes.map((value) => -value) } };
 }
 
 /** A plane counts as symmetric up to this part of its largest element. */
@@ -110,3 +122,31 @@ function shiftedSpinOrbit(
 
 /** Place of the pair rr among p ≥ q. */
 const diagonalPair = (r: number): number => (r * (r + 3)) / 2;
+
+/** H + ξ (N̂ − η) over spinors: ξ_PQ δ_RS + δ_PQ ξ_RS is added to g, −ηξ + scalar to k. The fit of ξ is not checked. */
+export function shiftedSpinorHamiltonian(
+  { spinors: m, electrons, constant, k, g }: SpinorHamiltonian,
+  { scalar, operator }: SpinorShift,
+): SpinorHamiltonian {
+  const shiftedOne = (part: 're' | 'im') => k[part].map((x, i) => x - electrons * operator[part][i]!);
+  const shiftedTwo = (part: 're' | 'im') => {
+    const out = g[part].slice();
+    const size = m * m;
+    for (let pq = 0; pq < size; pq++) {
+      for (let r = 0; r < m; r++) {
+        out[pq * size + r * (m + 1)]! += operator[part][pq]!;
+        out[r * (m + 1) * size + pq]! += operator[part][pq]!;
+      }
+    }
+    return out;
+  };
+  const one = { re: shiftedOne('re'), im: shiftedOne('im') };
+  for (let p = 0; p < m; p++) one.re[p * m + p]! += scalar;
+  return spinorFromProductForm({
+    spinors: m,
+    electrons,
+    constant: constant - electrons * scalar,
+    k: one,
+    g: { re: shiftedTwo('re'), im: shiftedTwo('im') },
+  });
+}
