@@ -2,7 +2,7 @@ import { numAntisymmetricPairs, numSymmetricPairs } from '../integrals/integral-
 import { antisymmetricPairs, symmetricEigen } from '../linalg';
 import { planeInto, sectorLayout } from './elements';
 import type { SquareFactors, TripleFactors } from './factors';
-import { squareOneNorms, tripleOneNorms } from './one-norms';
+import { lcuNorms, squareOneNorms, tripleOneNorms } from './one-norms';
 
 /** One row of a plane: its size and its coordinates over pairs, the size included. */
 interface PlaneRow {
@@ -18,7 +18,17 @@ export interface Compactible<Block> {
    * The block without the rows that weigh at most `cut` hartree, and without factors that have none left. What remains
    * are factors of lower rank, again with unit vectors. Rows of equal weight go or stay together, so symmetry survives.
    */
-  readonly at: (cut: number) => Block;
+  readonly at: (cut: number) => Compacted<Block>;
+}
+
+export interface Compacted<Block> {
+  readonly block: Block;
+  /** Rigorous bound on what the lost rows, without `constant`, change of any eigenvalue; hartree. */
+  readonly bound: number;
+  /** Hartree, in place of what is lost. */
+  readonly constant: number;
+  /** Factors that lost some or all of their rows. */
+  readonly changed: number;
 }
 
 /**
@@ -35,10 +45,12 @@ export function compactibleTriples(block: TripleFactors): Compactible<TripleFact
     a: antisymmetricRows(block.antisymmetric, t * nanti, n),
     s: symmetricRows(block.symmetric, t * npair, n),
   }));
-  const at = (cut: number): TripleFactors => {
+  const at = (cut: number): Compacted<TripleFactors> => {
+    let changed = 0;
     const kept = rows.flatMap((own, t) => {
       const a = sumAbove(own.a, nanti, (size) => weights[t]! * 2 * size * normsS[t]! > cut);
       const s = sumAbove(own.s, npair, (size) => weights[t]! * normsA[t]! * size > cut);
+      if (!a || !s || a.sizes.length < own.a.length || s.sizes.length < own.s.length) changed++;
       return a && s ? [{ t, a, s }] : [];
     });
     const out = {
@@ -59,7 +71,9 @@ export function compactibleTriples(block: TripleFactors): Compactible<TripleFact
       out.symmetricValues.subarray(i * n, (i + 1) * n).sort();
     }
     const { shifts: _, ...rest } = block;
-    return { ...rest, count: kept.length, ...out };
+    const compact: TripleFactors = { ...rest, count: kept.length, ...out };
+    // {X, Y} − {X', Y'} = {X − X', Y} + {X', Y − Y'}.
+    return { block: compact, bound: sum(lcuNorms(block)) - sum(lcuNorms(compact)), constant: 0, changed };
   };
   const heaviest = weights.reduce((most, w, t) => Math.max(most, w * normsA[t]! * normsS[t]!), 0);
   return { heaviest, at };
@@ -74,11 +88,19 @@ export function compactibleSquares(block: SquareFactors): Compactible<SquareFact
   const rows = Array.from({ length: count }, (_, t) =>
     layout.slots.map((slot) => symmetricRows(block.vectors, t * dim + slot.offset, n)),
   );
-  const at = (cut: number): SquareFactors => {
+  const at = (cut: number): Compacted<SquareFactors> => {
+    let [bound, constant, changed] = [0, 0, 0];
     const kept = rows.flatMap((planes, t) => {
       const heavy = (size: number) => 0.5 * Math.abs(block.weights[t]!) * norms[t]! * size > cut;
       const sums = planes.map((own, i) => sumAbove(own, layout.slots[i]!.length, heavy));
-      return sums.some((sum) => sum !== null) ? [{ t, sums }] : [];
+      // L² = L'² + {L', D} + D² with D lost, and 0 ≤ D² ≤ ‖D‖²: half of that as a constant.
+      const left = sums.reduce((all, own) => all + (own ? own.length * oneNorm(own.sizes) : 0), 0);
+      const lost = norms[t]! - left;
+      const w = block.weights[t]!;
+      bound += Math.abs(w) * (0.25 * lost * lost + left * lost);
+      constant += 0.25 * w * lost * lost;
+      if (sums.some((own, i) => (own?.sizes.length ?? 0) < planes[i]!.length)) changed++;
+      return sums.some((own) => own !== null) ? [{ t, sums }] : [];
     });
     const out = {
       weights: new Float64Array(kept.length),
@@ -86,25 +108,25 @@ export function compactibleSquares(block: SquareFactors): Compactible<SquareFact
       spectra: new Float64Array(kept.length * layout.spectrumWidth),
     };
     for (const [i, { t, sums }] of kept.entries()) {
-      const length = Math.hypot(...sums.map((sum) => sum?.length ?? 0));
+      const length = Math.hypot(...sums.map((own) => own?.length ?? 0));
       out.weights[i] = block.weights[t]! * length * length;
       for (const [j, slot] of layout.slots.entries()) {
-        const sum = sums[j];
-        if (!sum) continue;
-        const scale = sum.length / length;
+        const own = sums[j];
+        if (!own) continue;
+        const scale = own.length / length;
         out.vectors.set(
-          sum.unit.map((x) => x * scale),
+          own.unit.map((x) => x * scale),
           i * dim + slot.offset,
         );
         const from = i * layout.spectrumWidth + slot.spectrumOffset;
         out.spectra.set(
-          sum.sizes.map((x) => x * scale),
+          own.sizes.map((x) => x * scale),
           from,
         );
         out.spectra.subarray(from, from + slot.spectrumLength).sort();
       }
     }
-    return { ...block, count: kept.length, ...out };
+    return { block: { ...block, count: kept.length, ...out }, bound, constant, changed };
   };
   const heaviest = norms.reduce(
     (most, norm, t) => Math.max(most, 0.25 * Math.abs(block.weights[t]!) * norm ** 2),
@@ -153,3 +175,6 @@ function symmetricRows(vectors: Float64Array, from: number, n: number): PlaneRow
     return { size, vector };
   });
 }
+
+const sum = (values: Float64Array): number => values.reduce((all, x) => all + x, 0);
+const oneNorm = (values: readonly number[]): number => values.reduce((all, x) => all + Math.abs(x), 0);

@@ -4,7 +4,6 @@ import { antisymmetricNormsBatch } from '../linalg';
 import { type Compactible, compactibleSquares, compactibleTriples } from './compact';
 import type { FactorBlock, Factorisation, SquareFactors, TripleFactors } from './factors';
 import { type FoldTarget, foldSquare, foldTriple } from './mean-field';
-import { lcuNorms } from './one-norms';
 
 type LightBlock = SquareFactors | TripleFactors;
 
@@ -52,11 +51,11 @@ export async function lightParts(
     await ctx.checkpoint();
   }
   const all = await fold(blocks, n, occupations, ctx);
-  const allNorms = sumOfNorms(blocks);
   return {
     heaviest: Math.max(0, ...[...compactible.values()].map(({ heaviest }) => heaviest)),
     async at(cut, context) {
-      const light = blocks.map((block) => compactible.get(block)!.at(cut));
+      const compacted = blocks.map((block) => compactible.get(block)!.at(cut));
+      const light = compacted.map(({ block }) => block);
       const kept = await fold(light, n, occupations, context);
       const meanField = {
         ...all.folded,
@@ -64,7 +63,8 @@ export async function lightParts(
       };
       const difference = all.difference.map((x, i) => x - kept.difference[i]!);
       const replacement = antisymmetricNormsBatch(difference, 3, n).reduce((sum, a) => sum + 2 * a, 0);
-      const norms = sumOfNorms(light);
+      const bound = compacted.reduce((sum, own) => sum + own.bound, 0);
+      const constant = compacted.reduce((sum, own) => sum + own.constant, 0);
       const given = whole.foldedMeanField;
       const planes = Float64Array.from(meanField.planes);
       if (given && 'planes' in given) for (let i = 0; i < planes.length; i++) planes[i]! += given.planes[i]!;
@@ -74,11 +74,11 @@ export async function lightParts(
         blocks: whole.blocks.map((block) => (isLight(block) ? light[blocks.indexOf(block)]! : block)),
         residual: {
           frobenius: Math.hypot(residual.frobenius, frobenius(blocks, light)),
-          oneNormBound: residual.oneNormBound + Math.max(0, allNorms - norms) + replacement,
-          dropped: residual.dropped + count(blocks) - count(light),
+          oneNormBound: residual.oneNormBound + Math.max(0, bound) + replacement,
+          dropped: residual.dropped + compacted.reduce((sum, { changed }) => sum + changed, 0),
         },
         foldedMeanField: { ...meanField, planes },
-        foldedConstant: whole.foldedConstant + squaresConstant(blocks) - squaresConstant(light),
+        foldedConstant: whole.foldedConstant + constant,
       };
       return { factorisation, light, meanField };
     },
@@ -100,25 +100,6 @@ async function fold(
     }
   }
   return target;
-}
-
-const count = (blocks: readonly LightBlock[]): number => blocks.reduce((sum, block) => sum + block.count, 0);
-
-/** Of a row taken out the triple or square loses Λ_aΛ_S − Λ'_aΛ'_S or Λ² − Λ'²: differences of these sums. */
-function sumOfNorms(blocks: readonly LightBlock[]): number {
-  return blocks.reduce((sum, block) => lcuNorms(block).reduce((all, norm) => all + norm, sum), 0);
-}
-
-/** ¼ Σ w Λ² of squares, what their unitaries leave. */
-function squaresConstant(blocks: readonly LightBlock[]): number {
-  let sum = 0;
-  for (const block of blocks) {
-    if (block.kind === 'triples') continue;
-    lcuNorms(block).forEach((norm, t) => {
-      sum += Math.sign(block.weights[t]!) * norm;
-    });
-  }
-  return sum;
 }
 
 /**
