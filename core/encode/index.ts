@@ -3,7 +3,14 @@ export type { Encoding, EncodingShape, ItemSizes, LambdaByPart } from './encodin
 export { type OrbitalFrame, type OrbitalFrameOptions, orbitalFrame } from './frame/orbital';
 export { rotationOf, type SpinFrame, spinFrame } from './frame/spin';
 export type { RowFace, TripletItem, TripletProgram, TripletRow, VectorProducts } from './program';
-export { type SparseProgram, type TermKind, type TermSizes, termSizes } from './sparse-program';
+export {
+  type PairsKind,
+  type SparseProgram,
+  type StringsKind,
+  type TermKind,
+  type TermSizes,
+  termSizes,
+} from './sparse-program';
 export {
   type AxialParts,
   SPINOR_KINDS,

@@ -1,6 +1,7 @@
-import type { SpatialHamiltonian } from '../hamiltonian';
+import type { Mu, SpatialHamiltonian } from '../hamiltonian';
 import { planeOf, type TripletOperator } from '../hamiltonian';
 import { numAntisymmetricPairs, numSymmetricPairs } from '../integrals/integral-set';
+import type { PairsKind } from './sparse-program';
 
 /**
  * One array of unique coefficients of the sparse form. A coefficient stands for all equal ones that the permutation
@@ -158,4 +159,40 @@ export function sparseSections(h: SpatialHamiltonian, kappa: TripletOperator): S
     }
   }
   return sections;
+}
+
+/** x ≤ y of the components xx, xy, xz, yy, yz, zz. */
+const SPIN_SPIN: readonly (readonly [Mu, Mu])[] = [
+  [1, 1],
+  [1, 2],
+  [1, 3],
+  [2, 2],
+  [2, 3],
+  [3, 3],
+];
+
+/** Kinds of a section's coefficients, one for each component that its rows run through. */
+export function kindsOf(section: Section): PairsKind[] {
+  const { name } = section;
+  const kind = (antisymmetric: boolean, mu: Mu, nu: Mu | null): PairsKind => ({
+    form: 'pairs',
+    antisymmetric,
+    mu,
+    nu,
+    shared: false,
+    exchanged: !antisymmetric && mu !== 0 && nu !== null && nu !== 0 && mu !== nu,
+  });
+  const components = [1, 2, 3] as const;
+  if (section.oneBody) {
+    const mu = Number(name.slice(-1)) as Mu;
+    return [kind(mu !== 0, mu, null)];
+  }
+  if (name === 'charge') return [kind(false, 0, 0)];
+  if (name === 'same') {
+    const shared = section.shares.length > 1;
+    return components.map((k) => ({ ...kind(true, k, 0), shared }));
+  }
+  if (name === 'other') return components.map((k) => kind(true, 0, k));
+  const [k, l] = SPIN_SPIN[Number(name.slice(-1))]!;
+  return [kind(false, k, l)];
 }

@@ -66,11 +66,11 @@ function objection(name: VariantName): { found: string; expected: string; mend: 
     };
   }
   if (factorisation === 'sparse') {
-    if (grouping !== '-') {
+    if (grouping === 'separate') {
       return {
-        found: `grouping "${grouping}" with the sparse form, which has no factors to group`,
-        expected: 'grouping "-"',
-        mend: 'Write sparse/-/….',
+        found: 'grouping "separate" with the sparse form, which has no factors to keep apart',
+        expected: 'grouping "-", or "joint": equal Majorana products joined in all parts',
+        mend: 'Write sparse/-/… or sparse/joint/….',
       };
     }
     if (spin !== 'index') {
@@ -80,7 +80,7 @@ function objection(name: VariantName): { found: string; expected: string; mend: 
         mend: 'Write sparse/-/index/….',
       };
     }
-    if (shift !== 'none') {
+    if (shift === 'median') {
       return {
         found: 'shift "median" with the sparse form: it acts on the eigenvalues of factors',
         expected: 'shift "none" or "optimised"',

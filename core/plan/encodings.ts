@@ -42,7 +42,8 @@ export class Encodings {
 
   /** Why the variant is left out though its name is sound, or null. */
   refusal(variant: VariantName): string | null {
-    return variant.grouping === 'joint' && this.#hamiltonian.kind === 'spatial'
+    const { factorisation, grouping } = variant;
+    return grouping === 'joint' && factorisation !== 'sparse' && this.#hamiltonian.kind === 'spatial'
       ? jointRefusal(this.#hamiltonian)
       : null;
   }
@@ -72,7 +73,10 @@ export class Encodings {
 
   /** What the variant's encoding is made from; null for the sparse form. */
   async factorisationOf(variant: VariantName, context: JobContext): Promise<Factorisation | null> {
-    return variant.grouping === '-' ? null : this.#optimised(variant, variant.grouping, context);
+    const { factorisation, grouping } = variant;
+    return factorisation === 'sparse' || grouping === '-'
+      ? null
+      : this.#optimised(variant, grouping, context);
   }
 
   /** The factorisation of the grouping, its factors mixed and their shifts optimised where the variant says so. */

@@ -96,8 +96,9 @@ function provableSparse(
   let bound = 0;
   for (const [i, weight] of program.weights.entries()) {
     bound += Math.abs(encoded.weights[i]! - weight);
-    const { shared } = program.kinds[program.kindOf[i]!]!;
-    if (shared) bound += 2 * weight * Math.abs(encoded.otherShare - program.otherShare);
+    const kind = program.kinds[program.kindOf[i]!]!;
+    if (kind.form === 'pairs' && kind.shared)
+      bound += 2 * weight * Math.abs(encoded.otherShare - program.otherShare);
   }
   return {
     circuit: sparseBlock(tables, step.blocks),

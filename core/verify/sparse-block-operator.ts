@@ -1,4 +1,4 @@
-import type { SparseProgram, TermKind } from '../encode';
+import type { PairsKind, SparseProgram, StringsKind } from '../encode';
 import { isSymmetricPlane, type Mu, type Sector, toSpinOrbitals, zeroOperator } from '../hamiltonian';
 import type { ComplexMatrix } from '../linalg';
 import type { SectorBasis } from './determinants';
@@ -26,6 +26,10 @@ export function sparseProgramOperator(program: SparseProgram, basis: SectorBasis
     const kind = kinds[kindOf[i]!]!;
     const [p, q, r, s] = orbitalsOf.subarray(4 * i, 4 * i + 4) as unknown as [number, number, number, number];
     const signed = negative[i] ? -weight : weight;
+    if (kind.form === 'strings') {
+      addStrings(total, kind, [p, q, r, s], signed, basis);
+      continue;
+    }
     if (kind.nu === null) {
       addScaled(total, row(kind.antisymmetric, kind.mu, p, q), signed);
       continue;
@@ -38,7 +42,7 @@ export function sparseProgramOperator(program: SparseProgram, basis: SectorBasis
 }
 
 /** Where the components of a coefficient stand, and how much of it in each place. */
-function componentsOf(kind: TermKind, nu: Mu, { otherShare, otherSign }: SparseProgram) {
+function componentsOf(kind: PairsKind, nu: Mu, { otherShare, otherSign }: SparseProgram) {
   const { mu } = kind;
   if (kind.shared) {
     return [
@@ -69,6 +73,45 @@ function rowOperator(
   operator.planes[plane + q * n + p]! += antisymmetric ? -0.5 : 0.5;
   const out = oneBodyOnSector(toSpinOrbitals(operator), basis);
   if (!antisymmetric && mu === 0 && p === q) addIdentity(out, -1);
+  return out;
+}
+
+/**
+ * Both values of σ of a string: the sum over x of (−1)^{rx} iγ_{Px}γ_{Q,x⊕r} is twice a†_P a_Q + a†_Q a_P for r = 1 (less
+ * its constant where P = Q), twice i a†_P a_Q − i a†_Q a_P for r = 0.
+ */
+function addStrings(
+  target: ComplexMatrix,
+  { flags }: StringsKind,
+  [p, q, r, s]: readonly [number, number, number, number],
+  weight: number,
+  basis: SectorBasis,
+): void {
+  const [s1, s2, t, r1, r2] = [0, 1, 2, 3, 4].map((bit) => (flags >>> bit) & 1) as [
+    number,
+    number,
+    number,
+    number,
+    number,
+  ];
+  const flips = s1 ^ s2 ^ r1 ^ r2;
+  for (const sigma of [0, 1]) {
+    const first = modePair(2 * p + sigma, 2 * q + (sigma ^ s1), r1, basis);
+    const second = modePair(2 * r + (sigma ^ t), 2 * s + (sigma ^ t ^ s2), r2, basis);
+    // A quarter of the sum over σ, x and y, each row operator being twice its pair.
+    const scale = ((flips & sigma ? -1 : 1) * weight) / 4;
+    addAnticommutator(target, first, second, scale);
+  }
+}
+
+function modePair(P: number, Q: number, kinds: number, basis: SectorBasis): ComplexMatrix {
+  const { modes } = basis;
+  const operator = { n: modes, re: new Float64Array(modes * modes), im: new Float64Array(modes * modes) };
+  const part = kinds === 1 ? operator.re : operator.im;
+  part[P * modes + Q]! += 1;
+  part[Q * modes + P]! += kinds === 1 ? 1 : -1;
+  const out = oneBodyOnSector(operator, basis);
+  if (P === Q) addIdentity(out, -1);
   return out;
 }
 

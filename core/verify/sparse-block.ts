@@ -10,7 +10,7 @@ export function sparseBlock(tables: SparseTables, blocks: Blocks): SteeredBlock 
   const branches = [...steeringNumbers(tables)];
   return {
     probabilities: branches.map(({ probability }) => probability),
-    spread: 2 ** (tables.layout.exchanged ? 6 : 5),
+    spread: 2 ** ((tables.layout.spins === 'fixed' ? 3 : 5) + (tables.layout.exchanged ? 1 : 0)),
     open(machine) {
       const wires = sparseWires(tables.layout, machine);
       const fixed = new Set([...wires.low, ...wires.uniform, ...wires.share]);

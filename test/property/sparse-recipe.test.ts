@@ -14,32 +14,44 @@ import { sparseTables } from '../../core/circuit/sparse/tables';
 import { sparseWalkStep, sparseWires } from '../../core/circuit/sparse/walk';
 import { type SparseProgram, type TermKind, termSizes } from '../../core/encode';
 import { peakOf, stepCost } from '../../core/estimate';
-import type { Mu } from '../../core/hamiltonian/operators';
 
 /** One group of kinds for each feature that the word and SELECT depend on. */
 const KINDS = {
-  spinFree: { antisymmetric: false, mu: 0, nu: 0, shared: false, exchanged: false },
-  oneBody: { antisymmetric: true, mu: 2, nu: null, shared: false, exchanged: false },
-  shared: { antisymmetric: true, mu: 1, nu: 0, shared: true, exchanged: false },
-  other: { antisymmetric: true, mu: 0, nu: 3, shared: false, exchanged: false },
-  spinSpin: { antisymmetric: false, mu: 1, nu: 3, shared: false, exchanged: true },
-} satisfies Record<string, TermKind & { mu: Mu; nu: Mu | null }>;
+  spinFree: { form: 'pairs', antisymmetric: false, mu: 0, nu: 0, shared: false, exchanged: false },
+  oneBody: { form: 'pairs', antisymmetric: true, mu: 2, nu: null, shared: false, exchanged: false },
+  shared: { form: 'pairs', antisymmetric: true, mu: 1, nu: 0, shared: true, exchanged: false },
+  other: { form: 'pairs', antisymmetric: true, mu: 0, nu: 3, shared: false, exchanged: false },
+  spinSpin: { form: 'pairs', antisymmetric: false, mu: 1, nu: 3, shared: false, exchanged: true },
+  sameSpin: { form: 'strings', flags: 8 + 16 },
+  string: { form: 'strings', flags: 1 + 4 + 16 },
+} satisfies Record<string, TermKind>;
 
 const programs = fc
   .record({
-    orbitals: fc.integer({ min: 2, max: 9 }),
-    counts: fc.record({
-      spinFree: fc.integer({ min: 1, max: 40 }),
-      oneBody: fc.integer({ min: 0, max: 3 }),
-      shared: fc.constantFrom(0, 0, 1, 5),
-      other: fc.constantFrom(0, 0, 4),
-      spinSpin: fc.constantFrom(0, 0, 3),
-    }),
+    orbitals: fc.integer({ min: 3, max: 9 }),
+    counts: fc.oneof(
+      fc.record({
+        spinFree: fc.integer({ min: 1, max: 40 }),
+        oneBody: fc.integer({ min: 0, max: 3 }),
+        shared: fc.constantFrom(0, 0, 1, 5),
+        other: fc.constantFrom(0, 0, 4),
+        spinSpin: fc.constantFrom(0, 0, 3),
+        sameSpin: fc.constantFrom(0, 0, 5),
+      }),
+      // Strings with spin stand beside no pairs of free spins.
+      fc.record({
+        oneBody: fc.integer({ min: 0, max: 3 }),
+        sameSpin: fc.integer({ min: 1, max: 20 }),
+        string: fc.constantFrom(0, 7),
+      }),
+    ),
     share: fc.constantFrom(2 / 3, 1 / 2, 0.3),
   })
   .map(({ orbitals, counts, share }): SparseProgram => {
     const names = Object.keys(KINDS) as (keyof typeof KINDS)[];
-    const kindOf = names.flatMap((name, i) => Array.from({ length: counts[name] }, () => i));
+    const kindOf = names.flatMap((name, i) =>
+      Array.from({ length: (counts as Record<string, number>)[name] ?? 0 }, () => i),
+    );
     return {
       orbitals,
       constant: 0,
@@ -183,6 +195,7 @@ describe('sparse step', () => {
         orbitals: 50,
         coefficients: 2_657_691,
         spin: true,
+        spins: 'mixed',
         secondComponent: false,
         exchanged: false,
         sharedPart: 8.3e-5,
@@ -196,15 +209,28 @@ describe('sparse step', () => {
     expect(emitted).toEqual({ toffoli: toffoli - parts.control, t, wires: peakOf(recipe).qubits });
   });
 
-  const sizes = fc.record({
+  const common = {
     orbitals: fc.integer({ min: 2, max: 60 }),
     coefficients: fc.integer({ min: 1, max: 3_000_000 }),
     spin: fc.constant(true),
-    secondComponent: fc.boolean(),
-    exchanged: fc.boolean(),
-    sharedPart: fc.constantFrom(0, 1e-4, 0.1),
     otherShare: fc.constant(2 / 3),
-  });
+  };
+  const sizes = fc.oneof(
+    fc.record({
+      ...common,
+      spins: fc.constantFrom('free' as const, 'mixed' as const),
+      secondComponent: fc.boolean(),
+      exchanged: fc.boolean(),
+      sharedPart: fc.constantFrom(0, 1e-4, 0.1),
+    }),
+    fc.record({
+      ...common,
+      spins: fc.constant('fixed' as const),
+      secondComponent: fc.constant(false),
+      exchanged: fc.constant(false),
+      sharedPart: fc.constant(0),
+    }),
+  );
   const widths = fc.record({ keepBits: fc.integer({ min: 4, max: 26 }), phaseBits: fc.constant(20) });
 
   it('costs no less under a cap, and keeps it unless the look-up is down to single rows', () => {

@@ -35,13 +35,20 @@ export interface SparseLayout {
    */
   readonly noneBit: boolean;
   readonly spin: boolean;
+  /** See `TermSizes`; 'mixed' takes two bits of the word (is fixed, opposite), 'fixed' one (opposite). */
+  readonly spins: TermSizes['spins'];
+  /** Spin-dependent rows are products of fixed relative spins and kinds, which the word names as they are. */
+  readonly strings: boolean;
   /** The word holds a spin component of the second pair. */
   readonly storesSecond: boolean;
   /** Any second pair can have a component, stored or not. */
   readonly hasSecond: boolean;
   /** Two components may be placed both ways. */
   readonly exchanged: boolean;
-  /** The word: p, q, r, s, none, sign; antisymmetric, s, m of the first pair; s, m of the second. */
+  /**
+   * The word: p, q, r, s, none, sign; how the spins go together; antisymmetric, s, m of the first pair; s, m of the
+   * second. For strings: s₁, r₁, s₂, r₂ in place of these.
+   */
   readonly wordWidth: number;
   /** Word, its change to the alternate one, keep value. */
   readonly rowWidth: number;
@@ -56,17 +63,21 @@ export interface SparseLayout {
  *   each further bit halves what is filled up at most.
  */
 export function sparseLayout(sizes: TermSizes, bits: SparseBits, refinement: number): SparseLayout {
-  const { orbitals, spin, exchanged } = sizes;
+  const { orbitals, spin, spins, exchanged } = sizes;
   const orbitalBits = addressBits(orbitals);
   const noneBit = orbitals === 2 ** orbitalBits;
   const storesSecond = sizes.secondComponent;
   const share = sizes.sharedPart > 0 ? shareOf(sizes.otherShare, bits.share) : null;
-  const wordWidth = 4 * orbitalBits + (noneBit ? 1 : 0) + 1 + (spin ? 3 : 0) + (storesSecond ? 2 : 0);
+  const strings = spin && spins === 'fixed';
+  const components = strings ? 4 : (spin ? 3 : 0) + (storesSecond ? 2 : 0);
+  const wordWidth = 4 * orbitalBits + (noneBit ? 1 : 0) + 1 + SPIN_BITS[spins] + components;
   return {
     orbitals,
     orbitalBits,
     noneBit,
     spin,
+    spins,
+    strings,
     storesSecond,
     hasSecond: storesSecond || share !== null,
     exchanged,
@@ -77,6 +88,9 @@ export function sparseLayout(sizes: TermSizes, bits: SparseBits, refinement: num
     address: addressOf(sizes.coefficients, bits.keep, refinement),
   };
 }
+
+/** Bits of a word that say how the spins of its pairs go together. */
+export const SPIN_BITS: Readonly<Record<TermSizes['spins'], number>> = { free: 0, mixed: 2, fixed: 1 };
 
 function addressOf(count: number, keepBits: number, refinement: number): AddressLayout {
   const bits = addressBits(count);

@@ -50,8 +50,8 @@ export function sparseRecipe(layout: SparseLayout, blocks: Blocks, phase: PhaseE
     { name: 'lower address bits', qubits: address.lowBits },
     { name: 'uniform number', qubits: address.uniformBits },
     { name: 'uniform number of the spin–orbit kind', qubits: share?.bits ?? 0 },
-    { name: 'order of the pairs', qubits: 1 },
-    { name: 'spins', qubits: 2 },
+    { name: 'order of the pairs', qubits: layout.spins === 'fixed' ? 0 : 1 },
+    { name: 'spins', qubits: layout.spins === 'fixed' ? 1 : 2 },
     { name: 'Majorana kinds', qubits: 2 },
     { name: 'placing of two components', qubits: exchanged ? 1 : 0 },
   ].filter((register) => register.qubits > 0);
@@ -176,8 +176,19 @@ function selectRecipe(layout: SparseLayout): Subroutine {
   });
   return {
     name: 'SELECT',
-    registers: [{ name: 'pairs of the coefficient', qubits: pairsWires(layout) }].filter((r) => r.qubits > 0),
+    registers: [
+      { name: 'spin of the second pair', qubits: layout.spins === 'mixed' ? 1 : 0 },
+      { name: 'pairs of the coefficient', qubits: pairsWires(layout) },
+    ].filter((r) => r.qubits > 0),
     children: [
+      leaf({
+        name: 'spin of the second pair',
+        part: 'select.other',
+        toffoli: layout.spins === 'mixed' ? 1 : 0,
+        formula: '1 where some rows fix the spins of their pairs and others do not',
+        inputs: {},
+        source: DERIVED,
+      }),
       leaf({
         name: 'pairs of the coefficient',
         part: 'select.other',
@@ -188,13 +199,16 @@ function selectRecipe(layout: SparseLayout): Subroutine {
       }),
       {
         name: 'product of two row operators',
-        registers: [{ name: 'exchanged pairs', qubits: pairExchangeToffoli(layout) }],
+        registers: [{ name: 'exchanged pairs', qubits: pairExchangeToffoli(layout) }].filter(
+          (r) => r.qubits > 0,
+        ),
         children: [
           leaf({
             name: 'order of the pairs',
             part: 'select.other',
             toffoli: pairExchangeToffoli(layout),
-            formula: '2n, and what else describes a pair: one AND a bit, taken back by measurement',
+            formula:
+              '2n, and what else describes a pair: one AND a bit, taken back by measurement; 0 where all commute',
             inputs: { n: orbitalBits },
             source: DERIVED,
           }),

@@ -1,13 +1,14 @@
+import type { TermKind } from '../../encode';
 import { gate, nothing, type Operation, repeat, scratch, sequence, span, within } from '../gates/operation';
-import type { SparseLayout } from './layout';
+import { SPIN_BITS, type SparseLayout } from './layout';
 import { ofKind, selectedMajorana } from './selected-majorana';
 
 /** Qubits in |+⟩: PREPARE does nothing but a Hadamard to them. */
 export interface PlusWires {
-  /** Which of the two pairs acts first. */
-  readonly order: number;
-  /** Spin σ and kind x of the pair that acts last, and of the one that acts first. */
-  readonly spins: readonly [number, number];
+  /** Which of the two pairs acts first; null where no two pairs share an operator, so that they commute. */
+  readonly order: number | null;
+  /** Spin σ and kind x of the pair that acts last, and of the one that acts first. One spin where all are fixed. */
+  readonly spins: readonly number[];
   readonly kinds: readonly [number, number];
   /** Which way two components are placed; null where no coefficient asks. */
   readonly placing: number | null;
@@ -22,6 +23,10 @@ interface Word {
   /** One wire or none. */
   readonly none: readonly number[];
   readonly sign: number;
+  /** Of `spins` bits: [fixed, opposite], [opposite] or nothing. */
+  readonly spins: readonly number[];
+  /** s₁, r₁, s₂, r₂ of strings. */
+  readonly string: readonly number[];
   readonly antisymmetric: number;
   readonly component: readonly number[];
   readonly second: readonly number[];
@@ -30,7 +35,8 @@ interface Word {
 export function splitWord(layout: SparseLayout, wires: readonly number[]): Word {
   const rest = [...wires];
   const take = (size: number) => rest.splice(0, size);
-  const { orbitalBits: n, spin } = layout;
+  const { orbitalBits: n, strings } = layout;
+  const spin = layout.spin && !strings;
   return {
     p: take(n),
     q: take(n),
@@ -38,9 +44,11 @@ export function splitWord(layout: SparseLayout, wires: readonly number[]): Word 
     s: take(n),
     none: take(layout.noneBit ? 1 : 0),
     sign: take(1)[0]!,
+    spins: take(SPIN_BITS[layout.spins]),
+    string: take(strings ? 4 : 0),
     antisymmetric: take(spin ? 1 : 0)[0] ?? -1,
     component: take(spin ? 2 : 0),
-    second: take(layout.storesSecond ? 2 : 0),
+    second: take(spin && layout.storesSecond ? 2 : 0),
   };
 }
 
@@ -50,7 +58,7 @@ interface Pair {
   readonly second: readonly number[];
   /** Shared highest bit of both addresses: no operator. */
   readonly none: readonly number[];
-  /** s, m, r: see core/circuit/triplet/rows.ts. Empty in the spin-free form. */
+  /** s, r and, but for strings, m: see core/circuit/triplet/rows.ts. Empty in the spin-free form. */
   readonly signature: readonly number[];
 }
 
@@ -72,29 +80,78 @@ export function select(
   otherSign: 1 | -1,
 ): Operation {
   const word = splitWord(layout, wordWires);
-  const act = (first: Pair, second: Pair) =>
-    exchangePairs(
-      plus.order,
-      first,
-      second,
-      sequence(
-        rowOperator(layout, system, second, plus.spins[1], plus.kinds[1]),
-        rowOperator(layout, system, first, plus.spins[0], plus.kinds[0]),
+  const { order, kinds } = plus;
+  const act = ([sigma, tau]: readonly [number, number]) =>
+    withPairs(layout, word, plus.placing, other, otherSign, (first, second) =>
+      exchangePairs(
+        order,
+        first,
+        second,
+        sequence(
+          rowOperator(layout, system, second, tau, kinds[1]),
+          rowOperator(layout, system, first, sigma, kinds[0]),
+        ),
       ),
     );
+  if (order === null) return sequence(gate('Z', word.sign), withFixedSpin(layout, word, plus.spins[0]!, act));
+  const spins = [plus.spins[0]!, plus.spins[1]!] as const;
   return sequence(
     gate('Z', word.sign),
-    withPairs(layout, word, plus.placing, other, otherSign, act),
-    gate('X', plus.order),
-    gate('SWAP', ...plus.spins),
-    gate('SWAP', ...plus.kinds),
+    layout.spins === 'mixed'
+      ? withChosenSpin(word, spins, act)
+      : sequence(act(spins), gate('SWAP', ...spins)),
+    gate('X', order),
+    gate('SWAP', ...kinds),
   );
+}
+
+/**
+ * All rows have fixed spins: the second pair's is σ, or the opposite one. The two pairs have no operator in common, so
+ * their product is Hermitian and nothing else need move. The sign of strings under a flip of all spins is that of time
+ * reversal.
+ */
+function withFixedSpin(
+  { strings }: SparseLayout,
+  { spins, string }: Word,
+  sigma: number,
+  act: (spins: readonly [number, number]) => Operation,
+): Operation {
+  const opposite = spins[0]!;
+  return sequence(
+    within(gate('CX', sigma, opposite), act([sigma, opposite])),
+    strings ? repeat(string.length, (i) => gate('CZ', sigma, string[i]!)) : nothing,
+  );
+}
+
+/**
+ * The second pair has the spin τ of its own or, in rows of fixed spins, σ or the opposite one. The two spins change
+ * places while that holds: what was σ, σ ⊕ t before is so afterwards, with the pairs exchanged.
+ */
+function withChosenSpin(
+  { spins: [fixed, opposite] }: Word,
+  [sigma, tau]: readonly [number, number],
+  act: (spins: readonly [number, number]) => Operation,
+): Operation {
+  return scratch(1, ([lent]) => {
+    const choose = span(
+      'spin of the second pair',
+      'select.other',
+      sequence(
+        within(
+          sequence(gate('CX', sigma, opposite!), gate('CX', tau, opposite!)),
+          gate('AND', fixed!, opposite!, lent!),
+        ),
+        gate('CX', lent!, tau),
+      ),
+    );
+    return within(choose, sequence(act([sigma, tau]), gate('SWAP', sigma, tau)));
+  });
 }
 
 /** Toffoli and lent wires of turning the word into two pairs. */
 export function pairsToffoli(layout: SparseLayout): number {
-  const { spin, share, exchanged } = layout;
-  if (!spin) return 0;
+  const { spin, share, exchanged, strings } = layout;
+  if (!spin || strings) return 0;
   const control = share && exchanged ? 2 : share || exchanged ? 1 : 0;
   return noneFlagToffoli(layout) + control + (control > 0 ? 2 : 0) + 1 + (layout.hasSecond ? 1 : 0);
 }
@@ -102,7 +159,7 @@ export function pairsToffoli(layout: SparseLayout): number {
 export function pairsWires(layout: SparseLayout): number {
   const { spin, share, exchanged, noneBit } = layout;
   const firstNone = noneBit ? 1 : 0;
-  if (!spin) return firstNone;
+  if (!spin || layout.strings) return firstNone;
   const control = share && exchanged ? 2 : share || exchanged ? 1 : 0;
   const components = layout.storesSecond ? 0 : 2;
   return firstNone + noneFlagToffoli(layout) + control + (control > 0 ? 2 : 0) + components + 2;
@@ -135,6 +192,7 @@ function withPairs(
         { first: word.r, second: word.s, none: word.none, signature: signatures[1]! },
       );
     if (!layout.spin) return pairs([[], []]);
+    if (layout.strings) return pairs([word.string.slice(0, 2), word.string.slice(2)]);
 
     const first = word.component;
     const second = layout.storesSecond ? word.second : take(2);
@@ -171,8 +229,8 @@ function withPairs(
         signOfY,
         signOfOther,
         pairs([
-          [...first, rFirst],
-          [...second, rSecond],
+          [first[0]!, rFirst, first[1]!],
+          [second[0]!, rSecond, second[1]!],
         ]),
       ),
     );
@@ -233,11 +291,13 @@ function exchange(control: number, a: number, b: number, lent: number): Operatio
 const wiresOf = ({ first, second, none, signature }: Pair) => [...first, ...second, ...none, ...signature];
 
 /** Toffoli, and lent wires, of exchanging the pairs where the order qubit is 1. */
-export function pairExchangeToffoli({ orbitalBits, noneBit, spin }: SparseLayout): number {
+export function pairExchangeToffoli({ orbitalBits, noneBit, spin, spins }: SparseLayout): number {
+  if (spins === 'fixed') return 0;
   return 2 * orbitalBits + (noneBit ? 1 : 0) + (spin ? 3 : 0);
 }
 
-function exchangePairs(order: number, first: Pair, second: Pair, body: Operation): Operation {
+function exchangePairs(order: number | null, first: Pair, second: Pair, body: Operation): Operation {
+  if (order === null) return body;
   const a = wiresOf(first);
   const b = wiresOf(second);
   return scratch(a.length, (lent) =>
@@ -287,7 +347,7 @@ function rowOperator(
       ),
     );
   }
-  const [s, m, r] = pair.signature as [number, number, number];
+  const [s, r, m] = pair.signature as [number, number, number | undefined];
   // Where there is no operator r is 1 all the same, and the factor i of a pair is missing once.
   const atNone = (flag: number) => sequence(gate('S', flag), gate('CZ', flag, x));
   return sequence(
@@ -297,17 +357,14 @@ function rowOperator(
     ),
     named(ofKind(x, system, selectedMajorana(system, [sigma, ...first, ...none], 0, atNone))),
     gate('CZ', x, r),
-    gate('CZ', sigma, m),
+    m === undefined ? nothing : gate('CZ', sigma, m),
   );
 }
 
 /** Whether the stored sign bit of a coefficient is set: its own sign, and the constants of its Majorana products. */
-export function signBit(
-  spin: boolean,
-  kind: { readonly antisymmetric: boolean; readonly mu: number; readonly nu: number | null },
-  negative: boolean,
-): boolean {
+export function signBit(spin: boolean, kind: TermKind, negative: boolean): boolean {
   // (iγγ)(iγγ) = −γγγγ, and one pair gets its i where the other is missing; without spin −iγγ is applied twice or once.
+  if (kind.form === 'strings') return negative !== spin;
   const isOneBody = kind.nu === null;
   let bit = negative !== (spin ? !isOneBody : isOneBody);
   if (!kind.antisymmetric) bit = bit !== ((kind.mu === 2) !== (kind.nu === 2));

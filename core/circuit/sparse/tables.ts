@@ -1,4 +1,4 @@
-import type { SparseProgram } from '../../encode';
+import type { SparseProgram, TermKind } from '../../encode';
 import { termSizes } from '../../encode';
 import { aliasBuckets } from '../primitives/alias-sampling';
 import { type SparseBits, type SparseLayout, sparseLayout } from './layout';
@@ -25,7 +25,7 @@ function wordBit({ program, layout }: SparseTables, term: number, bit: number): 
   if (term >= program.weights.length) return false;
   const { orbitalBits: n } = layout;
   const kind = program.kinds[program.kindOf[term]!]!;
-  const isOneBody = kind.nu === null;
+  const isOneBody = kind.form === 'pairs' && kind.nu === null;
   if (bit < 4 * n) {
     const which = Math.floor(bit / n);
     if (isOneBody && which >= 2) return !layout.noneBit && ((layout.orbitals >>> (bit % n)) & 1) === 1;
@@ -34,14 +34,39 @@ function wordBit({ program, layout }: SparseTables, term: number, bit: number): 
   const flags = [
     ...(layout.noneBit ? [isOneBody] : []),
     signBit(layout.spin, kind, program.negative[term] === 1),
-    ...(layout.spin ? [kind.antisymmetric, ...componentBits(kind.mu)] : []),
-    ...(layout.storesSecond ? componentBits(kind.nu ?? 0) : []),
+    ...spinBits(layout, kind),
+    ...(layout.strings ? stringBits(kind) : layout.spin ? componentBits(layout, kind) : []),
   ];
   return flags[bit - 4 * n]!;
 }
 
+/** How the spins of the two pairs go together. */
+function spinBits({ spins }: SparseLayout, kind: TermKind): boolean[] {
+  if (spins === 'free') return [];
+  const isOpposite = kind.form === 'strings' && (kind.flags & 4) !== 0;
+  return spins === 'fixed' ? [isOpposite] : [kind.form === 'strings', isOpposite];
+}
+
+/** s₁, r₁, s₂, r₂; a second pair that is none has 0, 1. */
+function stringBits(kind: TermKind): boolean[] {
+  const bit = (flags: number, i: number) => ((flags >>> i) & 1) === 1;
+  if (kind.form === 'strings') return [0, 3, 1, 4].map((i) => bit(kind.flags, i));
+  const [s, m] = signature(kind.mu);
+  return [s, !kind.antisymmetric !== (s && m), false, true];
+}
+
+function componentBits({ storesSecond }: SparseLayout, kind: TermKind): boolean[] {
+  if (kind.form === 'pairs') {
+    const second = storesSecond ? signature(kind.nu ?? 0) : [];
+    return [kind.antisymmetric, ...signature(kind.mu), ...second];
+  }
+  // Only charge pairs have fixed spins beside pairs with spins of their own.
+  if ((kind.flags & ~4) !== (8 | 16)) throw new RangeError('strings with spin beside pairs of free spins');
+  return new Array(storesSecond ? 5 : 3).fill(false);
+}
+
 /** s and m of a spin component. */
-const componentBits = (mu: number): [boolean, boolean] => [mu === 1 || mu === 2, mu === 2 || mu === 3];
+const signature = (mu: number): [boolean, boolean] => [mu === 1 || mu === 2, mu === 2 || mu === 3];
 
 /** Bit of a row of the table: word, word ⊕ alternate word, keep value. */
 export function rowBit(tables: SparseTables, row: number, bit: number): boolean {

@@ -23,7 +23,8 @@ export interface SparseWires {
 }
 
 export function sparseWires(layout: SparseLayout, machine: Machine): SparseWires {
-  const { address, share, exchanged } = layout;
+  const { address, share, exchanged, spins } = layout;
+  const isFixed = spins === 'fixed';
   const allocate = (size: number, name: string) => machine.allocateRegister(size, name);
   return {
     system: allocate(2 * layout.orbitals, 'system'),
@@ -31,8 +32,8 @@ export function sparseWires(layout: SparseLayout, machine: Machine): SparseWires
     uniform: allocate(address.uniformBits, 'uniform'),
     share: allocate(share?.bits ?? 0, 'share'),
     plus: {
-      order: allocate(1, 'order')[0]!,
-      spins: allocate(2, 'sigma') as [number, number],
+      order: allocate(isFixed ? 0 : 1, 'order')[0] ?? null,
+      spins: allocate(isFixed ? 1 : 2, 'sigma'),
       kinds: allocate(2, 'kind') as [number, number],
       placing: allocate(exchanged ? 1 : 0, 'placing')[0] ?? null,
     },
@@ -46,15 +47,15 @@ export function sparseAncillas(wires: SparseWires): number[] {
 
 /** Index wires that no address is made of. */
 function ownWires({ share, plus }: SparseWires): number[] {
-  const placing = plus.placing === null ? [] : [plus.placing];
-  return [...share, plus.order, ...plus.spins, ...plus.kinds, ...placing];
+  const some = (wire: number | null) => (wire === null ? [] : [wire]);
+  return [...share, ...some(plus.order), ...plus.spins, ...plus.kinds, ...some(plus.placing)];
 }
 
 /** Wires that the look-up may borrow; {@link sparseIdleQubits} many. */
 const sparseIdle = (wires: SparseWires): number[] => [...wires.system, ...ownWires(wires)];
 
-export const sparseIdleQubits = ({ orbitals, share, exchanged }: SparseLayout): number =>
-  2 * orbitals + (share?.bits ?? 0) + 5 + (exchanged ? 1 : 0);
+export const sparseIdleQubits = ({ orbitals, share, exchanged, spins }: SparseLayout): number =>
+  2 * orbitals + (share?.bits ?? 0) + (spins === 'fixed' ? 3 : 5) + (exchanged ? 1 : 0);
 
 /**
  * U with (⟨0|⊗1) U (|0⟩⊗1) = (H − c)/λ on the system, the ancillas being `sparseAncillas` and everything allocated

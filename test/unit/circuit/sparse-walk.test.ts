@@ -26,10 +26,27 @@ type Split = Pick<SparseProgram, 'otherShare' | 'otherSign'>;
 const SHARED: Split = { otherShare: 2 / 3, otherSign: 1 };
 const TURNED: Split = { otherShare: 0.3, otherSign: -1 };
 
+/** Rows of strings: flags, p, q, r, s, weight, sign. */
+type Strings = [number, number, number, number, number, number, 1 | -1];
+
+/** The rows, and strings after them. */
+function withStrings(given: SparseProgram, strings: readonly Strings[]): SparseProgram {
+  const { kinds, kindOf, orbitalsOf, weights, negative } = given;
+  return {
+    ...given,
+    kinds: [...kinds, ...strings.map(([flags]): TermKind => ({ form: 'strings', flags }))],
+    kindOf: Uint8Array.from([...kindOf, ...strings.map((_, i) => kinds.length + i)]),
+    orbitalsOf: Uint16Array.from([...orbitalsOf, ...strings.flatMap(([, p, q, r, s]) => [p, q, r, s])]),
+    weights: Float64Array.from([...weights, ...strings.map((string) => string[5])]),
+    negative: Uint8Array.from([...negative, ...strings.map((string) => (string[6] < 0 ? 1 : 0))]),
+  };
+}
+
 /** @param split - how spin–orbit coefficients are shared between the two kinds; null: they are not. */
 function program(orbitals: number, rows: readonly Row[], split: Split | null = null): SparseProgram {
   const kinds = rows.map(
     ([antisymmetric, mu, nu]): TermKind => ({
+      form: 'pairs',
       antisymmetric,
       mu,
       nu,
@@ -74,6 +91,25 @@ const SPIN_SPIN: Row[] = [
 const BOTH_KINDS: Row[] = [...ONE_BODY_SPIN.slice(1), ...SPIN_ORBIT.slice(0, 5)];
 const ONE_OF_EACH: Row[] = [ONE_BODY_SPIN[1]!, SPIN_ORBIT[0]!, SPIN_ORBIT[3]!, SPIN_ORBIT[4]!];
 const MIXTURE: Row[] = [ONE_BODY_SPIN[1]!, SPIN_ORBIT[2]!, SPIN_SPIN[1]!, SPIN_SPIN[4]!];
+
+const [SAME, OPPOSITE] = [8 + 16, 4 + 8 + 16];
+const CHARGE_STRINGS: Strings[] = [
+  [SAME, 0, 0, 1, 1, 0.5, 1],
+  [OPPOSITE, 0, 0, 1, 1, 0.6, 1],
+  [OPPOSITE, 1, 0, 1, 0, 0.3, -1],
+  [OPPOSITE, 0, 0, 0, 0, 0.4, 1],
+];
+/** Of three orbitals, one of each way that spins and kinds can go together. */
+const SPIN_STRINGS: Strings[] = [
+  [OPPOSITE, 0, 0, 1, 1, 0.6, 1],
+  [SAME, 0, 0, 2, 1, 0.3, -1],
+  [1 + 8, 2, 1, 1, 0, 0.4, -1],
+  [2 + 8, 0, 0, 2, 1, 0.5, 1],
+  [1 + 2 + 4 + 16, 1, 0, 2, 2, 0.2, 1],
+  [4, 1, 0, 2, 1, 0.3, -1],
+  [1 + 16, 1, 0, 2, 2, 0.35, 1],
+  [1 + 2 + 8 + 16, 0, 0, 1, 1, 0.25, -1],
+];
 
 const ROW_BY_ROW = { read: 1, erase: 1 };
 
@@ -134,6 +170,35 @@ describe('sparse block encoding on Fock space', () => {
     ['spin–other-orbit', program(2, [...few, ...OTHER_ORBIT]), 2, ROW_BY_ROW, 'random'],
     ['spin–spin', program(2, [...few, ...SPIN_SPIN]), 4, { read: 2, erase: 1 }, 'random'],
     ['shared and exchanged values', program(2, [few[2], ...MIXTURE], TURNED), 2, ROW_BY_ROW, 1],
+    [
+      'joined charge',
+      withStrings(program(2, SPIN_FREE.slice(0, 2)), CHARGE_STRINGS),
+      1,
+      { read: 2, erase: 2 },
+      0,
+    ],
+    [
+      'charge joined in part',
+      withStrings(program(2, SPIN_FREE.slice(0, 5)), CHARGE_STRINGS),
+      2,
+      ROW_BY_ROW,
+      1,
+    ],
+    ['joined charge beside spin', withStrings(program(2, MIXTURE, TURNED), CHARGE_STRINGS), 2, ROW_BY_ROW, 0],
+    [
+      'joined products of all kinds',
+      withStrings(program(3, [few[0], ...ONE_BODY_SPIN]), SPIN_STRINGS),
+      2,
+      { read: 2, erase: 1 },
+      'random',
+    ],
+    [
+      'joined products, two orbitals',
+      withStrings(program(2, ONE_BODY_SPIN), [...CHARGE_STRINGS, [2 + 4 + 8 + 16, 0, 0, 1, 1, 0.3, -1]]),
+      2,
+      ROW_BY_ROW,
+      1,
+    ],
   ] as const)('%s', (_, given, refinement, blocks, outcomes) => {
     const tables = sparseTables(given, { keep: 1, share: 2 }, refinement);
     const block = simulate(tables, outcomes, (machine, wires) => {
@@ -152,6 +217,9 @@ describe('sparse SELECT', () => {
     ['two orbitals', program(2, [...SPIN_FREE.slice(0, 2), ...MIXTURE], SHARED)],
     ['three orbitals', program(3, [...SPIN_FREE.slice(0, 2), ...MIXTURE], SHARED)],
     ['three orbitals, charge', program(3, SPIN_FREE)],
+    ['charge joined in part', withStrings(program(2, SPIN_FREE.slice(0, 5)), CHARGE_STRINGS)],
+    ['joined charge beside spin', withStrings(program(2, MIXTURE, TURNED), CHARGE_STRINGS)],
+    ['joined products of all kinds', withStrings(program(3, ONE_BODY_SPIN), SPIN_STRINGS)],
   ])('is its own inverse, so that the block encoding is Hermitian: %s', (_, given) => {
     const tables = sparseTables(given, { keep: 1, share: 1 }, 3);
     const state = new SparseState({ maxWires: 192 });
@@ -160,7 +228,7 @@ describe('sparse SELECT', () => {
     const { system, plus } = wires;
     const free = [
       ...system,
-      plus.order,
+      ...(plus.order === null ? [] : [plus.order]),
       ...plus.spins,
       ...plus.kinds,
       ...(plus.placing === null ? [] : [plus.placing]),

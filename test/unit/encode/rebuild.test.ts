@@ -13,7 +13,7 @@ async function encode(h: SpinHamiltonian, name: string, threshold = 0, occupatio
   const variant = parseVariant(name);
   const { grouping } = variant;
   const factorisation =
-    grouping === '-'
+    variant.factorisation === 'sparse' || grouping === '-'
       ? null
       : await factorise(h, { grouping, threshold, ...(occupations ? { occupations } : {}) }, ctx);
   return buildEncoding(h, factorisation, variant, { threshold }, ctx);
@@ -48,6 +48,7 @@ const FORMS = [
   'spinor/joint/index/none/clean',
   'spinor/separate/index/none/clean',
   'sparse/-/index/none/clean',
+  'sparse/joint/index/none/clean',
 ];
 
 // The random tensors are indefinite, so the charge part takes eigenvectors here; Cholesky columns are checked on real
