@@ -1,6 +1,6 @@
 import { buildEncoding, type Encoding, type VariantName } from '../encode';
 import type { Factorisation } from '../factor';
-import type { SpinHamiltonian } from '../hamiltonian';
+import { oppositeShift, type SpinHamiltonian, shiftedHamiltonian } from '../hamiltonian';
 import { InputError, type JobContext } from '../job';
 import {
   type DeterminantStatistics,
@@ -131,7 +131,10 @@ export class EnergyEstimates {
     try {
       if (!factorisation) {
         const rebuilt = encoding.rebuild();
-        return frame && rebuilt.kind === 'spatial' ? await turnedBack(rebuilt, frame, context) : rebuilt;
+        if (rebuilt.kind !== 'spatial') return rebuilt;
+        const shift = encoding.symmetryShift?.();
+        const plain = shift ? shiftedHamiltonian(rebuilt, oppositeShift(shift)) : rebuilt;
+        return frame ? await turnedBack(plain, frame, context) : plain;
       }
       const packed = h.kind === 'spatial' ? await hamiltonianOfFactors(h, factorisation, context) : null;
       if (packed) return packed;

@@ -12,6 +12,7 @@ import type { Frame } from './frame';
 import { frameChecks } from './frame-checks';
 import { FramedEncodings } from './framed-encodings';
 import { defaultVariants } from './run';
+import { shiftChecks } from './shift-checks';
 import { hamiltonianOf, occupationsOf, type SystemRequest } from './system';
 
 export interface VerificationRequest extends SystemRequest {
@@ -95,6 +96,14 @@ export async function runVerification(
           largestDifference(levels, exact.values),
           exact.errorBound + encoded.errorBound,
         ),
+        ...(await shiftChecks(
+          name,
+          frame?.hamiltonian ?? hamiltonian,
+          encoding,
+          request.states,
+          ARITHMETIC,
+          context,
+        )),
       );
     }
     spectra[name] = Array.from(levels);

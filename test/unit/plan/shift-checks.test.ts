@@ -1,0 +1,49 @@
+import { describe, expect, it } from 'vitest';
+import { parseVariant } from '../../../core/encode';
+import { buildHamiltonian, type SpatialHamiltonian, spinorForm } from '../../../core/hamiltonian';
+import { inlineContext } from '../../../core/job';
+import { Encodings } from '../../../core/plan/encodings';
+import { shiftChecks } from '../../../core/plan/shift-checks';
+import { findSet, loadSet } from '../../published/data-set';
+
+const ctx = inlineContext();
+const folder = findSet('f_sto3g_2p')!;
+const h = buildHamiltonian(await loadSet(folder)) as SpatialHamiltonian;
+
+describe('checks of symmetry shifts in the neighbouring sector', () => {
+  it.each([
+    'triplet/joint/index/optimised/clean',
+    'triplet/separate/index/median/clean',
+    'compressed/separate/index/optimised/clean',
+    'spinor/joint/index/optimised/clean',
+    'sparse/-/index/optimised/clean',
+  ])('%s: pass, and the shift does move levels there', async (name) => {
+    const encoding = await new Encodings(h, 0, null, 0).of(parseVariant(name), ctx);
+    const checks = await shiftChecks(name, h, encoding, 4, 1e-9, ctx);
+    expect(checks.map(({ ok }) => ok)).toEqual([true, true]);
+    expect(checks[1]!.value).toBeGreaterThan(1e-3);
+  });
+
+  it('pass for spinor integrals', async () => {
+    const spinors = spinorForm(h);
+    const variant = parseVariant('spinor/joint/index/optimised/clean');
+    const encoding = await new Encodings(spinors, 0, null, 0).of(variant, ctx);
+    const checks = await shiftChecks('spinors', spinors, encoding, 4, 1e-9, ctx);
+    expect(checks.map(({ ok }) => ok)).toEqual([true, true]);
+  });
+
+  it('fail where the reported operator is not the one that was used', async () => {
+    const variant = parseVariant('triplet/joint/index/optimised/clean');
+    const encoding = await new Encodings(h, 0, null, 0).of(variant, ctx);
+    const { scalar, operator } = encoding.symmetryShift!();
+    const wrong = { ...encoding, symmetryShift: () => ({ scalar: scalar + 1e-6, operator }) };
+    const checks = await shiftChecks('wrong', h, wrong, 4, 1e-9, ctx);
+    expect(checks[0]!.ok).toBe(false);
+  });
+
+  it('are left out where nothing is shifted', async () => {
+    const variant = parseVariant('triplet/joint/index/none/clean');
+    const encoding = await new Encodings(h, 0, null, 0).of(variant, ctx);
+    expect(await shiftChecks('none', h, encoding, 4, 1e-9, ctx)).toEqual([]);
+  });
+});
