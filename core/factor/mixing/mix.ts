@@ -4,6 +4,7 @@ import { multiply } from '../../linalg';
 import { matrixBlocks } from '../components';
 import { descend, WIDTHS } from './descent';
 import { exponential, uniformNumbers } from './exponential';
+import { recast } from './recast';
 import { type SquarePoint, type SquareSetting, slotScales, squareProblem } from './squares';
 import { arrayOf, checkSameTensor, type MixingState, type MixingStore } from './state';
 import { type TriplePoint, type TripleSetting, tripleProblem } from './triples';
@@ -54,33 +55,40 @@ export async function mixSquares(
   const { dim } = setting.layout;
   const given = signs.length;
   const count = Math.max(given, options.factors ?? given);
-  const padded: SquarePoint = {
+  const pointOf = (own: Float64Array): SquarePoint => ({
     count,
-    columns: resized(columns, count * dim),
+    columns: resized(own, count * dim),
     shifts: new Float64Array(count),
     signs: Int8Array.from({ length: count }, (_, t) => signs[t % given]!),
-    classes: classesOf(columns, given, dim, count),
-  };
+    classes: classesOf(own, given, dim, count),
+  });
+  const padded = pointOf(columns);
   const problem = squareProblem(setting, slotScales(setting.layout, columns), ctx);
+  const arrays = ({ columns: own, shifts }: SquarePoint) => ({ columns: own, shifts });
   const saved = savedOf(options, part, count);
-  const probes = probesOf(dim);
-  const action = ({ columns: v }: SquarePoint) => {
-    const overlaps = multiply(v, probes, count, dim, PROBES, { transposeB: true });
-    for (let i = 0; i < overlaps.length; i++) overlaps[i]! *= padded.signs[Math.floor(i / PROBES)]!;
-    return multiply(overlaps, v, PROBES, count, dim, { transposeA: true });
-  };
-  const start = saved
-    ? {
-        ...padded,
-        columns: arrayOf(part, saved, 'columns', count * dim),
-        shifts: arrayOf(part, saved, 'shifts', count),
-      }
-    : leaking(padded, given, ctx.seed, (point, leak) => ({
-        ...point,
-        columns: multiply(leak, point.columns, count, count, dim),
-      }));
-  if (saved) checkSameTensor(part, action(padded), action(start));
-  return run(problem, start, part, saved, options, ctx, ({ columns, shifts }) => ({ columns, shifts }));
+  if (saved) {
+    const point = {
+      ...padded,
+      columns: arrayOf(part, saved, 'columns', count * dim),
+      shifts: arrayOf(part, saved, 'shifts', count),
+    };
+    const probes = probesOf(dim);
+    const action = ({ columns: v, signs: own }: SquarePoint) => {
+      const overlaps = multiply(v, probes, count, dim, PROBES, { transposeB: true });
+      for (let i = 0; i < overlaps.length; i++) overlaps[i]! *= own[Math.floor(i / PROBES)]!;
+      return multiply(overlaps, v, PROBES, count, dim, { transposeA: true });
+    };
+    checkSameTensor(part, action(padded), action(point));
+    return run(problem, [point], part, saved, options, ctx, arrays);
+  }
+  const other = await recast(columns, signs, dim, ctx);
+  const starts = [padded, ...(other ? [pointOf(other)] : [])].map((start) =>
+    leaking(start, given, ctx.seed, (point, leak) => ({
+      ...point,
+      columns: multiply(leak, point.columns, count, count, dim),
+    })),
+  );
+  return run(problem, starts, part, null, options, ctx, arrays);
 }
 
 /**
@@ -106,42 +114,55 @@ export async function mixTriples(
     classes: classesOf(sideBySide(given, nanti, npair), given.count, nanti + npair, count),
   };
   const problem = tripleProblem(setting, given, ctx);
-  const saved = savedOf(options, part, count);
-  const probes = probesOf(npair);
-  const action = ({ antisymmetric: a, symmetric: s }: TriplePoint) =>
-    multiply(multiply(s, probes, count, npair, PROBES, { transposeB: true }), a, PROBES, count, nanti, {
-      transposeA: true,
-    });
-  const start = saved
-    ? {
-        ...padded,
-        antisymmetric: arrayOf(part, saved, 'antisymmetric', count * nanti),
-        symmetric: arrayOf(part, saved, 'symmetric', count * npair),
-        shifts: arrayOf(part, saved, 'shifts', count),
-      }
-    : leaking(padded, given.count, ctx.seed, (point, leak) => ({
-        ...point,
-        antisymmetric: multiply(leak, point.antisymmetric, count, count, nanti),
-        symmetric: multiply(leak, point.symmetric, count, count, npair),
-      }));
-  if (saved) checkSameTensor(part, action(padded), action(start));
-  return run(problem, start, part, saved, options, ctx, ({ antisymmetric, symmetric, shifts }) => ({
+  const arrays = ({ antisymmetric, symmetric, shifts }: TriplePoint) => ({
     antisymmetric,
     symmetric,
     shifts,
+  });
+  const saved = savedOf(options, part, count);
+  if (saved) {
+    const point = {
+      ...padded,
+      antisymmetric: arrayOf(part, saved, 'antisymmetric', count * nanti),
+      symmetric: arrayOf(part, saved, 'symmetric', count * npair),
+      shifts: arrayOf(part, saved, 'shifts', count),
+    };
+    const probes = probesOf(npair);
+    const action = ({ antisymmetric: a, symmetric: s }: TriplePoint) =>
+      multiply(multiply(s, probes, count, npair, PROBES, { transposeB: true }), a, PROBES, count, nanti, {
+        transposeA: true,
+      });
+    checkSameTensor(part, action(padded), action(point));
+    return run(problem, [point], part, saved, options, ctx, arrays);
+  }
+  const start = leaking(padded, given.count, ctx.seed, (point, leak) => ({
+    ...point,
+    antisymmetric: multiply(leak, point.antisymmetric, count, count, nanti),
+    symmetric: multiply(leak, point.symmetric, count, count, npair),
   }));
+  return run(problem, [start], part, null, options, ctx, arrays);
 }
 
+/** From the best of the starting points, with medians or without shifts. */
 async function run<Point extends { readonly count: number }>(
   problem: Parameters<typeof descend<Point>>[0],
-  start: Point,
+  starts: readonly Point[],
   part: string,
   saved: MixingState | null,
   { steps = STEPS, settled, store }: MixingOptions,
   ctx: JobContext,
   arraysOf: (point: Point) => Record<string, Float64Array>,
 ): Promise<Mixed<Point>> {
-  const { exact } = await problem.value(start, 0);
+  let start = starts[0]!;
+  let exact = Number.POSITIVE_INFINITY;
+  // Judged with its medians, begun without shifts: from the kinks of the medians the descent finds less.
+  for (const point of starts) {
+    const medians = saved ? point : await problem.withMedians(point);
+    const found = (await problem.value(medians, 0)).exact;
+    if (found >= exact) continue;
+    start = point;
+    exact = found;
+  }
   if (saved?.done) return { point: start, lambda: exact, evaluations: 1 };
   const save = (point: Point, lambda: number, stage: number, done: boolean) =>
     store?.save(part, { stage, done, lambda, count: point.count, arrays: arraysOf(point) });
