@@ -12,7 +12,9 @@ export {
   type EncodedTables,
   encodeTables,
   type FormProgram,
+  readFrame,
   readTables,
+  type StoredFrame,
   type TablesDocument,
   writeTables,
 } from './encode-tables';

@@ -1,6 +1,7 @@
 import type { LambdaByPart } from '../../encode';
 import type { ElementName, Sizes } from './arrays';
 import type { FormName } from './form';
+import type { FrameSummary } from './frame';
 import type { WindowEffect } from './levels';
 
 export const TABLES_SCHEMA = 'spinwright-tables/2';
@@ -52,6 +53,8 @@ export interface TablesDocument {
   readonly rounding: RoundingSummary;
   /** Lowest levels of an orbital window around the Fermi level; null where none can be chosen. */
   readonly window: WindowEffect | null;
+  /** The turned basis that the tables are over; absent where it is the given one. */
+  readonly frame?: FrameSummary;
   readonly conventions: Readonly<Record<string, string>>;
   readonly arrays: readonly WrittenArray[];
 }

@@ -7,10 +7,14 @@ import { InputError, type JobContext } from '../../job';
 import type { CircuitRequest } from '../circuit-run';
 import { costOf, targetOf, thresholdOf, toleranceOf } from '../costing';
 import { Encodings } from '../encodings';
+import type { Frame } from '../frame';
+import { FramedEncodings } from '../framed-encodings';
 import { hamiltonianOf, occupationsOf } from '../system';
+import { whole } from './arrays';
 import { TABLES_SCHEMA, type TablesDocument } from './document';
 import type { FormName, FormProgram, RoundedTables, RoundingChoice } from './form';
 import { FORMS } from './forms';
+import { FRAME_ARRAY, type FrameSummary } from './frame';
 import { windowEffect } from './levels';
 
 /** The rounded tables of a variant, not written yet. */
@@ -38,14 +42,13 @@ export async function encodeTables(
   const variant = formatVariant(request.variant);
   const refuse = (code: string, found: string, expected: string, mend: string): InputError =>
     new InputError({ code, where: `variant "${variant}"`, found, expected, mend });
-  const hamiltonian = hamiltonianOf(set, request);
   const target = targetOf(request);
   const occupations = occupationsOf(set, request);
-  const encodings = new Encodings(
-    hamiltonian,
-    thresholdOf(request, target),
-    occupations,
-    toleranceOf(target),
+  const threshold = thresholdOf(request, target);
+  const encodings = new FramedEncodings(
+    hamiltonianOf(set, request),
+    (h) => new Encodings(h, threshold, occupations, toleranceOf(target)),
+    request.frames,
   );
   const reason = encodings.refusal(request.variant);
   if (reason !== null) {
@@ -57,6 +60,8 @@ export async function encodeTables(
     );
   }
   const encoding = await encodings.of(request.variant, context);
+  const frame = await encodings.frameOf(request.variant, context);
+  const hamiltonian = await encodings.hamiltonianOf(request.variant, context);
   const { bits: used } = costOf(encoding, request.variant, target, request);
   if (used.keep > MOST_BITS || used.rotation > MOST_BITS) {
     throw refuse(
@@ -86,8 +91,10 @@ export async function encodeTables(
   const { rigorous, estimate } = roundingError(encoding.shape, encoding.lambda, used);
   const realised = await rounded.rounding(hamiltonian.electrons, context);
   const { inWindow } = rounded;
+  const turned = frame?.record.turned ? frame.record : null;
   const window =
-    hamiltonian.kind === 'spatial' && occupations && inWindow
+    // Turned orbitals have no occupations to choose a window by.
+    hamiltonian.kind === 'spatial' && occupations && inWindow && !(turned?.kind === 'orbital')
       ? await windowEffect(
           hamiltonian,
           {
@@ -100,7 +107,9 @@ export async function encodeTables(
         )
       : null;
   return {
-    rounded,
+    rounded: turned
+      ? { data: { ...rounded.data, [FRAME_ARRAY.name]: whole(Float64Array.from(turned.rotation.flat())) } }
+      : rounded,
     encoded,
     summary: {
       schema: TABLES_SCHEMA,
@@ -112,13 +121,18 @@ export async function encodeTables(
       constant: encoding.constant,
       lambda: encoding.lambda,
       bits: rounded.bits,
-      sizes: rounded.sizes,
+      sizes: turned ? { ...rounded.sizes, [FRAME_ARRAY.name]: turned.rotation.length } : rounded.sizes,
       residual: encoding.residual,
       rounding: { worstCase: rigorous, estimate, realised: realised.bound, typical: realised.typical },
       window,
+      ...(turned ? { frame: summaryOf(turned) } : {}),
       conventions,
     },
   };
+}
+
+function summaryOf({ kind, judgedBy, lambda, rows, evaluations }: Frame['record']): FrameSummary {
+  return { kind, judgedBy, lambda, rows, evaluations };
 }
 
 /** The tables in the first form that the encoding is of. */

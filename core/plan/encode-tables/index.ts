@@ -1,5 +1,6 @@
 export { TABLES_FILE, type TablesDocument } from './document';
 export { type EncodedTables, encodeTables } from './encode';
 export type { FormProgram } from './form';
-export { readTables } from './read';
+export type { StoredFrame } from './frame';
+export { readFrame, readTables } from './read';
 export { writeTables } from './write';

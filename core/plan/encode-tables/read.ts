@@ -4,6 +4,7 @@ import { type ArrayLayout, ELEMENTS, type Numbers, type Sizes, shapeOf } from '.
 import { TABLES_FILE, TABLES_SCHEMA } from './document';
 import type { FormProgram, StoredTables } from './form';
 import { FORMS } from './forms';
+import { FRAME_ARRAY, type StoredFrame } from './frame';
 
 /** Conventions and a few dozen arrays take some ten thousand characters. */
 const MOST_JSON = 2 ** 20;
@@ -33,6 +34,25 @@ export async function readTables(files: FileSet, context: JobContext): Promise<F
   const stored = new Stored(document, form.arrays, files, context);
   // One form's name goes with its own program: the list of forms is typed so.
   return { form: form.form, program: await form.read(stored) } as FormProgram;
+}
+
+/**
+ * The basis that exported tables are over, or null where it is the given one. Its transpose turns a Hamiltonian made from
+ * the program of {@link readTables} back.
+ *
+ * @throws InputError as {@link readTables}
+ */
+export async function readFrame(files: FileSet, context: JobContext): Promise<StoredFrame | null> {
+  const document = await readDocument(files);
+  const { frame } = document;
+  if (frame === undefined) return null;
+  const kind = isObject(frame) ? frame.kind : undefined;
+  if (kind !== 'spin' && kind !== 'orbital') {
+    throw badTables(`${TABLES_FILE}: frame`, JSON.stringify(frame).slice(0, 200), 'kind "spin" or "orbital"');
+  }
+  const stored = new Stored(document, [FRAME_ARRAY], files, context);
+  const rotation = Float64Array.from(await stored.array('frame'));
+  return { kind, size: stored.size('frame'), rotation };
 }
 
 type JsonObject = { readonly [key: string]: Json };

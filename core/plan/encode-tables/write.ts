@@ -4,6 +4,7 @@ import { shapeOf } from './arrays';
 import { TABLES_FILE, type TablesDocument, type WrittenArray } from './document';
 import type { EncodedTables } from './encode';
 import { FORMS } from './forms';
+import { FRAME_ARRAY } from './frame';
 import { npyHeader } from './npy';
 
 /**
@@ -17,7 +18,8 @@ export async function writeTables(
   append: (file: string, bytes: Uint8Array) => void,
   context: JobContext,
 ): Promise<TablesDocument> {
-  const { arrays: layouts } = FORMS.find(({ form }) => form === summary.form)!;
+  const { arrays: ofForm } = FORMS.find(({ form }) => form === summary.form)!;
+  const layouts = summary.frame ? [...ofForm, FRAME_ARRAY] : ofForm;
   const arrays: WrittenArray[] = [];
   for (const layout of layouts) {
     const { name, type, meaning } = layout;
