@@ -16,9 +16,8 @@ export interface CompressionOptions {
   /** Mixes the charge part alone and leaves the spin-dependent ones as they are. @defaultValue false */
   readonly chargeOnly?: boolean;
   /**
-   * Number of factors of each part (squares of a block; triples of all components together). Where a part has fewer,
-   * empty ones are added for the mixing to fill; where it has more, truncation has to drop them before.
-   * @defaultValue as many as there are
+   * Number of factors of the block with the charge plane: where it has fewer, empty ones are added for the mixing to fill.
+   * Where it has more, truncation has to drop them before. @defaultValue as many as there are
    */
   readonly factors?: number | null;
   /** Most steps at each smoothing width. */
@@ -105,7 +104,7 @@ async function mixedSquares(
     columns,
     signs,
     part,
-    mixingOptions(setting, options, options.factors ?? null),
+    mixingOptions(setting, options, hasCharge(block) ? (options.factors ?? null) : null),
     ctx,
   );
   const unit = normalised(point.columns, point.count, dim);
@@ -125,7 +124,6 @@ async function mixedTriples(
   const { n, count, sameScale, otherScale, component } = block;
   if (count === 0) return block;
   const [nanti, npair] = [numAntisymmetricPairs(n), numSymmetricPairs(n)];
-  const extra = Math.max(0, (options.factors ?? count) - count);
   const found: { readonly k: 1 | 2 | 3; readonly point: TriplePoint }[] = [];
   for (const k of [1, 2, 3] as const) {
     const own = [...component.keys()].filter((t) => component[t] === k);
@@ -138,12 +136,11 @@ async function mixedTriples(
       symmetric: part.symmetric.map((x, i) => x * root[Math.floor(i / npair)]!),
       shifts: new Float64Array(part.count),
     };
-    const factors = own.length + Math.floor((extra * own.length) / count);
     const { point } = await mixTriples(
       { n, sameScale, otherScale, kappa: planeAt(setting.kappa, k, n), excess: setting.excess },
       start,
       `spin-orbit ${setting.index}${'xyz'[k - 1]}`,
-      mixingOptions(setting, options, factors),
+      mixingOptions(setting, options, null),
       ctx,
     );
     found.push({ k, point });

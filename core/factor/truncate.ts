@@ -47,6 +47,31 @@ export function chooseKept(
   return { kept, dropped, sum };
 }
 
+/** The same choice with at most `most` factors of a block: the heaviest stay. Infinite norms are not touched. */
+function capped(
+  { kept, dropped, sum }: ReturnType<typeof chooseKept>,
+  norms: readonly Float64Array[],
+  most: number,
+): ReturnType<typeof chooseKept> {
+  let all = sum;
+  const limited = kept.map((own, b) => {
+    const byNorm = [...own].sort((s, t) => norms[b]![t]! - norms[b]![s]! || s - t);
+    return byNorm.filter((t, i) => {
+      if (i < most || norms[b]![t] === Number.POSITIVE_INFINITY) return true;
+      all += norms[b]![t]!;
+      return false;
+    });
+  });
+  return {
+    kept: limited.map((own) => own.sort((s, t) => s - t)),
+    dropped: dropped.map((own, b) => {
+      const staying = new Set(limited[b]);
+      return [...own, ...kept[b]!.filter((t) => !staying.has(t))].sort((s, t) => s - t);
+    }),
+    sum: all,
+  };
+}
+
 /** Sizes of the weights, |w_t| or s_t. */
 export function weightSizes(block: SpatialBlock): Float64Array {
   return block.kind === 'triples' ? block.strengths : block.weights.map(Math.abs);
@@ -64,6 +89,8 @@ export interface TruncateOptions {
   readonly keepSpinParts: boolean;
   /** Coulomb factors have a part in the choice of what is dropped, but are all left out: something else stands for them. */
   readonly withoutCoulomb: boolean;
+  /** Most factors of a block, but not of those that may not be dropped; null: no limit. */
+  readonly most: number | null;
 }
 
 /** Factors between two checkpoints: some 10 ms for 50 orbitals. */
@@ -72,7 +99,8 @@ const FOLDED_AT_ONCE = 16;
 const TRIES = 6;
 
 /**
- * Truncation: factors are dropped in ascending order of their LCU norm while the bound stays ≤ `threshold` (hartree).
+ * Truncation: factors are dropped in ascending order of their LCU norm while the bound stays ≤ `threshold` (hartree), and
+ * further ones while a block has more than `most`: then the bound says what that costs.
  *
  * Dropped are the unitaries, ½w(M² − ½Λ²) with M = L − τ; the one-body part and the constant of a factor stay, except
  * that its spin components become the mean field over `occupations` (mean-field.ts). The bound is the sum of the
@@ -80,7 +108,7 @@ const TRIES = 6;
  */
 export async function truncate(
   blocks: readonly SpatialBlock[],
-  { n, threshold, occupations, remainder, keepSpinParts, withoutCoulomb }: TruncateOptions,
+  { n, threshold, occupations, remainder, keepSpinParts, withoutCoulomb, most }: TruncateOptions,
   ctx: JobContext,
 ): Promise<
   Pick<Factorisation, 'residual' | 'foldedMeanField' | 'foldedConstant'> & { blocks: SpatialBlock[] }
@@ -100,6 +128,10 @@ export async function truncate(
   for (let i = 0; choice.sum + fold.replacement > allowed && i < TRIES; i++) {
     budget = i === TRIES - 1 ? 0 : Math.max(0, Math.min(budget, choice.sum) - fold.replacement);
     choice = chooseKept(norms, sizes, budget);
+    fold = await foldDropped(blocks, choice.dropped, n, occupations, ctx);
+  }
+  if (most !== null) {
+    choice = capped(choice, norms, most);
     fold = await foldDropped(blocks, choice.dropped, n, occupations, ctx);
   }
   if (withoutCoulomb) {

@@ -58,10 +58,45 @@ describe.each(['f_sto3g_2p', 'c_631g_2p', 'br_def2svp_4p'])('%s with all terms',
       expect(moved).toBeLessThanOrEqual(given.residual.oneNormBound + 1e-10);
     },
   );
+
+  it.skipIf(folder === null).each(groupings)(
+    '%s: a given number of factors, mixed, keeps to its bound',
+    async (grouping) => {
+      const h = await load(folder!, 'all');
+      const exact = fockMatrix(h, 'stored');
+      const most = 4;
+      const options = { grouping, occupations: HALF, principal: true };
+      const whole = await factorise(h, options, ctx);
+      const given = await factorise(h, { ...options, most }, ctx);
+      expect(given.blocks.map((block) => block.count)).toEqual(
+        whole.blocks.map((block) => Math.min(most, block.count)),
+      );
+      expect(given.residual.oneNormBound).toBeGreaterThan(1e-6);
+      const mixed = await compressFactors(h, given, { factors: most }, ctx);
+      expect(mixed.residual).toEqual(given.residual);
+      const plain = await encode(h, mixed, `triplet/${grouping}`, 'none');
+      const moved = operatorNorm(difference(matrixOf(plain.rebuild()), exact));
+      expect(moved).toBeGreaterThan(1e-8);
+      expect(moved).toBeLessThanOrEqual(given.residual.oneNormBound + 1e-10);
+    },
+  );
 });
 
 describe('formaldehyde, 8 orbitals', () => {
   const folder = findSet('ch2o_sto3g_8o');
+
+  it.skipIf(folder === null)(
+    'eigenvectors leave less than Cholesky columns with as many factors',
+    async () => {
+      const h = await load(folder!, ['sf']);
+      const options = { grouping: 'separate', most: 24 } as const;
+      const columns = (await factorise(h, options, ctx)).residual;
+      const principal = (await factorise(h, { ...options, principal: true }, ctx)).residual;
+      expect(principal.dropped).toBe(columns.dropped);
+      expect(principal.frobenius).toBeLessThan(columns.frobenius);
+      expect(principal.oneNormBound).toBeLessThan(columns.oneNormBound);
+    },
+  );
 
   it.skipIf(folder === null)('mixing changes no element of the two-electron tensor', async () => {
     const h = await load(folder!, ['sf', 'so1', 'somf', 'so2']);
