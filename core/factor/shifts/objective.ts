@@ -106,6 +106,19 @@ export class ShiftObjective {
     return { value, exact, gradient, lowerBound };
   }
 
+  /** Every shift moved to the next value of its spectrum where that is no farther than `reach` times the spectrum's size. */
+  snapped(shifts: Float64Array, reach: number): Float64Array {
+    const out = shifts.slice();
+    forEachFactor(this.#problem, (group, i, at) => {
+      let next = Number.POSITIVE_INFINITY;
+      for (const x of spectrumOf(group, i)) {
+        if (Math.abs(x - shifts[at]!) < Math.abs(next - shifts[at]!)) next = x;
+      }
+      if (Math.abs(next - shifts[at]!) <= reach * this.#spreads[at]!) out[at] = next;
+    });
+    return out;
+  }
+
   /** √ of the smoothed cost's second derivative along each shift, κ left out: what makes steps alike. */
   stiffness(shifts: Float64Array, width: number): Float64Array {
     const out = new Float64Array(this.count);
