@@ -8,6 +8,7 @@ export {
 export { type DeterminantStatistics, determinantStatistics } from './determinant-statistics';
 export { binomial, type SectorBasis, sectorBasis } from './determinants';
 export { type RealisedRounding, realisedRounding } from './energy-error';
+export { realisedSparseRounding } from './energy-error-sparse';
 export { realisedSpinorRounding } from './energy-error-spinor';
 export { type Form, fockMatrix, oneBodyFockMatrix, spinorFockMatrix } from './fock';
 export { programOperator } from './program-operator';

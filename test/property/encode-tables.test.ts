@@ -1,12 +1,15 @@
 import fc from 'fast-check';
 import { expect, it } from 'vitest';
-import type {
-  SpinorItem,
-  SpinorKind,
-  SpinorProgram,
-  TripletItem,
-  TripletProgram,
-  TripletRow,
+import {
+  type SparseProgram,
+  type SpinorItem,
+  type SpinorKind,
+  type SpinorProgram,
+  type TermKind,
+  type TripletItem,
+  type TripletProgram,
+  type TripletRow,
+  termSizes,
 } from '../../core/encode';
 import type { Mu } from '../../core/hamiltonian';
 import { throughForm } from '../unit/plan/encode-tables-support';
@@ -111,6 +114,49 @@ const spinorProgram = fc.integer({ min: 1, max: 5 }).chain(
     }),
 );
 
+const mu = fc.constantFrom<Mu>(0, 1, 2, 3);
+const termKind = fc.oneof(
+  fc.record({ form: fc.constant('strings' as const), flags: fc.nat(31) }),
+  fc.record({
+    form: fc.constant('pairs' as const),
+    antisymmetric: fc.boolean(),
+    mu,
+    nu: fc.option(mu),
+    shared: fc.boolean(),
+    exchanged: fc.boolean(),
+  }),
+);
+
+const sparseProgram = fc
+  .tuple(fc.integer({ min: 1, max: 70 }), fc.array(termKind, { minLength: 1, maxLength: 9 }))
+  .chain(
+    ([orbitals, kinds]: [number, TermKind[]]): fc.Arbitrary<SparseProgram> =>
+      fc
+        .record({
+          constant: numbers,
+          otherShare: fc.double({ min: 0.01, max: 0.99, noNaN: true }),
+          otherSign: sign,
+          rows: fc.array(
+            fc.record({
+              kind: fc.nat(kinds.length - 1),
+              places: fc.array(fc.nat(orbitals - 1), { minLength: 4, maxLength: 4 }),
+              weight: numbers,
+              negative: fc.nat(1),
+            }),
+            { minLength: 1, maxLength: 40 },
+          ),
+        })
+        .map(({ rows, ...rest }) => ({
+          ...rest,
+          orbitals,
+          kinds,
+          kindOf: Uint8Array.from(rows, (row) => row.kind),
+          orbitalsOf: Uint16Array.from(rows.flatMap((row) => row.places)),
+          weights: Float64Array.from(rows, (row) => row.weight),
+          negative: Uint8Array.from(rows, (row) => row.negative),
+        })),
+  );
+
 const bits = fc.record({ keep: fc.integer({ min: 1, max: 32 }), rotation: fc.integer({ min: 4, max: 32 }) });
 
 it('triplet programs, with products and without, are read back as they were rounded', async () => {
@@ -127,6 +173,21 @@ it('spinor programs of all kinds are read back as they were rounded', async () =
   await fc.assert(
     fc.asyncProperty(spinorProgram, bits, async (program, own) => {
       const { encoded, stored } = await throughForm('spinor', { spinorProgram: () => program }, own);
+      expect(stored).toEqual(encoded);
+    }),
+    { numRuns: 150 },
+  );
+});
+
+it('sparse programs are read back as they were rounded', async () => {
+  await fc.assert(
+    fc.asyncProperty(sparseProgram, bits, async (program, own) => {
+      const shape = { terms: termSizes(program) };
+      const { encoded, stored } = await throughForm(
+        'sparse',
+        { sparseProgram: () => program, shape: shape as never },
+        own,
+      );
       expect(stored).toEqual(encoded);
     }),
     { numRuns: 150 },

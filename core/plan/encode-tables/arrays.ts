@@ -35,9 +35,10 @@ export function shapeOf(layout: ArrayLayout, sizes: Sizes): number[] | undefined
 const PIECE = 2 ** 16;
 
 /** An array that exists as a whole. */
-export const whole =
-  (data: Numbers): Pieces =>
-  () => [data];
+export const whole = (data: Numbers): Pieces =>
+  function* () {
+    for (let from = 0; from < data.length; from += PIECE) yield data.subarray(from, from + PIECE);
+  };
 
 /**
  * An array of `rows` rows of `width` numbers, filled row by row.

@@ -10,6 +10,7 @@ import { Encodings } from '../encodings';
 import type { Frame } from '../frame';
 import { FramedEncodings } from '../framed-encodings';
 import { hamiltonianOf, occupationsOf } from '../system';
+import { phaseBitsOf } from '../walk-circuit';
 import { whole } from './arrays';
 import { TABLES_SCHEMA, type TablesDocument } from './document';
 import type { FormName, FormProgram, RoundedTables, RoundingChoice } from './form';
@@ -62,7 +63,8 @@ export async function encodeTables(
   const encoding = await encodings.of(request.variant, context);
   const frame = await encodings.frameOf(request.variant, context);
   const hamiltonian = await encodings.hamiltonianOf(request.variant, context);
-  const { bits: used } = costOf(encoding, request.variant, target, request);
+  const estimate = costOf(encoding, request.variant, target, request);
+  const { bits: used } = estimate;
   if (used.keep > MOST_BITS || used.rotation > MOST_BITS) {
     throw refuse(
       'too-many-bits',
@@ -78,7 +80,7 @@ export async function encodeTables(
     block: 'auto',
     qubitCap: request.qubitsMax,
   };
-  const found = roundAs(encoding, { bits: used, policy });
+  const found = roundAs(encoding, { bits: used, phaseBits: phaseBitsOf(estimate), policy });
   if (!found) {
     throw refuse(
       'no-tables',
@@ -88,7 +90,7 @@ export async function encodeTables(
     );
   }
   const { form, conventions, rounded, encoded } = found;
-  const { rigorous, estimate } = roundingError(encoding.shape, encoding.lambda, used);
+  const expected = roundingError(encoding.shape, encoding.lambda, used);
   const realised = await rounded.rounding(hamiltonian.electrons, context);
   const { inWindow } = rounded;
   const turned = frame?.record.turned ? frame.record : null;
@@ -123,7 +125,12 @@ export async function encodeTables(
       bits: rounded.bits,
       sizes: turned ? { ...rounded.sizes, [FRAME_ARRAY.name]: turned.rotation.length } : rounded.sizes,
       residual: encoding.residual,
-      rounding: { worstCase: rigorous, estimate, realised: realised.bound, typical: realised.typical },
+      rounding: {
+        worstCase: expected.rigorous,
+        estimate: expected.estimate,
+        realised: realised.bound,
+        typical: realised.typical,
+      },
       window,
       ...(turned ? { frame: summaryOf(turned) } : {}),
       conventions,

@@ -40,6 +40,8 @@ export interface TablesForm<F extends FormName> {
 /** What decides the tables beside the encoding: as for the circuit of the same variant. */
 export interface RoundingChoice {
   readonly bits: { readonly keep: number; readonly rotation: number };
+  /** Of the phase register. */
+  readonly phaseBits: number;
   readonly policy: LookupPolicy;
 }
 

@@ -6,10 +6,12 @@ type Files = ReadonlyMap<string, Uint8Array | string>;
 
 let spinor: Map<string, Uint8Array>;
 let triplet: Map<string, Uint8Array>;
+let sparse: Map<string, Uint8Array>;
 beforeAll(async () => {
   const atom = await load('test/fixtures/sets/f_sto3g_2p');
   spinor = (await roundTrip(atom, request('spinor/separate/index/median/clean', { bits: 10 }))).files;
   triplet = (await roundTrip(atom, request('triplet/separate/index/median/clean', { bits: 10 }))).files;
+  sparse = (await roundTrip(atom, request('sparse/-/index/none/clean', { bits: 10 }))).files;
 });
 
 const problemOf = (files: Files) =>
@@ -60,7 +62,7 @@ describe('folders that are no tables', () => {
 
 describe('damaged tables', () => {
   it('are found wherever a byte changed', async () => {
-    for (const files of [spinor, triplet]) {
+    for (const files of [spinor, triplet, sparse]) {
       for (const [name, bytes] of files) {
         if (!name.endsWith('.npy')) continue;
         const header = 10 + bytes[8]! + 256 * bytes[9]!;
@@ -108,6 +110,19 @@ describe('damaged tables', () => {
     ['sizes as words', (d: Any) => (d.sizes.items = '3'), 'tables.json: sizes'],
   ])('are found where the document has %s', async (_, change, where) => {
     const problem = await problemOf(edited(spinor, change as never));
+    expect(problem).toMatchObject({ code: 'bad-tables' });
+    expect(problem!.where).toMatch(where);
+  });
+});
+
+describe('damaged tables of the sparse form', () => {
+  it.each([
+    ['another factor', (d: Any) => (d.sizes.factor += 2), 'tables.json: sizes'],
+    ['fewer uniform bits than keep bits', (d: Any) => (d.sizes.uniformBits = 3), 'tables.json: sizes'],
+    ['fewer rows', (d: Any) => d.sizes.rows--, /row_/],
+    ['fewer orbitals', (d: Any) => (d.orbitals = 2), 'row_orbitals.npy'],
+  ])('are found where the document has %s', async (_, change, where) => {
+    const problem = await problemOf(edited(sparse, change as never));
     expect(problem).toMatchObject({ code: 'bad-tables' });
     expect(problem!.where).toMatch(where);
   });

@@ -134,7 +134,7 @@ export async function throughForm(
 ) {
   const form = FORMS.find((known) => known.form === name)!;
   const policy: LookupPolicy = { mode: 'clean', block: 'auto', qubitCap: null };
-  const rounded = form.round(encoding as Encoding, { bits, policy })!;
+  const rounded = form.round(encoding as Encoding, { bits, phaseBits: 1, policy })!;
   const encoded = { form: name, program: rounded.encoded } as FormProgram;
   const { orbitals, constant } = rounded.encoded;
   const summary = { schema: TABLES_SCHEMA, form: name, orbitals, constant } as TablesDocument;
