@@ -41,6 +41,11 @@ export interface EncodingShape {
   readonly spinors?: SpinorSizes;
   /** Spinor form only, where axial rows have fewer angle bits than others. */
   readonly axialParts?: AxialParts;
+  /**
+   * What rounding to tables does to low states, measured and scaled to zero bits (with n bits 2^−n of it); hartree.
+   * Absent where nobody measured it.
+   */
+  readonly measuredRounding?: { readonly keep: number; readonly rotation: number };
   /** Sparse form only: what its table and SELECT depend on. */
   readonly terms?: TermSizes;
 }

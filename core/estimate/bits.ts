@@ -8,7 +8,12 @@ export interface BitChoice {
   readonly rigorous: number | null;
   /** Bits that the statistical estimate asks for, guard bits not included. */
   readonly estimate: number | null;
-  readonly chosen: 'given' | 'estimate plus guard bits' | 'least sensible' | 'none needed';
+  readonly chosen:
+    | 'given'
+    | 'estimate plus guard bits'
+    | 'measured plus a guard bit'
+    | 'least sensible'
+    | 'none needed';
 }
 
 export interface BitChoices {
@@ -26,12 +31,15 @@ export interface LambdaSplit {
 
 /** Added to the estimate: it held within a factor 4 of exact norms on small molecules (computed, OH STO-3G). */
 export const GUARD_BITS = 2;
+/** Added where rounding was measured: samples of it differed by a factor 2 and less (CH2O, OH; 8 to 20 orbitals). */
+export const MEASURED_GUARD_BITS = 1;
 /** Below this a table is too coarse whatever the budget says. Common practice, no source. */
 export const LEAST_BITS = 6;
 
 /**
  * ℵ and β from the error budget. Rigorous: sums of worst cases. Estimate: independent rounding errors of many rows,
- * all rows taken to weigh alike. `auto` is the estimate and {@link GUARD_BITS}.
+ * all rows taken to weigh alike. `auto` is the estimate and {@link GUARD_BITS}, or, if that is less, what the rounded
+ * tables themselves do to low states where the shape carries that, and {@link MEASURED_GUARD_BITS}.
  */
 export function chooseBits(
   shape: EncodingShape,
@@ -42,8 +50,11 @@ export function chooseBits(
   const keep = keepErrors(shape, lambda);
   const rotation = rotationErrors(shape, lambda);
   return {
-    keep: choose(keep, budget.prepare, given.keep),
-    rotation: rotation === null ? NONE : choose(rotation, budget.rotation, given.rotation),
+    keep: choose(keep, shape.measuredRounding?.keep, budget.prepare, given.keep),
+    rotation:
+      rotation === null
+        ? NONE
+        : choose(rotation, shape.measuredRounding?.rotation, budget.rotation, given.rotation),
   };
 }
 
@@ -55,14 +66,21 @@ interface ErrorAtZeroBits {
   readonly estimate: number;
 }
 
-function choose(error: ErrorAtZeroBits, allowed: number, given: number | 'auto'): BitChoice {
+function choose(
+  error: ErrorAtZeroBits,
+  measured: number | undefined,
+  allowed: number,
+  given: number | 'auto',
+): BitChoice {
   const rigorous = bitsBelow(error.rigorous, allowed);
   const estimate = bitsBelow(error.estimate, allowed);
   if (given !== 'auto') return { used: given, rigorous, estimate, chosen: 'given' };
-  const wanted = estimate + GUARD_BITS;
-  return wanted >= LEAST_BITS
-    ? { used: wanted, rigorous, estimate, chosen: 'estimate plus guard bits' }
-    : { used: LEAST_BITS, rigorous, estimate, chosen: 'least sensible' };
+  const guarded = estimate + GUARD_BITS;
+  const seen = measured === undefined ? guarded : bitsBelow(measured, allowed) + MEASURED_GUARD_BITS;
+  const wanted = Math.min(guarded, seen);
+  if (wanted < LEAST_BITS) return { used: LEAST_BITS, rigorous, estimate, chosen: 'least sensible' };
+  const chosen = wanted < guarded ? 'measured plus a guard bit' : 'estimate plus guard bits';
+  return { used: wanted, rigorous, estimate, chosen };
 }
 
 function bitsBelow(errorAtZeroBits: number, allowed: number): number {

@@ -4,12 +4,14 @@ import {
   type Factorisation,
   factorise,
   type Grouping,
+  hypercontractedFactorisation,
   jointRefusal,
   optimiseShifts,
 } from '../factor';
 import type { SpatialHamiltonian, SpinHamiltonian } from '../hamiltonian';
 import type { JobContext } from '../job';
 import { thinLightParts } from './light-parts';
+import { measuredRounding } from './rounding-scale';
 
 /**
  * Encodings of one Hamiltonian at one threshold. What variants have in common is computed once: a factorisation
@@ -58,9 +60,22 @@ export class Encodings {
       if (variant.factorisation === 'spinor' && variant.shift === 'optimised') {
         encoding = await this.#notAboveMedian(encoding, variant, context);
       }
+      if (variant.factorisation === 'mixed') encoding = await this.#measured(encoding, context);
       this.#encodings.set(key, encoding);
     }
     return encoding;
+  }
+
+  /** With what rounding does to it, so that bits follow from that. */
+  async #measured(encoding: Encoding, context: JobContext): Promise<Encoding> {
+    if (this.#hamiltonian.kind !== 'spatial' || !encoding.program) return encoding;
+    const rounding = await measuredRounding(this.#hamiltonian, encoding, this.#filling(), context);
+    return { ...encoding, shape: { ...encoding.shape, measuredRounding: rounding } };
+  }
+
+  #filling(): readonly number[] {
+    const h = this.#hamiltonian;
+    return this.#occupations ?? new Array<number>(h.kind === 'spatial' ? h.orbitals : h.spinors / 2).fill(1);
   }
 
   /** Shifts that are best for the triplet form need not be for the spinor one: then its medians stay. */
@@ -81,6 +96,9 @@ export class Encodings {
 
   /** The factorisation of the grouping, its factors mixed and their shifts optimised where the variant says so. */
   async #optimised(variant: VariantName, grouping: Grouping, context: JobContext): Promise<Factorisation> {
+    if (variant.factorisation === 'hypercontracted' && this.#hamiltonian.kind === 'spatial') {
+      return this.#hypercontracted(this.#hamiltonian, variant.shift === 'optimised', context);
+    }
     const mixed = variant.factorisation === 'mixed';
     const given = await this.#factorised(grouping, mixed, context);
     if (variant.shift !== 'optimised') return given;
@@ -101,10 +119,30 @@ export class Encodings {
     return found;
   }
 
+  async #hypercontracted(
+    h: SpatialHamiltonian,
+    shift: boolean,
+    context: JobContext,
+  ): Promise<Factorisation> {
+    const key = `hypercontracted, ${shift ? 'shifted' : 'as it is'}`;
+    let found = this.#factorisations.get(key);
+    if (!found) {
+      const options = {
+        threshold: this.#threshold,
+        shift,
+        ...(this.#occupations ? { occupations: this.#occupations } : {}),
+      };
+      found = await hypercontractedFactorisation(h, options, context);
+      // Of the spin-orbit triples, which the fit leaves alone.
+      if (shift) ({ factorisation: found } = await optimiseShifts(h, found, {}, context));
+      this.#factorisations.set(key, found);
+    }
+    return found;
+  }
+
   /** Spin-dependent parts thinned by what they mean for the energy. */
   async #thinned(h: SpatialHamiltonian, whole: Factorisation, context: JobContext): Promise<Factorisation> {
-    const occupations = this.#occupations ?? new Array<number>(h.orbitals).fill(1);
-    const { factorisation, note } = await thinLightParts(h, whole, occupations, this.#tolerance, context);
+    const { factorisation, note } = await thinLightParts(h, whole, this.#filling(), this.#tolerance, context);
     return { ...factorisation, notes: [...factorisation.notes, note] };
   }
 

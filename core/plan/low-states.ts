@@ -8,7 +8,7 @@ const ALL = 5;
 /** Orbitals in which a closed shell and its single excitations are taken: at most 257 determinants. */
 const SINGLES = 16;
 /** States that are watched in each of the two, counted with multiplicity. */
-const STATES = { all: 12, singles: 40 } as const;
+export const STATES = { all: 12, singles: 40 } as const;
 
 /** Low states of a Hamiltonian near the Fermi level, found once; see {@link lowStates}. */
 export interface LowStates {
@@ -69,6 +69,11 @@ export async function lowStates(
       return most;
     },
   };
+}
+
+/** The orbitals about the Fermi level in which all determinants can be taken. */
+export function fewOrbitals(h: SpatialHamiltonian, occupations: readonly number[]): OrbitalWindow {
+  return windowOf(h, orderAboutFermiLevel(h, occupations).slice(0, ALL), occupations);
 }
 
 /** Partly filled orbitals first, then in turn the next below and the next above, by the diagonal of the Fock operator. */

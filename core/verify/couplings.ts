@@ -1,4 +1,4 @@
-import type { SpatialHamiltonian } from '../hamiltonian';
+import type { SpinHamiltonian } from '../hamiltonian';
 import type { JobContext } from '../job';
 import { type ComplexMatrix, hermitianEigen, hermitianEigenvalues } from '../linalg';
 import { sectorMatrix } from './sector-matrix';
@@ -62,7 +62,7 @@ export function watchedStates(matrix: ComplexMatrix, states: number): WatchedSta
 }
 
 /** H among all determinants of its electrons as a dense matrix: for some hundred determinants. */
-export async function denseSector(h: SpatialHamiltonian, context: JobContext): Promise<ComplexMatrix> {
+export async function denseSector(h: SpinHamiltonian, context: JobContext): Promise<ComplexMatrix> {
   const { dim, ...sparse } = await sectorMatrix(h, h.electrons, 'product', context);
   const { re, im } = denseMatrix({ dim, ...sparse });
   return { n: dim, re, im: im.length > 0 ? im : new Float64Array(re.length) };
