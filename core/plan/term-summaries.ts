@@ -5,13 +5,16 @@ import type { JobContext } from '../job';
 import type { TermSummary } from './comparison';
 import { hamiltonianOf, type SystemRequest } from './system';
 
+/** Equal Majorana products joined: the least norm, and without spin parts no more work. */
+const JOINED = parseVariant('sparse/joint/index/none/clean');
+/** Spin-dependent parts coefficient by coefficient, a little above the least norm. */
 const TERM_BY_TERM = parseVariant('sparse/-/index/none/clean');
 
 const WHOLE = { electrons: null, occupations: null };
 
 /**
- * What each term weighs alone: its one-norm as a linear combination of unitaries term by term, and its largest
- * integral in magnitude (stored form). Hartree.
+ * What each term weighs alone: its one-norm as a linear combination of Majorana products, and its largest integral in
+ * magnitude (stored form). Hartree.
  */
 export async function termSummaries(
   set: IntegralSet,
@@ -30,7 +33,9 @@ export async function termSummaries(
 
 async function oneNorm(alone: SpinHamiltonian, context: JobContext): Promise<number> {
   if (alone.kind === 'spinor') return spinorOneNorm(alone);
-  return (await buildEncoding(alone, null, TERM_BY_TERM, {}, context)).lambda.total;
+  const { spinOrbit, spinSpin } = alone.g;
+  const variant = spinOrbit || spinSpin ? TERM_BY_TERM : JOINED;
+  return (await buildEncoding(alone, null, variant, {}, context)).lambda.total;
 }
 
 /** Ladder operators in place of Majorana products: an upper bound, as spinor files hold no term apart. */

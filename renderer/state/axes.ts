@@ -19,14 +19,15 @@ export const AXIS_WORDS: Readonly<Record<Axis, string>> = {
   lookup: 'look-up',
 };
 export const VALUE_WORDS: Readonly<Record<string, string>> = {
+  '-': 'no grouping',
   index: 'in index',
   'swap-layers': 'swap layers',
 };
 
 /** Values that can be reckoned today; the others have no encoding yet. */
 export const OFFERED: Readonly<Record<Axis, readonly string[]>> = {
-  factorisation: ['sparse', 'triplet', 'compressed', 'mixed', 'spinor'],
-  grouping: ['joint', 'separate'],
+  factorisation: ['sparse', 'triplet', 'compressed', 'hypercontracted', 'mixed', 'spinor'],
+  grouping: ['joint', 'separate', '-'],
   spin: ['index', 'swap-layers'],
   shift: ['none', 'median', 'optimised'],
   lookup: ['plain', 'clean', 'dirty'],

@@ -262,10 +262,15 @@ function parseThreshold(text: string): Parsed<number | 'auto'> {
   return hartree >= 0 ? { value: hartree } : { problem: 'expected 0, auto, or an energy such as 1e-4 Eh' };
 }
 
+const SPARSE_WORDS: Readonly<Record<string, string>> = {
+  joint: ', equal Majorana products joined in all parts',
+  '-': ', equal Majorana products of the charge part joined where that pays',
+};
+
 /** A variant in words. */
 export function describe(name: string): string {
   const { factorisation, grouping, spin, shift, lookup } = parseVariant(name);
-  const how = grouping === '-' ? '' : `, ${grouping} blocks`;
+  const how = factorisation === 'sparse' ? SPARSE_WORDS[grouping]! : `, ${grouping} blocks`;
   const where =
     spin === 'swap-layers' ? 'spin taken out of the index by swap layers' : 'spin in the select index';
   const moved = shift === 'none' ? 'no shift' : `${shift} symmetry shift`;

@@ -19,6 +19,9 @@ const VARIANTS = [
   'spinor/separate/index/median/dirty',
   'sparse/-/index/none/clean',
   'sparse/-/index/none/dirty',
+  'sparse/joint/index/none/clean',
+  'sparse/joint/index/none/plain',
+  'sparse/joint/index/none/dirty',
 ];
 
 describe.each(['oh_sto3g', 'ch2o_sto3g_8o', 'ch2o_631g_20o'])('%s', (name) => {
@@ -34,7 +37,7 @@ describe.each(['oh_sto3g', 'ch2o_sto3g_8o', 'ch2o_631g_20o'])('%s', (name) => {
         occupations: null,
         window: null,
         target: { value: 5, unit: 'cm-1', meaning: 'level' },
-        variants: VARIANTS.filter((v) => name !== 'ch2o_631g_20o' || v.includes('separate')).map(
+        variants: VARIANTS.filter((v) => name !== 'ch2o_631g_20o' || /separate|sparse/.test(v)).map(
           parseVariant,
         ),
         threshold: 0,

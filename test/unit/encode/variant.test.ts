@@ -31,12 +31,14 @@ describe('variant names', () => {
       'triplet/separate/swap-layers/none/plain',
     ]);
     expect(names('sparse/*/*/*/*')).toEqual(
-      ['none', 'optimised'].flatMap((shift) =>
-        ['plain', 'clean', 'dirty'].map((lookup) => `sparse/-/index/${shift}/${lookup}`),
+      ['joint', '-'].flatMap((grouping) =>
+        ['none', 'optimised'].flatMap((shift) =>
+          ['plain', 'clean', 'dirty'].map((lookup) => `sparse/${grouping}/index/${shift}/${lookup}`),
+        ),
       ),
     );
-    // 3 look-ups × (triplet 2 groupings × 2 spins × 3 shifts, spinor half of that, 2 sparse, 4 compressed, 2 mixed).
-    expect(names('*/*/*/*/*')).toHaveLength(3 * (12 + 6 + 2 + 4 + 2));
+    // 3 look-ups × (triplet 2 groupings × 2 spins × 3 shifts, spinor half of that, 4 sparse, 4 compressed, 2 mixed).
+    expect(names('*/*/*/*/*')).toHaveLength(3 * (12 + 6 + 4 + 4 + 2));
   });
 
   it('come once each, in the order of first mention', () => {
@@ -53,7 +55,7 @@ describe('variant names', () => {
     ['triplet/joint/index/median', 'five parts'],
     ['triplets/joint/index/median/clean', 'one of sparse, triplet'],
     ['triplet/-/index/median/clean', 'joint or separate'],
-    ['sparse/joint/index/none/clean', 'no factors to group'],
+    ['sparse/separate/index/none/clean', 'no factors to keep apart'],
     ['sparse/-/swap-layers/none/clean', 'swap layers with the sparse form'],
     ['sparse/-/index/median/clean', 'acts on the eigenvalues of factors'],
     ['spinor/joint/swap-layers/none/clean', 'mix both spins'],
@@ -68,7 +70,7 @@ describe('variant names', () => {
   });
 
   it('a pattern that leaves nothing is refused, and so is * for one variant', () => {
-    expect(() => expandVariants('sparse/joint/*/*/*')).toThrow('no factors to group');
+    expect(() => expandVariants('sparse/separate/*/*/*')).toThrow('no factors to keep apart');
     expect(() => expandVariants(' , ')).toThrow('no name');
     expect(() => parseVariant('triplet/joint/*/none/clean')).toThrow('one value for each axis');
   });
