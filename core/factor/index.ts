@@ -29,6 +29,7 @@ export {
 export { jointDimensions, jointRefusal, MAX_SECTOR } from './joint';
 export { kramersPhases } from './kramers-phases';
 export { type LightParts, lightParts, type Thinned } from './light-parts';
+export type { MixingState, MixingStore } from './mixing/state';
 export { lcuNorms } from './one-norms';
 export { type OptimisedShifts, optimiseShifts, type ShiftOptions } from './shifts/optimise';
 export { type SpinOrbitCore, spinOrbitCores, triplesOfCore } from './spin-orbit-core';

@@ -11,7 +11,17 @@ import {
 import type { SpatialHamiltonian, SpinHamiltonian } from '../hamiltonian';
 import type { JobContext } from '../job';
 import { thinLightParts } from './light-parts';
+import { type MixingStates, mixingOwner } from './mixing-states';
+import type { FactorCount } from './request';
 import { measuredRounding } from './rounding-scale';
+
+/** What a request says about the mixing of factors. */
+export interface MixingChoices {
+  /** @defaultValue `auto` */
+  readonly factors?: FactorCount;
+  /** Where runs are kept that may be stopped and taken up again; null: nowhere. @defaultValue null */
+  readonly states?: MixingStates | null;
+}
 
 /**
  * Encodings of one Hamiltonian at one threshold. What variants have in common is computed once: a factorisation
@@ -22,6 +32,7 @@ export class Encodings {
   readonly #threshold: number;
   readonly #occupations: readonly number[] | null;
   readonly #tolerance: number;
+  readonly #mixing: MixingChoices;
   readonly #factorisations = new Map<string, Factorisation>();
   readonly #encodings = new Map<string, Encoding>();
 
@@ -29,17 +40,20 @@ export class Encodings {
    * @param threshold - sum of LCU norms that truncation may drop, hartree
    * @param occupations - reference of the mean field that stands for dropped factors; null: none
    * @param tolerance - of mixed encodings: what thinning of the spin-dependent parts may change, hartree
+   * @param mixing - of compressed and mixed encodings
    */
   constructor(
     hamiltonian: SpinHamiltonian,
     threshold: number,
     occupations: readonly number[] | null,
     tolerance: number,
+    mixing: MixingChoices = {},
   ) {
     this.#hamiltonian = hamiltonian;
     this.#threshold = threshold;
     this.#occupations = occupations;
     this.#tolerance = tolerance;
+    this.#mixing = mixing;
   }
 
   /** Why the variant is left out though its name is sound, or null. */
@@ -100,9 +114,9 @@ export class Encodings {
       return this.#hypercontracted(this.#hamiltonian, variant.shift === 'optimised', context);
     }
     const mixed = variant.factorisation === 'mixed';
-    const given = await this.#factorised(grouping, mixed, context);
-    if (variant.shift !== 'optimised') return given;
     const changed = variant.factorisation === 'compressed' || mixed ? variant.factorisation : 'as they are';
+    const given = await this.#factorised(grouping, mixed, changed !== 'as they are', context);
+    if (variant.shift !== 'optimised') return given;
     const key = `${grouping}, ${changed}, optimised`;
     let found = this.#factorisations.get(key);
     if (!found) {
@@ -110,7 +124,12 @@ export class Encodings {
       const h = this.#hamiltonian;
       if (changed !== 'as they are' && h.kind === 'spatial') {
         // Thinning needs the spin-dependent factors as their decomposition orders them.
-        found = await compressFactors(h, found, { chargeOnly: mixed }, context);
+        found = await compressFactors(
+          h,
+          found,
+          { chargeOnly: mixed, factors: this.#most(), store: this.#store(h, `${changed}/${grouping}`) },
+          context,
+        );
         if (mixed) found = await this.#thinned(h, found, context);
       }
       ({ factorisation: found } = await optimiseShifts(h, found, {}, context));
@@ -119,11 +138,7 @@ export class Encodings {
     return found;
   }
 
-  async #hypercontracted(
-    h: SpatialHamiltonian,
-    shift: boolean,
-    context: JobContext,
-  ): Promise<Factorisation> {
+  async #hypercontracted(h: SpatialHamiltonian, shift: boolean, context: JobContext): Promise<Factorisation> {
     const key = `hypercontracted, ${shift ? 'shifted' : 'as it is'}`;
     let found = this.#factorisations.get(key);
     if (!found) {
@@ -146,15 +161,38 @@ export class Encodings {
     return { ...factorisation, notes: [...factorisation.notes, note] };
   }
 
-  /** @param keepSpinParts - every factor of the spin-dependent parts, whatever the threshold */
-  async #factorised(grouping: Grouping, keepSpinParts: boolean, context: JobContext): Promise<Factorisation> {
-    const key = keepSpinParts ? `${grouping}, whole` : grouping;
+  /** The number of factors that was asked for, or null. */
+  #most(): number | null {
+    const { factors = 'auto' } = this.#mixing;
+    if (factors === 'auto') return null;
+    const h = this.#hamiltonian;
+    return factors.perOrbital && h.kind === 'spatial' ? factors.count * h.orbitals : factors.count;
+  }
+
+  #store(h: SpatialHamiltonian, variant: string) {
+    const choices = { variant, threshold: this.#threshold, factors: this.#most() ?? 'auto' } as const;
+    return this.#mixing.states?.of(mixingOwner(h, choices, this.#occupations)) ?? null;
+  }
+
+  /**
+   * @param keepSpinParts - every factor of the spin-dependent parts, whatever the threshold
+   * @param toMix - factors that mixing starts from, as many as were asked for
+   */
+  async #factorised(
+    grouping: Grouping,
+    keepSpinParts: boolean,
+    toMix: boolean,
+    context: JobContext,
+  ): Promise<Factorisation> {
+    const key = `${grouping}${keepSpinParts ? ', whole' : ''}${toMix ? ', to mix' : ''}`;
     let found = this.#factorisations.get(key);
     if (!found) {
       const options = {
         grouping,
         threshold: this.#threshold,
         keepSpinParts,
+        principal: toMix,
+        most: toMix ? this.#most() : null,
         ...(this.#occupations ? { occupations: this.#occupations } : {}),
       };
       found = await factorise(this.#hamiltonian, options, context);

@@ -21,10 +21,12 @@ export {
 export type { Check, Evidence } from './evidence';
 export { FRAME_CHOICES, type FrameChoice, type FrameRecord, type FrameRequest } from './frame';
 export { type Inspection, inspectIntegrals } from './inspection';
+export { type MixingOwner, type MixingRun, MixingStates } from './mixing-states';
 export { recommend } from './recommendation';
 export {
   type ComparisonRequest,
   type ComparisonRun,
+  type FactorCount,
   MEANINGS,
   type Meaning,
   type VariantOutcome,

@@ -8,6 +8,9 @@ import type { SystemRequest } from './system';
 export const MEANINGS = ['level', 'splitting', 'matrix-element'] as const;
 export type Meaning = (typeof MEANINGS)[number];
 
+/** How many factors compressed variants have in each block: as many as the threshold keeps, or a number. */
+export type FactorCount = 'auto' | { readonly count: number; readonly perOrbital: boolean };
+
 /** Everything that decides a comparison beside the integrals. Plain data: crosses worker borders. */
 export interface ComparisonRequest extends SystemRequest {
   readonly target: {
@@ -21,6 +24,8 @@ export interface ComparisonRequest extends SystemRequest {
   readonly threshold: number | 'auto';
   /** Bits of keep values and of angles, 4…60; `auto`: as many as the error budget asks for. */
   readonly bits: number | 'auto';
+  /** Of compressed variants, and of the Coulomb part of mixed ones. @defaultValue `auto` */
+  readonly factors?: FactorCount;
   /** Squared overlap of the start state with the wanted state(s), one a level, 0 < p ≤ 1. */
   readonly overlaps: readonly number[];
   /** Most logical qubits a run may use; null: no cap. */

@@ -17,6 +17,7 @@ import { Encodings } from './encodings';
 import { EnergyEstimates, type TruncationEnergy } from './energy-estimate';
 import { Floors } from './floors';
 import { FramedEncodings } from './framed-encodings';
+import type { MixingStates } from './mixing-states';
 import { recommend } from './recommendation';
 import type { ComparisonRequest, ComparisonRun, VariantOutcome } from './request';
 import { hamiltonianOf, occupationsOf } from './system';
@@ -49,6 +50,7 @@ export function defaultVariants(set: IntegralSet): readonly VariantName[] {
  * Compares variants on one set of integrals, one after the other in the order asked for. A variant that fails
  * carries its problem and the others go on.
  *
+ * @param states - where the mixing of factors is kept, so that it can be taken up again
  * @throws InputError where the request does not fit the integrals at all; Cancelled
  */
 export async function runComparison(
@@ -56,6 +58,7 @@ export async function runComparison(
   request: ComparisonRequest,
   context: JobContext,
   events: ComparisonEvents = {},
+  states: MixingStates | null = null,
 ): Promise<ComparisonRun> {
   const hamiltonian = hamiltonianOf(set, request);
   const hartree = toHartree(request.target.value, request.target.unit);
@@ -63,9 +66,10 @@ export async function runComparison(
   const terms = hamiltonian.kind === 'spatial' ? hamiltonian.terms : heldTerms(set);
   const threshold = thresholdOf(request, target);
   const occupations = occupationsOf(set, request);
+  const mixing = { factors: request.factors ?? 'auto', states } as const;
   const encodings = new FramedEncodings(
     hamiltonian,
-    (h) => new Encodings(h, threshold, occupations, toleranceOf(target)),
+    (h) => new Encodings(h, threshold, occupations, toleranceOf(target), mixing),
     request.frames,
   );
   const floors = new Floors(hamiltonian, MAX_DETERMINANTS);

@@ -48,7 +48,8 @@ export async function encodeTables(
   const threshold = thresholdOf(request, target);
   const encodings = new FramedEncodings(
     hamiltonianOf(set, request),
-    (h) => new Encodings(h, threshold, occupations, toleranceOf(target)),
+    (h) =>
+      new Encodings(h, threshold, occupations, toleranceOf(target), { factors: request.factors ?? 'auto' }),
     request.frames,
   );
   const reason = encodings.refusal(request.variant);
