@@ -44,7 +44,7 @@ async function plan(set: IntegralSet, request: CircuitRequest, context: JobConte
   const occupations = occupationsOf(set, request);
   const encodings = new FramedEncodings(
     hamiltonianOf(set, request),
-    (h) => new Encodings(h, threshold, occupations, toleranceOf(target)),
+    (h) => new Encodings(h, threshold, occupations, toleranceOf(target), { factors: request.factors ?? 'auto' }),
     request.frames,
   );
   const reason = encodings.refusal(request.variant);
