@@ -15,6 +15,8 @@ export interface Entry {
   readonly problem: Problem | null;
   /** Why it was left out beforehand, or empty. */
   readonly reason: string;
+  /** What could not be made as asked, or what was chosen on which evidence; one sentence each. */
+  readonly notes: readonly string[];
   /** Why the figures no longer answer the present question, or null. */
   readonly stale: string | null;
 }

@@ -55,9 +55,11 @@ export function onMachine(e: VariantEstimate, machine: SurfaceCodeAssumptions): 
 
 /**
  * True where figures reckoned for `then` can be counted anew for `now` from the sizes alone. A target of another size
- * changes how much is left out where that is left to the budget, and with it the encoding.
+ * changes how much is left out where that is left to the budget, and with it the encoding: always of the
+ * spin-dependent parts of a mixed one.
  */
-export function canRecount(then: Ask, now: Ask): boolean {
+export function canRecount(name: string, then: Ask, now: Ask): boolean {
+  const mixed = parseVariant(name).factorisation === 'mixed';
   const same = (a: unknown, b: unknown) => JSON.stringify(a) === JSON.stringify(b);
   const encoding = (ask: Ask) => [
     ask.terms,
@@ -65,7 +67,7 @@ export function canRecount(then: Ask, now: Ask): boolean {
     ask.occupations,
     ask.threshold,
     ask.seed,
-    ask.threshold === 'auto' ? toHartree(ask.target.value, ask.target.unit) : null,
+    ask.threshold === 'auto' || mixed ? toHartree(ask.target.value, ask.target.unit) : null,
   ];
   return same(encoding(then), encoding(now));
 }

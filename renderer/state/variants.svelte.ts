@@ -32,6 +32,7 @@ const fresh = (name: string): Omit<Entry, 'stale'> => ({
   estimate: null,
   problem: null,
   reason: '',
+  notes: [],
 });
 
 /** The chosen variants and what became of each. */
@@ -85,7 +86,7 @@ export class VariantsState {
       if (!answer || answer.source !== source) return { ...fresh(name), stale: null };
       const { entry, shape } = answer;
       if (!entry.estimate || !answer.ask) return { ...entry, stale: null };
-      if (shape && canRecount(answer.ask, ask)) {
+      if (shape && canRecount(name, answer.ask, ask)) {
         return { ...entry, estimate: this.#recounted(answer, entry.estimate, shape, ask), stale: null };
       }
       return { ...entry, stale: staleWords(answer.ask, ask) };
@@ -192,8 +193,9 @@ export class VariantsState {
     } else if (news.status === 'sized') {
       this.#put(name, entry, { source, shape: news.shape });
     } else if (news.status === 'done') {
-      const done = { ...fresh(name), status: 'done' as const, fraction: 1, estimate: news.estimate };
-      this.#put(name, done, { source, ask, shape: before?.shape ?? null });
+      const done = { ...fresh(name), status: 'done' as const, fraction: 1 };
+      const { estimate, notes = [] } = news;
+      this.#put(name, { ...done, estimate, notes }, { source, ask, shape: before?.shape ?? null });
     } else if (news.status === 'left-out') {
       this.#put(name, { ...fresh(name), status: 'left-out', reason: news.reason }, { source, ask });
     } else {
@@ -239,6 +241,12 @@ export class VariantsState {
       return [[strong(where), words(`: ${found}; expected ${expected}. `)], [words(mend)]];
     }
     if (entry?.reason) return [[strong(entry.name), words(' is left out. ')], [words(entry.reason)]];
+    if (entry && entry.notes.length > 0) {
+      return [
+        [strong(entry.name), words(`: ${describe(entry.name)}. `)],
+        [words(`${entry.notes.join('; ')}.`)],
+      ];
+    }
     return [
       [
         strong(`${this.names.length} variants`),

@@ -14,6 +14,7 @@ const entry = (name: string, change: Partial<VariantEstimate> | null = {}): Entr
   estimate: change ? estimate(name, change) : null,
   problem: null,
   reason: '',
+  notes: [],
   stale: null,
 });
 

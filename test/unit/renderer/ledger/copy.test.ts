@@ -14,6 +14,7 @@ const entries = NAMES.map(
     estimate: estimate(name),
     problem: null,
     reason: '',
+    notes: [],
     stale: null,
   }),
 );
