@@ -3,7 +3,7 @@ import type { SpinHamiltonian } from '../hamiltonian';
 import { InputError, type JobContext } from '../job';
 import { encodeSpatial } from './assemble';
 import type { Encoding } from './encoding';
-import { encodeSparse } from './sparse';
+import { encodeSparse } from './sparse/encode';
 import { encodeShiftedSparse } from './sparse-shift/encode';
 import { encodeSpinors } from './spinor';
 import { formatVariant, type VariantName } from './variant';

@@ -1,7 +1,7 @@
 import type { Residual } from '../factor/factors';
 import type { SpinHamiltonian, SpinorShift, SymmetryShift } from '../hamiltonian';
 import type { TripletProgram } from './program';
-import type { SparseProgram, TermSizes } from './sparse-program';
+import type { SparseProgram, TermSizes } from './sparse/program';
 import type { AxialParts, SpinorProgram, SpinorSizes } from './spinor-program';
 import type { VariantName } from './variant';
 

@@ -3,14 +3,8 @@ export type { Encoding, EncodingShape, ItemSizes, LambdaByPart } from './encodin
 export { type OrbitalFrame, type OrbitalFrameOptions, orbitalFrame } from './frame/orbital';
 export { rotationOf, type SpinFrame, spinFrame } from './frame/spin';
 export type { RowFace, TripletItem, TripletProgram, TripletRow, VectorProducts } from './program';
-export {
-  type PairsKind,
-  type SparseProgram,
-  type StringsKind,
-  type TermKind,
-  type TermSizes,
-  termSizes,
-} from './sparse-program';
+export type { PairsKind, StringsKind, TermKind } from './sparse/kinds';
+export { type SparseProgram, type TermSizes, termSizes } from './sparse/program';
 export {
   type AxialParts,
   SPINOR_KINDS,

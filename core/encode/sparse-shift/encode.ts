@@ -6,7 +6,7 @@ import {
 } from '../../hamiltonian';
 import type { JobContext } from '../../job';
 import type { Encoding } from '../encoding';
-import { encodeSparse } from '../sparse';
+import { encodeSparse } from '../sparse/encode';
 import type { VariantName } from '../variant';
 import { sparseShift } from './optimise';
 

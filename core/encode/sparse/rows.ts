@@ -1,4 +1,4 @@
-import type { TermKind } from './sparse-program';
+import type { TermKind } from './kinds';
 
 /** Parts of λ that rows go to. */
 export const ROW_PARTS = [

@@ -1,18 +1,19 @@
-import type { Residual } from '../factor';
-import type { SpatialHamiltonian, TripletOperator } from '../hamiltonian';
-import type { JobContext } from '../job';
-import { sumLambda } from './assemble';
-import type { Encoding } from './encoding';
-import { chargeRows, type RowPrice } from './sparse-charge-rows';
-import { findCutoff, NOISE, visitAll } from './sparse-cutoff';
-import { diagonalSum, identityOfSquares, sparseOneBody, spinSpinDiagonal } from './sparse-one-body';
-import { kindSizes, sparseProgram, type TermKind, type TermSizes } from './sparse-program';
-import { joinedRows } from './sparse-quartets';
-import { rebuildSparse } from './sparse-rebuild';
-import { joinSources, ROW_PARTS, type RowSource } from './sparse-rows';
-import { sectionRows } from './sparse-section-rows';
-import { type Section, sparseSections } from './sparse-sections';
-import type { VariantName } from './variant';
+import type { Residual } from '../../factor';
+import type { SpatialHamiltonian, TripletOperator } from '../../hamiltonian';
+import type { JobContext } from '../../job';
+import { sumLambda } from '../assemble';
+import type { Encoding } from '../encoding';
+import type { VariantName } from '../variant';
+import { chargeRows, type RowPrice } from './charge-rows';
+import { findCutoff, NOISE, visitAll } from './cutoff';
+import type { TermKind } from './kinds';
+import { diagonalSum, identityOfSquares, sparseOneBody, spinSpinDiagonal } from './one-body';
+import { kindSizes, sparseProgram, type TermSizes } from './program';
+import { joinedRows } from './quartets';
+import { rebuildSparse } from './rebuild';
+import { joinSources, ROW_PARTS, type RowSource } from './rows';
+import { sectionRows } from './section-rows';
+import { type Section, sparseSections } from './sections';
 
 /**
  * Sparse encoding: H as a sum of Majorana products, row by row,

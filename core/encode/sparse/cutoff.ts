@@ -1,5 +1,5 @@
-import type { JobContext } from '../job';
-import type { RowSource, SparseRow } from './sparse-rows';
+import type { JobContext } from '../../job';
+import type { RowSource, SparseRow } from './rows';
 
 /** Weights up to this are noise of the integrals, hartree. */
 export const NOISE = 1e-15;

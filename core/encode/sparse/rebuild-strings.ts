@@ -1,6 +1,6 @@
-import { type SpatialHamiltonian, type SpinorHamiltonian, spinorFromProductForm } from '../hamiltonian';
-import { InputError } from '../job';
-import type { SparseProgram } from './sparse-program';
+import { type SpatialHamiltonian, type SpinorHamiltonian, spinorFromProductForm } from '../../hamiltonian';
+import { InputError } from '../../job';
+import type { SparseProgram } from './program';
 
 /** Largest number of orbitals whose full tensor is written out: (2N)⁴ complex numbers, 41 MB. */
 const MOST_ORBITALS = 20;

@@ -1,7 +1,7 @@
-import type { Mu, SpatialHamiltonian } from '../hamiltonian';
-import { planeOf, type TripletOperator } from '../hamiltonian';
-import { numAntisymmetricPairs, numSymmetricPairs } from '../integrals/integral-set';
-import type { PairsKind } from './sparse-program';
+import type { Mu, SpatialHamiltonian } from '../../hamiltonian';
+import { planeOf, type TripletOperator } from '../../hamiltonian';
+import { numAntisymmetricPairs, numSymmetricPairs } from '../../integrals/integral-set';
+import type { PairsKind } from './kinds';
 
 /**
  * One array of unique coefficients of the sparse form. A coefficient stands for all equal ones that the permutation

@@ -1,8 +1,8 @@
-import type { SpatialHamiltonian } from '../hamiltonian';
-import { symmetricPair } from '../integrals/integral-set';
-import type { PairsKind } from './sparse-program';
-import { forQuartets, Quartets } from './sparse-quartets';
-import { emptyRow, type RowSource, type SparseRow, sharesOf } from './sparse-rows';
+import type { SpatialHamiltonian } from '../../hamiltonian';
+import { symmetricPair } from '../../integrals/integral-set';
+import type { PairsKind } from './kinds';
+import { forQuartets, Quartets } from './quartets';
+import { emptyRow, type RowSource, type SparseRow, sharesOf } from './rows';
 
 /** What a row costs. */
 export interface RowPrice {

@@ -1,4 +1,4 @@
-import type { StringsKind } from './sparse-program';
+import type { StringsKind } from './kinds';
 
 /**
  * Which Majorana products four orbitals give, whatever the orbitals are: tables that depend on nothing but which of

@@ -1,6 +1,6 @@
-import type { PairsKind } from './sparse-program';
-import { emptyRow, type RowSource, sharesOf } from './sparse-rows';
-import { kindsOf, numRows, type Section, visitRows } from './sparse-sections';
+import type { PairsKind } from './kinds';
+import { emptyRow, type RowSource, sharesOf } from './rows';
+import { kindsOf, numRows, type Section, visitRows } from './sections';
 
 /** All pairs p ≥ q (or p > q) in the order of their indices. */
 function pairsOf(n: number, isStrict: boolean): Uint16Array {

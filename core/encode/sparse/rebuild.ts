@@ -3,11 +3,12 @@ import {
   type SpatialHamiltonian,
   type SpinHamiltonian,
   type TwoElectronTensor,
-} from '../hamiltonian';
-import { numAntisymmetricPairs, numSymmetricPairs, symmetricPair } from '../integrals/integral-set';
-import { addContraction, diagonalSum } from './sparse-one-body';
-import { carriesSpin, type PairsKind, type SparseProgram } from './sparse-program';
-import { rebuildStrings } from './sparse-rebuild-strings';
+} from '../../hamiltonian';
+import { numAntisymmetricPairs, numSymmetricPairs, symmetricPair } from '../../integrals/integral-set';
+import { carriesSpin, type PairsKind } from './kinds';
+import { addContraction, diagonalSum } from './one-body';
+import type { SparseProgram } from './program';
+import { rebuildStrings } from './rebuild-strings';
 
 /**
  * The Hamiltonian that the rows of a program stand for, in product form: over spatial orbitals, or over 2N spin orbitals

@@ -1,5 +1,5 @@
-import type { SpatialHamiltonian, TripletOperator, TwoElectronTensor } from '../hamiltonian';
-import { numAntisymmetricPairs, numSymmetricPairs, symmetricPair } from '../integrals/integral-set';
+import type { SpatialHamiltonian, TripletOperator, TwoElectronTensor } from '../../hamiltonian';
+import { numAntisymmetricPairs, numSymmetricPairs, symmetricPair } from '../../integrals/integral-set';
 
 /** κ^μ = k^μ + Σ_r g^{μ0}_pqrr. */
 export function sparseOneBody(h: SpatialHamiltonian): TripletOperator {
