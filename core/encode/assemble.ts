@@ -58,6 +58,15 @@ function emptyTwoBody(): TwoBody {
 function tripletTwoBody(blocks: readonly BlockItems[]): TwoBody {
   const two = emptyTwoBody();
   for (const entry of blocks) {
+    if (entry.kind === 'hypercontracted') {
+      const { block, products } = entry;
+      for (const lambda of products.lambda) add(two, PART_NAMES[block.part], lambda);
+      for (let m = 0; m < block.count; m++) two.identity += 0.25 * block.zeta[m * (block.count + 1)]!;
+      two.factors += products.lambda.length;
+      two.rows += block.count;
+      two.maxRows = Math.max(two.maxRows, 1);
+      continue;
+    }
     if (entry.kind === 'triples') {
       const { block, items } = entry;
       two.spin ||= block.count > 0;
@@ -252,7 +261,9 @@ function itemSizes(
   blocks: readonly BlockItems[],
   one: { readonly rows: number; readonly pairRows: number },
 ): ItemSizes {
+  const contracted = blocks.find((entry) => entry.kind === 'hypercontracted')?.products;
   const items = blocks.flatMap((entry) => {
+    if (entry.kind === 'hypercontracted') return [];
     const faced = entry.kind === 'triples' && entry.block.sameScale !== 0 && entry.block.otherScale !== 0;
     return entry.items.map(({ rows, pairRows }) => ({ rows, pairRows, faced }));
   });
@@ -263,6 +274,9 @@ function itemSizes(
     pairRows: Uint32Array.from(all, (item) => item.pairRows),
     twoFaced: Uint8Array.from(all, (item) => (item.faced ? 1 : 0)),
     hasPaired: blocks.some((entry) => entry.kind === 'triples' && entry.items.length > 0),
+    ...(contracted
+      ? { products: { count: contracted.lambda.length, vectors: contracted.vectors.length } }
+      : {}),
   };
 }
 

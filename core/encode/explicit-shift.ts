@@ -28,6 +28,11 @@ export function explicitShift(
     for (let i = 0, at = mu * n * n; i < n * n; i++) planes[at + i]! -= scale * work[i]!;
   };
   for (const entry of blocks) {
+    if (entry.kind === 'hypercontracted') {
+      // The fit is of g + ξ⊗1 + 1⊗ξ, and κ lost ηξ.
+      for (const [i, x] of entry.block.shift?.entries() ?? []) planes[i]! += x;
+      continue;
+    }
     if (entry.kind === 'triples') {
       const { block, items } = entry;
       items.forEach(({ shift }, t) => {

@@ -1,11 +1,13 @@
 import {
   type FactorBlock,
+  type HypercontractedFactors,
   type SquareFactors,
   sectorLayout,
   type TripleFactors,
   traceOfPairs,
 } from '../factor';
-
+import { vectorProducts } from './products';
+import type { VectorProducts } from './program';
 import { countAbove, median, shiftedNorm } from './shift';
 import type { ShiftAxis } from './variant';
 
@@ -112,12 +114,18 @@ export function tripleItems(block: TripleFactors, shift: ShiftAxis): TripleItem[
 /** Everything a block contributes to the one-body part and to the constant, whatever the form of the encoding. */
 export type BlockItems =
   | { readonly kind: 'squares'; readonly block: SquareFactors; readonly items: readonly SquareItem[] }
-  | { readonly kind: 'triples'; readonly block: TripleFactors; readonly items: readonly TripleItem[] };
+  | { readonly kind: 'triples'; readonly block: TripleFactors; readonly items: readonly TripleItem[] }
+  | {
+      readonly kind: 'hypercontracted';
+      readonly block: HypercontractedFactors;
+      readonly products: VectorProducts;
+    };
 
 export function itemsOf(blocks: readonly FactorBlock[], shift: ShiftAxis): BlockItems[] {
   return blocks.map((block) => {
     if (block.kind === 'squares') return { kind: 'squares', block, items: squareItems(block, shift) };
     if (block.kind === 'triples') return { kind: 'triples', block, items: tripleItems(block, shift) };
+    if (block.kind === 'hypercontracted') return { kind: block.kind, block, products: vectorProducts(block) };
     throw new RangeError('spinor factors have no triplet items');
   });
 }

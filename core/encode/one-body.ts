@@ -4,6 +4,7 @@ import { planeOf, type TripletOperator } from '../hamiltonian';
 import { numAntisymmetricPairs } from '../integrals/integral-set';
 import { antisymmetricNormsBatch, symmetricEigenvalues } from '../linalg';
 import type { BlockItems } from './items';
+import { identityPart } from './products';
 import { countAbove, median, shiftedNorm } from './shift';
 
 /** κ carries spin planes 1e-5 and less of its charge plane, so only rounding counts as zero here. */
@@ -27,7 +28,7 @@ export interface OneBody {
  * κ^μ = k^μ + Σ_t w_t [τ_t + c_t(η − N)] L^{t,μ}, and κ⁰ − c₁ with its own median c₁ where `shifted`.
  *
  * With M = L − τ = M' + c(N̂ − N) and N̂ = η: ½wL² = ½wM'² + w T L − ½wT², T = τ + c(η − N). A triple gives
- * ½s{X, Y} = ½s{X, Y' − τ'} + s T X likewise, without a constant.
+ * ½s{X, Y} = ½s{X, Y' − τ'} + s T X likewise, without a constant. A hypercontracted part adds identityPart and −ηξ.
  */
 export function oneBodyPart(
   h: SpatialHamiltonian,
@@ -47,6 +48,16 @@ export function oneBodyPart(
     for (let i = 0; i < n * n; i++) planes[at + i]! += scale * work[i]!;
   };
   for (const entry of blocks) {
+    if (entry.kind === 'hypercontracted') {
+      const { block } = entry;
+      const identity = identityPart(block);
+      constant += identity.constant;
+      // Row-major N×N, the charge plane the first. The fit's own shift ξ(N̂ − η) takes ηξ off.
+      for (const [i, x] of identity.plane.entries()) {
+        planes[i]! += x - (block.shift ? h.electrons * block.shift[i]! : 0);
+      }
+      continue;
+    }
     if (entry.kind === 'triples') {
       const { block, items } = entry;
       const nanti = numAntisymmetricPairs(n);

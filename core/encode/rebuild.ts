@@ -1,4 +1,10 @@
-import { type Factorisation, planeInto, type SquareFactors, sectorLayout } from '../factor';
+import {
+  approximateCharge,
+  type Factorisation,
+  planeInto,
+  type SquareFactors,
+  sectorLayout,
+} from '../factor';
 import type { SpatialHamiltonian, SpinHamiltonian, TwoElectronTensor } from '../hamiltonian';
 import { fromProductForm, spinorFromProductForm, toSpinOrbitals } from '../hamiltonian';
 import { numAntisymmetricPairs, numSymmetricPairs, pairsTriangleLength } from '../integrals/integral-set';
@@ -6,13 +12,14 @@ import { InputError } from '../job';
 import type { ComplexMatrix } from '../linalg';
 import type { BlockItems } from './items';
 import type { OneBody } from './one-body';
+import { identityPart } from './products';
 
 /** Largest number of orbitals for which a full spinor tensor is written out. */
 const MAX_DENSE = 16;
 
 /**
  * The Hamiltonian that an encoding stands for, from κ and the factors alone:
- * constant + κ + ½ Σ w (L' − τ')², L' the shifted factor with trace τ'.
+ * constant + κ + ½ Σ w (L' − τ')², L' the shifted factor with trace τ' (½ Σ ζ M M where hypercontracted).
  *
  * @returns the spatial form where the factors add up to such a tensor. A truncated list of factors over several spin
  * components does not (the full list cancels what has no place there): it comes as a Hamiltonian over 2N spin orbitals.
@@ -32,6 +39,13 @@ export function rebuildSpatial(
     for (let i = 0, at = mu * n * n; i < n * n; i++) planes[at + i]! -= scale * work[i]!;
   };
   for (const entry of blocks) {
+    if (entry.kind === 'hypercontracted') {
+      const identity = identityPart(entry.block);
+      constant -= identity.constant;
+      work.set(identity.plane);
+      subtract(0, 1);
+      continue;
+    }
     if (entry.kind === 'triples') {
       const { block, items } = entry;
       const nanti = numAntisymmetricPairs(n);
@@ -95,6 +109,13 @@ function tensorOf(n: number, blocks: readonly BlockItems[]): TwoElectronTensor {
     }
   };
   for (const entry of blocks) {
+    if (entry.kind === 'hypercontracted') {
+      // ζ contracted, any shift being part of it.
+      const contracted = approximateCharge({ ...entry.block, shift: null });
+      charge ??= new Float64Array(length);
+      for (let i = 0; i < length; i++) charge[i]! += contracted[i]!;
+      continue;
+    }
     if (entry.kind === 'triples') {
       const { block, items } = entry;
       items.forEach(({ shift }, t) => {
@@ -194,6 +215,7 @@ function rebuildDense(
     }
   };
   for (const entry of blocks) {
+    if (entry.kind === 'hypercontracted') throw new RangeError('a hypercontracted part is of charge alone');
     if (entry.kind === 'triples') {
       const { block } = entry;
       entry.items.forEach(({ shift }, t) => {

@@ -46,6 +46,7 @@ export async function spinorItems(entry: BlockItems, ctx: JobContext): Promise<S
   if (entry.kind === 'triples') {
     return { kind: 'triples', block: entry.block, items: await tripleItems(entry.block, entry.items, ctx) };
   }
+  if (entry.kind === 'hypercontracted') throw new RangeError('spinor rows have no products of two vectors');
   const { block, items } = entry;
   if (block.sector === 'even' && block.planes.length === 1) {
     const own = items.map(({ shift, norm, rows }) => ({ real: true, shift, norm, rows }));

@@ -13,15 +13,18 @@ export function tripletProgram(
   oneBody: OneBody,
 ): TripletProgram {
   const orbitals = oneBody.kappa.n;
+  const contracted = blocks.find((entry) => entry.kind === 'hypercontracted');
   return {
     orbitals,
     constant,
     oneBody: oneBodyRows(oneBody),
-    items: blocks.flatMap((entry) =>
-      entry.kind === 'squares'
+    items: blocks.flatMap((entry) => {
+      if (entry.kind === 'hypercontracted') return [];
+      return entry.kind === 'squares'
         ? entry.items.map((item, t) => squareItem(entry.block, item, t))
-        : entry.items.map((item, t) => tripleItem(entry.block, item, t)),
-    ),
+        : entry.items.map((item, t) => tripleItem(entry.block, item, t));
+    }),
+    ...(contracted ? { products: contracted.products } : {}),
   };
 }
 

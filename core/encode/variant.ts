@@ -44,11 +44,12 @@ export function formatVariant(name: VariantName): string {
 /** Why a combination cannot be had, as found, expected and mend; null where it can. */
 function objection(name: VariantName): { found: string; expected: string; mend: string } | null {
   const { factorisation, grouping, spin, shift } = name;
-  if (factorisation === 'hypercontracted') {
+  if (factorisation === 'hypercontracted' && (grouping !== 'separate' || shift === 'median')) {
     return {
-      found: `factorisation "${factorisation}", which this version does not make yet`,
-      expected: 'sparse, triplet, compressed, mixed or spinor',
-      mend: 'Choose one of these five.',
+      found: `grouping "${grouping}" and shift "${shift}" with a hypercontracted charge part`,
+      expected:
+        'separate, and none or optimised: the fit has a shift of its own, and no factors with medians',
+      mend: 'Write hypercontracted/separate/…/optimised/….',
     };
   }
   if (factorisation === 'mixed' && (grouping !== 'separate' || shift !== 'optimised')) {
