@@ -1,6 +1,7 @@
 import { type GateCount, GateCounter, Machine, STEP_PARTS, type StepPart } from '../circuit';
 import { type Encoding, formatVariant, type VariantName } from '../encode';
 import type { JobContext } from '../job';
+import type { FrameRecord } from './frame';
 import { type CircuitEstimate, phaseBitsOf, walkCircuit } from './walk-circuit';
 
 /** What `circuit --count-only --json` prints: one walk step, counted gate by gate as it is emitted. */
@@ -17,6 +18,8 @@ export interface CircuitCount {
   readonly wires: number;
   /** Every subroutine with its own gates. */
   readonly tree: GateCount;
+  /** The turned basis that the system register is over; absent where it is the given one. */
+  readonly frame?: FrameRecord;
 }
 
 /** Toffoli that the phase register costs a step beside the control of the reflection: its unfolding into steps. */

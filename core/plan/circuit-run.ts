@@ -5,6 +5,7 @@ import { InputError, type JobContext } from '../job';
 import { type CircuitCount, countWalkStep } from './circuit-count';
 import { costOf, targetOf, thresholdOf, toleranceOf } from './costing';
 import { Encodings } from './encodings';
+import type { FrameRecord } from './frame';
 import { FramedEncodings } from './framed-encodings';
 import type { ComparisonRequest } from './request';
 import { hamiltonianOf, occupationsOf } from './system';
@@ -31,10 +32,14 @@ export interface CircuitText {
   readonly wires: number;
   readonly registers: readonly { readonly name: string; readonly qubits: number }[];
   readonly lines: number;
+  /** The turned basis that the system register is over; absent where it is the given one. */
+  readonly frame?: FrameRecord;
 }
 
 interface Planned {
   readonly encoding: Encoding;
+  /** Where the encoding is over a turned basis. */
+  readonly frame: FrameRecord | null;
   readonly estimate: CircuitEstimate;
 }
 
@@ -44,7 +49,8 @@ async function plan(set: IntegralSet, request: CircuitRequest, context: JobConte
   const occupations = occupationsOf(set, request);
   const encodings = new FramedEncodings(
     hamiltonianOf(set, request),
-    (h) => new Encodings(h, threshold, occupations, toleranceOf(target), { factors: request.factors ?? 'auto' }),
+    (h) =>
+      new Encodings(h, threshold, occupations, toleranceOf(target), { factors: request.factors ?? 'auto' }),
     request.frames,
   );
   const reason = encodings.refusal(request.variant);
@@ -58,7 +64,8 @@ async function plan(set: IntegralSet, request: CircuitRequest, context: JobConte
     });
   }
   const encoding = await encodings.of(request.variant, context);
-  return { encoding, estimate: costOf(encoding, request.variant, target, request) };
+  const frame = encodings.records().find(({ turned }) => turned) ?? null;
+  return { encoding, frame, estimate: costOf(encoding, request.variant, target, request) };
 }
 
 /** Counts the walk step of a variant gate by gate: the `step` of a comparison under the same options. */
@@ -67,8 +74,9 @@ export async function countCircuit(
   request: CircuitRequest,
   context: JobContext,
 ): Promise<CircuitCount> {
-  const { encoding, estimate } = await plan(set, request, context);
-  return countWalkStep(encoding, request.variant, estimate, request.qubitsMax, context);
+  const { encoding, frame, estimate } = await plan(set, request, context);
+  const count = await countWalkStep(encoding, request.variant, estimate, request.qubitsMax, context);
+  return frame ? { ...count, frame } : count;
 }
 
 const MEANING_OF_PART: Readonly<Record<CircuitPart, string>> = {
@@ -91,7 +99,7 @@ export async function writeCircuit(
   context: JobContext,
   write: (chunk: string) => void,
 ): Promise<CircuitText> {
-  const { encoding, estimate } = await plan(set, request, context);
+  const { encoding, frame, estimate } = await plan(set, request, context);
   const { part } = request;
   const variant = formatVariant(request.variant);
   context.report('rounding the tables', 0, null);
@@ -111,6 +119,7 @@ export async function writeCircuit(
     `${variant}: ${MEANING_OF_PART[part]}`,
     `lambda ${lambda.total} Eh, constant ${constant} Eh, ${keep} bits of keep values, ${rotation} bits of angles`,
     'A ccx into a qubit of work that is 0 is an AND: one Toffoli state; it is taken back by a measurement.',
+    ...(frame ? frameComments(frame) : []),
   ];
   const expected = Math.round(census.expectedGates);
   const lines = writeQasm(circuit, census, {
@@ -129,7 +138,17 @@ export async function writeCircuit(
     wires: census.wires,
     registers: census.registers.map(({ name, wires }) => ({ name, qubits: wires.length })),
     lines,
+    ...(frame ? { frame } : {}),
   };
+}
+
+/** The basis in words and numbers: without it nobody could prepare a state for the circuit. */
+function frameComments({ kind, rotation }: FrameRecord): string[] {
+  const meaning =
+    kind === 'spin'
+      ? "turned spin axes: component l of an operator is L'_l = sum_k F_kl L_k, rows of F:"
+      : 'turned orbitals: orbital p is sum_q F_pq times the given orbital q, rows of F:';
+  return [meaning, ...rotation.map((row) => `  ${row.join(' ')}`)];
 }
 
 function tooLong(variant: string, gates: number): InputError {

@@ -1,3 +1,5 @@
+import type { FrameRecord } from './frame';
+
 /** One check: `ok` where |value − expected| ≤ tolerance. */
 export interface Check {
   readonly name: string;
@@ -40,6 +42,8 @@ export interface Evidence {
   readonly blockEncoding: Readonly<
     Record<string, { readonly maxError: number; readonly bound: number; readonly columns: number }>
   >;
+  /** Frames that were sought; absent where none was asked for. */
+  readonly frames?: readonly FrameRecord[];
   readonly checks: readonly Check[];
 }
 

@@ -130,6 +130,7 @@ export async function runVerification(
     );
   }
   checks.push(...(await windowChecks(set, request, variants, exact, ARITHMETIC, context)));
+  const frames = encodings.records();
   return {
     schema: 'spinwright-evidence/1',
     electrons: hamiltonian.electrons,
@@ -137,6 +138,7 @@ export async function runVerification(
     spectrum: { exact: Array.from(exact.values), variants: spectra },
     truncation,
     blockEncoding,
+    ...(frames.length > 0 ? { frames } : {}),
     checks,
   };
 }
