@@ -34,6 +34,8 @@ export const DEFAULT_VARIANTS: readonly VariantName[] = [
   'triplet/separate/swap-layers/none/clean',
   'spinor/separate/index/median/clean',
   'sparse/-/index/none/clean',
+  // Last: it takes longest.
+  'mixed/separate/swap-layers/optimised/clean',
 ].map((text) => parseVariant(text));
 
 /** `triplet/joint/swap-layers/median/clean` and the like. */

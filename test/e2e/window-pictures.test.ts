@@ -21,7 +21,7 @@ let window: OpenWindow;
 beforeAll(async () => {
   browser = await launchBrowser();
   window = await openWindow(browser, { demo: true });
-  await waitForFact(window.page, 'Variants', /7 of 7 done/);
+  await waitForFact(window.page, 'Variants', /8 of 8 done/);
 });
 afterAll(async () => {
   await window?.close();
@@ -134,7 +134,7 @@ it('stands every bar exactly under its column', async () => {
 
 it('shows the smallest set too', async () => {
   const small = await openWindow(browser, { named: [setFolder('c_631g_2p')] });
-  await waitForFact(small.page, 'Variants', /\d of 7 done|could not/);
+  await waitForFact(small.page, 'Variants', /\d of 8 done|could not/);
   await waitForFact(small.page, 'Ledger', /leads|none/);
   expect(await cutTexts(small.page)).toEqual([]);
   expect(small.complaints).toEqual([]);

@@ -85,10 +85,10 @@ describe('the window in a browser', () => {
     // The larger set: its reckoning takes seconds, so that a stop comes in the middle of it.
     await chooser.setFiles(setFolder('ch2o_sto3g_8o'));
     await waitForFact(page, 'Load', /8 orbitals/);
-    await page.getByRole('button', { name: /^Reckon 7/ }).click();
+    await page.getByRole('button', { name: /^Reckon 8/ }).click();
     await page.getByRole('button', { name: 'Stop job' }).click();
     await page.getByRole('button', { name: 'Stop job' }).waitFor({ state: 'detached', timeout: 5_000 });
-    await waitForFact(page, 'Variants', /7 chosen, \d done/);
+    await waitForFact(page, 'Variants', /8 chosen, \d done/);
     await goTo(page, 'Variants');
     expect(await page.getByRole('main').textContent()).toContain('stopped');
 
@@ -96,7 +96,7 @@ describe('the window in a browser', () => {
       .getByRole('main')
       .getByRole('button', { name: /^Reckon/ })
       .click();
-    await waitForFact(page, 'Variants', /7 of 7 done/);
+    await waitForFact(page, 'Variants', /8 of 8 done/);
     await goTo(page, 'Ledger');
     const table = await savedTable(page);
 
@@ -144,7 +144,7 @@ describe('the window in a browser', () => {
 
   it('prints once what both ways to treat spin share, and walks through the figures by keys', async () => {
     const page = await start({ named: [SET] });
-    await waitForFact(page, 'Variants', /7 of 7 done/);
+    await waitForFact(page, 'Variants', /8 of 8 done/);
     const grid = page.getByRole('grid');
     const pairs = await grid.locator('thead th[colspan="3"]').count();
     expect(pairs).toBe(2);
@@ -180,7 +180,7 @@ describe('the window in a browser', () => {
 
   it('follows a changed target at once, and the copied table with it', async () => {
     const page = await start({ named: [SET] });
-    await waitForFact(page, 'Variants', /7 of 7 done/);
+    await waitForFact(page, 'Variants', /8 of 8 done/);
     const before = (await savedTable(page))
       .find((line) => line[0] === 'Walk steps')!
       .slice(1)
@@ -200,7 +200,7 @@ describe('the window in a browser', () => {
 
   it('checks encoded against exact levels', async () => {
     const page = await start({ named: [SET] });
-    await waitForFact(page, 'Variants', /7 of 7 done/);
+    await waitForFact(page, 'Variants', /8 of 8 done/);
     await goTo(page, 'Proof');
     await page.getByRole('button', { name: 'Check the encodings' }).click();
     await waitForFact(page, 'Proof', /hold/);

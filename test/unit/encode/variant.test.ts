@@ -9,7 +9,7 @@ describe('variant names', () => {
     for (const variant of DEFAULT_VARIANTS) expect(parseVariant(formatVariant(variant))).toEqual(variant);
   });
 
-  it('default to the seven of the design', () => {
+  it('default to the seven of the design and a mixed one', () => {
     expect(DEFAULT_VARIANTS.map(formatVariant)).toEqual([
       'triplet/joint/index/median/clean',
       'triplet/joint/swap-layers/median/clean',
@@ -18,6 +18,7 @@ describe('variant names', () => {
       'triplet/separate/swap-layers/none/clean',
       'spinor/separate/index/median/clean',
       'sparse/-/index/none/clean',
+      'mixed/separate/swap-layers/optimised/clean',
     ]);
   });
 

@@ -32,9 +32,10 @@ describe('axes', () => {
   });
 
   it('knows which words are in use', () => {
-    expect(valuesIn(USUAL, 'shift')).toEqual(['none', 'median']);
+    expect(valuesIn(USUAL, 'shift')).toEqual(['none', 'median', 'optimised']);
     expect(valuesIn(toggled(USUAL, 'factorisation', 'sparse'), 'factorisation')).toEqual([
       'triplet',
+      'mixed',
       'spinor',
     ]);
   });
