@@ -41,11 +41,12 @@ export function encodeText(tables: TablesDocument, path: string): string {
 const CONTENTS = [
   ['items', 'items'],
   ['rows', 'rows'],
+  ['products', 'products of vectors'],
 ] as const;
 
 const contentsOf = ({ sizes }: TablesDocument): string =>
   CONTENTS.flatMap(([name, word]) =>
-    sizes[name] === undefined ? [] : [`${formatExactCount(sizes[name])} ${word}`],
+    (sizes[name] ?? 0) === 0 ? [] : [`${formatExactCount(sizes[name]!)} ${word}`],
   ).join(', ');
 
 function bitsOf({ bits, sizes }: TablesDocument): string {

@@ -15,7 +15,12 @@ beforeAll(async () => {
 const ALL = ['sf', 'so1', 'somf', 'so2', 'ss'];
 const ORBIT = ['sf', 'so1', 'somf', 'so2'];
 
-const VARIANTS = ['sparse/-/index/none/clean', 'sparse/joint/index/none/clean'];
+const VARIANTS = [
+  'sparse/-/index/none/clean',
+  'sparse/joint/index/none/clean',
+  'sparse/-/index/optimised/clean',
+  'sparse/joint/index/optimised/clean',
+];
 const CASES = VARIANTS.flatMap((name) => [ALL, ORBIT, ['sf']].map((terms) => [name, terms] as const));
 
 describe('exported tables of the sparse form', () => {

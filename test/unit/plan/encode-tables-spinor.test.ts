@@ -6,7 +6,7 @@ import { findSet, loadSet } from '../../published/data-set';
 import { addScaled, type Dense, dagger, times, zeros } from '../circuit/majorana-algebra';
 import { creator, identity } from '../circuit/spinor-support';
 import { difference, matrixOf, operatorNorm, restrict } from '../encode/fock-space';
-import { ctx, load, numbersOf, request, roundTrip, sectorOf, shifted } from './encode-tables-support';
+import { ctx, drawn, load, numbersOf, request, roundTrip, sectorOf, shifted } from './encode-tables-support';
 
 let atom: IntegralSet;
 let molecule: IntegralSet;
@@ -45,6 +45,7 @@ describe('exported tables of the spinor form, spatial sets', () => {
     ['spinor/joint/index/median/clean', ORBIT, ['full']],
     ['spinor/separate/index/median/clean', ALL, ['real', 'axial', 'full']],
     ['spinor/separate/index/median/clean', ORBIT, ['real', 'axial']],
+    ['spinor/separate/index/optimised/clean', ORBIT, ['real', 'axial']],
     ['spinor/separate/index/median/clean', ['sf'], ['real']],
   ])('%s with %s: read back they are H within the realised bound', async (name, terms, kinds) => {
     for (const bits of ['auto', 10] as const) {
@@ -196,14 +197,4 @@ function literalOperator(document: TablesDocument, files: ReadonlyMap<string, Ui
     }
   }
   return out;
-}
-
-/** Probabilities of an alias table. */
-function drawn(keep: readonly number[], alternate: readonly number[], bits: number): number[] {
-  const units = keep.map(() => 0);
-  keep.forEach((kept, i) => {
-    units[i]! += kept;
-    units[alternate[i]!]! += 2 ** bits - kept;
-  });
-  return units.map((x) => x / (keep.length * 2 ** bits));
 }

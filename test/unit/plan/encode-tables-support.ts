@@ -145,3 +145,13 @@ export async function throughForm(
   });
   return { encoded, files, stored: await readFiles(files) };
 }
+
+/** Probabilities of an alias table. */
+export function drawn(keep: readonly number[], alternate: readonly number[], bits: number): number[] {
+  const units = keep.map(() => 0);
+  keep.forEach((kept, i) => {
+    units[i]! += kept;
+    units[alternate[i]!]! += 2 ** bits - kept;
+  });
+  return units.map((x) => x / (keep.length * 2 ** bits));
+}
