@@ -1,22 +1,8 @@
 import { addScaled, fromProductForm, type SpatialHamiltonian, type TripletOperator } from '../../hamiltonian';
 import { numSymmetricPairs, pairsTriangleLength } from '../../integrals/integral-set';
 import { multiply } from '../../linalg';
+import { pairRows } from './arrays';
 import type { HypercontractedFactors } from './block';
-
-/** M × npair rows S_m: u_m u_mᵀ in pair coordinates (√2 u_p u_q for p > q); unit vectors for unit u. */
-export function pairRows(vectors: Float64Array, count: number, n: number): Float64Array {
-  const rows = new Float64Array(count * numSymmetricPairs(n));
-  let i = 0;
-  for (let m = 0; m < count; m++) {
-    const at = m * n;
-    for (let p = 0; p < n; p++) {
-      const x = Math.SQRT2 * vectors[at + p]!;
-      for (let q = 0; q < p; q++) rows[i++] = x * vectors[at + q]!;
-      rows[i++] = vectors[at + p]! * vectors[at + p]!;
-    }
-  }
-  return rows;
-}
 
 /** The unshifted tensor that a block stands for, npair × npair: Sᵀ ζ S − ξ ⊗ 1 − 1 ⊗ ξ. Hartree. */
 export function approximateCoulomb(block: HypercontractedFactors): Float64Array {

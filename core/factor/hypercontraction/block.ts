@@ -62,17 +62,20 @@ export interface HypercontractionPoint {
 }
 
 export interface HypercontractionOptions {
-  /** M; `auto`: 6N, at most the number of orbital pairs, where the fit is exact. @defaultValue 'auto' */
+  /** M; `auto`: 6N, at most the number of orbital pairs, where the fit can be exact. @defaultValue 'auto' */
   readonly rank?: number | 'auto';
   /** Fits g + ξ ⊗ 1 + 1 ⊗ ξ with the best ξ. @defaultValue true */
   readonly shift?: boolean;
-  /** Frobenius norm of the difference tensor over all indices that may remain, hartree. @defaultValue 0.01 */
+  /**
+   * Frobenius norm of the difference tensor over all indices that may remain, hartree, ≥ 1e-6 ‖g‖; a smaller one is
+   * raised to that. λ falls as it grows. @defaultValue 0.003 N
+   */
   readonly residualTarget?: number;
   /** Occupations 0…2 of the reference over which the difference becomes a mean field. @defaultValue η/N each */
   readonly occupations?: ArrayLike<number>;
-  /** Steps of the minimiser in all. */
+  /** Steps of the minimiser in all, about. @defaultValue 1500 */
   readonly steps?: number;
-  /** Continues from here. */
+  /** Continues from here: same rank, and a shift where one is asked for. */
   readonly start?: HypercontractionPoint;
   /** Told of every better point within the residual target, so that a stopped run leaves its best. */
   readonly onBest?: (point: HypercontractionPoint, lambda: number) => void;

@@ -25,7 +25,8 @@ export function hypercontractedOneBody(
 ): { readonly kappa: Float64Array; readonly constant: number } {
   const { n, count, vectors, zeta, shift } = block;
   const kappa = Float64Array.from(planeOf(h.k, 0));
-  if (foldedMeanField) planeOf(foldedMeanField, 0).forEach((x, i) => (kappa[i]! += x));
+  const fold = foldedMeanField ? planeOf(foldedMeanField, 0) : null;
+  if (fold) for (let i = 0; i < n * n; i++) kappa[i]! += fold[i]!;
   if (shift) for (let i = 0; i < n * n; i++) kappa[i]! -= h.electrons * shift[i]!;
   let sum = 0;
   for (let m = 0; m < count; m++) {

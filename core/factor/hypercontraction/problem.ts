@@ -1,0 +1,66 @@
+import { coulombBlock, planeOf, type SpatialHamiltonian } from '../../hamiltonian';
+import { numSymmetricPairs } from '../../integrals/integral-set';
+import type { JobContext } from '../../job';
+import { symmetricEigenAsync } from '../../linalg';
+import { traceOfPairs } from '../elements';
+import { addScaledTo } from './arrays';
+import { meanField } from './mean-field';
+
+/** What is fitted: G = Σ_l σ_l v_l v_lᵀ over orthonormal symmetric pairs, and what λ depends on besides. Hartree. */
+export interface FitProblem {
+  readonly n: number;
+  /** n reference occupations 0…2. */
+  readonly occupations: Float64Array;
+  /** Σ n_p − η. */
+  readonly excess: number;
+  /** k⁰ + Φ[G] with the mean field Φ of mean-field.ts, n×n: what κ⁰ is with nothing fitted. */
+  readonly field: Float64Array;
+  readonly count: number;
+  /** count × npair. */
+  readonly columns: Float64Array;
+  /** σ_l = ±1. */
+  readonly signs: Float64Array;
+  /** G d with d the identity in pair coordinates, and ‖G‖². */
+  readonly trace: Float64Array;
+  readonly square: number;
+}
+
+/**
+ * The charge part by its eigenvectors, without the smallest: their Frobenius norm stays ≤ `leftOut`. Whatever the number of
+ * columns, residuals are later taken from G itself.
+ */
+export async function fitProblem(
+  h: SpatialHamiltonian,
+  occupations: ArrayLike<number>,
+  leftOut: number,
+  ctx: JobContext,
+): Promise<FitProblem> {
+  const n = h.orbitals;
+  const npair = numSymmetricPairs(n);
+  const g = coulombBlock(n, h.g);
+  const { values, vectors } = await symmetricEigenAsync(g, npair, ctx);
+  const order = Array.from(values.keys()).sort((a, b) => Math.abs(values[b]!) - Math.abs(values[a]!));
+  let count = npair;
+  for (let rest = 0; count > 0; count--) {
+    rest += values[order[count - 1]!]! ** 2;
+    if (rest > leftOut * leftOut) break;
+  }
+  const columns = new Float64Array(count * npair);
+  const signs = new Float64Array(count);
+  const trace = new Float64Array(npair);
+  let square = 0;
+  for (let l = 0; l < count; l++) {
+    const value = values[order[l]!]!;
+    const vector = vectors.subarray(order[l]! * npair, (order[l]! + 1) * npair);
+    signs[l] = Math.sign(value);
+    square += value * value;
+    addScaledTo(trace, vector, value * traceOfPairs(vector, 0, n));
+    const size = Math.sqrt(Math.abs(value));
+    for (let i = 0; i < npair; i++) columns[l * npair + i] = size * vector[i]!;
+  }
+  const field = Float64Array.from(planeOf(h.k, 0));
+  addScaledTo(field, meanField(g, n, occupations).plane, 1);
+  const filling = Float64Array.from(occupations);
+  const excess = filling.reduce((sum, x) => sum + x, 0) - h.electrons;
+  return { n, occupations: filling, excess, field, count, columns, signs, trace, square };
+}
