@@ -1,4 +1,4 @@
-import { inlineContext, type JobContext } from '../../core/job';
+import { Cancelled, inlineContext, type JobContext } from '../../core/job';
 import type { TaskPool } from './pool';
 import type { Progress } from './progress';
 
@@ -6,14 +6,16 @@ import type { Progress } from './progress';
 const REPORT_MS = 80;
 
 /**
- * The job contract inside a worker thread. A stop needs no checkpoint here: the main thread is always free to
- * end this thread. With a pool `map` runs on it, else in place.
+ * The job contract inside a worker thread. A stop needs no checkpoint where the main thread just ends this one; a job with
+ * something to save is asked through `stop`. With a pool `map` runs on it, else in place.
  */
 export function workerContext(
   seed: number,
   pool: TaskPool | null,
+  stop: SharedArrayBuffer | null,
   onProgress: (progress: Progress) => void,
 ): JobContext {
+  const asked = stop ? new Int32Array(stop) : null;
   let lastStage = '';
   let lastTime = 0;
   const report = (stage: string, done: number, total: number | null): void => {
@@ -26,7 +28,9 @@ export function workerContext(
   return {
     seed,
     report,
-    async checkpoint() {},
+    async checkpoint() {
+      if (asked && Atomics.load(asked, 0) !== 0) throw new Cancelled();
+    },
     map: (task, inputs) =>
       pool && inputs.length > 1
         ? pool.map(task, inputs, (done) => report(lastStage, done, inputs.length))

@@ -4,6 +4,7 @@ import type { CompareRequest, Manner } from './request';
 import {
   parseBits,
   parseCount,
+  parseFactors,
   parseOccupations,
   parseOrbitals,
   parseOverlaps,
@@ -22,8 +23,24 @@ export const textOf = (flag: string | boolean | undefined): string | null =>
 
 export function compareRequest(files: readonly string[], flags: Flags): CompareRequest {
   const comparison = { ...costing(flags), variants: variantsOf(flags) };
-  return { command: 'compare', ...inputFiles(files, flags), comparison };
+  return { command: 'compare', ...inputFiles(files, flags), comparison, mixingState: mixingStateOf(flags) };
 }
+
+/** Where mixing is kept; refused where no variant mixes anything. */
+function mixingStateOf(flags: Flags): string | null {
+  const path = textOf(flags.mixingState);
+  if (path === null) return null;
+  const mixing = variantsOf(flags)?.some(({ factorisation }) => MIXING.includes(factorisation));
+  if (mixing) return path;
+  throw usageError(
+    '--mixing-state',
+    'no variant with mixed factors',
+    'a compressed or mixed variant',
+    'Add e.g. --variants compressed/separate/swap-layers/optimised/clean.',
+  );
+}
+
+const MIXING: readonly string[] = ['compressed', 'mixed'];
 
 /** Everything that decides the costs of a variant. */
 export function costing(flags: Flags): Omit<ComparisonRequest, 'variants'> {
@@ -38,11 +55,13 @@ export function costing(flags: Flags): Omit<ComparisonRequest, 'variants'> {
     );
   }
   const cap = textOf(flags.qubitsMax);
+  const factors = parseFactors(String(flags.factors));
   return {
     ...selection(flags),
     target: { ...parseTarget(String(flags.target)), meaning },
     threshold: parseThreshold(String(flags.threshold)),
     bits: parseBits(String(flags.bits)),
+    ...(factors === 'auto' ? {} : { factors }),
     overlaps: meaning === 'splitting' && overlaps.length === 1 ? [overlaps[0]!, overlaps[0]!] : overlaps,
     qubitsMax: cap === null ? null : parseCount('--qubits-max', cap, 1, ANY),
   };

@@ -9,6 +9,7 @@ import {
 } from '../../core/plan';
 import { writeEncoding } from './encode-files';
 import { loadInputs, openInputs, readReference } from './inputs';
+import { MixingFile } from './mixing-file';
 import { refuseUsedFolder, writeStreamed } from './output';
 import type {
   CircuitRequest,
@@ -20,7 +21,7 @@ import type {
 } from './request';
 import type { Result } from './result';
 
-/** Does what a request asks for. Runs in the job's thread; writes nothing but circuits and tables, to their temporary names. */
+/** Does what a request asks for. Runs in the job's thread; writes nothing but circuits, tables and the state of mixing, to temporary names. */
 export async function answer(request: Request, context: JobContext): Promise<Result> {
   switch (request.command) {
     case 'inspect':
@@ -57,8 +58,13 @@ async function inspect(request: InspectRequest, context: JobContext): Promise<Re
 async function compare(request: CompareRequest, context: JobContext): Promise<Result> {
   const { comparison } = request;
   const set = await loadInputs(await openInputs(request, context), comparison.terms, 'throw', context);
-  const run = await runComparison(set, comparison, context);
-  return { command: 'compare', run, meaning: comparison.target.meaning };
+  const mixing = request.mixingState === null ? null : new MixingFile(request.mixingState);
+  try {
+    const run = await runComparison(set, comparison, context, {}, mixing?.states ?? null);
+    return { command: 'compare', run, meaning: comparison.target.meaning };
+  } finally {
+    mixing?.flush();
+  }
 }
 
 async function verify(request: VerifyRequest, context: JobContext): Promise<Result> {

@@ -58,6 +58,8 @@ export interface JobStart {
   readonly request: Request;
   readonly seed: number;
   readonly workers: number;
+  /** One number, not 0 once the job shall stop at its next checkpoint; null: the thread is ended instead. */
+  readonly stop: SharedArrayBuffer | null;
 }
 
 /** From the job's worker to the main thread. */

@@ -168,10 +168,9 @@ function selecting(command: Command): Command {
 }
 
 function comparing(command: Command): Command {
-  return costed(command).option(
-    '--variants <list>',
-    'variants to compare; * stands for every value of an axis',
-  );
+  return costed(command)
+    .option('--variants <list>', 'variants to compare; * stands for every value of an axis')
+    .option('--mixing-state <file>', 'keep the mixing of factors there, and go on from it');
 }
 
 /** Options that decide the costs of a variant. */
@@ -182,6 +181,7 @@ function costed(command: Command): Command {
     )
     .option('--threshold <hartree>', 'what truncation may drop, 0 = nothing, or auto', '0')
     .option('--bits <n>', 'bits of keep values and angles, or auto', 'auto')
+    .option('--factors <n>', 'factors of compressed variants: auto, 6N, or a number', 'auto')
     .option('--overlap <p>', 'squared overlap of the start state, two for a splitting', '1')
     .option('--qubits-max <n>', 'most logical qubits a run may use');
 }

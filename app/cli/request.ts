@@ -23,6 +23,8 @@ export interface InspectRequest extends InputFiles {
 export interface CompareRequest extends InputFiles {
   readonly command: 'compare';
   readonly comparison: ComparisonRequest;
+  /** File that keeps the mixing of factors, so that it can be taken up again; null: none. */
+  readonly mixingState: string | null;
 }
 
 export interface VerifyRequest extends InputFiles, VerificationRequest {

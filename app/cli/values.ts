@@ -1,6 +1,7 @@
 import { SELECTABLE_TERMS } from '../../core/hamiltonian';
 import type { SelectableTerm } from '../../core/integrals';
 import { InputError } from '../../core/job';
+import type { FactorCount } from '../../core/plan';
 import { ENERGY_UNITS, type EnergyUnit, parseEnergy } from '../../core/units';
 
 /** A wrong value or flag on the command line. */
@@ -62,6 +63,19 @@ export function parseThreshold(text: string): number | 'auto' {
 /** Bits of keep values and angles, or `auto`. */
 export function parseBits(text: string): number | 'auto' {
   return text === 'auto' ? text : parseCount('--bits', text, 4, 60);
+}
+
+/** A number of factors, one for each orbital as in `6N`, or `auto`. */
+export function parseFactors(text: string): FactorCount {
+  if (text === 'auto') return text;
+  const match = /^([1-9]\d{0,5})(N?)$/.exec(text);
+  if (match) return { count: Number(match[1]), perOrbital: match[2] === 'N' };
+  throw usageError(
+    '--factors',
+    `"${text}"`,
+    'auto, a number from 1 up, or a number an orbital such as 6N',
+    'Write e.g. --factors 6N.',
+  );
 }
 
 /** Squared overlaps, one or two, each in (0, 1]. */

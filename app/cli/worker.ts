@@ -25,11 +25,11 @@ const given = workerData as Role;
 if (given.role === 'job') await runJob(port, given.start);
 else serveTasks(port);
 
-async function runJob(to: MessagePort, { request, seed, workers }: JobStart): Promise<void> {
+async function runJob(to: MessagePort, { request, seed, workers, stop }: JobStart): Promise<void> {
   const send = (reply: JobReply): void => to.postMessage(reply);
   const pool = workers > 1 ? new TaskPool(workers, new URL(import.meta.url), seed) : null;
   try {
-    const context = workerContext(seed, pool, (progress) => send({ kind: 'progress', progress }));
+    const context = workerContext(seed, pool, stop, (progress) => send({ kind: 'progress', progress }));
     send({ kind: 'done', result: await answer(request, context) });
   } catch (error) {
     send({ kind: 'failed', failure: toFailure(error) });

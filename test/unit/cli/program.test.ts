@@ -34,6 +34,7 @@ describe('the command line', () => {
           overlaps: [1],
           qubitsMax: null,
         },
+        mixingState: null,
       },
       manner: { json: false, quiet: false, seed: 1, workers: 1, trace: false },
     });
@@ -67,6 +68,22 @@ describe('the command line', () => {
       'sparse/-/index/none/dirty',
     ]);
     expect(manner).toEqual({ json: true, quiet: true, seed: 7, workers: 2, trace: false });
+  });
+
+  it('reads the number of factors and where mixing is kept', () => {
+    const line = 'compare d --target 5cm-1 --variants compressed/separate/index/optimised/clean';
+    const { request } = parse(`${line} --factors 6N --mixing-state m.json`);
+    expect(request).toMatchObject({
+      comparison: { factors: { count: 6, perOrbital: true } },
+      mixingState: 'm.json',
+    });
+    expect(parse(`${line} --factors 120`).request).toMatchObject({
+      comparison: { factors: { count: 120, perOrbital: false } },
+    });
+    for (const bad of ['0', '6n', '-3', '1.5N', 'N']) {
+      expect(() => parse(`${line} --factors ${bad}`)).toThrow('--factors');
+    }
+    expect(() => parse('compare d --target 5cm-1 --mixing-state m.json')).toThrow('no variant with mixed');
   });
 
   it('takes one overlap for both levels of a splitting', () => {
