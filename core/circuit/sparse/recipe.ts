@@ -15,7 +15,8 @@ import {
 } from '../squares/leaves';
 import type { SparseLayout } from './layout';
 import { multipleToffoli } from './multiple';
-import { orbitalExchangeToffoli, pairExchangeToffoli, pairsToffoli, pairsWires } from './select';
+import { pairsToffoli, pairsWires } from './pairs';
+import { orbitalExchangeToffoli, pairExchangeToffoli } from './select';
 import { kindExchangeT, selectedMajoranaToffoli, selectedMajoranaWires } from './selected-majorana';
 import { preparedWires } from './walk';
 

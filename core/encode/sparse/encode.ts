@@ -60,7 +60,7 @@ export async function encodeSparse(
     sharedPart: tally.total > 0 ? tally.shared / tally.total : 0,
     otherShare: Math.abs(timesSame) / (1 + Math.abs(timesSame)),
   };
-  const program = () => sparseProgram(n, constant, source, cutoff, timesSame);
+  const program = () => sparseProgram(n, constant, source, { cutoff, rows: coefficients }, timesSame);
   return {
     variant,
     shape: {

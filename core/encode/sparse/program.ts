@@ -39,19 +39,24 @@ export interface SparseProgram {
   readonly otherSign: 1 | -1;
 }
 
-/** The rows heavier than the cutoff, all in memory. */
+/**
+ * The rows heavier than the cutoff, all in memory.
+ *
+ * @param rows - how many there are.
+ */
 export function sparseProgram(
   orbitals: number,
   constant: number,
   source: RowSource,
-  cutoff: number,
+  { cutoff, rows }: { readonly cutoff: number; readonly rows: number },
   timesSame: number,
 ): SparseProgram {
   const kinds = new Map<TermKind, number>();
-  const kindOf: number[] = [];
-  const orbitalsOf: number[] = [];
-  const weights: number[] = [];
-  const negative: number[] = [];
+  const kindOf = new Uint8Array(rows);
+  const orbitalsOf = new Uint16Array(4 * rows);
+  const weights = new Float64Array(rows);
+  const negative = new Uint8Array(rows);
+  let at = 0;
   const visitor = ({ weight, isNegative, kind, p, q, r, s }: SparseRow) => {
     if (weight <= cutoff) return;
     let index = kinds.get(kind);
@@ -59,20 +64,24 @@ export function sparseProgram(
       index = kinds.size;
       kinds.set(kind, index);
     }
-    kindOf.push(index);
-    weights.push(weight);
-    negative.push(isNegative ? 1 : 0);
-    orbitalsOf.push(p, q, r, s);
+    kindOf[at] = index;
+    weights[at] = weight;
+    negative[at] = isNegative ? 1 : 0;
+    orbitalsOf[4 * at] = p;
+    orbitalsOf[4 * at + 1] = q;
+    orbitalsOf[4 * at + 2] = r;
+    orbitalsOf[4 * at + 3] = s;
+    at++;
   };
   for (const _ of source.visit(visitor));
   return {
     orbitals,
     constant,
     kinds: [...kinds.keys()],
-    kindOf: Uint8Array.from(kindOf),
-    orbitalsOf: Uint16Array.from(orbitalsOf),
-    weights: Float64Array.from(weights),
-    negative: Uint8Array.from(negative),
+    kindOf,
+    orbitalsOf,
+    weights,
+    negative,
     otherShare: Math.abs(timesSame) / (1 + Math.abs(timesSame)),
     otherSign: timesSame < 0 ? -1 : 1,
   };

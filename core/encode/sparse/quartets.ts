@@ -1,6 +1,7 @@
 import type { SpatialHamiltonian } from '../../hamiltonian';
 import { numAntisymmetricPairs, numSymmetricPairs, symmetricPair } from '../../integrals/integral-set';
-import { buildPattern, type HeldParts, type Pattern, type PatternRow, type Slot } from './patterns';
+import type { HeldParts, Slot } from './linear-forms';
+import { buildPattern, type Pattern, type PatternRow } from './patterns';
 import { emptyRow, type RowSource, type SparseRow } from './rows';
 
 /** Coefficients up to this part of what they are summed from are rounding. */
