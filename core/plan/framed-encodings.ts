@@ -1,4 +1,11 @@
-import { type Encoding, formatVariant, orbitalFrame, spinFrame, type VariantName } from '../encode';
+import {
+  type Encoding,
+  formatVariant,
+  type OrbitalFrame,
+  orbitalFrame,
+  spinFrame,
+  type VariantName,
+} from '../encode';
 import type { Factorisation } from '../factor';
 import { rotateOrbitals, rotateSpin, type SpatialHamiltonian, type SpinHamiltonian } from '../hamiltonian';
 import type { JobContext } from '../job';
@@ -26,6 +33,7 @@ export class FramedEncodings {
   readonly #frames = new Map<string, Frame>();
   readonly #framed = new Map<Frame, Encodings>();
   readonly #encodings = new Map<string, Encoding>();
+  #turnedOrbitals: (OrbitalFrame & { readonly hamiltonian: SpatialHamiltonian }) | null | undefined;
   readonly #users = new Map<Frame, string[]>();
 
   /** @param make - encodings of a Hamiltonian, under whatever else the request asks for */
@@ -106,6 +114,18 @@ export class FramedEncodings {
     return encodings;
   }
 
+  /** One search serves every sparse variant: the norm that it lowers is the same. */
+  async #orbitals(h: SpatialHamiltonian, context: JobContext) {
+    if (this.#turnedOrbitals === undefined) {
+      const found = await orbitalFrame(h, {}, context);
+      this.#turnedOrbitals = found && {
+        ...found,
+        hamiltonian: await rotateOrbitals(h, found.rotation, context),
+      };
+    }
+    return this.#turnedOrbitals;
+  }
+
   async #seek(h: SpatialHamiltonian, judge: VariantName, context: JobContext): Promise<Frame> {
     const before = await this.#given.of(judge, context);
     const kind = judge.factorisation === 'sparse' ? 'orbital' : 'spin';
@@ -113,7 +133,7 @@ export class FramedEncodings {
     const found =
       kind === 'spin'
         ? await spinFrame(h, (await this.#given.factorisationOf(judge, context))!, judge, context)
-        : await orbitalFrame(h, {}, context);
+        : await this.#orbitals(h, context);
     const record = {
       kind,
       judgedBy: formatVariant(judge),
@@ -131,8 +151,7 @@ export class FramedEncodings {
       },
     };
     if (!found || isIdentity(found.rotation, size)) return kept;
-    const hamiltonian =
-      kind === 'spin' ? rotateSpin(h, found.rotation) : await rotateOrbitals(h, found.rotation, context);
+    const hamiltonian = 'hamiltonian' in found ? found.hamiltonian : rotateSpin(h, found.rotation);
     const encodings = this.#make(hamiltonian);
     const after = await encodings.of(judge, context);
     const gain = before.lambda.total - after.lambda.total;

@@ -1,12 +1,7 @@
 import { beforeAll, describe, expect, it } from 'vitest';
-import { parseVariant, rotationOf } from '../../../core/encode';
-import {
-  rotateOrbitals,
-  rotateSpin,
-  type SpatialHamiltonian,
-  turnedSpinPlanes,
-} from '../../../core/hamiltonian';
-import type { IntegralSet, SpatialIntegrals, SpinOrbitPart } from '../../../core/integrals';
+import { parseVariant } from '../../../core/encode';
+import { rotateOrbitals, rotateSpin, type SpatialHamiltonian } from '../../../core/hamiltonian';
+import type { IntegralSet, SpatialIntegrals } from '../../../core/integrals';
 import { inlineContext } from '../../../core/job';
 import { multiply, transpose } from '../../../core/linalg';
 import {
@@ -21,6 +16,7 @@ import { frameChecks } from '../../../core/plan/frame-checks';
 import { exactSpectrum } from '../../../core/verify';
 import { findSet, loadSet } from '../../published/data-set';
 import { largestDifference } from '../hamiltonian/random-hamiltonian';
+import { tilted } from './tilted';
 
 const ctx = inlineContext();
 const TERMS = ['sf', 'so1', 'somf', 'so2'] as const;
@@ -39,42 +35,6 @@ const comparison = (variants: readonly string[], change: object = {}) => ({
   qubitsMax: null,
   ...change,
 });
-
-/** The set as a program would write it that does not align its spin axes with the molecule. */
-function tilted(set: IntegralSet): SpatialIntegrals {
-  if (set.kind !== 'spatial') throw new Error('spatial orbitals expected');
-  const rotation = rotationOf([0.3, 0.5, -0.9]);
-  const n = set.orbitals;
-  const planes = (spin: Float64Array) => {
-    const four = new Float64Array(4 * n * n);
-    four.set(spin, n * n);
-    return turnedSpinPlanes(four, n, rotation).slice(n * n);
-  };
-  const array = (values: Float64Array) => {
-    const size = values.length / 3;
-    return Float64Array.from(values, (_, at) => {
-      const [l, i] = [Math.floor(at / size), at % size];
-      let sum = 0;
-      for (let k = 0; k < 3; k++) sum += rotation[3 * k + l]! * values[k * size + i]!;
-      return sum;
-    });
-  };
-  return {
-    ...set,
-    oneElectron: set.oneElectron.map((part) => ({ ...part, spin: part.spin && planes(part.spin) })),
-    twoElectron: set.twoElectron
-      .filter((part) => part.kind !== 'spin-spin')
-      .map((part) =>
-        part.kind === 'spin-orbit'
-          ? ({
-              ...part,
-              same: part.same && array(part.same),
-              other: part.other instanceof Float64Array ? array(part.other) : part.other,
-            } satisfies SpinOrbitPart)
-          : part,
-      ),
-  };
-}
 
 const matrixOf = (rows: readonly (readonly number[])[]) => Float64Array.from(rows.flat());
 
