@@ -127,6 +127,8 @@ async function attempt(
     return { status: 'done', name, ...(await work()) };
   } catch (error) {
     if (error instanceof Cancelled) throw error;
+    // A wrong file was named: that is a fault of the request, not of the variant.
+    if (error instanceof InputError && error.toProblem().code === 'other-mixing-state') throw error;
     return { status: 'failed', name, problem: problemOf(error, name) };
   }
 }
