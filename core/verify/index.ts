@@ -27,4 +27,5 @@ export { spinorProgramOperator } from './spinor-block-operator';
 export { tripletBlock } from './triplet-block';
 
 export { type LevelShifts, levelShifts, windowOfProgram } from './window-levels';
+export { windowOfSparseProgram } from './window-levels-sparse';
 export { windowOfSpinorProgram } from './window-levels-spinor';

@@ -1,7 +1,7 @@
 import { encodedSparseProgram, sparseStep, sparseTables } from '../../circuit';
 import type { SparseProgram, TermKind } from '../../encode';
 import type { Mu } from '../../hamiltonian';
-import { realisedSparseRounding } from '../../verify';
+import { realisedSparseRounding, windowOfSparseProgram } from '../../verify';
 import { type ArrayLayout, byRow, whole } from './arrays';
 import { COMMON_CONVENTIONS } from './conventions';
 import type { StoredTables, TablesForm } from './form';
@@ -73,7 +73,7 @@ export const SPARSE: TablesForm<'sparse'> = {
         alternate: whole(tables.alternate),
       },
       rounding: async () => realisedSparseRounding(given, encoded),
-      inWindow: null,
+      inWindow: windowOfSparseProgram,
     };
   },
 

@@ -40,6 +40,9 @@ describe('exported tables of the sparse form', () => {
       if (bits === 9) expect(norm).toBeGreaterThan(1e-6);
       expect(typical).toBeLessThan(realised);
       expect(realised).toBeLessThan(worstCase);
+      // The window is the whole shell here, so the shifts of its levels obey the bound too.
+      expect(document.window!.orbitals).toEqual([1, 2, 3]);
+      expect(document.window!.largestShift).toBeLessThanOrEqual(norm * (1 + 1e-6) + 1e-11);
       // Nothing of the core between the files and the matrix: the document's own words, Majorana by Majorana.
       const literal = restrict(literalOperator(document, files), document.electrons);
       expect(operatorNorm(difference(literal, read))).toBeLessThan(1e-10);
