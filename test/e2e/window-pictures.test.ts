@@ -124,7 +124,7 @@ it('stands every bar exactly under its column', async () => {
     },
     { xs: centres, left: box.x },
   );
-  expect(painted).toHaveLength(7);
+  expect(painted).toHaveLength(8);
   for (const { at, inside, outside } of painted) {
     expect(at[3]).toBe(255);
     expect(inside).toEqual(at);
