@@ -6,13 +6,13 @@ import { hermitianEigenvalues } from '../linalg';
 import type { Encoding, EncodingShape, ItemSizes, LambdaByPart } from './encoding';
 import { explicitShift } from './explicit-shift';
 import { type BlockItems, itemsOf } from './items';
-import { KAPPA_ROUNDING, type OneBody, oneBodyPart, oneBodyTriplet } from './one-body';
+import { KAPPA_ROUNDING, type OneBody, oneBodyPart, oneBodyTriplet, recentred } from './one-body';
 import { rebuildSpatial } from './rebuild';
-import { countAbove, shiftedNorm } from './shift';
+import { countAbove, median, shiftedNorm } from './shift';
 import { faceLambda, type SpinorItems, spinorItems } from './spinor-items';
 import { sparedBits, spinorProgram, spinorSizes } from './spinor-program';
 import { tripletProgram } from './triplet-program';
-import type { VariantName } from './variant';
+import type { ShiftAxis, VariantName } from './variant';
 
 /** Sizes and weights of the two-body items. */
 interface TwoBody {
@@ -155,8 +155,24 @@ function oneBodySpinor(part: OneBody, twoBody: number, hasFullRows: boolean) {
   return { charge, spin, rows, pairRows: 0, list: { whole: rows, planes: planeRows } };
 }
 
+/**
+ * κ⁰ about the c₁ that is best for the form: the median of κ⁰ for the norms of single planes, that of κ over 2N modes for
+ * the norm of all planes together.
+ */
+function bestCentre(part: OneBody, electrons: number, twoBody: number, hasFullRows: boolean): OneBody {
+  const middle = median(hermitianEigenvalues(toSpinOrbitals(part.kappa)));
+  const other = recentred(part, electrons, middle);
+  const norm = (own: OneBody) => {
+    const { charge, spin } = oneBodySpinor(own, twoBody, hasFullRows);
+    return charge + spin;
+  };
+  return norm(other) < norm(part) ? other : part;
+}
+
 /** What the two forms of an encoding differ in. */
 interface Form {
+  /** The one-body part that it uses. */
+  readonly oneBody: OneBody;
   readonly one: {
     readonly charge: number;
     readonly spin: number;
@@ -172,6 +188,7 @@ interface Form {
 function tripletForm(orbitals: number, blocks: readonly BlockItems[], oneBody: OneBody): Form {
   const one = oneBodyTriplet(oneBody);
   return {
+    oneBody,
     one,
     two: tripletTwoBody(blocks),
     sizes: { items: itemSizes(orbitals, blocks, one) },
@@ -180,9 +197,10 @@ function tripletForm(orbitals: number, blocks: readonly BlockItems[], oneBody: O
 }
 
 async function spinorForm(
-  orbitals: number,
+  { orbitals, electrons }: SpatialHamiltonian,
   blocks: readonly BlockItems[],
-  oneBody: OneBody,
+  given: OneBody,
+  shift: ShiftAxis,
   ctx: JobContext,
 ): Promise<Form> {
   const items: SpinorItems[] = [];
@@ -192,6 +210,7 @@ async function spinorForm(
     (entry) => entry.kind === 'squares' && entry.items.some(({ real }) => !real),
   );
   const twoBody = Object.values(two.parts).reduce((sum, own) => sum + own, 0);
+  const oneBody = shift === 'optimised' ? bestCentre(given, electrons, twoBody, hasFullRows) : given;
   const { list, ...one } = oneBodySpinor(oneBody, twoBody, hasFullRows);
   const axialParts =
     hasFullRows || list.whole !== null
@@ -202,6 +221,7 @@ async function spinorForm(
         };
   const spared = axialParts ? sparedBits({ oneBody: one.charge + one.spin, twoBody }, axialParts) : 0;
   return {
+    oneBody,
     one,
     two,
     sizes: {
@@ -222,10 +242,10 @@ export async function encodeSpatial(
   const shifted = variant.shift !== 'none';
   const spinor = variant.factorisation === 'spinor';
   const blocks = itemsOf(factorisation.blocks, variant.shift);
-  const oneBody = oneBodyPart(h, factorisation, blocks, shifted);
-  const { one, two, sizes, programs } = spinor
-    ? await spinorForm(h.orbitals, blocks, oneBody, ctx)
-    : tripletForm(h.orbitals, blocks, oneBody);
+  const given = oneBodyPart(h, factorisation, blocks, shifted);
+  const { oneBody, one, two, sizes, programs } = spinor
+    ? await spinorForm(h, blocks, given, variant.shift, ctx)
+    : tripletForm(h.orbitals, blocks, given);
   const lambda = sumLambda(one, two.parts);
   let trace = 0;
   for (const x of oneBody.chargeValues) trace += x;

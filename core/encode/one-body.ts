@@ -93,6 +93,20 @@ export function oneBodyPart(
   return { kappa, shift, chargeValues, spinNorms, constant };
 }
 
+/** The same with κ⁰ shifted by c more, hartree. */
+export function recentred(part: OneBody, electrons: number, c: number): OneBody {
+  const { n, planes } = part.kappa;
+  const moved = planes.slice();
+  for (let p = 0; p < n; p++) moved[p * n + p]! -= c;
+  return {
+    ...part,
+    kappa: { ...part.kappa, planes: moved },
+    shift: part.shift + c,
+    chargeValues: part.chargeValues.map((x) => x - c),
+    constant: part.constant + c * electrons,
+  };
+}
+
 /** One-norms and rows of the one-body item in the triplet form; eigenvectors of each plane of κ. */
 export function oneBodyTriplet(part: OneBody) {
   const n = part.kappa.n;

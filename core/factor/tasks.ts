@@ -1,6 +1,7 @@
 import { eigenTask } from './eigenvectors';
 import { mixingTask } from './mixing/squares';
 import { tripleMixingTask } from './mixing/triples';
+import { modeSpectraTask } from './shifts/mode-spectra';
 import { spectraTask } from './spectra';
 import { hermitianSpectraTask } from './spinor';
 import { svdTask } from './triples';
@@ -13,4 +14,5 @@ export const factorTasks = [
   hermitianSpectraTask,
   mixingTask,
   tripleMixingTask,
+  modeSpectraTask,
 ] as const;

@@ -23,6 +23,9 @@ export interface MixingChoices {
   readonly states?: MixingStates | null;
 }
 
+/** λ that differ by less than this part count as equal. */
+const EQUAL = 1e-6;
+
 /**
  * Encodings of one Hamiltonian at one threshold. What variants have in common is computed once: a factorisation
  * serves every variant of its grouping, an encoding every way of treating spin in SELECT and every look-up.
@@ -72,7 +75,7 @@ export class Encodings {
       const options = { threshold: this.#threshold };
       encoding = await buildEncoding(this.#hamiltonian, factorisation, variant, options, context);
       if (variant.factorisation === 'spinor' && variant.shift === 'optimised') {
-        encoding = await this.#notAboveMedian(encoding, variant, context);
+        encoding = await this.#bestOfSpinor(encoding, variant, context);
       }
       if (variant.factorisation === 'mixed') encoding = await this.#measured(encoding, context);
       this.#encodings.set(key, encoding);
@@ -92,12 +95,28 @@ export class Encodings {
     return this.#occupations ?? new Array<number>(h.kind === 'spatial' ? h.orbitals : h.spinors / 2).fill(1);
   }
 
-  /** Shifts that are best for the triplet form need not be for the spinor one: then its medians stay. */
-  async #notAboveMedian(optimised: Encoding, variant: VariantName, context: JobContext): Promise<Encoding> {
+  /**
+   * The spinor form lists κ and balances triples after its shifts are chosen: of shifts made for it, shifts made for the
+   * triplet form and medians those stay that have the least λ in the end, of equal ones those with the fewest rows.
+   */
+  async #bestOfSpinor(own: Encoding, variant: VariantName, context: JobContext): Promise<Encoding> {
+    const h = this.#hamiltonian;
     const median = await this.of({ ...variant, shift: 'median' }, context);
-    if (optimised.lambda.total <= median.lambda.total) return optimised;
-    const note = 'median shifts: those that are best in the triplet form have a larger λ here';
-    return { ...median, variant, notes: [...(median.notes ?? []), note] };
+    const candidates = [own];
+    if (h.kind === 'spatial' && variant.grouping !== '-') {
+      const triplet = await this.#optimised(
+        { ...variant, factorisation: 'triplet' },
+        variant.grouping,
+        context,
+      );
+      candidates.push(await buildEncoding(h, triplet, variant, {}, context));
+    }
+    const note = 'median shifts: the optimised ones have a larger λ here';
+    candidates.push({ ...median, variant, notes: [...(median.notes ?? []), note] });
+    const least = Math.min(...candidates.map(({ lambda }) => lambda.total));
+    return candidates
+      .filter(({ lambda }) => lambda.total <= least * (1 + EQUAL))
+      .reduce((best, next) => (next.shape.rows < best.shape.rows ? next : best));
   }
 
   /** What the variant's encoding is made from; null for the sparse form. */
@@ -133,6 +152,19 @@ export class Encodings {
         if (mixed) found = await this.#thinned(h, found, context);
       }
       ({ factorisation: found } = await optimiseShifts(h, found, {}, context));
+      this.#factorisations.set(key, found);
+    }
+    return variant.factorisation === 'spinor' ? this.#spinorShifts(found, key, context) : found;
+  }
+
+  /** Shifts made better for λ of the spinor form, from those that are best for the triplet form. */
+  async #spinorShifts(triplet: Factorisation, from: string, context: JobContext): Promise<Factorisation> {
+    if (this.#hamiltonian.kind === 'spinor') return triplet;
+    const key = `${from}, spinor`;
+    let found = this.#factorisations.get(key);
+    if (!found) {
+      const options = { form: 'spinor' } as const;
+      ({ factorisation: found } = await optimiseShifts(this.#hamiltonian, triplet, options, context));
       this.#factorisations.set(key, found);
     }
     return found;

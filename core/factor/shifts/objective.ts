@@ -1,4 +1,4 @@
-import { planeNorm } from './one-body-norms';
+import { planeNorm, wholeNorm } from './one-body-norms';
 import type { ShiftGroup, ShiftProblem } from './problem';
 import { leastWithSlope } from './spectrum-cost';
 
@@ -58,17 +58,18 @@ export class ShiftObjective {
 
   /** @param width - smoothing, relative to the size of each spectrum; > 0 */
   at(shifts: Float64Array, width: number): ShiftValue {
-    const { planes } = this.#problem;
+    const { planes, whole } = this.#problem;
     const kappa = this.#kappa(shifts);
     let value = 0;
     let exact = 0;
-    const norms = planes.map((plane, p) => {
-      const delta = (width * this.#planeSizes[p]!) / Math.sqrt(plane.n);
-      const norm = planeNorm(plane, kappa[p]!, delta);
+    const delta = (p: number) => (width * this.#planeSizes[p]!) / Math.sqrt(planes[p]!.n);
+    const norms = whole
+      ? wholeNorm(planes[0]!.n, kappa, delta(0))
+      : planes.map((plane, p) => planeNorm(plane, kappa[p]!, delta(p)));
+    for (const norm of norms) {
       value += norm.smooth;
       exact += norm.exact;
-      return norm;
-    });
+    }
     // Slopes of ⟨Z, κ⟩ along each shift; a linear cost bounds those for which the bound below is finite.
     const pull = new Float64Array(this.count);
     let inside = 1;

@@ -1,3 +1,4 @@
+import { MUS, type TripletOperator, toSpinOrbitals } from '../../hamiltonian';
 import { type ComplexMatrix, hermitianEigen, multiply, symmetricEigenvalues } from '../../linalg';
 import { planeInto } from '../elements';
 import { addPairs, antisymmetricNorm, shiftedNorms, smoothMedian } from '../mixing/norms';
@@ -56,6 +57,14 @@ function hermitianNorm(
 ): PlaneNorm {
   const matrix = { n, re: new Float64Array(n * n), im: new Float64Array(n * n) };
   hermitianInto(matrix.re, matrix.im, 0, coordinates, 0, n);
+  const { smooth, exact, direction } = smoothHermitian(matrix, delta);
+  addHermitianPairs(dual, 0, direction, n, weight);
+  return { smooth: weight * smooth, exact: weight * exact, dual };
+}
+
+/** Σ_i s(ε_i − c₁) of a Hermitian matrix about its best c₁, and the derivative. */
+function smoothHermitian(matrix: ComplexMatrix, delta: number) {
+  const { n } = matrix;
   const { values, re, im } = hermitianEigen(matrix);
   const middle = smoothMedian(values, delta);
   let smooth = 0;
@@ -77,9 +86,38 @@ function hermitianNorm(
     product(scaledIm, re),
     product(scaledRe, im),
   ];
-  const z = { re: rr.map((x, i) => x + ii[i]!), im: ir.map((x, i) => x - ri[i]!) };
-  addHermitianPairs(dual, 0, z, n, weight);
-  return { smooth: weight * smooth, exact: weight * sumAbout(values, smoothMedian(values, 0)), dual };
+  const direction = { re: rr.map((x, i) => x + ii[i]!), im: ir.map((x, i) => x - ri[i]!) };
+  return { smooth, exact: sumAbout(values, smoothMedian(values, 0)), direction };
+}
+
+/**
+ * ½‖Σ_μ κ^μ⊗σ^μ − c₁‖_* over 2N modes in place of the norms of the four planes: the one-body part of the spinor form. The
+ * first entry holds the norm, each its own part of the derivative.
+ *
+ * @param kappa - coordinates of the planes 0, x, y, z
+ */
+export function wholeNorm(n: number, kappa: readonly Float64Array[], delta: number): PlaneNorm[] {
+  const operator: TripletOperator = { sector: 'even', n, planes: new Float64Array(4 * n * n) };
+  for (const mu of MUS) planeInto(operator.planes, mu * n * n, kappa[mu]!, 0, n, mu === 0);
+  const { smooth, exact, direction } = smoothHermitian(toSpinOrbitals(operator), delta);
+  // Back from spin orbitals: tr (B_a⊗σ^μ) Z = 2 tr B_a Z^μ, and the weight is ½.
+  const { re, im } = direction;
+  const planes = MUS.map(() => new Float64Array(n * n));
+  for (let p = 0; p < n; p++) {
+    for (let q = 0; q < n; q++) {
+      const up = 4 * p * n + 2 * q;
+      const down = up + 2 * n;
+      planes[0]![p * n + q] = 0.5 * (re[up]! + re[down + 1]!);
+      planes[1]![p * n + q] = 0.5 * (im[up + 1]! + im[down]!);
+      planes[2]![p * n + q] = 0.5 * (re[up + 1]! - re[down]!);
+      planes[3]![p * n + q] = 0.5 * (im[up]! - im[down + 1]!);
+    }
+  }
+  return MUS.map((mu) => {
+    const dual = new Float64Array(kappa[mu]!.length);
+    addPairs(dual, 0, planes[mu]!, n, mu === 0, 1);
+    return { smooth: mu === 0 ? 0.5 * smooth : 0, exact: mu === 0 ? 0.5 * exact : 0, dual };
+  });
 }
 
 /** Adds `scale` times the coordinates of a Hermitian matrix: symmetric pairs first, then antisymmetric ones. */

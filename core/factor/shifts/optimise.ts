@@ -3,9 +3,11 @@ import type { JobContext } from '../../job';
 import { minimiseSmooth } from '../../linalg';
 import type { FactorBlock, Factorisation } from '../factors';
 import { forEachFactor, ShiftObjective } from './objective';
-import { type ShiftProblem, shiftProblems } from './problem';
+import { type ShiftForm, type ShiftProblem, shiftProblems } from './problem';
 
 export interface ShiftOptions {
+  /** The form whose λ is to be least. @defaultValue 'triplet' */
+  readonly form?: ShiftForm;
   /** Steps at each smoothing width. @defaultValue 150 */
   readonly steps?: number;
   /** Ends where λ is proved to be within this part of its least value. @defaultValue 1e-5 */
@@ -15,7 +17,7 @@ export interface ShiftOptions {
 /** A factorisation with optimised shifts, and what is known about them. Hartree. */
 export interface OptimisedShifts {
   readonly factorisation: Factorisation;
-  /** λ of everything that the shifts act on, in the triplet form (spinor form for spinor integrals). */
+  /** λ of everything that the shifts act on, in the form asked for. */
   readonly lambda: number;
   /** The same with medians. */
   readonly medianLambda: number;
@@ -48,7 +50,7 @@ export async function optimiseShifts(
   options: ShiftOptions,
   ctx: JobContext,
 ): Promise<OptimisedShifts> {
-  const problems = shiftProblems(h, given);
+  const problems = await shiftProblems(h, given, options.form ?? 'triplet', ctx);
   const shifts = given.blocks.map((block) => new Float64Array(block.count));
   const sum = { lambda: 0, medianLambda: 0, lowerBound: 0 };
   for (const [i, problem] of problems.entries()) {

@@ -5,10 +5,12 @@ import {
   type SpinorHamiltonian,
 } from '../../hamiltonian';
 import { numAntisymmetricPairs, numSymmetricPairs } from '../../integrals/integral-set';
+import type { JobContext } from '../../job';
 import { sectorLayout, traceOfPairs } from '../elements';
 import type { Factorisation, SpinorFactors, SquareFactors, TripleFactors } from '../factors';
 import { addPairs } from '../mixing/norms';
 import { tripleOneNorms } from '../one-norms';
+import { modeSpectra } from './mode-spectra';
 import { addHermitianPairs, type KappaPlane } from './one-body-norms';
 
 /**
@@ -32,38 +34,75 @@ export interface ShiftGroup {
   readonly slots: readonly { readonly plane: number; readonly offset: number }[];
 }
 
-/** λ as a function of the shifts: Σ over groups, plus the nuclear norms of the planes, the first charge plane less its own c₁. */
+/**
+ * λ as a function of the shifts: Σ over groups, plus the nuclear norms of the planes, the charge plane less its own c₁; or,
+ * for `whole`, plus the norm of the four planes together over 2N modes.
+ */
 export interface ShiftProblem {
   readonly groups: readonly ShiftGroup[];
   readonly planes: readonly KappaPlane[];
+  readonly whole: boolean;
 }
+
+/** Which form's λ is meant; of spinor integrals there is only one. */
+export type ShiftForm = 'triplet' | 'spinor';
 
 /**
  * The independent problems that the shifts of a factorisation make up: where factors keep to single planes, each
  * plane of κ and the factors that touch it by itself, else all together. Problems without factors are left out.
+ *
+ * In the spinor form κ counts as a whole, and factors over several planes by their eigenvalues over 2N modes. Triples count
+ * as in the triplet form, whose λ bounds theirs.
  */
-export function shiftProblems(h: SpinHamiltonian, factorisation: Factorisation): ShiftProblem[] {
-  return h.kind === 'spinor' ? spinorProblem(h, factorisation) : spatialProblems(h, factorisation);
+export async function shiftProblems(
+  h: SpinHamiltonian,
+  factorisation: Factorisation,
+  form: ShiftForm,
+  ctx: JobContext,
+): Promise<ShiftProblem[]> {
+  return h.kind === 'spinor'
+    ? spinorProblem(h, factorisation)
+    : spatialProblems(h, factorisation, form === 'spinor', ctx);
 }
 
-function spatialProblems(h: SpatialHamiltonian, factorisation: Factorisation): ShiftProblem[] {
+async function spatialProblems(
+  h: SpatialHamiltonian,
+  factorisation: Factorisation,
+  whole: boolean,
+  ctx: JobContext,
+): Promise<ShiftProblem[]> {
   const n = h.orbitals;
   const planes = spatialPlanes(h, factorisation);
   const groups: ShiftGroup[] = [];
   for (const [b, block] of factorisation.blocks.entries()) {
     if (block.kind === 'squares' && block.sector === 'even' && block.planes.includes(0)) {
-      groups.push(squareGroup(block, b, h.electrons - n));
+      const group = squareGroup(block, b, h.electrons - n);
+      groups.push(whole && block.planes.length > 1 ? await overModes(group, block, ctx) : group);
     }
     if (block.kind !== 'triples' || block.sameScale === 0) continue;
     for (const k of [1, 2, 3]) groups.push(tripleGroup(block, b, k, h.electrons - n));
   }
   const filled = groups.filter(({ items }) => items.length > 0);
-  if (filled.some(({ slots }) => slots.length > 1)) return [{ groups: filled, planes }];
+  if (filled.length === 0) return [];
+  if (whole || filled.some(({ slots }) => slots.length > 1)) return [{ groups: filled, planes, whole }];
   return planes.flatMap((plane, mu) => {
     const own = filled.filter(({ slots }) => slots[0]!.plane === mu);
     if (own.length === 0) return [];
-    return [{ groups: own.map((g) => ({ ...g, slots: [{ ...g.slots[0]!, plane: 0 }] })), planes: [plane] }];
+    const alone = own.map((g) => ({ ...g, slots: [{ ...g.slots[0]!, plane: 0 }] }));
+    return [{ groups: alone, planes: [plane], whole }];
   });
+}
+
+/** The group with the 2N eigenvalues of Σ_μ L^μ⊗σ^μ: a shift of L⁰ moves them all alike. */
+async function overModes(group: ShiftGroup, block: SquareFactors, ctx: JobContext): Promise<ShiftGroup> {
+  const width = 2 * block.n;
+  return {
+    ...group,
+    values: await modeSpectra(block, ctx),
+    valueLayout: { stride: width, offset: 0, width },
+    scale: group.scale.map((x) => 0.25 * x),
+    rest: new Float64Array(block.count),
+  };
 }
 
 function squareGroup(block: SquareFactors, b: number, excess: number): ShiftGroup {
@@ -165,7 +204,8 @@ function spinorProblem(h: SpinorHamiltonian, { blocks, foldedMeanField }: Factor
     // The eigenvalues of odd factors come in ± pairs: there is nothing to shift.
     if (block.part !== 'odd' && block.count > 0) groups.push(spinorGroup(block, b, h.electrons - m / 2));
   }
-  return groups.length > 0 ? [{ groups, planes: [{ kind: 'hermitian', n: m, weight: 0.5, start }] }] : [];
+  const planes: KappaPlane[] = [{ kind: 'hermitian', n: m, weight: 0.5, start }];
+  return groups.length > 0 ? [{ groups, planes, whole: false }] : [];
 }
 
 function spinorGroup(block: SpinorFactors, b: number, excess: number): ShiftGroup {

@@ -46,8 +46,9 @@ describe.each(all)('shifts of %s', (_, h) => {
     const variant = parseVariant(name);
     const made = (async () => {
       const given = await factorise(h, { grouping: variant.grouping as 'joint' | 'separate' }, ctx);
+      const options = { form: variant.factorisation === 'spinor' ? 'spinor' : 'triplet' } as const;
       const factors =
-        variant.shift === 'optimised' ? (await optimiseShifts(h, given, {}, ctx)).factorisation : given;
+        variant.shift === 'optimised' ? (await optimiseShifts(h, given, options, ctx)).factorisation : given;
       return buildEncoding(h, factors, variant, {}, ctx);
     })();
 

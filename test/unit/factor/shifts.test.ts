@@ -81,7 +81,11 @@ describe('λ as a function of all shifts', () => {
     await fc.assert(
       fc.asyncProperty(seeds, fc.constantFrom(1, 2, 3, 5), async (seed, electrons) => {
         for (const [h, factors] of await cases(seed, 3, electrons)) {
-          for (const problem of shiftProblems(h, factors)) {
+          const problems = [
+            ...(await shiftProblems(h, factors, 'triplet', ctx)),
+            ...(await shiftProblems(h, factors, 'spinor', ctx)),
+          ];
+          for (const problem of problems) {
             const objective = new ShiftObjective(problem);
             const random = uniform(seed + 1);
             const point = () => objective.medians.map((c) => c + 0.5 * random());

@@ -24,6 +24,35 @@ describe('checks of symmetry shifts in the neighbouring sector', () => {
     expect(checks[1]!.value).toBeGreaterThan(1e-3);
   });
 
+  it.each(['f_sto3g_2p', 'br_def2svp_4p', 'oh_sto3g'])(
+    '%s: no shift that is chosen has a larger λ than medians, and spinors never more than triplets',
+    async (name) => {
+      const set = findSet(name);
+      if (!set) return;
+      const own = buildHamiltonian(await loadSet(set));
+      for (const grouping of ['separate', 'joint']) {
+        const encodings = new Encodings(own, 0, null, 0);
+        const total = async (text: string) => (await encodings.of(parseVariant(text), ctx)).lambda.total;
+        const found: number[] = [];
+        for (const form of ['triplet', 'spinor']) {
+          const [median, optimised] = [
+            await total(`${form}/${grouping}/index/median/clean`),
+            await total(`${form}/${grouping}/index/optimised/clean`),
+          ];
+          expect(optimised).toBeLessThan(0.9999 * median);
+          found.push(optimised);
+        }
+        expect(found[1]).toBeLessThanOrEqual(found[0]!);
+      }
+      const sparse = new Encodings(own, 0, null, 0);
+      const [none, shifted] = [
+        await sparse.of(parseVariant('sparse/-/index/none/clean'), ctx),
+        await sparse.of(parseVariant('sparse/-/index/optimised/clean'), ctx),
+      ];
+      expect(shifted.lambda.total).toBeLessThan(0.5 * none.lambda.total);
+    },
+  );
+
   it('pass for spinor integrals', async () => {
     const spinors = spinorForm(h);
     const variant = parseVariant('spinor/joint/index/optimised/clean');
