@@ -15,7 +15,7 @@ const SIMULATION = 1e-10;
 export interface BlockProof {
   /** Largest element of λ·⟨0|U|0⟩ + c − H over all columns, hartree. */
   readonly maxError: number;
-  /** What the bits of the tables allow, hartree. */
+  /** What the bits of the tables and what truncation dropped allow, hartree. */
   readonly bound: number;
   /** Determinants of the electron-number sector, all of them. */
   readonly columns: number;
@@ -47,7 +47,7 @@ export async function proveBlock(
   const name = `${formatVariant(variant)}: emitted circuit against its rounded tables, largest element`;
   return {
     maxError: largestDifference(block, lambda, encoding.constant, exact),
-    bound: provable.bound,
+    bound: provable.bound + encoding.residual.oneNormBound,
     columns: basis.dim,
     check: check(
       name,

@@ -29,7 +29,7 @@ const ARITHMETIC = 1e-9;
 /** What the data sets' own generator promises for its reference levels, hartree. */
 const REFERENCE = 1e-8;
 const ROUNDING_SOURCE =
-  'operator norm of what the bits of the simulated tables may change (derived in the design)';
+  'operator norm of what truncation and the bits of the simulated tables may change (derived in the design)';
 /** Levels of a doublet of Kramers agree to this, hartree. */
 const DEGENERACY = 1e-9;
 
