@@ -1,4 +1,4 @@
-import type { RowFace, TripletProgram, TripletRow } from '../encode';
+import type { RowFace, TripletProgram, TripletRow, VectorProducts } from '../encode';
 import {
   isSymmetricPlane,
   type Sector,
@@ -11,8 +11,8 @@ import type { SectorBasis } from './determinants';
 import { addIdentity, addProduct, addScaled, dagger, oneBodyOnSector, zeroMatrix } from './sector-operators';
 
 /**
- * H − constant that a triplet program stands for, on the determinants of a sector: dense, from the meaning of rows
- * and squares on the whole Fock space, so that emitted circuits can be held against it. N ≤ 4.
+ * H − constant that a triplet program stands for, on the determinants of a sector: dense, from the meaning of rows,
+ * squares and products on the whole Fock space, so that emitted circuits can be held against it. N ≤ 4.
  */
 export function programOperator(program: TripletProgram, basis: SectorBasis): ComplexMatrix {
   const n = program.orbitals;
@@ -29,7 +29,28 @@ export function programOperator(program: TripletProgram, basis: SectorBasis): Co
       }
     }
   }
+  if (program.products) addVectorProducts(total, n, program.products, basis);
   return total;
+}
+
+/** Σ sign·λ·½{M_m, M_n}, or 2M_m² − 1 for m = n. */
+function addVectorProducts(
+  total: ComplexMatrix,
+  n: number,
+  products: VectorProducts,
+  basis: SectorBasis,
+): void {
+  const charges = products.vectors.map((u) =>
+    rowsOperator(n, [{ kind: 'S', u, v: u, faces: [{ mu: 0, weight: 1, sign: 1 }] }], 0, 1, basis),
+  );
+  for (const [p, lambda] of products.lambda.entries()) {
+    const [m, k] = [products.first[p]!, products.second[p]!];
+    const share = products.sign[p]! * lambda;
+    const scale = m === k ? share : 0.5 * share;
+    addProduct(total, charges[m]!, charges[k]!, scale);
+    addProduct(total, charges[k]!, charges[m]!, scale);
+    if (m === k) addIdentity(total, -share);
+  }
 }
 
 /**

@@ -1,3 +1,5 @@
+import type { WeightTables } from '../circuit';
+
 /** Wires of the outer index: they only steer. */
 interface OuterWires {
   readonly item: readonly number[];
@@ -6,48 +8,48 @@ interface OuterWires {
   readonly outerUniform: readonly number[];
 }
 
-/** Tables of an encoding by squares, as far as its outer index goes. */
-interface OuterTables {
-  readonly itemBits: number;
-  readonly outer: { readonly probabilities: Float64Array };
-}
-
-/** Outer index states of an encoding by squares: item, face, and square of a pair. */
+/** Outer index states of an encoding by squares: item, face, and square of a pair; or product. */
 export interface SquaresBranches {
   readonly probabilities: readonly number[];
+  /** Whether the wire of the square steers: where there are products, they change it. */
+  readonly squareSteers: boolean;
   /** Wires that are 1 in a branch. */
   steering(wires: OuterWires, branch: number): number[];
-  /** `ancillas` without the wires of the outer index. */
+  /** `ancillas` without the wires that steer. */
   projected(wires: OuterWires, ancillas: readonly number[]): number[];
 }
 
 /** @param items - numFaces and whether it is a pair of squares, item by item */
 export function squaresBranches(
-  { itemBits, outer }: OuterTables,
+  { firstEntry, nextFace, outer, places }: Pick<WeightTables, 'firstEntry' | 'nextFace' | 'outer' | 'places'>,
   items: readonly { readonly numFaces: number; readonly paired: boolean }[],
 ): SquaresBranches {
+  const squareSteers = places === null;
   const branches = items.flatMap(({ numFaces, paired }, t) =>
-    Array.from({ length: numFaces }, (_, face) =>
-      (paired ? [0, 1] : [0]).map((square) => ({
-        t,
-        face,
+    Array.from({ length: numFaces }, (_, face) => {
+      const entry = firstEntry[t]! + face * nextFace;
+      const squares = paired && squareSteers ? [0, 1] : [0];
+      return squares.map((square) => ({
+        entry,
         square,
-        probability: outer.probabilities[face * 2 ** itemBits + t]! / (paired ? 2 : 1),
-      })),
-    ).flat(),
+        probability: outer.probabilities[entry]! / squares.length,
+      }));
+    }).flat(),
   );
+  for (let entry = places?.firstProduct ?? 0; entry < (places?.entries ?? 0); entry++) {
+    branches.push({ entry, square: 0, probability: outer.probabilities[entry]! });
+  }
   return {
     probabilities: branches.map(({ probability }) => probability),
+    squareSteers,
     steering(wires, branch) {
-      const { t, face, square } = branches[branch]!;
-      return [
-        ...wires.item.filter((_, i) => (t >> i) & 1),
-        ...(face === 1 ? [wires.face!] : []),
-        ...(square === 1 ? [wires.square!] : []),
-      ];
+      const { entry, square } = branches[branch]!;
+      const index = [...wires.item, ...(wires.face === null ? [] : [wires.face])];
+      return [...index.filter((_, i) => (entry >> i) & 1), ...(square === 1 ? [wires.square!] : [])];
     },
     projected(wires, ancillas) {
-      const fixed = new Set([...wires.item, wires.face, wires.square, ...wires.outerUniform]);
+      const square = squareSteers ? wires.square : null;
+      const fixed = new Set([...wires.item, wires.face, square, ...wires.outerUniform]);
       return ancillas.filter((wire) => !fixed.has(wire));
     },
   };
