@@ -40,6 +40,21 @@ describe('the command line', () => {
     });
   });
 
+  it('reads which frames to optimise, on every command that plans or checks', () => {
+    const asked = '--orbital-frame optimised';
+    const frames = { spin: 'given', orbital: 'optimised' };
+    expect(parse(`compare data --target 5cm-1 ${asked}`).request).toMatchObject({ comparison: { frames } });
+    expect(parse(`demo ${asked}`).request).toMatchObject({ comparison: { frames } });
+    expect(parse(`verify data ${asked}`).request).toMatchObject({ frames });
+    expect(
+      parse(`circuit data --target 5cm-1 --variant sparse/-/index/none/clean --count-only ${asked}`).request,
+    ).toMatchObject({ circuit: { frames } });
+    expect(parse('verify data --spin-frame optimised').request).toMatchObject({
+      frames: { spin: 'optimised', orbital: 'given' },
+    });
+    expect(parse('verify data --spin-frame given').request).not.toHaveProperty('frames');
+  });
+
   it('reads every option of compare', () => {
     const { request, manner } = parse(
       'compare a b --target 0.5meV --meaning splitting --overlap 0.8,0.7 --terms so2,sf --threshold auto ' +
@@ -132,6 +147,8 @@ describe('the command line', () => {
     ['compare data --target 5cm-1 --window 0-3', '"0-3"'],
     ['compare data --target 5cm-1 --window 6-3', '"6-3"'],
     ['verify data --window-electrons 3', 'no window'],
+    ['compare data --target 5cm-1 --spin-frame best', 'best'],
+    ['verify data --orbital-frame localised', 'localised'],
     ['verify data --threshold auto', '"auto"'],
     ['verify data --states 0', '"0"'],
     ['whatif --method magic --spin-orbitals 4 --lambda 1 --target 1mEh', 'magic'],
