@@ -216,7 +216,7 @@ function leaking<
       generator[t * count + s] = -x;
     }
   }
-  return turn(padded, exponential(generator, count, 1));
+  return turn(padded, exponential(generator, count, 1, classes));
 }
 
 /** Factors that exact zeros keep apart; the empty ones are dealt out to the classes in turn. */

@@ -97,10 +97,10 @@ export function squareProblem(
   return {
     value: (point, width) => squareValue(setting, scales, point, width, ctx),
     move: (point, direction, length) => {
-      const { count, columns } = point;
+      const { count, columns, classes } = point;
       const { dim } = setting.layout;
       const shifts = point.shifts.map((c, t) => c + length * direction[count * count + t]!);
-      const turn = exponential(direction.subarray(0, count * count), count, length);
+      const turn = exponential(direction.subarray(0, count * count), count, length, classes);
       return { ...point, shifts, columns: multiply(turn, columns, count, count, dim) };
     },
     withMedians: async (point) => ({ ...point, shifts: medianShifts(setting.layout, point) }),

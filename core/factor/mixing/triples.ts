@@ -97,10 +97,10 @@ export function tripleProblem(
   return {
     value: (point, width) => tripleValue(setting, scales, point, width, ctx),
     move: (point, direction, length) => {
-      const { count, antisymmetric, symmetric, shifts } = point;
+      const { count, antisymmetric, symmetric, shifts, classes } = point;
       const generator = direction.subarray(0, count * count);
-      const turn = exponential(generator, count, length);
-      const inverse = exponential(generator, count, -length);
+      const turn = exponential(generator, count, length, classes);
+      const inverse = exponential(generator, count, -length, classes);
       return {
         ...point,
         antisymmetric: multiply(turn, antisymmetric, count, count, nanti),
