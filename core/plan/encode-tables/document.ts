@@ -1,4 +1,5 @@
 import type { LambdaByPart } from '../../encode';
+import { Crc32 } from '../../integrals';
 import type { ElementName, Sizes } from './arrays';
 import type { FormName } from './form';
 import type { FrameSummary } from './frame';
@@ -57,4 +58,13 @@ export interface TablesDocument {
   readonly frame?: FrameSummary;
   readonly conventions: Readonly<Record<string, string>>;
   readonly arrays: readonly WrittenArray[];
+  /** Of all the rest, see {@link documentChecksum}. */
+  readonly crc32: number;
+}
+
+/** CRC-32 of a document without its own, as JSON without blanks. */
+export function documentChecksum(document: object): number {
+  const crc = new Crc32();
+  crc.push(new TextEncoder().encode(JSON.stringify({ ...document, crc32: undefined })));
+  return crc.value;
 }

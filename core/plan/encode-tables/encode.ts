@@ -20,8 +20,8 @@ import { windowEffect } from './levels';
 
 /** The rounded tables of a variant, not written yet. */
 export interface EncodedTables {
-  /** The document but for its list of arrays. */
-  readonly summary: Omit<TablesDocument, 'arrays'>;
+  /** The document but for its list of arrays and its checksum. */
+  readonly summary: Omit<TablesDocument, 'arrays' | 'crc32'>;
   readonly rounded: Pick<RoundedTables<FormName>, 'data'>;
   /** The program that the tables encode exactly. */
   readonly encoded: FormProgram;

@@ -1,7 +1,7 @@
 import { type ByteSource, Crc32, type FileSet, type Json, parseJson, readNpy } from '../../integrals';
 import { InputError, type JobContext } from '../../job';
 import { type ArrayLayout, ELEMENTS, type Numbers, type Sizes, shapeOf } from './arrays';
-import { TABLES_FILE, TABLES_SCHEMA } from './document';
+import { documentChecksum, TABLES_FILE, TABLES_SCHEMA } from './document';
 import type { FormProgram, StoredTables } from './form';
 import { FORMS } from './forms';
 import { FRAME_ARRAY, type StoredFrame } from './frame';
@@ -30,6 +30,14 @@ export async function readTables(files: FileSet, context: JobContext): Promise<F
       expected: `schema "${TABLES_SCHEMA}", form ${FORMS.map((known) => `"${known.form}"`).join(' or ')}`,
       mend: 'Name a folder that "encode" of this version wrote, or write it again.',
     });
+  }
+  const checksum = documentChecksum(document);
+  if (checksum !== document.crc32) {
+    throw badTables(
+      TABLES_FILE,
+      `checksum ${checksum} of the document`,
+      `${JSON.stringify(document.crc32)}, as written down`,
+    );
   }
   const stored = new Stored(document, form.arrays, files, context);
   // One form's name goes with its own program: the list of forms is typed so.

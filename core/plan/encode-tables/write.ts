@@ -1,7 +1,7 @@
 import { Crc32 } from '../../integrals';
 import type { JobContext } from '../../job';
 import { shapeOf } from './arrays';
-import { TABLES_FILE, type TablesDocument, type WrittenArray } from './document';
+import { documentChecksum, TABLES_FILE, type TablesDocument, type WrittenArray } from './document';
 import type { EncodedTables } from './encode';
 import { FORMS } from './forms';
 import { FRAME_ARRAY } from './frame';
@@ -43,7 +43,8 @@ export async function writeTables(
     if (done !== total) throw new Error(`array ${name} has ${done} numbers, not ${total}`);
     arrays.push({ name, file, type, shape, extents: layout.shape, meaning, crc32: crc.value });
   }
-  const document: TablesDocument = { ...summary, arrays };
+  const whole = { ...summary, arrays };
+  const document: TablesDocument = { ...whole, crc32: documentChecksum(whole) };
   append(TABLES_FILE, new TextEncoder().encode(`${JSON.stringify(document, null, 2)}\n`));
   return document;
 }

@@ -1,5 +1,6 @@
 import { beforeAll, describe, expect, it } from 'vitest';
 import type { InputError } from '../../../core/job';
+import { documentChecksum } from '../../../core/plan/encode-tables/document';
 import { load, readFiles, request, roundTrip } from './encode-tables-support';
 
 type Files = ReadonlyMap<string, Uint8Array | string>;
@@ -26,6 +27,8 @@ const text = (files: Files) => new TextDecoder().decode(files.get('tables.json')
 function edited(files: Files, change: (document: Record<string, never>) => void): Files {
   const document = JSON.parse(text(files));
   change(document);
+  // As a program would that edits it on purpose.
+  document.crc32 = documentChecksum(document);
   return new Map(files).set('tables.json', JSON.stringify(document));
 }
 
@@ -75,6 +78,23 @@ describe('damaged tables', () => {
         });
         expect(problem!.where, name).toMatch(/\.npy$/);
       }
+    }
+  });
+
+  it('are found where the document changed', async () => {
+    for (const [from, to] of [
+      ['"constant": -', '"constant": '],
+      ['"orbitals": 3', '"orbitals": 2'],
+      ['hartree', 'Hartree'],
+    ] as const) {
+      const changed = text(spinor).replace(from, to);
+      expect(changed).not.toBe(text(spinor));
+      expect(
+        await problemOf(new Map<string, Uint8Array | string>(spinor).set('tables.json', changed)),
+      ).toMatchObject({
+        code: 'bad-tables',
+        where: 'tables.json',
+      });
     }
   });
 
