@@ -36,7 +36,7 @@ async function systems(): Promise<[string, SpatialHamiltonian][]> {
 }
 
 const all = await systems();
-const NAMES = expandVariants('triplet/*/index/*/clean, spinor/*/index/*/clean')
+const NAMES = expandVariants('triplet/*/index/*/clean, spinor/*/index/*/clean, sparse/*/index/*/clean')
   .filter(({ shift }) => shift !== 'none')
   .map(formatVariant);
 
@@ -45,10 +45,11 @@ describe.each(all)('shifts of %s', (_, h) => {
   describe.each(NAMES)('%s', (name) => {
     const variant = parseVariant(name);
     const made = (async () => {
+      if (variant.factorisation === 'sparse') return buildEncoding(h, null, variant, {}, ctx);
       const given = await factorise(h, { grouping: variant.grouping as 'joint' | 'separate' }, ctx);
-      const options = { form: variant.factorisation === 'spinor' ? 'spinor' : 'triplet' } as const;
+      const form = variant.factorisation === 'spinor' ? 'spinor' : 'triplet';
       const factors =
-        variant.shift === 'optimised' ? (await optimiseShifts(h, given, options, ctx)).factorisation : given;
+        variant.shift === 'optimised' ? (await optimiseShifts(h, given, { form }, ctx)).factorisation : given;
       return buildEncoding(h, factors, variant, {}, ctx);
     })();
 
@@ -101,5 +102,37 @@ describe.each(all)('shifts of %s over spinors', (_, spatial) => {
     const median = parseVariant(`spinor/${given.grouping}/index/median/clean`);
     const plain = await buildEncoding(h, given, median, {}, ctx);
     expect(encoding.lambda.total).toBeLessThanOrEqual(plain.lambda.total + 1e-12);
+  });
+});
+
+describe('spin components of the sparse shift', () => {
+  it('are kept where the two spin–orbit parts share no array, and lower λ', async () => {
+    const kinds = { charge: true, spinOrbit: 'independent', spinSpin: false } as const;
+    const h = randomHamiltonian(3, 31, kinds, 1);
+    const encoding = await buildEncoding(h, null, parseVariant('sparse/-/index/optimised/clean'), {}, ctx);
+    const { planes } = encoding.symmetryShift!().operator;
+    expect(planes.subarray(9).some((x) => x !== 0)).toBe(true);
+    const charge = planes.map((x, i) => (i < 9 ? x : 0));
+    const { scalar, operator } = encoding.symmetryShift!();
+    const without = shiftedHamiltonian(h, { scalar, operator: { ...operator, planes: charge } });
+    const plain = await buildEncoding(without, null, parseVariant('sparse/-/index/none/clean'), {}, ctx);
+    expect(encoding.lambda.total).toBeLessThan(plain.lambda.total);
+  });
+
+  it('give way where nothing is won, with a note', async () => {
+    const h = randomHamiltonian(1, 3, { charge: false, spinOrbit: 'none', spinSpin: false }, 1);
+    const empty = {
+      ...h,
+      h: { ...h.h, planes: new Float64Array(4) },
+      k: { ...h.k, planes: new Float64Array(4) },
+    };
+    const encoding = await buildEncoding(
+      empty,
+      null,
+      parseVariant('sparse/-/index/optimised/clean'),
+      {},
+      ctx,
+    );
+    expect(encoding.notes).toEqual([expect.stringContaining('ξ = 0')]);
   });
 });
