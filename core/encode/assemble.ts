@@ -180,20 +180,31 @@ interface Form {
     readonly pairRows: number;
   };
   readonly two: TwoBody;
-  readonly sizes: Pick<EncodingShape, 'items' | 'spinors' | 'axialParts'>;
+  readonly sizes: Pick<EncodingShape, 'items' | 'products' | 'spinors' | 'axialParts'>;
   /** Given the encoding's constant. */
   readonly programs: (constant: number) => Pick<Encoding, 'program' | 'spinorProgram'>;
 }
 
 function tripletForm(orbitals: number, blocks: readonly BlockItems[], oneBody: OneBody): Form {
   const one = oneBodyTriplet(oneBody);
+  const two = tripletTwoBody(blocks);
   return {
     oneBody,
     one,
-    two: tripletTwoBody(blocks),
-    sizes: { items: itemSizes(orbitals, blocks, one) },
+    two,
+    sizes: { items: itemSizes(orbitals, blocks, one), ...productsPart(blocks, two) },
     programs: (constant) => ({ program: () => tripletProgram(constant, blocks, oneBody) }),
   };
+}
+
+/** Vectors of products, and the part of the two-body λ in products of different vectors. */
+function productsPart(blocks: readonly BlockItems[], { parts }: TwoBody): Pick<EncodingShape, 'products'> {
+  const products = blocks.find((entry) => entry.kind === 'hypercontracted')?.products;
+  if (!products) return {};
+  const { vectors, first, second, lambda } = products;
+  const twoBody = Object.values(parts).reduce((sum, own) => sum + own, 0);
+  const ofPairs = lambda.reduce((sum, own, p) => (first[p] === second[p] ? sum : sum + own), 0);
+  return { products: { vectors: vectors.length, part: ofPairs / twoBody } };
 }
 
 async function spinorForm(

@@ -35,6 +35,8 @@ export interface EncodingShape {
   readonly maxRowsPerFactor: number;
   /** True where any row or coefficient carries spin (μ ≠ 0) or an antisymmetric plane. */
   readonly spinDependent: boolean;
+  /** Triplet form with products of two vectors: how many vectors, and the part of λ of the squares and products in products m ≠ n. */
+  readonly products?: { readonly vectors: number; readonly part: number };
   /** Triplet form only: the sizes item by item. */
   readonly items?: ItemSizes;
   /** Spinor form only: the sizes item by item. */

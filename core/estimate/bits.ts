@@ -105,7 +105,8 @@ export function roundingError(
 
 /**
  * Alias sampling over L rows rounds each probability to a multiple of 1/(L 2^ℵ). Outer table: λ 2^−ℵ, or with
- * independent signs λ 2^−ℵ/√(12 L). Inner tables: the square doubles twice, 4λ₂ 2^−ℵ; the one-body rows count once.
+ * independent signs λ 2^−ℵ/√(12 L). Inner tables: the square doubles twice, 4λ₂ 2^−ℵ; the one-body rows count once. The
+ * vectors of a product are drawn for sure.
  */
 function keepErrors(shape: EncodingShape, { oneBody, twoBody }: LambdaSplit): ErrorAtZeroBits {
   const lambda = oneBody + twoBody;
@@ -113,12 +114,11 @@ function keepErrors(shape: EncodingShape, { oneBody, twoBody }: LambdaSplit): Er
     return { rigorous: lambda, estimate: lambda / Math.sqrt(12 * Math.max(shape.rows, 1)) };
   }
   const spread = (items: number) => Math.sqrt(12 * Math.max(items, 1));
+  const { squares, rows } = apartFromProducts(shape, twoBody);
   return {
-    rigorous: lambda + 4 * twoBody + oneBody,
+    rigorous: lambda + 4 * squares + oneBody,
     estimate:
-      lambda / spread(shape.factors + 1) +
-      (4 * twoBody) / spread(shape.rows) +
-      oneBody / spread(shape.oneBodyRows),
+      lambda / spread(shape.factors + 1) + (4 * squares) / spread(rows) + oneBody / spread(shape.oneBodyRows),
   };
 }
 
@@ -126,6 +126,10 @@ function keepErrors(shape: EncodingShape, { oneBody, twoBody }: LambdaSplit): Er
  * Angles on a grid of 2π/2^β move a unit vector by at most √n π/2^β for n angles: the metric of the sphere has
  * coefficients ≤ 1. A vector error δ costs 8δλ in a square and 2δλ in a one-body term; statistically δ is
  * (2π/2^β)/√12 · √((n + 2)/2), and rows add up like 1/√rows.
+ *
+ * A product ½{M_m, M_n} of two operators of norm 1 that change by 2δ each costs 4δλ. As Σ_m ½{ΔM_m, Y_m} with ‖Y_m‖ at most
+ * the weights that vector m has a part in, 2λ/M on average, M vectors add up like 1/√M; signs within Y_m, which make it
+ * less, are left out, and as for squares half the worst case is taken.
  */
 function rotationErrors(shape: EncodingShape, { oneBody, twoBody }: LambdaSplit): ErrorAtZeroBits | null {
   if (shape.kind === 'sparse') return null;
@@ -137,15 +141,25 @@ function rotationErrors(shape: EncodingShape, { oneBody, twoBody }: LambdaSplit)
   const coarse = 2 ** (shape.spinors?.spared ?? 0) + 1;
   const mean = (size: (n: number) => number, n: number, part: number) =>
     (1 - part) * size(n) + part * coarse * size(shape.orbitals + 1);
+  const { squares, products, rows, vectors } = apartFromProducts(shape, twoBody);
   return {
     rigorous:
-      8 * mean(worst, angles.squares, axial.squares) * twoBody +
+      8 * mean(worst, angles.squares, axial.squares) * squares +
+      4 * worst(angles.squares) * products +
       2 * mean(worst, angles.oneBody, axial.oneBody) * oneBody,
     estimate:
-      (4 * mean(typical, angles.squares, axial.squares) * twoBody) / Math.sqrt(Math.max(shape.rows, 1)) +
+      (4 * mean(typical, angles.squares, axial.squares) * squares) / Math.sqrt(Math.max(rows, 1)) +
+      (2 * typical(angles.squares) * products) / Math.sqrt(Math.max(vectors, 1)) +
       (2 * mean(typical, angles.oneBody, axial.oneBody) * oneBody) /
         Math.sqrt(Math.max(shape.oneBodyRows, 1)),
   };
+}
+
+/** λ₂ and rows of the squares by themselves, and of products of different vectors; hartree. */
+function apartFromProducts({ rows, products }: EncodingShape, twoBody: number) {
+  if (!products) return { squares: twoBody, products: 0, rows, vectors: 0 };
+  const { vectors, part } = products;
+  return { squares: (1 - part) * twoBody, products: part * twoBody, rows, vectors };
 }
 
 /**
