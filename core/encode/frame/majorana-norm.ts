@@ -1,6 +1,10 @@
 import { planeOf, type SpatialHamiltonian, squareOfTriangle } from '../../hamiltonian';
 import { numSymmetricPairs, symmetricPair } from '../../integrals/integral-set';
+import type { JobContext } from '../../job';
 import { multiply } from '../../linalg';
+
+/** Rows of pairs between two checkpoints. */
+const ROWS_AT_ONCE = 64;
 
 /** Spin-free part of a Hamiltonian over N real orbitals, stored form, hartree. */
 export interface SpinFree {
@@ -34,7 +38,12 @@ export function spinFreePart(hamiltonian: SpatialHamiltonian): SpinFree | null {
  *
  * @param epsilon - hartree, ≥ 0; 0 gives the norm itself, whose gradient takes sign(0) = 0.
  */
-export function majoranaNorm({ n, h, g }: SpinFree, epsilon: number, withGradient: boolean): NormValue {
+export async function majoranaNorm(
+  { n, h, g }: SpinFree,
+  epsilon: number,
+  withGradient: boolean,
+  context: JobContext,
+): Promise<NormValue> {
   const npair = numSymmetricPairs(n);
   const e2 = epsilon * epsilon;
   const size = (x: number): number => Math.sqrt(x * x + e2) - epsilon;
@@ -51,6 +60,7 @@ export function majoranaNorm({ n, h, g }: SpinFree, epsilon: number, withGradien
   }
   const multiplicity = multiplicities(n, pair);
   for (let a = 0, i = 0; a < npair; a++) {
+    if (a % ROWS_AT_ONCE === 0) await context.checkpoint();
     for (let b = 0; b < npair; b++, i++) {
       const weight = 0.25 * multiplicity[a]! * multiplicity[b]!;
       lambda += weight * size(g[i]!);
@@ -58,6 +68,7 @@ export function majoranaNorm({ n, h, g }: SpinFree, epsilon: number, withGradien
     }
   }
   for (let p = 0; p < n; p++) {
+    await context.checkpoint();
     for (let r = 0; r < p; r++) {
       for (let s = 0; s < n; s++) {
         const ps = pair[p * n + s]! * npair;
@@ -85,14 +96,14 @@ export function majoranaNorm({ n, h, g }: SpinFree, epsilon: number, withGradien
       }
     }
   }
-  return { lambda, gradient: generatorGradient(n, h, g, slopes, d, pair, multiplicity) };
+  return { lambda, gradient: await generatorGradient(n, h, g, slopes, d, pair, multiplicity, context) };
 }
 
 /**
  * −Σ_p (pp|pp) and its gradient: orbitals of largest self-repulsion are localised ones (C. Edmiston and K. Ruedenberg,
  * Rev. Mod. Phys. 35, 457 (1963)).
  */
-export function selfRepulsion({ n, h, g }: SpinFree): NormValue {
+export async function selfRepulsion({ n, h, g }: SpinFree, context: JobContext): Promise<NormValue> {
   const npair = numSymmetricPairs(n);
   const pair = pairTable(n);
   const d = new Float64Array(npair * npair);
@@ -103,7 +114,10 @@ export function selfRepulsion({ n, h, g }: SpinFree): NormValue {
     d[at] = -1;
   }
   const multiplicity = multiplicities(n, pair);
-  return { lambda, gradient: generatorGradient(n, h, g, new Float64Array(n * n), d, pair, multiplicity) };
+  return {
+    lambda,
+    gradient: await generatorGradient(n, h, g, new Float64Array(n * n), d, pair, multiplicity, context),
+  };
 }
 
 /** Number of the symmetric pair of p and q at p·n + q. */
@@ -139,7 +153,7 @@ function oneBodyPlane(n: number, h: Float64Array, g: Float64Array, pair: Int32Ar
  * With dh = Xh − hX and the four index changes of g, all alike under its symmetries:
  * dλ = Σ_pa Γ_pa X_pa, Γ = 2 F h + 4 Σ_q,R (D_[pq]R / m_[pq]) g_[aq]R, D symmetrised. The gradient is Γ − Γᵀ.
  */
-function generatorGradient(
+async function generatorGradient(
   n: number,
   h: Float64Array,
   g: Float64Array,
@@ -147,9 +161,11 @@ function generatorGradient(
   d: Float64Array,
   pair: Int32Array,
   multiplicity: Float64Array,
-): Float64Array {
+  context: JobContext,
+): Promise<Float64Array> {
   const npair = numSymmetricPairs(n);
   for (let a = 0; a < npair; a++) {
+    if (a % ROWS_AT_ONCE === 0) await context.checkpoint();
     for (let b = 0; b < a; b++) {
       const mean = 0.5 * (d[a * npair + b]! + d[b * npair + a]!);
       d[a * npair + b] = mean;
@@ -160,6 +176,7 @@ function generatorGradient(
   const left = new Float64Array(n * npair);
   const right = new Float64Array(n * npair);
   for (let q = 0; q < n; q++) {
+    await context.checkpoint();
     for (let p = 0; p < n; p++) {
       const from = pair[p * n + q]!;
       const scale = 4 / multiplicity[from]!;

@@ -61,7 +61,7 @@ export async function orbitalFrame(
   const starts: Start[] = cheap ? ['given', 'localised'] : ['localised'];
   for (let i = 0; i < (options.restarts ?? (cheap ? 3 : 0)); i++) starts.push('random');
   const steps = options.steps ?? 80;
-  const before = majoranaNorm(part, 0, false).lambda;
+  const { lambda: before } = await majoranaNorm(part, 0, false, context);
   let rotation = identity(n);
   let after = before;
   const random = randomSource(context.seed);
@@ -72,9 +72,15 @@ export async function orbitalFrame(
     const descent = new Descent(part, turnedAtRandom(n, start === 'random' ? 1 : KICK, random));
     const stage = (at: number) => (step: number) =>
       context.report('turning orbitals', (i * stages + at) * steps + step, total);
-    if (start === 'localised') await descent.run(selfRepulsion, steps, context, stage(0));
+    if (start === 'localised')
+      await descent.run((turned) => selfRepulsion(turned, context), steps, context, stage(0));
     for (const [at, width] of WIDTHS.entries()) {
-      await descent.run((turned) => majoranaNorm(turned, width, true), steps, context, stage(at + 1));
+      await descent.run(
+        (turned) => majoranaNorm(turned, width, true, context),
+        steps,
+        context,
+        stage(at + 1),
+      );
     }
     const found = await descent.norm(context);
     evaluations += descent.evaluations;
@@ -86,7 +92,7 @@ export async function orbitalFrame(
   return { rotation: polished(rotation, n), norm: { before, after }, evaluations };
 }
 
-type Objective = (turned: SpinFree) => NormValue;
+type Objective = (turned: SpinFree) => Promise<NormValue>;
 
 /** One descent on the orthogonal group. Every point is made from the given integrals, so that rounding does not add up. */
 class Descent {
@@ -101,7 +107,8 @@ class Descent {
 
   /** The norm itself at the present point. */
   async norm(context: JobContext): Promise<number> {
-    return majoranaNorm(await this.#turned(this.rotation, context), 0, false).lambda;
+    const turned = await this.#turned(this.rotation, context);
+    return (await majoranaNorm(turned, 0, false, context)).lambda;
   }
 
   async run(
@@ -162,7 +169,7 @@ class Descent {
 
   async #value(u: Float64Array, objective: Objective, context: JobContext): Promise<GroupValue> {
     this.evaluations++;
-    const { lambda, gradient } = objective(await this.#turned(u, context));
+    const { lambda, gradient } = await objective(await this.#turned(u, context));
     await context.checkpoint();
     return { lambda, gradient: gradient! };
   }

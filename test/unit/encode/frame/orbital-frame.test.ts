@@ -25,11 +25,11 @@ function spinFree(n: number, seed: number) {
 }
 
 describe('one-norm of the merged Majorana strings of a spin-free Hamiltonian', () => {
-  it('is that of the Pauli strings of its Fock-space matrix', () => {
-    fc.assert(
-      fc.property(seeds, fc.integer({ min: 1, max: 3 }), (seed, n) => {
+  it('is that of the Pauli strings of its Fock-space matrix', async () => {
+    await fc.assert(
+      fc.asyncProperty(seeds, fc.integer({ min: 1, max: 3 }), async (seed, n) => {
         const hamiltonian = spinFree(n, seed);
-        const { lambda } = majoranaNorm(spinFreePart(hamiltonian)!, 0, false);
+        const { lambda } = await majoranaNorm(spinFreePart(hamiltonian)!, 0, false, ctx);
         expect(lambda / pauliNorm(fockMatrix(hamiltonian, 'stored'))).toBeCloseTo(1, 11);
       }),
       { numRuns: 12 },
@@ -49,9 +49,9 @@ describe('one-norm of the merged Majorana strings of a spin-free Hamiltonian', (
         ),
         ctx,
       );
-      return selfRepulsion(spinFreePart(turned)!).lambda;
+      return (await selfRepulsion(spinFreePart(turned)!, ctx)).lambda;
     };
-    const { gradient, lambda } = selfRepulsion(spinFreePart(hamiltonian)!);
+    const { gradient, lambda } = await selfRepulsion(spinFreePart(hamiltonian)!, ctx);
     let diagonal = 0;
     for (let p = 0; p < n; p++) diagonal -= tensorElement(hamiltonian.g, n, 0, 0, p, p, p, p)[0];
     expect(lambda).toBeCloseTo(diagonal, 13);
@@ -65,7 +65,7 @@ describe('one-norm of the merged Majorana strings of a spin-free Hamiltonian', (
       fc.asyncProperty(seeds, fc.integer({ min: 2, max: 5 }), async (seed, n) => {
         const hamiltonian = spinFree(n, seed);
         const epsilon = 0.05;
-        const { gradient } = majoranaNorm(spinFreePart(hamiltonian)!, epsilon, true);
+        const { gradient } = await majoranaNorm(spinFreePart(hamiltonian)!, epsilon, true, ctx);
         const x = antisymmetric(n, seed + 1);
         const at = async (t: number) => {
           const u = antisymmetricExponential(
@@ -73,7 +73,7 @@ describe('one-norm of the merged Majorana strings of a spin-free Hamiltonian', (
             n,
           );
           const turned = await rotateOrbitals(hamiltonian, u, ctx);
-          return majoranaNorm(spinFreePart(turned)!, epsilon, false).lambda;
+          return (await majoranaNorm(spinFreePart(turned)!, epsilon, false, ctx)).lambda;
         };
         const step = 1e-4;
         // Fourth-order central difference.
@@ -111,8 +111,11 @@ describe('orbital frame', () => {
         expect(x).toBeCloseTo(i % (n + 1) === 0 ? 1 : 0, 13);
       });
       const turned = await rotateOrbitals(hamiltonian, frame.rotation, ctx);
-      expect(majoranaNorm(spinFreePart(turned)!, 0, false).lambda).toBeCloseTo(frame.norm.after, 10);
-      expect(majoranaNorm(spinFreePart(hamiltonian)!, 0, false).lambda).toBe(frame.norm.before);
+      expect((await majoranaNorm(spinFreePart(turned)!, 0, false, ctx)).lambda).toBeCloseTo(
+        frame.norm.after,
+        10,
+      );
+      expect((await majoranaNorm(spinFreePart(hamiltonian)!, 0, false, ctx)).lambda).toBe(frame.norm.before);
       expect(frame.norm.after).toBeLessThan(frame.norm.before);
     }
   });
@@ -131,7 +134,7 @@ describe('orbital frame', () => {
       h: { ...plain.h, planes: new Float64Array(4 * n * n) },
       g: { ...plain.g, charge },
     };
-    const least = majoranaNorm(spinFreePart(diagonal)!, 0, false).lambda;
+    const least = (await majoranaNorm(spinFreePart(diagonal)!, 0, false, ctx)).lambda;
     const u = antisymmetricExponential(antisymmetric(n, 8), n);
     const turned = await rotateOrbitals(diagonal, u, ctx);
     const frame = (await orbitalFrame(turned, { steps: 200 }, ctx))!;
