@@ -1,6 +1,12 @@
 import { buildEncoding, type Encoding, type VariantName } from '../encode';
 import type { Factorisation } from '../factor';
-import { oppositeShift, type SpinHamiltonian, shiftedHamiltonian } from '../hamiltonian';
+import {
+  oppositeShift,
+  type SpinHamiltonian,
+  shiftedHamiltonian,
+  shiftedSpinorHamiltonian,
+  toSpinOrbitals,
+} from '../hamiltonian';
 import { InputError, type JobContext } from '../job';
 import {
   type DeterminantStatistics,
@@ -131,8 +137,14 @@ export class EnergyEstimates {
     try {
       if (!factorisation) {
         const rebuilt = encoding.rebuild();
-        if (rebuilt.kind !== 'spatial') return rebuilt;
         const shift = encoding.symmetryShift?.();
+        if (rebuilt.kind !== 'spatial') {
+          if (frame?.record.turned)
+            return 'joined products over spin orbitals are not turned back from a frame';
+          if (!shift) return rebuilt;
+          const { scalar, operator } = oppositeShift(shift);
+          return shiftedSpinorHamiltonian(rebuilt, { scalar, operator: toSpinOrbitals(operator) });
+        }
         const plain = shift ? shiftedHamiltonian(rebuilt, oppositeShift(shift)) : rebuilt;
         return frame ? await turnedBack(plain, frame, context) : plain;
       }

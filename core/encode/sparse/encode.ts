@@ -135,8 +135,9 @@ async function count(source: RowSource, cutoff: number, ctx: JobContext) {
   let shared = 0;
   await visitAll(source, ctx, (row) => {
     const { weight, kind, parts } = row;
+    if (weight <= NOISE) return;
     if (weight <= cutoff) {
-      if (weight > NOISE) dropped++;
+      dropped++;
       bound += weight;
       square += row.square;
       return;
