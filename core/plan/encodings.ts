@@ -1,4 +1,10 @@
-import { buildEncoding, type Encoding, formatVariant, type VariantName } from '../encode';
+import {
+  buildEncoding,
+  type Encoding,
+  type FactorisationAxis,
+  formatVariant,
+  type VariantName,
+} from '../encode';
 import {
   compressFactors,
   type Factorisation,
@@ -22,6 +28,9 @@ export interface MixingChoices {
   /** Where runs are kept that may be stopped and taken up again; null: nowhere. @defaultValue null */
   readonly states?: MixingStates | null;
 }
+
+/** Forms that take long to make, so that measuring their rounding is worth the time. */
+const MEASURED: readonly FactorisationAxis[] = ['compressed', 'hypercontracted', 'mixed'];
 
 /** λ that differ by less than this part count as equal. */
 const EQUAL = 1e-6;
@@ -77,7 +86,7 @@ export class Encodings {
       if (variant.factorisation === 'spinor' && variant.shift === 'optimised') {
         encoding = await this.#bestOfSpinor(encoding, variant, context);
       }
-      if (variant.factorisation === 'mixed') encoding = await this.#measured(encoding, context);
+      if (MEASURED.includes(variant.factorisation)) encoding = await this.#measured(encoding, context);
       this.#encodings.set(key, encoding);
     }
     return encoding;

@@ -7,8 +7,9 @@ import { lowStates } from './low-states';
 
 /** Sizes below this are no rows: vectors have unit norm. */
 const ROW_ZERO = 1e-9;
-/** Between two cuts that are tried. */
+/** Between two cuts that are tried, and how often the last interval is halved (on a logarithmic scale). */
 const STEP = Math.sqrt(10);
+const HALVINGS = 3;
 /** Below this part of the heaviest factor everything is kept. */
 const LEAST = 1e-9;
 
@@ -57,14 +58,19 @@ export async function thinLightParts(
     return { thinned, change: left ? await states.change(given, left) : Number.POSITIVE_INFINITY };
   };
   for (let cut = parts.heaviest; cut > LEAST * parts.heaviest; cut /= STEP) {
-    let { thinned, change } = await attempt(cut);
-    if (change > tolerance) continue;
-    // Halfway back to the cut that was too large.
-    const larger = cut === parts.heaviest ? null : await attempt(cut * Math.sqrt(STEP));
-    if (larger && larger.change <= tolerance) ({ thinned, change } = larger);
+    let best = await attempt(cut);
+    if (best.change > tolerance) continue;
+    // Between this cut and the one before, which was too large.
+    let [low, high] = [cut, cut * STEP];
+    for (let i = 0; i < HALVINGS && cut < parts.heaviest; i++) {
+      const middle = Math.sqrt(low * high);
+      const next = await attempt(middle);
+      if (next.change > tolerance) high = middle;
+      else [low, best] = [middle, next];
+    }
     return {
-      factorisation: thinned.factorisation,
-      note: noteOf(thinned, change, states.description),
+      factorisation: best.thinned.factorisation,
+      note: noteOf(best.thinned, best.change, states.description),
     };
   }
   return { factorisation: whole, note: 'every row of the spin-dependent parts is needed' };
