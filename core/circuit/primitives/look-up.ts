@@ -42,9 +42,30 @@ export function oneHotToffoli(block: number): number {
   return block - 1 - Math.log2(block);
 }
 
-/** Number of blocks of k addresses that hold any of the ascending addresses. */
+/** Number of blocks of k addresses that hold any of the ascending addresses, which must not change any more. */
 export function countBlocks(addresses: Uint32Array, block: number): number {
-  return blockAddresses(addresses, block).length;
+  let counts = blockCounts.get(addresses);
+  if (!counts) {
+    counts = countAllBlocks(addresses);
+    blockCounts.set(addresses, counts);
+  }
+  return counts[Math.log2(block)]!;
+}
+
+/** Choosing a block asks for every size: all are counted at once. */
+const blockCounts = new WeakMap<Uint32Array, Uint32Array>();
+
+/** Of every block size 2^0 … 2^32: two neighbours are in different blocks up to the highest bit that they differ in. */
+function countAllBlocks(addresses: Uint32Array): Uint32Array {
+  const counts = new Uint32Array(33);
+  for (let i = 1; i < addresses.length; i++) counts[32 - Math.clz32(addresses[i]! ^ addresses[i - 1]!)]!++;
+  let sum = addresses.length > 0 ? 1 : 0;
+  for (let bits = 32; bits >= 0; bits--) {
+    const steps = counts[bits]!;
+    counts[bits] = sum;
+    sum += steps;
+  }
+  return counts;
 }
 
 /** Wires lent while a look-up runs, besides its k·b output wires. */

@@ -117,15 +117,25 @@ export function raggedAddresses(
   bases: Uint32Array,
   keep: (t: number) => boolean = () => true,
 ): Uint32Array {
-  const out: number[] = [];
-  let ascending = true;
+  let size = 0;
+  for (let t = 0; t < counts.length; t++) if (keep(t)) size += counts[t]!;
+  const found = new Uint32Array(size);
+  let [at, ascending] = [0, true];
   for (let t = 0; t < counts.length; t++) {
     if (!keep(t) || counts[t] === 0) continue;
-    ascending &&= out.length === 0 || out[out.length - 1]! < bases[t]!;
-    for (let j = 0; j < counts[t]!; j++) out.push(bases[t]! + j);
+    ascending &&= at === 0 || found[at - 1]! < bases[t]!;
+    for (let j = 0; j < counts[t]!; j++) found[at++] = bases[t]! + j;
   }
-  const found = Uint32Array.from(out);
   return ascending ? found : found.sort();
+}
+
+/** Two lists of addresses as one, ascending. */
+export function merged(a: Uint32Array, b: Uint32Array): Uint32Array {
+  if (b.length === 0) return a;
+  const all = new Uint32Array(a.length + b.length);
+  all.set(a);
+  all.set(b, a.length);
+  return all.sort();
 }
 
 /** Addresses of the library. */

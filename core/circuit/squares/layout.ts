@@ -1,5 +1,12 @@
 import { firstAddresses } from '../primitives/unary-iteration';
-import { type Indexing, indexingOf, libraryAddresses, raggedAddresses, type SquaresSizes } from './indexing';
+import {
+  type Indexing,
+  indexingOf,
+  libraryAddresses,
+  merged,
+  raggedAddresses,
+  type SquaresSizes,
+} from './indexing';
 
 /** Addresses of the tables that PREPARE reads, from sizes alone: those of the tables that are filled. */
 export interface SquaresLayout extends Indexing {
@@ -27,11 +34,11 @@ export function squaresLayout(sizes: SquaresSizes): SquaresLayout {
     equalSizes: !places && sizeBits.every((b) => b === rowBits),
     outerAddresses: firstAddresses(2 ** indexing.outerBits),
     itemAddresses: firstAddresses(places ? places.entries : rows.length),
-    innerAddresses: Uint32Array.from([
-      ...Uint32Array.from([...raggedAddresses(buckets, bases), ...library]).sort(),
-      ...second.map((address) => address + faceOffset),
-    ]),
-    rowAddresses: Uint32Array.from([...raggedAddresses(rows, bases), ...library]).sort(),
+    innerAddresses: merged(
+      merged(raggedAddresses(buckets, bases), library),
+      second.map((address) => address + faceOffset),
+    ),
+    rowAddresses: merged(raggedAddresses(rows, bases), library),
     blockBits: places ? places.placeBits : rowBits,
   };
 }
