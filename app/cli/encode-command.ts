@@ -24,3 +24,17 @@ export function addEncode(command: Command, accept: (request: Request, flags: Fl
       ),
     );
 }
+
+/** Such a folder, read back. */
+export function addTables(command: Command, accept: (request: Request, flags: Flags) => void): void {
+  command
+    .description('reads the tables that encode wrote, and holds them against the files they were made from')
+    .argument('<dir>', 'the folder of the tables')
+    .argument('[files...]', 'a folder, a recipe, or files; none: the tables alone')
+    .action((folder: string, files: string[], flags: Flags) =>
+      accept(
+        { command: 'tables', folder, against: files.length > 0 ? inputFiles(files, flags) : null },
+        flags,
+      ),
+    );
+}

@@ -3,14 +3,17 @@ import type { IntegralSet } from '../../core/integrals';
 import { InputError, type JobContext } from '../../core/job';
 import {
   type CircuitRequest,
+  checkTables,
   encodeTables,
   readTables,
+  type TablesCheck,
   type TablesDocument,
   writeTables,
 } from '../../core/plan';
 import { folderFiles } from './files';
+import { loadInputs, openInputs } from './inputs';
 import { writeFolder } from './output';
-import type { OutputFile } from './request';
+import type { InputFiles, OutputFile } from './request';
 
 /**
  * Writes the tables of a variant under the temporary name of `out`, and reads them back from there: what is put in
@@ -39,4 +42,15 @@ export async function writeEncoding(
     });
   }
   return document;
+}
+
+/** What a folder of tables holds, and whether it fits the files it was made from, where these are named. */
+export async function checkEncoding(
+  folder: string,
+  against: InputFiles | null,
+  context: JobContext,
+): Promise<TablesCheck> {
+  const files = await folderFiles(folder);
+  const set = against && (await loadInputs(await openInputs(against, context), 'all', 'throw', context));
+  return checkTables(files, set, context);
 }

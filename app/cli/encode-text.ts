@@ -1,6 +1,7 @@
-import type { TablesDocument } from '../../core/plan';
+import type { TablesCheck, TablesDocument } from '../../core/plan';
 import { formatExactCount, formatSignificant } from '../../core/units';
 import { textTable } from './text-table';
+import { checkLines } from './verify-text';
 
 /** What was written, and what rounding and truncation do to the energy. */
 export function encodeText(tables: TablesDocument, path: string): string {
@@ -37,6 +38,36 @@ export function encodeText(tables: TablesDocument, path: string): string {
   ].join('\n')}\n`;
 }
 
+/** What a folder of tables holds, and the checks. */
+export function tablesText({ document, arrays, levels, checks }: TablesCheck, folder: string): string {
+  const { form, variant, lambda, orbitals, electrons, terms } = document;
+  const lines = [
+    `${folder}: ${variant}, tables of the ${form} form, ${contentsOf(document)}, ${bitsOf(document)}.`,
+    `${orbitals} orbitals, ${electrons} electrons, ${terms.join(' + ')}. lambda ${formatSignificant(lambda.total, 6)} Eh. All ${arrays} arrays are whole.`,
+    '',
+  ];
+  if (levels) {
+    lines.push(
+      `Levels in Eh, ${levels.electrons} electrons in orbitals ${levels.orbitals.join(', ')}:`,
+      ...textTable(
+        [
+          { head: 'level', align: 'right' },
+          { head: 'files', align: 'right' },
+          { head: 'tables deviate', align: 'right' },
+        ],
+        levels.files.map((exact, i) => [
+          String(i + 1),
+          exact.toFixed(10).replace('-', '\u2212'),
+          formatSignificant(levels.tables[i]! - exact, 2),
+        ]),
+      ),
+      '',
+    );
+  }
+  lines.push(...checkLines(checks));
+  return `${lines.join('\n')}\n`;
+}
+
 /** Sizes that a reader knows by name. */
 const CONTENTS = [
   ['items', 'items'],
@@ -44,12 +75,12 @@ const CONTENTS = [
   ['products', 'products of vectors'],
 ] as const;
 
-const contentsOf = ({ sizes }: TablesDocument): string =>
+const contentsOf = ({ sizes }: Pick<TablesDocument, 'sizes'>): string =>
   CONTENTS.flatMap(([name, word]) =>
     (sizes[name] ?? 0) === 0 ? [] : [`${formatExactCount(sizes[name]!)} ${word}`],
   ).join(', ');
 
-function bitsOf({ bits, sizes }: TablesDocument): string {
+function bitsOf({ bits, sizes }: Pick<TablesDocument, 'bits' | 'sizes'>): string {
   const { keep, rotation, phase } = bits;
   const words = [`${keep} bits of keep values`];
   if (rotation !== undefined) words.push(`${rotation} of angles`);

@@ -7,7 +7,7 @@ import {
   runVerification,
   writeCircuit,
 } from '../../core/plan';
-import { writeEncoding } from './encode-files';
+import { checkEncoding, writeEncoding } from './encode-files';
 import { loadInputs, openInputs, readReference } from './inputs';
 import { MixingFile } from './mixing-file';
 import { refuseUsedFolder, writeStreamed } from './output';
@@ -17,6 +17,7 @@ import type {
   EncodeRequest,
   InspectRequest,
   Request,
+  TablesRequest,
   VerifyRequest,
 } from './request';
 import type { Result } from './result';
@@ -34,6 +35,8 @@ export async function answer(request: Request, context: JobContext): Promise<Res
       return circuit(request, context);
     case 'encode':
       return encode(request, context);
+    case 'tables':
+      return tables(request, context);
     case 'whatif':
       return { command: 'whatif', whatIf: whatif(request.options, SURFACE_CODE_DEFAULTS) };
     case 'copy-demo':
@@ -90,4 +93,8 @@ async function encode(request: EncodeRequest, context: JobContext): Promise<Resu
   refuseUsedFolder(out.path);
   const set = await loadInputs(await openInputs(request, context), request.encode.terms, 'throw', context);
   return { command: 'encode', tables: await writeEncoding(set, request.encode, out, context), out };
+}
+
+async function tables({ folder, against }: TablesRequest, context: JobContext): Promise<Result> {
+  return { command: 'tables', folder, check: await checkEncoding(folder, against, context) };
 }

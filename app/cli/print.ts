@@ -3,7 +3,7 @@ import { throwFirstError } from '../../core/integrals';
 import { type ComparisonRun, comparisonDocument } from '../../core/plan';
 import { circuitCountText, circuitText } from './circuit-text';
 import { compareText } from './compare-text';
-import { encodeText } from './encode-text';
+import { encodeText, tablesText } from './encode-text';
 import { inspectText } from './inspect-text';
 import { outcomeLines } from './outcome-text';
 import { copyFolder, placeReserved, writeWhole } from './output';
@@ -86,6 +86,14 @@ export function printResult(
         () => encodeText(tables, folder.path),
       );
       return DONE;
+    }
+    case 'tables': {
+      const { check, folder } = result;
+      answer(
+        () => check,
+        () => tablesText(check, folder),
+      );
+      return check.checks.every(({ ok }) => ok) ? DONE : CHECK_FAILED;
     }
     case 'whatif':
       answer(

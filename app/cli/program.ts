@@ -2,7 +2,7 @@ import { Command, CommanderError, Option } from 'commander';
 import { FRAME_CHOICES, MEANINGS } from '../../core/plan';
 import { version } from '../../package.json';
 import { addCircuit } from './circuit-command';
-import { addEncode } from './encode-command';
+import { addEncode, addTables } from './encode-command';
 import {
   compareRequest,
   electronsOf,
@@ -119,6 +119,8 @@ function buildProgram(demoFolder: string, accept: Accept): Command {
 
   addEncode(costed(reading(program.command('encode'))), accept);
 
+  addTables(reading(program.command('tables')), accept);
+
   addWhatIf(answering(program.command('whatif')), accept);
 
   comparing(answering(program.command('demo')))
@@ -204,4 +206,4 @@ function fromCommander(error: CommanderError, args: readonly string[]): Error {
   );
 }
 
-const COMMANDS = ['inspect', 'compare', 'verify', 'circuit', 'encode', 'whatif', 'demo'];
+const COMMANDS = ['inspect', 'compare', 'verify', 'circuit', 'encode', 'tables', 'whatif', 'demo'];

@@ -47,6 +47,13 @@ export interface EncodeRequest extends InputFiles {
   readonly out: OutputFile;
 }
 
+/** Tables that were written, read back; against the files they were made from, if any are named. */
+export interface TablesRequest {
+  readonly command: 'tables';
+  readonly folder: string;
+  readonly against: InputFiles | null;
+}
+
 /** A file or folder that the job writes under a temporary name while the main thread sees to it. */
 export interface OutputFile {
   readonly path: string;
@@ -71,6 +78,7 @@ export type Request =
   | VerifyRequest
   | CircuitRequest
   | EncodeRequest
+  | TablesRequest
   | WhatIfRequest
   | CopyDemoRequest;
 

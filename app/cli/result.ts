@@ -6,6 +6,7 @@ import type {
   Evidence,
   Inspection,
   Meaning,
+  TablesCheck,
   TablesDocument,
 } from '../../core/plan';
 import type { OutputFile } from './request';
@@ -23,5 +24,6 @@ export type Result =
   | { readonly command: 'circuit-count'; readonly count: CircuitCount }
   | { readonly command: 'circuit-text'; readonly text: CircuitText; readonly out: OutputFile }
   | { readonly command: 'encode'; readonly tables: TablesDocument; readonly out: OutputFile }
+  | { readonly command: 'tables'; readonly folder: string; readonly check: TablesCheck }
   | { readonly command: 'whatif'; readonly whatIf: WhatIfResult }
   | { readonly command: 'copy-demo'; readonly from: string; readonly out: string };

@@ -1,4 +1,4 @@
-import type { Evidence } from '../../core/plan';
+import type { Check, Evidence } from '../../core/plan';
 import { formatExactCount, formatSignificant } from '../../core/units';
 import { textTable } from './text-table';
 
@@ -10,8 +10,6 @@ export function verifyText({ electrons, terms, spectrum, truncation, checks }: E
     exact.toFixed(10).replace('-', '\u2212'),
     ...names.map((name) => formatSignificant(spectrum.variants[name]![i]! - exact, 2)),
   ]);
-  const ordered = [...checks.filter(({ ok }) => !ok), ...checks.filter(({ ok }) => ok)];
-  const failed = checks.filter(({ ok }) => !ok).length;
   const lines = [
     `${electrons} electrons, ${terms.join(' + ')}`,
     '',
@@ -27,6 +25,16 @@ export function verifyText({ electrons, terms, spectrum, truncation, checks }: E
     ),
     '',
     ...truncationText(truncation),
+    ...checkLines(checks),
+  ];
+  return `${lines.join('\n')}\n`;
+}
+
+/** Checks, failed ones first, and how many hold. */
+export function checkLines(checks: readonly Check[]): string[] {
+  const ordered = [...checks.filter(({ ok }) => !ok), ...checks.filter(({ ok }) => ok)];
+  const failed = checks.filter(({ ok }) => !ok).length;
+  return [
     ...textTable(
       [
         { head: 'check', align: 'left' },
@@ -46,7 +54,6 @@ export function verifyText({ electrons, terms, spectrum, truncation, checks }: E
     '',
     `${formatExactCount(checks.length - failed)} hold, ${formatExactCount(failed)} failed`,
   ];
-  return `${lines.join('\n')}\n`;
 }
 
 /** What was dropped means for the energy: three views side by side. */

@@ -9,12 +9,14 @@ export {
 export type { Comparison, Target, TermSummary, VariantEstimate } from './comparison';
 export { comparisonDocument, variantDocument } from './document';
 export {
+  checkTables,
   type EncodedTables,
   encodeTables,
   type FormProgram,
   readFrame,
   readTables,
   type StoredFrame,
+  type TablesCheck,
   type TablesDocument,
   writeTables,
 } from './encode-tables';

@@ -67,3 +67,9 @@ export const joined =
   (parts: readonly Numbers[]): Pieces =>
   () =>
     parts;
+
+export function sumOf(numbers: Iterable<number>): number {
+  let total = 0;
+  for (const x of numbers) total += x;
+  return total;
+}

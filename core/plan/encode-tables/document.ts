@@ -1,5 +1,6 @@
 import type { LambdaByPart } from '../../encode';
 import { Crc32 } from '../../integrals';
+import type { SystemRequest } from '../system';
 import type { ElementName, Sizes } from './arrays';
 import type { FormName } from './form';
 import type { FrameSummary } from './frame';
@@ -41,6 +42,8 @@ export interface TablesDocument {
   readonly orbitals: number;
   readonly electrons: number;
   readonly terms: readonly string[];
+  /** What was asked for of the files, beside the frame. */
+  readonly system: Required<Omit<SystemRequest, 'frames'>>;
   readonly constant: number;
   readonly lambda: LambdaByPart;
   readonly bits: Sizes;

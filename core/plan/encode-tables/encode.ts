@@ -1,7 +1,7 @@
 import type { LookupPolicy } from '../../circuit';
 import { type Encoding, formatVariant } from '../../encode';
 import { roundingError } from '../../estimate';
-import { heldTerms } from '../../hamiltonian';
+import { heldTerms, type OrbitalWindow } from '../../hamiltonian';
 import type { IntegralSet } from '../../integrals';
 import { InputError, type JobContext } from '../../job';
 import type { CircuitRequest } from '../circuit-run';
@@ -9,11 +9,11 @@ import { costOf, targetOf, thresholdOf, toleranceOf } from '../costing';
 import { Encodings } from '../encodings';
 import type { Frame } from '../frame';
 import { FramedEncodings } from '../framed-encodings';
-import { hamiltonianOf, occupationsOf } from '../system';
+import { hamiltonianOf, occupationsOf, type SystemRequest } from '../system';
 import { phaseBitsOf } from '../walk-circuit';
 import { whole } from './arrays';
 import { TABLES_SCHEMA, type TablesDocument } from './document';
-import type { FormName, FormProgram, RoundedTables, RoundingChoice } from './form';
+import type { FormName, FormProgram, Programs, RoundedTables, RoundingChoice } from './form';
 import { FORMS } from './forms';
 import { FRAME_ARRAY, type FrameSummary } from './frame';
 import { windowEffect } from './levels';
@@ -81,7 +81,7 @@ export async function encodeTables(
     block: 'auto',
     qubitCap: request.qubitsMax,
   };
-  const found = roundAs(encoding, { bits: used, phaseBits: phaseBitsOf(estimate), policy });
+  const found = roundAs(encoding, { bits: used, phaseBits: phaseBitsOf(estimate), policy }, context);
   if (!found) {
     throw refuse(
       'no-tables',
@@ -90,19 +90,18 @@ export async function encodeTables(
       'Choose another variant, or leave a spinor out.',
     );
   }
-  const { form, conventions, rounded, encoded } = found;
+  const { form, conventions, rounded, encoded, inWindow } = found;
   const expected = roundingError(encoding.shape, encoding.lambda, used);
   const realised = await rounded.rounding(hamiltonian.electrons, context);
-  const { inWindow } = rounded;
   const turned = frame?.record.turned ? frame.record : null;
   const window =
     // Turned orbitals have no occupations to choose a window by.
-    hamiltonian.kind === 'spatial' && occupations && inWindow && !(turned?.kind === 'orbital')
+    hamiltonian.kind === 'spatial' && occupations && !(turned?.kind === 'orbital')
       ? await windowEffect(
           hamiltonian,
           {
-            given: (own) => inWindow(rounded.given, own, context),
-            encoded: (own) => inWindow(rounded.encoded, own, context),
+            given: (own) => inWindow(rounded.given, own),
+            encoded: (own) => inWindow(rounded.encoded, own),
             truncated: encoding.residual.oneNormBound > 0,
           },
           occupations,
@@ -121,6 +120,7 @@ export async function encodeTables(
       orbitals: rounded.encoded.orbitals,
       electrons: hamiltonian.electrons,
       terms: hamiltonian.kind === 'spatial' ? hamiltonian.terms : heldTerms(set),
+      system: systemOf(request),
       constant: encoding.constant,
       lambda: encoding.lambda,
       bits: rounded.bits,
@@ -139,18 +139,31 @@ export async function encodeTables(
   };
 }
 
+const systemOf = ({ terms, electrons, occupations, window }: SystemRequest): TablesDocument['system'] => ({
+  terms,
+  electrons,
+  occupations,
+  window: window ?? null,
+});
+
 function summaryOf({ kind, judgedBy, lambda, rows, evaluations }: Frame['record']): FrameSummary {
   return { kind, judgedBy, lambda, rows, evaluations };
 }
 
 /** The tables in the first form that the encoding is of. */
-function roundAs(encoding: Encoding, how: RoundingChoice) {
+function roundAs(encoding: Encoding, how: RoundingChoice, context: JobContext) {
   for (const known of FORMS) {
     const { form, conventions } = known;
     const rounded = known.round(encoding, how) as RoundedTables<FormName> | null;
-    if (rounded) {
-      return { form, conventions, rounded, encoded: { form, program: rounded.encoded } as FormProgram };
-    }
+    if (!rounded) continue;
+    return {
+      form,
+      conventions,
+      rounded,
+      encoded: { form, program: rounded.encoded } as FormProgram,
+      inWindow: (program: Programs[FormName], window: OrbitalWindow) =>
+        known.inWindow(program as never, window, context),
+    };
   }
   return null;
 }

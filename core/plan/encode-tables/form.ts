@@ -35,6 +35,10 @@ export interface TablesForm<F extends FormName> {
    * @throws InputError `bad-tables` where they do not fit each other
    */
   read(stored: StoredTables): Promise<Programs[F]>;
+  /** Of a program, hartree. */
+  lambda(program: Programs[F]): number;
+  /** The Hamiltonian that a program stands for over a window of orbitals, the others frozen. */
+  inWindow(program: Programs[F], window: OrbitalWindow, context: JobContext): Promise<SpinHamiltonian>;
 }
 
 /** What decides the tables beside the encoding: as for the circuit of the same variant. */
@@ -59,10 +63,6 @@ export interface RoundedTables<F extends FormName> {
     electrons: number,
     context: JobContext,
   ): Promise<{ readonly bound: number; readonly typical: number }>;
-  /** The Hamiltonian that a program stands for over a window of orbitals; null where that cannot be had. */
-  readonly inWindow:
-    | ((program: Programs[F], window: OrbitalWindow, context: JobContext) => Promise<SpinHamiltonian>)
-    | null;
 }
 
 /** Tables as they were written, checked as they are asked for. */

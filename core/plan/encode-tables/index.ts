@@ -1,3 +1,4 @@
+export { checkTables, type TablesCheck } from './check';
 export { TABLES_FILE, type TablesDocument } from './document';
 export { type EncodedTables, encodeTables } from './encode';
 export type { FormProgram } from './form';

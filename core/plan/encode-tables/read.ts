@@ -1,7 +1,7 @@
 import { type ByteSource, Crc32, type FileSet, type Json, parseJson, readNpy } from '../../integrals';
 import { InputError, type JobContext } from '../../job';
 import { type ArrayLayout, ELEMENTS, type Numbers, type Sizes, shapeOf } from './arrays';
-import { documentChecksum, TABLES_FILE, TABLES_SCHEMA } from './document';
+import { documentChecksum, TABLES_FILE, TABLES_SCHEMA, type TablesDocument } from './document';
 import type { FormProgram, StoredTables } from './form';
 import { FORMS } from './forms';
 import { FRAME_ARRAY, type StoredFrame } from './frame';
@@ -17,6 +17,14 @@ const MOST_JSON = 2 ** 20;
  * arrays do not fit each other; what the readers of JSON and `.npy` throw for files that cannot be read
  */
 export async function readTables(files: FileSet, context: JobContext): Promise<FormProgram> {
+  return (await openTables(files, context)).tables;
+}
+
+/** The same with the document that came with them. */
+export async function openTables(
+  files: FileSet,
+  context: JobContext,
+): Promise<{ readonly document: TablesDocument; readonly tables: FormProgram }> {
   context.report(`reading ${TABLES_FILE}`, 0, null);
   await context.checkpoint();
   const document = await readDocument(files);
@@ -41,7 +49,8 @@ export async function readTables(files: FileSet, context: JobContext): Promise<F
   }
   const stored = new Stored(document, form.arrays, files, context);
   // One form's name goes with its own program: the list of forms is typed so.
-  return { form: form.form, program: await form.read(stored) } as FormProgram;
+  const tables = { form: form.form, program: await form.read(stored) } as FormProgram;
+  return { document: document as unknown as TablesDocument, tables };
 }
 
 /**

@@ -2,7 +2,7 @@ import { encodedSparseProgram, sparseStep, sparseTables } from '../../circuit';
 import type { SparseProgram, TermKind } from '../../encode';
 import type { Mu } from '../../hamiltonian';
 import { realisedSparseRounding, windowOfSparseProgram } from '../../verify';
-import { type ArrayLayout, byRow, whole } from './arrays';
+import { type ArrayLayout, byRow, sumOf, whole } from './arrays';
 import { COMMON_CONVENTIONS } from './conventions';
 import type { StoredTables, TablesForm } from './form';
 
@@ -39,6 +39,8 @@ export const SPARSE: TablesForm<'sparse'> = {
       'buckets = factor * 2^lowBits; bucket i is high * 2^lowBits + low. Of the numbers u below 2^g, g = sizes.uniformBits, it has those with factor * u from high * 2^g to below (high + 1) * 2^g, and gives those from high * 2^g + keep[i] * 2^(g - bits.keep) on to alternate[i], the others to row i. Probability = numbers u / 2^(g + lowBits), summed over buckets.',
   },
   arrays: ARRAYS,
+  inWindow: windowOfSparseProgram,
+  lambda: ({ weights }) => sumOf(weights),
 
   round(encoding, { bits: { keep }, phaseBits, policy }) {
     if (!encoding.sparseProgram || !encoding.shape.terms) return null;
@@ -73,7 +75,6 @@ export const SPARSE: TablesForm<'sparse'> = {
         alternate: whole(tables.alternate),
       },
       rounding: async () => realisedSparseRounding(given, encoded),
-      inWindow: windowOfSparseProgram,
     };
   },
 

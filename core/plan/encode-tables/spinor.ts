@@ -1,10 +1,17 @@
 import { encodedSpinorProgram, roundedSpinorRow, type SpinorTables, spinorTables } from '../../circuit';
 import { SPINOR_KINDS, type SpinorItem, type SpinorRow } from '../../encode';
 import { realisedSpinorRounding, windowOfSpinorProgram } from '../../verify';
-import { type ArrayLayout, byRow, type Numbers, type Pieces, whole } from './arrays';
+import { type ArrayLayout, byRow, type Numbers, type Pieces, sumOf, whole } from './arrays';
 import { COMMON_CONVENTIONS } from './conventions';
 import type { StoredTables, TablesForm } from './form';
-import { readSquares, SQUARES_ARRAYS, SQUARES_CONVENTIONS, type StoredItem, squaresData } from './squares';
+import {
+  readSquares,
+  SQUARES_ARRAYS,
+  SQUARES_CONVENTIONS,
+  type StoredItem,
+  squaresData,
+  weightOf,
+} from './squares';
 
 const ARRAYS: readonly ArrayLayout[] = [
   ...SQUARES_ARRAYS,
@@ -80,6 +87,10 @@ export const SPINOR: TablesForm<'spinor'> = {
     ...SQUARES_CONVENTIONS,
   },
   arrays: ARRAYS,
+  inWindow: windowOfSpinorProgram,
+  lambda: ({ items, oneBody }) =>
+    sumOf(items.flatMap((item) => item.faces.map((face) => face.lambda))) +
+    sumOf(oneBody.map((item) => weightOf(item.rows))),
 
   round(encoding, { bits: { keep, rotation } }) {
     if (!encoding.spinorProgram) return null;
@@ -109,7 +120,6 @@ export const SPINOR: TablesForm<'spinor'> = {
       encoded,
       data: { ...squares.data, ...rows.data, mode_phase: whole(phases) },
       rounding: (electrons, context) => realisedSpinorRounding(given, encoded, electrons, context),
-      inWindow: windowOfSpinorProgram,
     };
   },
 

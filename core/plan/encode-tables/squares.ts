@@ -109,6 +109,11 @@ export function squaresData(
   };
 }
 
+/** Sum of the weights of rows with one face. */
+export const weightOf = (
+  rows: readonly { readonly faces: readonly { readonly weight: number }[] }[],
+): number => rows.reduce((sum, row) => sum + row.faces[0]!.weight, 0);
+
 /** An item as PREPARE knows it. */
 export interface StoredItem {
   readonly paired: boolean;

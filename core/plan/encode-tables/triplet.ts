@@ -2,11 +2,18 @@ import { encodedProgram, roundedVector, type TripletTables, tripletTables } from
 import type { RowFace, TripletItem, TripletRow } from '../../encode';
 import type { Mu } from '../../hamiltonian';
 import { realisedRounding, windowOfProgram } from '../../verify';
-import { type ArrayLayout, byRow, type Numbers, type Pieces, whole } from './arrays';
+import { type ArrayLayout, byRow, type Numbers, type Pieces, sumOf, whole } from './arrays';
 import { COMMON_CONVENTIONS } from './conventions';
 import type { StoredTables, TablesForm } from './form';
 import { PRODUCTS_ARRAYS, PRODUCTS_CONVENTIONS, productsData, readProducts } from './products';
-import { readSquares, SQUARES_ARRAYS, SQUARES_CONVENTIONS, type StoredItem, squaresData } from './squares';
+import {
+  readSquares,
+  SQUARES_ARRAYS,
+  SQUARES_CONVENTIONS,
+  type StoredItem,
+  squaresData,
+  weightOf,
+} from './squares';
 
 const ARRAYS: readonly ArrayLayout[] = [
   ...SQUARES_ARRAYS,
@@ -47,6 +54,9 @@ export const TRIPLET: TablesForm<'triplet'> = {
     ...SQUARES_CONVENTIONS,
   },
   arrays: ARRAYS,
+  inWindow: windowOfProgram,
+  lambda: ({ items, oneBody, products }) =>
+    sumOf(items.flatMap((item) => item.lambda)) + weightOf(oneBody) + sumOf(products?.lambda ?? []),
 
   round(encoding, { bits: { keep, rotation } }) {
     if (!encoding.program) return null;
@@ -67,7 +77,6 @@ export const TRIPLET: TablesForm<'triplet'> = {
       encoded,
       data: { ...squares.data, ...rows.data, ...products.data },
       rounding: (electrons, context) => realisedRounding(given, encoded, electrons, context),
-      inWindow: windowOfProgram,
     };
   },
 
