@@ -6,7 +6,7 @@ import type { HypercontractionOptions } from './hypercontraction/block';
 import { hypercontract } from './hypercontraction/hypercontract';
 
 export interface HypercontractedOptions
-  extends Pick<FactoriseOptions, 'threshold' | 'occupations'>,
+  extends Pick<FactoriseOptions, 'threshold' | 'occupations' | 'keepSpinParts'>,
     Pick<HypercontractionOptions, 'rank' | 'residualTarget' | 'steps' | 'onBest' | 'start'> {
   /** Whether the fit has a symmetry shift: it then holds in the sector of η electrons alone. */
   readonly shift: boolean;
@@ -14,18 +14,18 @@ export interface HypercontractedOptions
 
 /**
  * Separate grouping with the charge part hypercontracted. Spin-dependent parts are factors, of which truncation drops what
- * it would drop beside Coulomb factors at the same threshold; the fit's residual and mean field are added to theirs.
+ * it would drop beside Coulomb factors at the same threshold, or none (`keepSpinParts`); the fit's residual and mean field are added to theirs.
  */
 export async function hypercontractedFactorisation(
   h: SpatialHamiltonian,
   options: HypercontractedOptions,
   ctx: JobContext,
 ): Promise<Factorisation> {
-  const { threshold = 0, occupations, ...fitting } = options;
+  const { threshold = 0, keepSpinParts = false, occupations, ...fitting } = options;
   const reference = occupations ? { occupations } : {};
   const spin = await factorise(
     h,
-    { grouping: 'separate', threshold, withoutCoulomb: true, ...reference },
+    { grouping: 'separate', threshold, withoutCoulomb: true, keepSpinParts, ...reference },
     ctx,
   );
   if (!h.g.charge) return spin;

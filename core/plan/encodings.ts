@@ -51,7 +51,8 @@ export class Encodings {
   /**
    * @param threshold - sum of LCU norms that truncation may drop, hartree
    * @param occupations - reference of the mean field that stands for dropped factors; null: none
-   * @param tolerance - of mixed encodings: what thinning of the spin-dependent parts may change, hartree
+   * @param tolerance - of mixed and hypercontracted encodings: what thinning of the spin-dependent parts may change,
+   *   hartree
    * @param mixing - of compressed and mixed encodings
    */
   constructor(
@@ -186,9 +187,10 @@ export class Encodings {
       const options = {
         threshold: this.#threshold,
         shift,
+        keepSpinParts: true,
         ...(this.#occupations ? { occupations: this.#occupations } : {}),
       };
-      found = await hypercontractedFactorisation(h, options, context);
+      found = await this.#thinned(h, await hypercontractedFactorisation(h, options, context), context);
       // Of the spin-orbit triples, which the fit leaves alone.
       if (shift) ({ factorisation: found } = await optimiseShifts(h, found, {}, context));
       this.#factorisations.set(key, found);
@@ -196,7 +198,7 @@ export class Encodings {
     return found;
   }
 
-  /** Spin-dependent parts thinned by what they mean for the energy. */
+  /** Spin-dependent parts thinned by what they mean for low states. */
   async #thinned(h: SpatialHamiltonian, whole: Factorisation, context: JobContext): Promise<Factorisation> {
     const { factorisation, note } = await thinLightParts(h, whole, this.#filling(), this.#tolerance, context);
     return { ...factorisation, notes: [...factorisation.notes, note] };

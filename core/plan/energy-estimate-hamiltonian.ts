@@ -1,4 +1,11 @@
-import { type Factorisation, type SquareFactors, sectorLayout, type TripleFactors } from '../factor';
+import {
+  approximateCharge,
+  type Factorisation,
+  type HypercontractedFactors,
+  type SquareFactors,
+  sectorLayout,
+  type TripleFactors,
+} from '../factor';
 import { addScaled, fromProductForm, type SpatialHamiltonian } from '../hamiltonian';
 import { numAntisymmetricPairs, numSymmetricPairs, pairsTriangleLength } from '../integrals/integral-set';
 import type { JobContext } from '../job';
@@ -24,7 +31,8 @@ export async function hamiltonianOfFactors(
   const charges = blocks.filter(isCharge);
   const triples = blocks.filter((block): block is TripleFactors => block.kind === 'triples');
   const dipolar = blocks.filter(isSpinSpin);
-  if (charges.length + triples.length + dipolar.length < blocks.length) return null;
+  const fitted = blocks.filter((block): block is HypercontractedFactors => block.kind === 'hypercontracted');
+  if (charges.length + fitted.length + triples.length + dipolar.length < blocks.length) return null;
   const flops =
     dipolar.reduce((sum, { count }) => sum + 12 * npair * npair * count, 0) +
     charges.reduce((sum, { count }) => sum + 2 * npair * npair * count, 0) +
@@ -34,7 +42,8 @@ export async function hamiltonianOfFactors(
   const unscale = new Float64Array(npair).fill(Math.SQRT1_2);
   for (let p = 0, i = 0; p < n; p++, i += p + 1) unscale[i] = 1;
 
-  let charge: Float64Array | null = null;
+  // The fit knows its own shift.
+  let charge: Float64Array | null = fitted[0] ? approximateCharge(fitted[0]) : null;
   for (const { vectors, weights, count } of charges) {
     charge ??= new Float64Array(pairsTriangleLength(n));
     const left = vectors.map((x, i) => x * weights[Math.floor(i / npair)]!);
