@@ -38,6 +38,9 @@ export function chargeRows(hamiltonian: SpatialHamiltonian, price: RowPrice): Ro
   if (!charge) return { parts: [], *visit() {} };
   const quartets = new Quartets({ ...hamiltonian, g: { charge, spinOrbit: null, spinSpin: null } });
   const pairs = new PairRows(charge);
+  // How each quartet is listed, found at the first pass: 1 joined, 2 by pairs.
+  const n = hamiltonian.orbitals;
+  const chosen = new Uint8Array((n * (n + 1) * (n + 2) * (n + 3)) / 24);
   return {
     parts: ['coulomb'],
     *visit(visitor) {
@@ -47,19 +50,19 @@ export function chargeRows(hamiltonian: SpatialHamiltonian, price: RowPrice): Ro
         norm += weight;
         if (weight > price.cutoff) rows++;
       };
-      yield* forQuartets(hamiltonian.orbitals, (quartet) => {
-        if (price.perRow > 0 && isWhole(quartet)) {
-          rows = norm = 0;
-          quartets.visit(quartet, count);
-          const joined = { rows, norm };
-          rows = norm = 0;
-          pairs.visit(quartet, count);
-          if (norm - joined.norm < price.perRow * (joined.rows - rows)) {
-            pairs.visit(quartet, visitor);
-            return;
-          }
-        }
-        quartets.visit(quartet, visitor);
+      const isByPairs = (quartet: Int32Array): boolean => {
+        if (price.perRow === 0 || !isWhole(quartet)) return false;
+        rows = norm = 0;
+        quartets.visit(quartet, count);
+        const joined = { rows, norm };
+        rows = norm = 0;
+        pairs.visit(quartet, count);
+        return norm - joined.norm < price.perRow * (joined.rows - rows);
+      };
+      let at = 0;
+      yield* forQuartets(n, (quartet) => {
+        if (chosen[at] === 0) chosen[at] = isByPairs(quartet) ? 2 : 1;
+        (chosen[at++] === 2 ? pairs : quartets).visit(quartet, visitor);
       });
     },
   };

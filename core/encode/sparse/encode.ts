@@ -134,7 +134,7 @@ async function count(source: RowSource, cutoff: number, ctx: JobContext) {
   let total = 0;
   let shared = 0;
   await visitAll(source, ctx, (row) => {
-    const { weight, kind, parts } = row;
+    const { weight, kind } = row;
     if (weight <= NOISE) return;
     if (weight <= cutoff) {
       dropped++;
@@ -147,6 +147,7 @@ async function count(source: RowSource, cutoff: number, ctx: JobContext) {
     else twoBody++;
     total += weight;
     if (kind.form === 'pairs' && kind.shared) shared += weight;
+    const { parts } = row;
     for (let part = 0; part < parts.length; part++) sums[part]! += parts[part]! * weight;
   });
   const lambda: Record<string, number> = {};

@@ -1,8 +1,8 @@
 import type { SpatialHamiltonian } from '../../hamiltonian';
 import { numAntisymmetricPairs, numSymmetricPairs, symmetricPair } from '../../integrals/integral-set';
-import type { HeldParts, Slot } from './linear-forms';
+import type { HeldParts, LinearForm, Slot } from './linear-forms';
 import { buildPattern, type Pattern, type PatternRow } from './patterns';
-import { emptyRow, type RowSource, type SparseRow } from './rows';
+import { emptyRow, ROW_PARTS, type RowSource, type SparseRow } from './rows';
 
 /** Coefficients up to this part of what they are summed from are rounding. */
 const ROUNDING = 1e-14;
@@ -11,9 +11,12 @@ const ROUNDING = 1e-14;
 export class Quartets {
   readonly parts: readonly string[];
   readonly #patterns: readonly CompiledPattern[];
-  readonly #row = emptyRow();
-  readonly #shares = new Float64Array(6);
+  readonly #row: SparseRow;
+  readonly #shares = new Float64Array(ROW_PARTS.length);
   readonly #coefficients = new Float64Array(4);
+  /** Where the row last told of comes from. */
+  #class: CompiledClass | null = null;
+  #values: Float64Array = new Float64Array(0);
 
   constructor(hamiltonian: SpatialHamiltonian) {
     const held = heldParts(hamiltonian);
@@ -23,7 +26,14 @@ export class Quartets {
       ...(held.spinOrbit === null ? [] : ['same-orbit', 'other-orbit']),
       ...(held.spinSpin ? ['spin-spin'] : []),
     ];
-    this.#row.parts = this.#shares;
+    const shares = () => this.#sharesOfRow();
+    this.#row = {
+      ...emptyRow(),
+      // Few passes ask for them.
+      get parts() {
+        return shares();
+      },
+    };
   }
 
   /** Visits the rows of one quartet p ≥ q ≥ r ≥ s. */
@@ -32,32 +42,45 @@ export class Quartets {
     const equal = (p === q ? 1 : 0) | (q === r ? 2 : 0) | (r === s ? 4 : 0);
     const { fetch, values, classes } = this.#patterns[equal]!;
     for (let i = 0; i < fetch.length; i++) values[i] = fetch[i]!(quartet);
+    this.#values = values;
     for (const own of classes) this.#visitClass(own, values, quartet, visitor);
   }
 
+  /** What each part put into the products of the row's class, as shares. */
+  #sharesOfRow(): Float64Array {
+    const { terms } = this.#class!;
+    const shares = this.#shares.fill(0);
+    let total = 0;
+    for (let e = 0; e < terms.parts.length; e++) {
+      const term = Math.abs(terms.factors[e]! * this.#values[terms.slots[e]!]!);
+      shares[terms.parts[e]!]! += term;
+      total += term;
+    }
+    for (let part = 0; part < shares.length; part++) shares[part]! /= total;
+    return shares;
+  }
+
   #visitClass(
-    { rows, signs, start, slots, factors, parts }: CompiledClass,
+    own: CompiledClass,
     values: Float64Array,
     quartet: Int32Array,
     visitor: (row: SparseRow) => void,
   ): void {
-    const shares = this.#shares;
+    const { rows, signs, start, slots, factors } = own;
     const coefficients = this.#coefficients;
     const count = start.length - 1;
     let total = 0;
-    shares.fill(0);
     for (let i = 0; i < count; i++) {
       let sum = 0;
       for (let e = start[i]!; e < start[i + 1]!; e++) {
         const term = factors[e]! * values[slots[e]!]!;
         sum += term;
-        shares[2 + parts[e]!]! += Math.abs(term);
         total += Math.abs(term);
       }
       coefficients[i] = sum;
     }
     if (total === 0) return;
-    for (let part = 2; part < 6; part++) shares[part]! /= total;
+    this.#class = own;
     const noise = ROUNDING * total;
     if (count === 1) {
       const amount = Math.abs(coefficients[0]!);
@@ -151,7 +174,12 @@ interface CompiledClass {
   readonly start: Int32Array;
   readonly slots: Int32Array;
   readonly factors: Float64Array;
-  readonly parts: Int32Array;
+  /** The same terms of all forms, part by part; numbers of {@link ROW_PARTS}. */
+  readonly terms: {
+    readonly slots: Int32Array;
+    readonly factors: Float64Array;
+    readonly parts: Int32Array;
+  };
 }
 
 function compile({ slots, classes }: Pattern, hamiltonian: SpatialHamiltonian): CompiledPattern {
@@ -159,19 +187,34 @@ function compile({ slots, classes }: Pattern, hamiltonian: SpatialHamiltonian): 
     fetch: slots.map((slot) => reader(slot, hamiltonian)),
     values: new Float64Array(slots.length),
     classes: classes.map(({ forms, rows, signs }) => {
+      const merged = forms.map(bySlot);
       const start = new Int32Array(forms.length + 1);
-      for (const [i, form] of forms.entries()) start[i + 1] = start[i]! + form.slots.length;
+      for (const [i, form] of merged.entries()) start[i + 1] = start[i]! + form.size;
       return {
         rows,
         signs,
         start,
-        slots: Int32Array.from(forms.flatMap((form) => form.slots)),
-        factors: Float64Array.from(forms.flatMap((form) => form.factors)),
-        parts: Int32Array.from(forms.flatMap((form) => form.parts)),
+        slots: Int32Array.from(merged.flatMap((form) => [...form.keys()])),
+        factors: Float64Array.from(merged.flatMap((form) => [...form.values()])),
+        terms: {
+          slots: Int32Array.from(forms.flatMap((form) => form.slots)),
+          factors: Float64Array.from(forms.flatMap((form) => form.factors)),
+          parts: Int32Array.from(forms.flatMap((form) => form.parts.map((part) => FIRST_TWO_BODY + part))),
+        },
       };
     }),
   };
 }
+
+/** Factor of each slot, its parts added. */
+function bySlot({ slots, factors }: LinearForm): Map<number, number> {
+  const sums = new Map<number, number>();
+  for (const [i, slot] of slots.entries()) sums.set(slot, (sums.get(slot) ?? 0) + factors[i]!);
+  for (const [slot, factor] of sums) if (factor === 0) sums.delete(slot);
+  return sums;
+}
+
+const FIRST_TWO_BODY = ROW_PARTS.indexOf('coulomb');
 
 /** Reads a slot's value for a descending quartet. */
 function reader(
