@@ -28,6 +28,7 @@ describe('figures are counted anew where the encoding stays', () => {
       false,
     ],
     ['another target, rows chosen by it', MIXED, ASK, FINER, false],
+    ['the same, hypercontracted', 'hypercontracted/separate/index/none/clean', ASK, FINER, false],
     ['a cap of qubits, rows chosen by the target', MIXED, ASK, { ...ASK, qubitsMax: 900 }, true],
     [
       'the same energy in another unit',
