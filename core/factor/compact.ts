@@ -1,14 +1,22 @@
 import { numAntisymmetricPairs, numSymmetricPairs } from '../integrals/integral-set';
+import type { JobContext } from '../job';
 import { antisymmetricPairs, symmetricEigen } from '../linalg';
 import { planeInto, sectorLayout } from './elements';
 import type { SquareFactors, TripleFactors } from './factors';
 import { lcuNorms, squareOneNorms, tripleOneNorms } from './one-norms';
 
-/** One row of a plane: its size and its coordinates over pairs, the size included. */
-interface PlaneRow {
-  readonly size: number;
-  readonly vector: Float64Array;
+/** Eigenvectors of a symmetric plane (v = u), or canonical pairs of an antisymmetric one. */
+interface PlaneRows {
+  readonly n: number;
+  readonly symmetric: boolean;
+  readonly sizes: Float64Array;
+  /** n numbers a row. */
+  readonly u: Float64Array;
+  readonly v: Float64Array;
 }
+
+/** Factors between two checkpoints: some 30 ms for 50 orbitals. */
+const AT_ONCE = 16;
 
 /** A block whose light rows can be taken out at any cut, decomposed once. */
 export interface Compactible<Block> {
@@ -35,22 +43,32 @@ export interface Compacted<Block> {
  * Triples: row j of a_t weighs (|sameScale| + |otherScale|)·s·2a_j·Λ_S, row i of S_t (…)·s·Λ_a·|ε_i|, the LCU one-norm
  * of what the triple loses without it.
  */
-export function compactibleTriples(block: TripleFactors): Compactible<TripleFactors> {
+export async function compactibleTriples(
+  block: TripleFactors,
+  ctx: JobContext,
+): Promise<Compactible<TripleFactors>> {
   const { n, count } = block;
   const [nanti, npair, half] = [numAntisymmetricPairs(n), numSymmetricPairs(n), n >> 1];
   const { a: normsA, s: normsS } = tripleOneNorms(block);
   const scale = Math.abs(block.sameScale) + Math.abs(block.otherScale);
   const weights = block.strengths.map((s) => scale * s);
-  const rows = Array.from({ length: count }, (_, t) => ({
-    a: antisymmetricRows(block.antisymmetric, t * nanti, n),
-    s: symmetricRows(block.symmetric, t * npair, n),
-  }));
+  const rows: { readonly a: PlaneRows; readonly s: PlaneRows }[] = [];
+  for (let t = 0; t < count; t++) {
+    if (t % AT_ONCE === 0) {
+      ctx.report('rows of the spin–orbit triples', t, count);
+      await ctx.checkpoint();
+    }
+    rows.push({
+      a: rowsOf(block.antisymmetric, t * nanti, n, false),
+      s: rowsOf(block.symmetric, t * npair, n, true),
+    });
+  }
   const at = (cut: number): Compacted<TripleFactors> => {
     let changed = 0;
     const kept = rows.flatMap((own, t) => {
-      const a = sumAbove(own.a, nanti, (size) => weights[t]! * 2 * size * normsS[t]! > cut);
-      const s = sumAbove(own.s, npair, (size) => weights[t]! * normsA[t]! * size > cut);
-      if (!a || !s || a.sizes.length < own.a.length || s.sizes.length < own.s.length) changed++;
+      const a = sumAbove(own.a, (size) => weights[t]! * 2 * size * normsS[t]! > cut);
+      const s = sumAbove(own.s, (size) => weights[t]! * normsA[t]! * size > cut);
+      if (!a || !s || a.sizes.length < own.a.sizes.length || s.sizes.length < own.s.sizes.length) changed++;
       return a && s ? [{ t, a, s }] : [];
     });
     const out = {
@@ -80,26 +98,34 @@ export function compactibleTriples(block: TripleFactors): Compactible<TripleFact
 }
 
 /** Squares of symmetric planes (spin–spin): row i of a plane weighs ½|w|Λ·|ε_i|. */
-export function compactibleSquares(block: SquareFactors): Compactible<SquareFactors> {
+export async function compactibleSquares(
+  block: SquareFactors,
+  ctx: JobContext,
+): Promise<Compactible<SquareFactors>> {
   const { n, count, dim } = block;
   const layout = sectorLayout(block.sector, block.planes, n);
   if (layout.slots.some(({ symmetric }) => !symmetric)) throw new RangeError('symmetric planes only');
   const norms = squareOneNorms(block);
-  const rows = Array.from({ length: count }, (_, t) =>
-    layout.slots.map((slot) => symmetricRows(block.vectors, t * dim + slot.offset, n)),
-  );
+  const rows: PlaneRows[][] = [];
+  for (let t = 0; t < count; t++) {
+    if (t % AT_ONCE === 0) {
+      ctx.report('rows of the spin–spin factors', t, count);
+      await ctx.checkpoint();
+    }
+    rows.push(layout.slots.map((slot) => rowsOf(block.vectors, t * dim + slot.offset, n, true)));
+  }
   const at = (cut: number): Compacted<SquareFactors> => {
     let [bound, constant, changed] = [0, 0, 0];
     const kept = rows.flatMap((planes, t) => {
       const heavy = (size: number) => 0.5 * Math.abs(block.weights[t]!) * norms[t]! * size > cut;
-      const sums = planes.map((own, i) => sumAbove(own, layout.slots[i]!.length, heavy));
+      const sums = planes.map((own) => sumAbove(own, heavy));
       // L² = L'² + {L', D} + D² with D lost, and 0 ≤ D² ≤ ‖D‖²: half of that as a constant.
       const left = sums.reduce((all, own) => all + (own ? own.length * oneNorm(own.sizes) : 0), 0);
       const lost = norms[t]! - left;
       const w = block.weights[t]!;
       bound += Math.abs(w) * (0.25 * lost * lost + left * lost);
       constant += 0.25 * w * lost * lost;
-      if (sums.some((own, i) => (own?.sizes.length ?? 0) < planes[i]!.length)) changed++;
+      if (sums.some((own, i) => (own?.sizes.length ?? 0) < planes[i]!.sizes.length)) changed++;
       return sums.some((own) => own !== null) ? [{ t, sums }] : [];
     });
     const out = {
@@ -135,45 +161,33 @@ export function compactibleSquares(block: SquareFactors): Compactible<SquareFact
   return { heaviest, at };
 }
 
-/** The rows that `keep` lets through as one vector; null where there are none. */
-function sumAbove(rows: readonly PlaneRow[], dim: number, keep: (size: number) => boolean) {
-  const kept = rows.filter(({ size }) => keep(Math.abs(size)));
+/** The rows that `keep` lets through as one vector over pairs; null where there are none. */
+function sumAbove({ n, symmetric, sizes, u, v }: PlaneRows, keep: (size: number) => boolean) {
+  const kept = [...sizes.keys()].filter((j) => keep(Math.abs(sizes[j]!)));
   if (kept.length === 0) return null;
-  const unit = new Float64Array(dim);
-  for (const { vector } of kept) for (let i = 0; i < dim; i++) unit[i]! += vector[i]!;
-  const length = Math.hypot(...unit);
-  for (let i = 0; i < dim; i++) unit[i]! /= length;
-  return { unit, length, sizes: kept.map(({ size }) => size / length) };
-}
-
-/** Canonical pairs, sizes descending. */
-function antisymmetricRows(vectors: Float64Array, from: number, n: number): PlaneRow[] {
-  const plane = new Float64Array(n * n);
-  planeInto(plane, 0, vectors, from, n, false);
-  const { count, a, u, v } = antisymmetricPairs(plane, n);
-  return Array.from({ length: count }, (_, j) => {
-    const vector = new Float64Array(numAntisymmetricPairs(n));
+  const unit = new Float64Array(symmetric ? numSymmetricPairs(n) : numAntisymmetricPairs(n));
+  for (const j of kept) {
     const [x, y] = [u.subarray(j * n, (j + 1) * n), v.subarray(j * n, (j + 1) * n)];
+    const scale = Math.SQRT2 * sizes[j]!;
     for (let p = 0, i = 0; p < n; p++) {
-      for (let q = 0; q < p; q++, i++) vector[i] = Math.SQRT2 * a[j]! * (x[p]! * y[q]! - y[p]! * x[q]!);
+      for (let q = 0; q < p; q++) unit[i++]! += scale * (x[p]! * y[q]! - (symmetric ? 0 : y[p]! * x[q]!));
+      if (symmetric) unit[i++]! += sizes[j]! * x[p]! * x[p]!;
     }
-    return { size: a[j]!, vector };
-  });
+  }
+  const length = Math.hypot(...unit);
+  for (let i = 0; i < unit.length; i++) unit[i]! /= length;
+  return { unit, length, sizes: kept.map((j) => sizes[j]! / length) };
 }
 
-function symmetricRows(vectors: Float64Array, from: number, n: number): PlaneRow[] {
+function rowsOf(vectors: Float64Array, from: number, n: number, symmetric: boolean): PlaneRows {
   const plane = new Float64Array(n * n);
-  planeInto(plane, 0, vectors, from, n, true);
-  const eigen = symmetricEigen(plane, n);
-  return Array.from(eigen.values, (size, j) => {
-    const vector = new Float64Array(numSymmetricPairs(n));
-    const x = eigen.vectors.subarray(j * n, (j + 1) * n);
-    for (let p = 0, i = 0; p < n; p++) {
-      for (let q = 0; q < p; q++) vector[i++] = Math.SQRT2 * size * x[p]! * x[q]!;
-      vector[i++] = size * x[p]! * x[p]!;
-    }
-    return { size, vector };
-  });
+  planeInto(plane, 0, vectors, from, n, symmetric);
+  if (symmetric) {
+    const { values, vectors: u } = symmetricEigen(plane, n);
+    return { n, symmetric, sizes: values, u, v: u };
+  }
+  const { a, u, v } = antisymmetricPairs(plane, n);
+  return { n, symmetric, sizes: a, u, v };
 }
 
 const sum = (values: Float64Array): number => values.reduce((all, x) => all + x, 0);

@@ -47,8 +47,10 @@ export async function lightParts(
   await ctx.checkpoint();
   const compactible = new Map<FactorBlock, Compactible<LightBlock>>();
   for (const block of blocks) {
-    compactible.set(block, block.kind === 'triples' ? compactibleTriples(block) : compactibleSquares(block));
-    await ctx.checkpoint();
+    compactible.set(
+      block,
+      await (block.kind === 'triples' ? compactibleTriples(block, ctx) : compactibleSquares(block, ctx)),
+    );
   }
   const all = await fold(blocks, n, occupations, ctx);
   return {
