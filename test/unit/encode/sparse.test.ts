@@ -1,6 +1,12 @@
+import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
 import { buildEncoding, parseVariant } from '../../../core/encode';
-import { fromStoredForm, type SpatialHamiltonian, tensorElement } from '../../../core/hamiltonian';
+import {
+  fromStoredForm,
+  type SpatialHamiltonian,
+  type SpinHamiltonian,
+  tensorElement,
+} from '../../../core/hamiltonian';
 import { inlineContext } from '../../../core/job';
 import { hermitianEigenvalues } from '../../../core/linalg';
 import { randomHamiltonian } from '../hamiltonian/random-hamiltonian';
@@ -168,9 +174,10 @@ describe('sparse form, joined', () => {
     ['spin–spin', { charge: false, spinOrbit: 'none', spinSpin: true }],
     ['all terms', { charge: true, spinOrbit: 'independent', spinSpin: true }],
   ] as const)('%s: λ is the one-norm over all Majorana products of H on Fock space', async (_, kinds) => {
-    for (const n of [2, 3]) {
+    // Four orbitals are needed for products over four different ones.
+    for (const n of [2, 3, 4]) {
       const h = randomHamiltonian(n, 50 + n, kinds);
-      const { lambda, constant, shape } = await encode(h, 0, 'joint');
+      const { lambda, constant, shape, rebuild } = await encode(h, 0, 'joint');
       const { norms, constant: identity } = majoranaCoefficients(h);
       expect(
         norms
@@ -181,6 +188,13 @@ describe('sparse form, joined', () => {
       expect(lambda.oneBody).toBeCloseTo(sum(norms.get(2)!), 9);
       expect(lambda.twoBody).toBeCloseTo(sum(norms.get(4)!), 9);
       expect(constant).toBeCloseTo(identity, 10);
+      if (n === 4) {
+        const sector = (g: SpinHamiltonian) => restrict(matrixOf(g), 3);
+        expect(operatorNorm(difference(sector(rebuild()), sector(h)))).toBeLessThan(1e-9);
+        const grouped = await encode(h, 1, '-');
+        const moved = operatorNorm(difference(sector(grouped.rebuild()), sector(h)));
+        expect(moved).toBeLessThanOrEqual(grouped.residual.oneNormBound + 1e-10);
+      }
       // A row stands for at least one product, and at most for eight.
       const products = norms.get(4)!.filter((x) => x > 1e-10).length;
       const twoBody = shape.rows - shape.oneBodyRows;
@@ -318,5 +332,41 @@ describe('sparse form', () => {
       expect(square).toBeGreaterThan(0.01);
       expect(residual.frobenius).toBeCloseTo(Math.sqrt(square / 4), 10);
     }
+  });
+
+  it('any parts, ratio and threshold: H within the bound, λ between the joined norm and that of all products', async () => {
+    await fc.assert(
+      fc.asyncProperty(
+        fc.record({
+          charge: fc.boolean(),
+          spinOrbit: fc.constantFrom('none' as const, 'multiple' as const, 'independent' as const),
+          spinSpin: fc.boolean(),
+        }),
+        fc.constantFrom(2, -0.7, 0),
+        fc.constantFrom(0, 0.3, 5),
+        fc.integer({ min: 0, max: 1000 }),
+        async (kinds, timesSame, threshold, seed) => {
+          const random = randomHamiltonian(2, seed, kinds);
+          const spinOrbit =
+            kinds.spinOrbit === 'multiple'
+              ? { ...random.g.spinOrbit!, other: { timesSame } }
+              : random.g.spinOrbit;
+          const h = fromStoredForm({ ...random, g: { ...random.g, spinOrbit } });
+          const exact = matrixOf(h);
+          const [grouped, joint] = await Promise.all([encode(h, threshold), encode(h, threshold, 'joint')]);
+          for (const { residual, rebuild } of [grouped, joint]) {
+            expect(residual.oneNormBound).toBeLessThanOrEqual(threshold);
+            const moved = operatorNorm(difference(matrixOf(rebuild()), exact));
+            expect(moved).toBeLessThanOrEqual(residual.oneNormBound + 1e-10);
+          }
+          const { oneBody, twoBody } = literalLambda(h);
+          expect(joint.lambda.total).toBeLessThanOrEqual(
+            grouped.lambda.total + grouped.residual.oneNormBound + 1e-10,
+          );
+          expect(grouped.lambda.total).toBeLessThanOrEqual(oneBody + twoBody + 1e-10);
+        },
+      ),
+      { numRuns: 40, seed: 7 },
+    );
   });
 });
