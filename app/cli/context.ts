@@ -25,15 +25,30 @@ export function workerContext(
     lastTime = now;
     onProgress({ stage, done, total });
   };
+  const checkpoint = async (): Promise<void> => {
+    if (asked && Atomics.load(asked, 0) !== 0) throw new Cancelled();
+  };
+  // A stage that counts steps of its own is not counted in pieces of a step.
+  let ownTotal: number | null = null;
   return {
     seed,
-    report,
-    async checkpoint() {
-      if (asked && Atomics.load(asked, 0) !== 0) throw new Cancelled();
+    report(stage, done, total) {
+      ownTotal = total;
+      report(stage, done, total);
     },
-    map: (task, inputs) =>
-      pool && inputs.length > 1
-        ? pool.map(task, inputs, (done) => report(lastStage, done, inputs.length))
-        : inlineContext(seed).map(task, inputs),
+    checkpoint,
+    async map(task, inputs) {
+      if (pool && inputs.length > 1) {
+        return pool.map(task, inputs, (done) => {
+          if (ownTotal === null || ownTotal === inputs.length) report(lastStage, done, inputs.length);
+        });
+      }
+      const outputs = [];
+      for (const input of inputs) {
+        await checkpoint();
+        outputs.push(await task.run(input, inlineContext(seed)));
+      }
+      return outputs;
+    },
   };
 }
