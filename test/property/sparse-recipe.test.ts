@@ -189,25 +189,31 @@ describe('numbers of the address', () => {
 });
 
 describe('sparse step', () => {
-  it('counts what is emitted for millions of coefficients of fifty orbitals', () => {
-    const { layout, blocks, recipe } = sparseStep(
-      {
-        orbitals: 50,
-        coefficients: 2_657_691,
-        spin: true,
-        spins: 'mixed',
-        secondComponent: false,
-        exchanged: false,
-        sharedPart: 8.3e-5,
-        otherShare: 2 / 3,
-      },
-      { keepBits: 23, phaseBits: 0 },
-      { mode: 'clean', block: 'auto', qubitCap: null },
-    );
-    const emitted = emit(layout, blocks);
-    const { toffoli, parts, t } = stepCost(recipe);
-    expect(emitted).toEqual({ toffoli: toffoli - parts.control, t, wires: peakOf(recipe).qubits });
-  });
+  it.each([
+    ['mixed', 8.3e-5],
+    ['fixed', 0],
+  ] as const)(
+    'counts what is emitted for millions of rows of fifty orbitals, spins %s',
+    (spins, sharedPart) => {
+      const { layout, blocks, recipe } = sparseStep(
+        {
+          orbitals: 50,
+          coefficients: 2_657_691,
+          spin: true,
+          spins,
+          secondComponent: false,
+          exchanged: false,
+          sharedPart,
+          otherShare: 2 / 3,
+        },
+        { keepBits: 23, phaseBits: 0 },
+        { mode: 'clean', block: 'auto', qubitCap: null },
+      );
+      const emitted = emit(layout, blocks);
+      const { toffoli, parts, t } = stepCost(recipe);
+      expect(emitted).toEqual({ toffoli: toffoli - parts.control, t, wires: peakOf(recipe).qubits });
+    },
+  );
 
   const common = {
     orbitals: fc.integer({ min: 2, max: 60 }),
