@@ -3,8 +3,9 @@ import { parseVariant } from '../../core/encode';
 import { inlineContext } from '../../core/job';
 import { runComparison } from '../../core/plan';
 import { countWalkStep } from '../../core/plan/circuit-count';
+import { targetOf, toleranceOf } from '../../core/plan/costing';
 import { Encodings } from '../../core/plan/encodings';
-import { hamiltonianOf } from '../../core/plan/system';
+import { hamiltonianOf, occupationsOf } from '../../core/plan/system';
 import { findSet, loadSet } from './data-set';
 
 const VARIANTS = [
@@ -17,6 +18,8 @@ const VARIANTS = [
   'spinor/separate/index/median/clean',
   'spinor/separate/index/none/plain',
   'spinor/separate/index/median/dirty',
+  'hypercontracted/separate/swap-layers/optimised/clean',
+  'hypercontracted/separate/index/none/dirty',
   'sparse/-/index/none/clean',
   'sparse/-/index/none/dirty',
   'sparse/joint/index/none/clean',
@@ -37,9 +40,9 @@ describe.each(['oh_sto3g', 'ch2o_sto3g_8o', 'ch2o_631g_20o'])('%s', (name) => {
         occupations: null,
         window: null,
         target: { value: 5, unit: 'cm-1', meaning: 'level' },
-        variants: VARIANTS.filter((v) => name !== 'ch2o_631g_20o' || /separate|sparse/.test(v)).map(
-          parseVariant,
-        ),
+        variants: VARIANTS.filter(
+          (v) => name !== 'ch2o_631g_20o' || /^(triplet|spinor).separate|^sparse/.test(v),
+        ).map(parseVariant),
         threshold: 0,
         bits: 'auto',
         overlaps: [1],
@@ -47,7 +50,9 @@ describe.each(['oh_sto3g', 'ch2o_sto3g_8o', 'ch2o_631g_20o'])('%s', (name) => {
       } as const;
       const { comparison } = await runComparison(set, request, context);
       expect(comparison.variants).toHaveLength(request.variants.length);
-      const encodings = new Encodings(hamiltonianOf(set, request), 0, null);
+      const tolerance = toleranceOf(targetOf(request));
+      const occupations = occupationsOf(set, request);
+      const encodings = new Encodings(hamiltonianOf(set, request), 0, occupations, tolerance);
       for (const estimate of comparison.variants) {
         const variant = parseVariant(estimate.name);
         const encoding = await encodings.of(variant, context);

@@ -30,6 +30,7 @@ describe('variant names', () => {
     expect(names('*/*/swap-layers/none/plain')).toEqual([
       'triplet/joint/swap-layers/none/plain',
       'triplet/separate/swap-layers/none/plain',
+      'hypercontracted/separate/swap-layers/none/plain',
     ]);
     expect(names('sparse/*/*/*/*')).toEqual(
       ['joint', '-'].flatMap((grouping) =>
@@ -60,7 +61,8 @@ describe('variant names', () => {
     ['sparse/-/swap-layers/none/clean', 'swap layers with the sparse form'],
     ['sparse/-/index/median/clean', 'acts on the eigenvalues of factors'],
     ['spinor/joint/swap-layers/none/clean', 'mix both spins'],
-    ['hypercontracted/joint/index/none/clean', 'does not make yet'],
+    ['hypercontracted/joint/index/none/clean', 'hypercontracted charge part'],
+    ['hypercontracted/separate/index/median/clean', 'hypercontracted charge part'],
     ['compressed/joint/index/none/clean', 'optimised together with their shifts'],
     ['compressed/separate/index/median/clean', 'optimised together with their shifts'],
   ])('%s is refused with the reason', (name, reason) => {
