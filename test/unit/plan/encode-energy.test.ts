@@ -39,7 +39,7 @@ describe('energy error of truncation', () => {
     const occupations = occupationsOf(radical, SYSTEM);
     const exact = await exactSpectrum(hamiltonian, { states: 4 }, ctx);
     for (const threshold of [1e-3, 1e-2]) {
-      const encodings = new Encodings(hamiltonian, threshold, occupations);
+      const encodings = new Encodings(hamiltonian, threshold, occupations, threshold);
       const encoding = await encodings.of(variant, ctx);
       const estimates = new EnergyEstimates(hamiltonian, occupations);
       const factorisation = await encodings.factorisationOf(variant, ctx);
