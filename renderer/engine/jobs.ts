@@ -89,13 +89,14 @@ async function prove(
 ): Promise<Jobs['prove']['output']> {
   const { set } = await integralsOf(source, context);
   throwFirstError(set.findings);
-  const { terms, electrons, occupations } = ask;
+  const { terms, electrons, occupations, frames } = ask;
   const evidence = await runVerification(
     set,
     {
       terms,
       electrons,
       occupations,
+      ...(frames ? { frames } : {}),
       variants: variants.map(parseVariant),
       threshold: thresholdOf(ask),
       states: STATES,

@@ -1,4 +1,4 @@
-import { type EncodingShape, parseVariant } from '../../core/encode';
+import { type EncodingShape, type FactorisationAxis, parseVariant } from '../../core/encode';
 import {
   costOverTargets,
   type EstimateInput,
@@ -9,6 +9,7 @@ import {
 } from '../../core/estimate';
 import { InputError } from '../../core/job';
 import type { VariantEstimate } from '../../core/plan/comparison';
+import { GIVEN_FRAMES, judgeOf } from '../../core/plan/frame';
 import { toHartree } from '../../core/units';
 import type { Ask } from '../engine/protocol';
 
@@ -53,13 +54,16 @@ export function onMachine(e: VariantEstimate, machine: SurfaceCodeAssumptions): 
   }
 }
 
+const THINNED: readonly FactorisationAxis[] = ['mixed', 'hypercontracted'];
+
 /**
  * True where figures reckoned for `then` can be counted anew for `now` from the sizes alone. A target of another size
  * changes how much is left out where that is left to the budget, and with it the encoding: always of the
- * spin-dependent parts of a mixed one.
+ * spin-dependent parts of a mixed or hypercontracted one.
  */
 export function canRecount(name: string, then: Ask, now: Ask): boolean {
-  const mixed = parseVariant(name).factorisation === 'mixed';
+  const variant = parseVariant(name);
+  const thinned = THINNED.includes(variant.factorisation);
   const same = (a: unknown, b: unknown) => JSON.stringify(a) === JSON.stringify(b);
   const encoding = (ask: Ask) => [
     ask.terms,
@@ -67,7 +71,8 @@ export function canRecount(name: string, then: Ask, now: Ask): boolean {
     ask.occupations,
     ask.threshold,
     ask.seed,
-    ask.threshold === 'auto' || mixed ? toHartree(ask.target.value, ask.target.unit) : null,
+    judgeOf(variant, ask.frames ?? GIVEN_FRAMES),
+    ask.threshold === 'auto' || thinned ? toHartree(ask.target.value, ask.target.unit) : null,
   ];
   return same(encoding(then), encoding(now));
 }

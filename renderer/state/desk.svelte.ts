@@ -39,6 +39,7 @@ export class Desk {
       occupations: null,
       target: { ...this.target.target, meaning: this.target.meaning },
       threshold: this.variants.threshold.value,
+      frames: this.variants.frames,
       bits: 'auto',
       overlaps: this.target.overlaps,
       qubitsMax: this.target.cap.value,

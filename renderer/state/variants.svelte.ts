@@ -2,6 +2,7 @@ import { type EncodingShape, parseVariant } from '../../core/encode';
 import type { SurfaceCodeAssumptions } from '../../core/estimate';
 import { Cancelled, type Problem } from '../../core/job';
 import type { Comparison, VariantEstimate } from '../../core/plan/comparison';
+import { type FrameChoice, type FrameRequest, GIVEN_FRAMES } from '../../core/plan/frame';
 import { parseEnergy, toHartree } from '../../core/units';
 import type { Engine } from '../engine/engine';
 import type { Ask, VariantNews } from '../engine/protocol';
@@ -40,6 +41,8 @@ export class VariantsState {
   names = $state.raw<readonly string[]>(USUAL);
   /** Sum of LCU norms that truncation may leave out, hartree; `auto`: the error budget's share. */
   readonly threshold = new Field<number | 'auto'>('0', parseThreshold);
+  /** Bases that are turned for a smaller λ where a form's λ depends on them. */
+  frames = $state.raw<FrameRequest>(GIVEN_FRAMES);
   #answers = $state.raw<ReadonlyMap<string, Answered>>(new Map());
   /** Name of the variant at work, or null. */
   running = $state<string | null>(null);
@@ -67,6 +70,10 @@ export class VariantsState {
 
   toggle(axis: Axis, value: string): void {
     this.names = toggled(this.names, axis, value);
+  }
+
+  turn(basis: keyof FrameRequest, choice: FrameChoice): void {
+    this.frames = { ...this.frames, [basis]: choice };
   }
 
   drop(name: string): void {

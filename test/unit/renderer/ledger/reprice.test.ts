@@ -17,6 +17,8 @@ const FINER: Ask = { ...ASK, target: { ...ASK.target, value: 1 } };
 const TRIPLET = 'triplet/separate/swap-layers/median/clean';
 const MIXED = 'mixed/separate/swap-layers/optimised/clean';
 
+const ORBITAL = { spin: 'given', orbital: 'optimised' } as const;
+
 describe('figures are counted anew where the encoding stays', () => {
   it.each([
     ['another target', TRIPLET, ASK, FINER, true],
@@ -38,6 +40,17 @@ describe('figures are counted anew where the encoding stays', () => {
       true,
     ],
     ['other terms', TRIPLET, ASK, { ...ASK, terms: ['sf'] }, false],
+    ['other orbitals', 'sparse/-/index/none/clean', ASK, { ...ASK, frames: ORBITAL }, false],
+    ['orbitals that only the sparse form turns', TRIPLET, ASK, { ...ASK, frames: ORBITAL }, true],
+    ['other spin axes', TRIPLET, ASK, { ...ASK, frames: { spin: 'optimised', orbital: 'given' } }, false],
+    [
+      'other spin axes, to which this form is blind',
+      'spinor/joint/index/median/clean',
+      ASK,
+      { ...ASK, frames: { spin: 'optimised', orbital: 'given' } },
+      true,
+    ],
+    ['frames named as they are', TRIPLET, ASK, { ...ASK, frames: { spin: 'given', orbital: 'given' } }, true],
   ] as const)('%s', (_, name, then, now, expected) => {
     expect(canRecount(name, then as Ask, now as Ask)).toBe(expected);
   });
