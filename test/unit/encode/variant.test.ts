@@ -39,8 +39,9 @@ describe('variant names', () => {
         ),
       ),
     );
-    // 3 look-ups × (triplet 2 groupings × 2 spins × 3 shifts, spinor half of that, 4 sparse, 4 compressed, 2 mixed).
-    expect(names('*/*/*/*/*')).toHaveLength(3 * (12 + 6 + 4 + 4 + 2));
+    // 3 look-ups × (triplet 2 groupings × 2 spins × 3 shifts, spinor half of that, 4 sparse, 4 compressed, 2 mixed,
+    // hypercontracted 2 spins × 2 shifts).
+    expect(names('*/*/*/*/*')).toHaveLength(3 * (12 + 6 + 4 + 4 + 2 + 4));
   });
 
   it('come once each, in the order of first mention', () => {
