@@ -22,6 +22,7 @@ const cases = fc.record({
   shifted: fc.boolean(),
   indefinite: fc.boolean(),
   occupied: fc.boolean(),
+  emphasis: fc.constantFrom(0, 0.5, 1),
 });
 
 async function example({
@@ -31,6 +32,7 @@ async function example({
   shifted,
   indefinite,
   occupied,
+  emphasis,
 }: typeof cases extends fc.Arbitrary<infer T> ? T : never) {
   const random = randomNumbers(seed);
   const electrons = n + 1;
@@ -41,9 +43,8 @@ async function example({
   );
   return {
     h,
-    occupations,
     point: randomPoint(n, count, shifted, random),
-    problem: await problemOf(h, occupations),
+    problem: await problemOf(h, occupations, emphasis),
   };
 }
 
@@ -53,6 +54,7 @@ describe('objective of the hypercontraction', () => {
       fc.asyncProperty(cases, async (given) => {
         const { n, count } = given;
         const { h, point, problem } = await example(given);
+        const { weights: w } = problem;
         const { vectors: u, zeta, shift } = point;
         const delta = (p: number, q: number) => (p === q ? 1 : 0);
         const direct = squareOverIndices(n, (p, q, r, s) => {
@@ -64,7 +66,7 @@ describe('objective of the hypercontraction', () => {
               x -= zeta[m * count + k]! * u[a + p]! * u[a + q]! * u[b + r]! * u[b + s]!;
             }
           }
-          return x;
+          return w[p]! * w[q]! * w[r]! * w[s]! * x;
         });
         expect(2 * squaredDifference(problem, point).value).toBeCloseTo(direct, 9);
       }),
@@ -103,10 +105,11 @@ describe('objective of the hypercontraction', () => {
     fc.assert(
       fc.asyncProperty(cases, async (given) => {
         const { n, count } = given;
-        const { h, occupations, point, problem } = await example(given);
+        const { h, point, problem } = await example(given);
         const block = { kind: 'hypercontracted', part: 'coulomb', n, ...point, count } as const;
-        const left = await fitResidual(h, block, occupations, inlineContext());
+        const left = await fitResidual(h, block, problem, inlineContext());
         const { total } = hypercontractedLambda(h, block, left);
+        expect(left.weighted ** 2).toBeCloseTo(2 * squaredDifference(problem, point).value, 9);
         expect(smoothOneNorm(problem, point, { zeta: 0, kappa: 0 }).value).toBeCloseTo(total, 9);
       }),
       { numRuns: 40 },

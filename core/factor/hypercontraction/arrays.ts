@@ -25,6 +25,14 @@ export function pairRows(vectors: Float64Array, count: number, n: number): Float
   return rows;
 }
 
+/** w_p w_q for each symmetric pair. */
+export function pairWeights(weights: Float64Array): Float64Array {
+  const n = weights.length;
+  const out = new Float64Array(numSymmetricPairs(n));
+  for (let p = 0, i = 0; p < n; p++) for (let q = 0; q <= p; q++) out[i++] = weights[p]! * weights[q]!;
+  return out;
+}
+
 export function dot(a: Float64Array, b: Float64Array): number {
   let sum = 0;
   for (let i = 0; i < a.length; i++) sum += a[i]! * b[i]!;

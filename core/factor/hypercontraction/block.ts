@@ -46,6 +46,8 @@ export interface Hypercontraction {
    */
   readonly foldedMeanField: TripletOperator;
   readonly foldedConstant: number;
+  /** The residual as the fit counted it, with the weights of `emphasis`: what `residualTarget` is about. Hartree. */
+  readonly weighted: number;
   readonly lambda: HypercontractedLambda;
   /** Steps of the minimiser taken. */
   readonly steps: number;
@@ -67,8 +69,14 @@ export interface HypercontractionOptions {
   /** Fits g + ξ ⊗ 1 + 1 ⊗ ξ with the best ξ. @defaultValue true */
   readonly shift?: boolean;
   /**
-   * Frobenius norm of the difference tensor over all indices that may remain, hartree, ≥ 1e-6 ‖g‖; a smaller one is
-   * raised to that. λ falls as it grows. @defaultValue 0.003 N
+   * How much less orbitals far from the Fermi level count in the residual that the fit minimises, 0…2: the weights are
+   * (1 + |ε − ε_F|/½ Eh)^−emphasis for each of the four indices. 0: all alike; more lowers λ at the same energy of low-lying
+   * states and leaves larger errors in high ones. @defaultValue 0.5
+   */
+  readonly emphasis?: number;
+  /**
+   * Frobenius norm of the weighted difference tensor over all indices that may remain, hartree, ≥ 1e-6 ‖g‖; a smaller one
+   * is raised to that. λ falls as it grows. @defaultValue 0.001 N
    */
   readonly residualTarget?: number;
   /** Occupations 0…2 of the reference over which the difference becomes a mean field. @defaultValue η/N each */

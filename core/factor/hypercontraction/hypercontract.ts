@@ -26,7 +26,7 @@ const LEAST_TARGET = 1e-6;
  *
  * @remarks Depends on no other block: spin-dependent parts of h are neither read nor changed. For 50 orbitals at M = 6N
  *   about 50 ms a step. Nothing is drawn at random: the same input gives the same result.
- * @throws InputError `no-charge-part`, `bad-rank`, `bad-residual-target`, `bad-occupations`, `bad-start`.
+ * @throws InputError `no-charge-part`, `bad-rank`, `bad-residual-target`, `bad-emphasis`, `bad-occupations`, `bad-start`.
  */
 export async function hypercontract(
   h: SpatialHamiltonian,
@@ -34,11 +34,11 @@ export async function hypercontract(
   ctx: JobContext,
 ): Promise<Hypercontraction> {
   const n = h.orbitals;
-  const { shift = true, residualTarget = 0.003 * n, start } = options;
+  const { shift = true, emphasis = 0.5, residualTarget = 0.001 * n, start } = options;
   const rank = checkedRank(options.rank ?? 'auto', n);
   const occupations = options.occupations ?? new Float64Array(n).fill(h.electrons / n);
-  check(h, occupations, residualTarget, start, shift);
-  const problem = await fitProblem(h, occupations, LEFT_OUT * residualTarget, ctx);
+  check(h, occupations, residualTarget, emphasis, start, shift);
+  const problem = await fitProblem(h, occupations, { emphasis, leftOut: LEFT_OUT * residualTarget }, ctx);
   const target = Math.max(residualTarget, LEAST_TARGET * Math.sqrt(problem.square));
   const first = start ?? (await startingPoint(problem, rank, shift, ctx));
   const found = await fitTensor(problem, first, target, options, ctx);
@@ -52,14 +52,20 @@ export async function hypercontract(
     zeta,
     shift: found.point.shift,
   };
-  const left = await fitResidual(h, block, occupations, ctx);
+  const left = await fitResidual(h, block, problem, ctx);
   const notes: string[] = [];
   if (!found.reached) {
     notes.push(
-      `the fit with ${count} vectors left ${left.residual.frobenius.toPrecision(2)} Eh instead of ${target.toPrecision(2)} Eh: more vectors or steps would help`,
+      `the fit with ${count} vectors left a residual of ${found.residual.toPrecision(2)} Eh instead of ${target.toPrecision(2)} Eh: more vectors or steps would help`,
     );
   }
-  return { block, ...left, lambda: hypercontractedLambda(h, block, left), steps: found.steps, notes };
+  return {
+    block,
+    ...left,
+    lambda: hypercontractedLambda(h, block, left),
+    steps: found.steps,
+    notes,
+  };
 }
 
 function checkedRank(rank: number | 'auto', n: number): number {
@@ -79,6 +85,7 @@ function check(
   h: SpatialHamiltonian,
   occupations: ArrayLike<number>,
   target: number,
+  emphasis: number,
   start: HypercontractionPoint | undefined,
   shift: boolean,
 ): void {
@@ -104,6 +111,9 @@ function check(
       'a number > 0 in hartree',
       'Give e.g. 0.05.',
     );
+  }
+  if (!(emphasis >= 0 && emphasis <= 2)) {
+    refuse('bad-emphasis', 'emphasis', `${emphasis}`, 'a number 0…2', 'Give 0 to count all orbitals alike.');
   }
   const list = Array.from(occupations);
   if (list.length !== n || !list.every((x) => x >= 0 && x <= 2)) {

@@ -1,6 +1,6 @@
 import { multiply } from '../../linalg';
-import { planeInto, traceOfPairs } from '../elements';
-import { addScaledTo, dot, pairRows, pairsOf, rowDots, rowSums, scaleColumns, scaleRows } from './arrays';
+import { planeInto } from '../elements';
+import { addScaledTo, dot, pairRows, pairsOf, rowDots, scaleColumns, scaleRows } from './arrays';
 import type { HypercontractionPoint } from './block';
 import type { FitProblem } from './problem';
 
@@ -26,28 +26,41 @@ export interface Slope {
  */
 export function squaredDifference(
   problem: FitProblem,
-  { count: m, vectors: u, zeta, shift }: HypercontractionPoint,
+  { count: m, vectors, zeta, shift }: HypercontractionPoint,
 ): Slope {
-  const { n, count: l, columns, signs } = problem;
+  const { n, weights, count: l, columns, signs } = problem;
   const npair = columns.length / l;
+  const u = scaleColumns(vectors, weights);
   const s = pairRows(u, m, n);
   const p = multiply(s, columns, m, npair, l, { transposeB: true });
   const signed = scaleColumns(p, signs);
   const c = multiply(signed, p, m, l, m, { transposeB: true });
   const overlap = multiply(u, u, m, n, m, { transposeB: true });
   const q = overlap.map((x) => x * x);
-  const xu = shift ? multiply(u, shift, m, n, n) : null;
-  if (xu) {
-    const a = rowDots(xu, u, m, n);
-    for (let i = 0; i < m; i++) for (let j = 0; j < m; j++) c[i * m + j]! += a[i]! + a[j]!;
+  const du = new Float64Array(m * n);
+  let square = problem.square;
+  let dx: Float64Array | null = null;
+  if (shift) {
+    const xi = weighted(shift, weights);
+    const xu = multiply(u, xi, m, n, n);
+    const wu = scaleColumns(
+      u,
+      weights.map((w) => w * w),
+    );
+    const [a, r] = [rowDots(xu, u, m, n), rowDots(wu, u, m, n)];
+    for (let i = 0; i < m; i++) for (let j = 0; j < m; j++) c[i * m + j]! += a[i]! * r[j]! + r[i]! * a[j]!;
+    const [za, zr] = [multiply(zeta, a, m, m, 1), multiply(zeta, r, m, m, 1)];
+    addScaledTo(du, scaleRows(xu, zr, n), -4);
+    addScaledTo(du, scaleRows(wu, za, n), -4);
+    const pairs = pairsOf(xi, n);
+    square += shiftSquare(problem, pairs);
+    dx = weighted(shiftSlope(problem, pairs, multiply(zr, s, 1, m, npair)), weights);
   }
   const zq = multiply(zeta, q, m, m, m);
   const zqz = multiply(zq, zeta, m, m, m);
-  let square = problem.square - 2 * dot(zeta, c) + dot(zqz, q);
-
+  square += dot(zqz, q) - 2 * dot(zeta, c);
   const dz = multiply(q, zq, m, m, m);
   addScaledTo(dz, c, -1);
-  const du = new Float64Array(m * n);
   const b = multiply(multiply(zeta, signed, m, m, l), columns, m, l, npair);
   const plane = new Float64Array(n * n);
   for (let i = 0; i < m; i++) {
@@ -56,28 +69,35 @@ export function squaredDifference(
   }
   for (let i = 0; i < m * m; i++) zqz[i]! *= 4 * overlap[i]!;
   addScaledTo(du, multiply(zqz, u, m, m, n), 1);
-  let dx: Float64Array | null = null;
-  if (shift && xu) {
-    const z = rowSums(zeta, m);
-    const xi = pairsOf(shift, n);
-    square += shiftSquare(problem, xi);
-    addScaledTo(du, scaleRows(xu, z, n), -4);
-    dx = shiftSlope(problem, xi, multiply(z, s, 1, m, npair));
-  }
-  return { value: 0.5 * Math.max(0, square), vectors: du, zeta: dz, shift: dx };
+  return { value: 0.5 * Math.max(0, square), vectors: scaleColumns(du, weights), zeta: dz, shift: dx };
 }
 
-/** ‖ξ dᵀ + d ξᵀ‖² + 2⟨G, ξ dᵀ + d ξᵀ⟩ = 4 ξ·Gd + 2(n ξ·ξ + (ξ·d)²). */
-function shiftSquare({ n, trace }: FitProblem, xi: Float64Array): number {
-  const tau = traceOfPairs(xi, 0, n);
-  return 4 * dot(xi, trace) + 2 * (n * dot(xi, xi) + tau * tau);
+/** W A W with W = diag(weights). */
+function weighted(a: Float64Array, weights: Float64Array): Float64Array {
+  return scaleRows(scaleColumns(a, weights), weights, weights.length);
 }
 
-/** 2(Gd + nξ + (ξ·d) d − Sᵀz) as an n×n matrix; `sum` = Sᵀz is overwritten. */
-function shiftSlope({ n, trace }: FitProblem, xi: Float64Array, sum: Float64Array): Float64Array {
-  const tau = traceOfPairs(xi, 0, n);
-  for (let i = 0; i < sum.length; i++) sum[i] = 2 * (trace[i]! + n * xi[i]! - sum[i]!);
-  for (let p = 0, i = 0; p < n; p++, i += p + 1) sum[i]! += 2 * tau;
+/** ξ·d: d = diag(w²) in pair coordinates. */
+function alongIdentity({ n, weights }: FitProblem, xi: Float64Array): number {
+  let sum = 0;
+  for (let p = 0, i = 0; p < n; p++, i += p + 1) sum += weights[p]! ** 2 * xi[i]!;
+  return sum;
+}
+
+const quartic = (weights: Float64Array) => weights.reduce((sum, w) => sum + w ** 4, 0);
+
+/** ‖ξ dᵀ + d ξᵀ‖² + 2⟨G, ξ dᵀ + d ξᵀ⟩ = 4 ξ·Gd + 2(d·d ξ·ξ + (ξ·d)²). */
+function shiftSquare(problem: FitProblem, xi: Float64Array): number {
+  const { trace, weights } = problem;
+  return 4 * dot(xi, trace) + 2 * (quartic(weights) * dot(xi, xi) + alongIdentity(problem, xi) ** 2);
+}
+
+/** 2(Gd + d·d ξ + (ξ·d) d − Sᵀζr) as an n×n matrix; `sum` = Sᵀζr is overwritten. */
+function shiftSlope(problem: FitProblem, xi: Float64Array, sum: Float64Array): Float64Array {
+  const { n, trace, weights } = problem;
+  const [square, along] = [quartic(weights), alongIdentity(problem, xi)];
+  for (let i = 0; i < sum.length; i++) sum[i] = 2 * (trace[i]! + square * xi[i]! - sum[i]!);
+  for (let p = 0, i = 0; p < n; p++, i += p + 1) sum[i]! += 2 * along * weights[p]! ** 2;
   const plane = new Float64Array(n * n);
   planeInto(plane, 0, sum, 0, n, true);
   return plane;

@@ -10,12 +10,15 @@ import {
 import { planeInto, traceOfPairs } from '../elements';
 import type { Residual } from '../factors';
 import { approximateCoulomb } from './approximation';
+import { pairWeights } from './arrays';
 import type { HypercontractedFactors } from './block';
 import { meanField } from './mean-field';
 
 /** What a fit leaves out of H, and what takes its place in the one-body part. */
 export interface FitResidual {
   readonly residual: Residual;
+  /** Frobenius norm of w_p w_q w_r w_s D_pqrs, hartree. */
+  readonly weighted: number;
   readonly foldedMeanField: TripletOperator;
   readonly foldedConstant: number;
 }
@@ -32,17 +35,22 @@ const AT_ONCE = 256;
 export async function fitResidual(
   h: SpatialHamiltonian,
   block: HypercontractedFactors,
-  occupations: ArrayLike<number>,
+  { occupations, weights }: { readonly occupations: ArrayLike<number>; readonly weights: Float64Array },
   ctx: JobContext,
 ): Promise<FitResidual> {
   const { n } = block;
   const npair = numSymmetricPairs(n);
   const d = coulombBlock(n, h.g);
   const approximate = approximateCoulomb(block);
+  const scale = pairWeights(weights);
   let square = 0;
-  for (let i = 0; i < d.length; i++) {
-    d[i]! -= approximate[i]!;
-    square += d[i]! * d[i]!;
+  let weighted = 0;
+  for (let i = 0, at = 0; i < npair; i++) {
+    for (let j = 0; j < npair; j++, at++) {
+      d[at]! -= approximate[at]!;
+      square += d[at]! ** 2;
+      weighted += (scale[i]! * scale[j]! * d[at]!) ** 2;
+    }
   }
   const { plane, constant } = meanField(d, n, occupations);
 
@@ -75,6 +83,7 @@ export async function fitResidual(
   foldedMeanField.planes.set(plane);
   return {
     residual: { frobenius: Math.sqrt(square), oneNormBound: bound, dropped: 0 },
+    weighted: Math.sqrt(weighted),
     foldedMeanField,
     foldedConstant: constant,
   };

@@ -2,7 +2,7 @@ import { numSymmetricPairs } from '../../integrals/integral-set';
 import type { JobContext } from '../../job';
 import { multiply, pivotedCholeskyAsync, symmetricEigen } from '../../linalg';
 import { planeInto } from '../elements';
-import { pairRows, pairsOf, scaleColumns } from './arrays';
+import { pairRows, pairsOf, pairWeights, scaleColumns } from './arrays';
 import type { HypercontractionPoint } from './block';
 import { smoothMedian } from './nuclear';
 import type { FitProblem } from './problem';
@@ -23,7 +23,8 @@ export async function startingPoint(
   shifted: boolean,
   ctx: JobContext,
 ): Promise<HypercontractionPoint> {
-  const { n, count, columns, signs } = problem;
+  const { n, count, signs } = problem;
+  const columns = plainColumns(problem);
   const npair = numSymmetricPairs(n);
   const plane = new Float64Array(n * n);
   const shift = shifted ? new Float64Array(n * n) : null;
@@ -69,12 +70,14 @@ export async function startingPoint(
 
 /** ζ = Q⁺ (S G′ Sᵀ) Q⁺ for given vectors, with the flat directions of Q left out. */
 export function leastSquaresZeta(
-  { n, count: l, columns, signs }: FitProblem,
+  problem: FitProblem,
   vectors: Float64Array,
   m: number,
   shift: Float64Array | null,
 ): Float64Array {
+  const { n, count: l, signs } = problem;
   const npair = numSymmetricPairs(n);
+  const columns = plainColumns(problem);
   const s = pairRows(vectors, m, n);
   const p = multiply(s, columns, m, npair, l, { transposeB: true });
   const signed = scaleColumns(p, signs);
@@ -100,4 +103,12 @@ export function leastSquaresZeta(
     }
   }
   return zeta;
+}
+
+/** The columns without the weights of the problem. */
+function plainColumns({ columns, weights }: FitProblem): Float64Array {
+  return scaleColumns(
+    columns,
+    pairWeights(weights).map((w) => 1 / w),
+  );
 }

@@ -65,8 +65,12 @@ export function randomHamiltonian(
 }
 
 /** The same as a problem with nothing left out. */
-export function problemOf(h: SpatialHamiltonian, occupations: ArrayLike<number>): Promise<FitProblem> {
-  return fitProblem(h, occupations, 0, inlineContext());
+export function problemOf(
+  h: SpatialHamiltonian,
+  occupations: ArrayLike<number>,
+  emphasis = 0,
+): Promise<FitProblem> {
+  return fitProblem(h, occupations, { emphasis, leftOut: 0 }, inlineContext());
 }
 
 /** (pq|rs) of a pairs triangle. */

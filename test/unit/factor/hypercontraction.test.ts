@@ -7,7 +7,7 @@ import {
   hypercontractedOneBody,
 } from '../../../core/factor';
 import { normalOrder, type SpatialHamiltonian } from '../../../core/hamiltonian';
-import { type InputError, inlineContext } from '../../../core/job';
+import { inlineContext } from '../../../core/job';
 import type { ComplexMatrix } from '../../../core/linalg';
 import { multiply } from '../../../core/linalg';
 import { oneBodyFockMatrix } from '../../../core/verify';
@@ -123,7 +123,11 @@ describe('hypercontraction in Fock space', () => {
       { rank: n, shift, occupations, residualTarget: 0.2, steps: 200 },
       context,
     );
-    const close = await hypercontract(h, { shift, occupations, residualTarget: 1e-5, steps: 3000 }, context);
+    const close = await hypercontract(
+      h,
+      { shift, emphasis: 0, occupations, residualTarget: 1e-5, steps: 3000 },
+      context,
+    );
     const bounds: number[] = [];
     for (const fit of [wide, close]) {
       const gap = difference(encoded(h, fit), matrixOf(h));
@@ -165,7 +169,7 @@ describe('hypercontract', () => {
 
   it('keeps to the residual target with unit vectors and a symmetric ζ, and lowers λ by the shift', async () => {
     const [plain, shifted] = await Promise.all(
-      [false, true].map((shift) => hypercontract(h, { shift, residualTarget }, context)),
+      [false, true].map((shift) => hypercontract(h, { shift, emphasis: 0, residualTarget }, context)),
     );
     for (const { block, residual, notes } of [plain!, shifted!]) {
       expect(notes).toEqual([]);
@@ -178,6 +182,16 @@ describe('hypercontract', () => {
     }
     expect(plain!.block.shift).toBeNull();
     expect(shifted!.lambda.total).toBeLessThan(plain!.lambda.total);
+  });
+
+  it('lowers λ by looking at the orbitals near the Fermi level', async () => {
+    const [even, near] = await Promise.all(
+      [0, 1].map((emphasis) => hypercontract(h, { emphasis, residualTarget }, context)),
+    );
+    expect(even!.weighted).toBeCloseTo(even!.residual.frobenius, 12);
+    expect(near!.weighted).toBeLessThanOrEqual(1.02 * residualTarget);
+    expect(near!.residual.frobenius).toBeGreaterThan(residualTarget);
+    expect(near!.lambda.total).toBeLessThan(even!.lambda.total);
   });
 
   it('tells of better points, of falling λ, and goes on from one', async () => {
@@ -217,6 +231,7 @@ describe('hypercontract', () => {
     ['bad-rank', { rank: 11 }],
     ['bad-rank', { rank: 2.5 }],
     ['bad-residual-target', { residualTarget: 0 }],
+    ['bad-emphasis', { emphasis: -1 }],
     ['bad-occupations', { occupations: [2, 2, 3, 0] }],
     [
       'bad-start',
