@@ -32,7 +32,7 @@ describe.each(['f_sto3g_2p', 'c_631g_2p', 'br_def2svp_4p'])('%s with all terms',
     const variant = parseVariant(`${form}/index/${shift}/clean`);
     const { grouping } = variant;
     const f =
-      variant.factorisation === 'sparse'
+      variant.factorisation === 'sparse' || grouping === '-'
         ? null
         : await factorise(h, { grouping, threshold, occupations: HALF }, ctx);
     return buildEncoding(h, f, variant, { threshold }, ctx);

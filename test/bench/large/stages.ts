@@ -29,7 +29,7 @@ const REMAINDER = 8e-8;
 export async function runStages(folder: string, workers: number): Promise<StageTimes> {
   // Starting threads is to us what importing libraries is to the baseline: neither is timed.
   const pool = workers > 1 ? new TaskPool(workers, new URL('./worker.js', import.meta.url), 1) : null;
-  const context = workerContext(1, pool, () => {});
+  const context = workerContext(1, pool, null, () => {});
   let last = performance.now();
   const lap = (): number => {
     const now = performance.now();

@@ -54,7 +54,7 @@ describe.each(Object.entries(HAMILTONIANS))('spin-dependent parts without light 
       const { shape } = await buildEncoding(h, factorisation, PLAIN, {}, ctx);
       return shape.rows;
     };
-    const rows = [];
+    const rows: number[] = [];
     for (const share of [0, 0.1, 0.3, 1]) rows.push(await rowsAt(share * parts.heaviest));
     expect(rows.every((own, i) => i === 0 || own < rows[i - 1]!)).toBe(true);
   });

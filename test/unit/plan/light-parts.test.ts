@@ -41,7 +41,7 @@ describe('spin-dependent parts thinned by what they mean for low states', () => 
   });
 
   it('formaldehyde: fewer rows the more may change, all of them where nothing may', async () => {
-    const rows = [];
+    const rows: number[] = [];
     for (const tolerance of [0, 0.01, 0.2, 50]) {
       const { found } = await encodings('ch2o_sto3g_8o', tolerance);
       rows.push((await found.of(MIXED, ctx)).shape.rows);
