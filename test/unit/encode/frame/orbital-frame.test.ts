@@ -1,7 +1,9 @@
 import fc from 'fast-check';
 import { describe, expect, it } from 'vitest';
+import { buildEncoding, parseVariant } from '../../../../core/encode';
 import { majoranaNorm, selfRepulsion, spinFreePart } from '../../../../core/encode/frame/majorana-norm';
 import { orbitalFrame } from '../../../../core/encode/frame/orbital';
+import { factorise } from '../../../../core/factor';
 import { rotateOrbitals, tensorElement } from '../../../../core/hamiltonian';
 import { Cancelled, inlineContext } from '../../../../core/job';
 import { antisymmetricExponential, multiply } from '../../../../core/linalg';
@@ -157,5 +159,21 @@ describe('orbital frame', () => {
   it('is not to be had without a charge part', async () => {
     const hamiltonian = spinFree(3, 1);
     expect(await orbitalFrame({ ...hamiltonian, g: { ...hamiltonian.g, charge: null } }, {}, ctx)).toBeNull();
+  });
+});
+
+describe('turned orbitals', () => {
+  it.each(['none', 'median'])('leave λ of joint triplet and spinor factors, %s shift', async (shift) => {
+    const n = 3;
+    const hamiltonian = randomHamiltonian(n, 41);
+    const turned = await rotateOrbitals(hamiltonian, antisymmetricExponential(antisymmetric(n, 9), n), ctx);
+    for (const form of ['triplet', 'spinor']) {
+      const variant = parseVariant(`${form}/joint/index/${shift}/clean`);
+      const lambda = async (h: typeof hamiltonian) =>
+        (await buildEncoding(h, await factorise(h, { grouping: 'joint' }, ctx), variant, {}, ctx)).lambda
+          .total;
+      const [before, after] = [await lambda(hamiltonian), await lambda(turned)];
+      expect(Math.abs(after / before - 1)).toBeLessThan(1e-10);
+    }
   });
 });
