@@ -33,7 +33,7 @@ export const DEFAULT_VARIANTS: readonly VariantName[] = [
   'triplet/separate/swap-layers/median/clean',
   'triplet/separate/swap-layers/none/clean',
   'spinor/separate/index/median/clean',
-  'sparse/-/index/none/clean',
+  'sparse/-/index/optimised/clean',
   // Last: it takes longest.
   'mixed/separate/swap-layers/optimised/clean',
 ].map((text) => parseVariant(text));

@@ -212,7 +212,7 @@ describe('the window in a browser', () => {
     await waitForFact(page, 'Proof', /hold/);
     const main = await page.getByRole('main').textContent();
     expect(main).toMatch(/[1-9]\d* hold, 0 fail/);
-    expect(main).toContain('sparse/-/index/none/clean');
+    expect(main).toContain('sparse/-/index/optimised/clean');
   });
 
   it('shows a broken file in four parts and reads the next one', async () => {

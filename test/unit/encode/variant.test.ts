@@ -17,7 +17,7 @@ describe('variant names', () => {
       'triplet/separate/swap-layers/median/clean',
       'triplet/separate/swap-layers/none/clean',
       'spinor/separate/index/median/clean',
-      'sparse/-/index/none/clean',
+      'sparse/-/index/optimised/clean',
       'mixed/separate/swap-layers/optimised/clean',
     ]);
   });

@@ -293,7 +293,7 @@ describe('keys in the ledger', () => {
     const d = await loaded();
     await d.reckon();
     d.goTo('ledger');
-    d.ledger.focusOn('step', 'sparse/-/index/none/clean');
+    d.ledger.focusOn('step', 'sparse/-/index/optimised/clean');
     const text = d.reckoning.map((line) => line.map((p) => p.text).join('')).join('\n');
     expect(text).toContain('Toffoli a step 19\u202f154');
     expect(text).toContain('look-up 9\u202f574 + prepare 3\u202f720 + rotations 5\u202f712');
