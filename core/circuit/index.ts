@@ -56,9 +56,10 @@ export {
   spinorWires,
   withSpinorItem,
 } from './spinor/walk';
+export type { ItemFacts } from './squares/item-data';
 export { roundedVector } from './squares/rounded-vector';
 export type { StepBits } from './squares/step';
-export type { WeightTables } from './squares/tables';
+export { drawing, type WeightTables } from './squares/tables';
 export {
   outerBorrows,
   outerPrepare,
@@ -76,6 +77,7 @@ export { encodedProgram, type TripletBits, type TripletTables, tripletTables } f
 export {
   ancillaWires,
   blockEncoding as tripletBlockEncoding,
+  tripletFacts,
   type WalkBlocks,
   walkStep,
   walkWires,

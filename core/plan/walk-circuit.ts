@@ -2,6 +2,7 @@ import {
   type Blocks,
   bitsFor,
   hadamards,
+  type ItemFacts,
   type LookupPolicy,
   type Machine,
   type Operation,
@@ -29,6 +30,7 @@ import {
   spinorWires,
   type TripletTables,
   tripletBlockEncoding,
+  tripletFacts,
   tripletStep,
   tripletTables,
   type WalkBlocks,
@@ -103,6 +105,7 @@ export function walkCircuit(
 function tripletWalk(tables: TripletTables, spin: VariantName['spin'], blocks: WalkBlocks): WalkCircuit {
   return squaresWalk({
     weights: tables,
+    facts: tripletFacts(tables),
     hasPaired: tables.hasPaired,
     blocks,
     open(machine) {
@@ -135,6 +138,7 @@ function spinorWalk(tables: SpinorTables, blocks: SpinorBlocks): WalkCircuit {
 /** A form of encoding by squares, on wires of its own. */
 interface SquaresEmitter {
   readonly weights: WeightTables;
+  readonly facts?: ItemFacts;
   readonly hasPaired: boolean;
   readonly blocks: SquaresBlocks;
   open(machine: Machine): {
@@ -144,13 +148,14 @@ interface SquaresEmitter {
   };
 }
 
-function squaresWalk({ weights, hasPaired, blocks, open }: SquaresEmitter): WalkCircuit {
+function squaresWalk({ hasPaired, open, ...prepared }: SquaresEmitter): WalkCircuit {
+  const { weights, blocks } = prepared;
   return {
     emit(part, machine, { control, withGradient }) {
       if (part === 'prepare') {
-        const lent = machine.allocateRegister(outerScratch({ weights, blocks }), 'alternate and keep');
+        const lent = machine.allocateRegister(outerScratch(prepared), 'alternate and keep');
         const idle = machine.allocateRegister(outerBorrows(blocks), 'borrowed');
-        outerPrepare({ weights, blocks }, prepareWires(weights, hasPaired, machine), lent, idle).run(machine);
+        outerPrepare(prepared, prepareWires(weights, hasPaired, machine), lent, idle).run(machine);
         return;
       }
       const { gradient, step, blockEncoding } = open(machine);

@@ -1,4 +1,4 @@
-import type { WeightTables } from '../circuit';
+import { drawing, type WeightTables } from '../circuit';
 
 /** Wires of the outer index: they only steer. */
 interface OuterWires {
@@ -44,8 +44,14 @@ export function squaresBranches(
     squareSteers,
     steering(wires, branch) {
       const { entry, square } = branches[branch]!;
+      // Where entries have places, alias sampling brings their data: by an index and a uniform number that draw them.
+      const drawn = places ? drawing(outer, entry)! : { index: entry, uniform: 0 };
       const index = [...wires.item, ...(wires.face === null ? [] : [wires.face])];
-      return [...index.filter((_, i) => (entry >> i) & 1), ...(square === 1 ? [wires.square!] : [])];
+      return [
+        ...index.filter((_, i) => (drawn.index >> i) & 1),
+        ...wires.outerUniform.filter((_, i) => Math.floor(drawn.uniform / 2 ** i) % 2 === 1),
+        ...(square === 1 ? [wires.square!] : []),
+      ];
     },
     projected(wires, ancillas) {
       const square = squareSteers ? wires.square : null;

@@ -102,16 +102,22 @@ export interface AliasSource {
   readonly keep: (address: number) => number;
 }
 
-/** Toffoli of preparing by alias sampling and of taking it back. */
+/**
+ * Toffoli of preparing by alias sampling and of taking it back.
+ *
+ * @param exchanged - bits that change places: the index, or the data of an entry
+ * @param width - bits of the table
+ */
 export function aliasSamplingToffoli(
   tableBlocks: { readonly read: number; readonly erase: number },
-  indexBits: number,
+  exchanged: number,
   keepBits: number,
   blocks: Blocks,
+  width = exchanged + keepBits,
 ): { prepare: number; unprepare: number } {
   return {
-    prepare: readToffoli(tableBlocks.read, indexBits + keepBits, blocks) + keepBits + indexBits,
-    unprepare: erasureToffoli(tableBlocks.erase, blocks.erase) + indexBits,
+    prepare: readToffoli(tableBlocks.read, width, blocks) + keepBits + exchanged,
+    unprepare: erasureToffoli(tableBlocks.erase, blocks.erase) + exchanged,
   };
 }
 
@@ -135,8 +141,52 @@ export function aliasSampling(
     bit: (address: number, b: number) =>
       b < n ? ((source.alternate(address) >>> b) & 1) === 1 : ((source.keep(address) >>> (b - n)) & 1) === 1,
   };
-  const alternate = wires.output.slice(0, n);
-  const keep = wires.output.slice(n, n + keepBits);
+  return sequence(
+    hadamards(wires.uniform),
+    readTable(source.address, wires.output, table, blocks, wires.idle),
+    keptOrExchanged(wires, wires.output.slice(n, n + keepBits), index, wires.output.slice(0, n)),
+  );
+}
+
+/** What alias sampling of data reads: of every address its own data, that of its alternate, and the keep value. */
+export interface AliasDataSource extends AliasSource {
+  /** Bits of the data of an entry. */
+  readonly dataBits: number;
+  readonly data: (address: number, bit: number) => boolean;
+}
+
+/**
+ * Alias sampling that leaves the address as it is and brings the data of the entry drawn into the first `dataBits`
+ * output wires: where the uniform number is not below the keep value, the data of the alternate.
+ *
+ * @param wires - the uniform number in the state that steers; 2·dataBits + ℵ output wires for one row.
+ */
+export function aliasData(wires: AliasWires, source: AliasDataSource, blocks: Blocks): Operation {
+  const { dataBits: d, data, alternate, keep } = source;
+  const keepBits = wires.uniform.length;
+  const table = {
+    addresses: source.addresses,
+    width: 2 * d + keepBits,
+    bit(address: number, b: number) {
+      if (b < d) return data(address, b);
+      return b < 2 * d ? data(alternate(address), b - d) : ((keep(address) >>> (b - 2 * d)) & 1) === 1;
+    },
+  };
+  const { output } = wires;
+  return sequence(
+    readTable(source.address, output, table, blocks, wires.idle),
+    keptOrExchanged(wires, output.slice(2 * d, 2 * d + keepBits), output.slice(0, d), output.slice(d, 2 * d)),
+  );
+}
+
+/** Exchanges `own` with `other` where the uniform number is not below the keep value. */
+function keptOrExchanged(
+  wires: Pick<AliasWires, 'uniform' | 'carries'>,
+  keep: readonly number[],
+  own: readonly number[],
+  other: readonly number[],
+): Operation {
+  const keepBits = keep.length;
   // uniform < keep is the last carry of keep + (2^ℵ − 1 − uniform).
   const compare = sequence(
     repeat(keepBits, (i) => gate('X', wires.uniform[i]!)),
@@ -147,18 +197,13 @@ export function aliasSampling(
   const stays = wires.carries[keepBits - 1]!;
   const exchange = sequence(
     gate('X', stays),
-    repeat(n, (i) => {
+    repeat(own.length, (i) => {
       const swap: Operation = {
-        run: (m) => controlledSwap(m, stays, index[i]!, alternate[i]!),
-        runAdjoint: (m) => controlledSwap(m, stays, index[i]!, alternate[i]!),
+        run: (m) => controlledSwap(m, stays, own[i]!, other[i]!),
+        runAdjoint: (m) => controlledSwap(m, stays, own[i]!, other[i]!),
       };
       return swap;
     }),
   );
-  return sequence(
-    hadamards(wires.uniform),
-    readTable(source.address, wires.output, table, blocks, wires.idle),
-    compare,
-    exchange,
-  );
+  return sequence(compare, exchange);
 }

@@ -8,9 +8,9 @@ import {
   type SquaresWires,
   squaresAncillas,
   squaresBlockEncoding,
-  squaresItem,
   squaresWalkStep,
   squaresWires,
+  steeredItem,
 } from '../squares/walk';
 import type { ItemFlag } from './layout';
 import { type ProductBlocks, product } from './product';
@@ -124,7 +124,7 @@ export function spinorWalkStep(
   return squaresWalkStep(spinorForm(tables, wires, blocks), wires, control);
 }
 
-/** Loads what depends on the item alone, applies the item, and takes the data back. */
+/** See {@link steeredItem}. */
 export function withSpinorItem(tables: SpinorTables, wires: SpinorWires, blocks: SpinorBlocks): Operation {
-  return squaresItem(spinorForm(tables, wires, blocks), wires);
+  return steeredItem(spinorForm(tables, wires, blocks), wires);
 }

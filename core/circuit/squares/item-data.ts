@@ -75,7 +75,10 @@ export function itemDataWires(indexing: Indexing, flags: number, wires: readonly
   };
 }
 
-/** The table of item data, by item, or by entry of the outer index where entries say where their rows stand. */
+/**
+ * The table of item data, by item, or by entry of the outer index where entries say where their rows stand. What stands
+ * at an outer index that is no entry is never used.
+ */
 export function itemDataTable(facts: ItemFacts): Table {
   const { weights } = facts;
   const { rowBits, sizeBits, itemCount, bases, places, products, hasFaces, firstEntry } = weights;
@@ -125,9 +128,11 @@ export function itemDataTable(facts: ItemFacts): Table {
     bit: (entry, b) => {
       if (kept.entry !== entry) {
         const { firstProduct } = places;
-        kept = { entry, word: entry < firstProduct ? itemWord(entry) : productWord(entry - firstProduct) };
+        const isItem = entry < firstProduct;
+        const isEntry = entry < places.entries;
+        kept = { entry, word: isItem ? itemWord(entry) : isEntry ? productWord(entry - firstProduct) : [] };
       }
-      return kept.word[b]!;
+      return kept.word[b] ?? false;
     },
   };
 }

@@ -14,6 +14,7 @@ export interface SquaresLayout extends Indexing {
   /** Whether all entries put the same number of row bits in superposition. */
   readonly equalSizes: boolean;
   readonly outerAddresses: Uint32Array;
+  /** Empty where the outer PREPARE reads the data of an entry. */
   readonly itemAddresses: Uint32Array;
   readonly innerAddresses: Uint32Array;
   readonly rowAddresses: Uint32Array;
@@ -33,7 +34,7 @@ export function squaresLayout(sizes: SquaresSizes): SquaresLayout {
     hasPaired,
     equalSizes: !places && sizeBits.every((b) => b === rowBits),
     outerAddresses: firstAddresses(2 ** indexing.outerBits),
-    itemAddresses: firstAddresses(places ? places.entries : rows.length),
+    itemAddresses: firstAddresses(places ? 0 : rows.length),
     innerAddresses: merged(
       merged(raggedAddresses(buckets, bases), library),
       second.map((address) => address + faceOffset),

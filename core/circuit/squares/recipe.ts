@@ -94,12 +94,20 @@ export function idleQubits(
 
 /** Tables that PREPARE reads. */
 export function squaresTables(layout: SquaresLayout, bits: KeepBits, flags: number) {
-  const { itemBits, outerBits, rowBits, blockBits } = layout;
+  const { itemBits, outerBits, rowBits, blockBits, places } = layout;
+  const data = itemDataWidth(layout, flags);
+  /** Bits that alias sampling exchanges, and what it reads for that beside the keep value. */
+  const [exchanged, read] = places ? [data, 2 * data] : [outerBits, outerBits];
   return {
-    outer: { addresses: layout.outerAddresses, width: outerBits + bits.keep, limit: 2 ** outerBits },
+    outer: {
+      addresses: layout.outerAddresses,
+      width: read + bits.keep,
+      limit: 2 ** outerBits,
+      exchanged,
+    },
     items: {
       addresses: layout.itemAddresses,
-      width: itemDataWidth(layout, flags),
+      width: data,
       limit: 2 ** itemBits,
     },
     inner: { addresses: layout.innerAddresses, width: rowBits + bits.innerKeep, limit: 2 ** blockBits },
@@ -114,24 +122,27 @@ function blockEncodingRecipe(
 ): Subroutine {
   const { outer, items } = squaresTables(layout, bits, form.flags);
   const { registers, children } = form.aroundItem;
+  const applied = {
+    name: 'square of the item, or the one-body part',
+    ...(registers ? { registers } : {}),
+    children: [...(children ?? []), ...usesRecipe(form, layout, bits, blocks)],
+  };
   return {
     name: 'block encoding',
     registers: samplingRegisters('outer', outer.width, bits.keep, blocks.outer),
     children: [
-      ...samplingLeaves('outer PREPARE', outer, layout.outerBits, bits.keep, blocks.outer, 0),
-      {
-        name: 'item',
-        registers: [{ name: 'item data', qubits: outputWires(items.width, blocks.items) }],
-        children: [
-          loadLeaf('item data', 'prepare', items, blocks.items),
-          {
-            name: 'square of the item, or the one-body part',
-            ...(registers ? { registers } : {}),
-            children: [...(children ?? []), ...usesRecipe(form, layout, bits, blocks)],
+      ...samplingLeaves('outer PREPARE', outer, outer.exchanged, bits.keep, blocks.outer, 0),
+      layout.places
+        ? applied
+        : {
+            name: 'item',
+            registers: [{ name: 'item data', qubits: outputWires(items.width, blocks.items) }],
+            children: [
+              loadLeaf('item data', 'prepare', items, blocks.items),
+              applied,
+              eraseLeaf('item data, undone', 'prepare', items.addresses, blocks.items.erase),
+            ],
           },
-          eraseLeaf('item data, undone', 'prepare', items.addresses, blocks.items.erase),
-        ],
-      },
     ],
   };
 }
@@ -145,14 +156,14 @@ const samplingRegisters = (which: string, width: number, keepBits: number, block
 function samplingLeaves(
   name: string,
   table: TableSizes,
-  index: number,
+  exchanged: number,
   keepBits: number,
   blocks: Blocks,
   t: number,
 ): Subroutine[] {
   const counts = blockCounts(table.addresses, blocks);
   const reading = readingText(table.width, blocks);
-  const { prepare, unprepare } = aliasSamplingToffoli(counts, index, keepBits, blocks);
+  const { prepare, unprepare } = aliasSamplingToffoli(counts, exchanged, keepBits, blocks, table.width);
   return [
     leaf({
       name,
@@ -160,7 +171,7 @@ function samplingLeaves(
       toffoli: prepare,
       t,
       formula: `${reading.formula}; + keep + n: comparison, exchange`,
-      inputs: { B: counts.read, ...reading.inputs, keep: keepBits, n: index },
+      inputs: { B: counts.read, ...reading.inputs, keep: keepBits, n: exchanged },
       source: `${BABBUSH}; ${reading.source}`,
       scratch: readWires(table.addresses, blocks),
     }),
@@ -170,7 +181,7 @@ function samplingLeaves(
       toffoli: unprepare,
       t,
       formula: 'B − 2 + (k − 1 − log₂k) + n: erasure, exchange; the comparison is taken back by measurement',
-      inputs: { B: counts.erase, k: blocks.erase, n: index },
+      inputs: { B: counts.erase, k: blocks.erase, n: exchanged },
       source: `${BABBUSH}; ${BERRY}`,
       scratch: erasureWires(table.addresses, blocks.erase),
     }),

@@ -89,6 +89,19 @@ export function weightTables(
   };
 }
 
+/**
+ * A value of the outer index and of its uniform number with which alias sampling draws an entry; null where it never
+ * does.
+ */
+export function drawing(
+  { keep, alternate }: Pick<AliasTable, 'keep' | 'alternate'>,
+  entry: number,
+): { readonly index: number; readonly uniform: number } | null {
+  if (keep[entry]! > 0) return { index: entry, uniform: 0 };
+  const index = alternate.indexOf(entry);
+  return index < 0 ? null : { index, uniform: keep[index]! };
+}
+
 /** λ of an item's face as the outer table holds it, hartree. */
 export function encodedLambda(tables: WeightTables, t: number, face: number): number {
   return tables.lambda * tables.outer.probabilities[tables.firstEntry[t]! + face * tables.nextFace]!;

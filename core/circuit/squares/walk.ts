@@ -1,12 +1,12 @@
 import type { Machine } from '../gates/machine';
 import { gate, nothing, type Operation, repeat, scratch, sequence, span, within } from '../gates/operation';
-import { aliasSampling } from '../primitives/alias-sampling';
+import { aliasData, aliasSampling } from '../primitives/alias-sampling';
 import { borrowedWires } from '../primitives/borrowed-look-up';
 import { type Blocks, controlledSwap } from '../primitives/look-up';
 import { outputWires, readTable } from '../primitives/reading';
 import { controlledHadamard, flipZeros, hadamards } from '../primitives/reflection';
 import { firstAddresses } from '../primitives/unary-iteration';
-import { type ItemDataWires, type ItemFacts, itemDataTable, itemDataWires } from './item-data';
+import { type ItemDataWires, type ItemFacts, itemDataTable, itemDataWidth, itemDataWires } from './item-data';
 import type { WeightTables } from './tables';
 
 /** Blocks of the tables that PREPARE reads. */
@@ -119,20 +119,31 @@ export function idleWires(
  * inside SELECT. Everything allocated inside returns to |0⟩.
  */
 export function squaresBlockEncoding(form: SquaresForm, wires: SquaresWires): Operation {
-  return scratch(outerScratch(form), (lent) =>
+  const prepared = { ...form, facts: form };
+  return scratch(outerScratch(prepared), (lent) =>
     within(
-      outerPrepare(form, wires, lent, idleWires(form.system, wires, [...wires.item, wires.face])),
-      squaresItem(form, wires),
+      outerPrepare(prepared, wires, lent, idleWires(form.system, wires, [...wires.item, wires.face])),
+      squaresItem(form, wires, lent),
     ),
   );
 }
 
-type Prepared = Pick<SquaresForm, 'weights' | 'blocks'>;
+/** What the outer PREPARE depends on; `facts` only where it reads the data of entries. */
+type Prepared = Pick<SquaresForm, 'weights' | 'blocks'> & { readonly facts?: ItemFacts };
+
+function factsOf({ facts }: Prepared): ItemFacts {
+  if (!facts) throw new RangeError('entries with places are prepared together with their data');
+  return facts;
+}
 
 /** Wires that the outer PREPARE leaves in use: alternate and keep value, and the carries of their comparison. */
-export function outerScratch({ weights, blocks }: Prepared): number {
+export function outerScratch(prepared: Prepared): number {
+  const { weights, blocks } = prepared;
   const { keep } = weights.keepBits;
-  return outputWires(weights.outer.indexBits + keep, blocks.outer) + keep;
+  const read = weights.places
+    ? 2 * itemDataWidth(weights, factsOf(prepared).flags(0).length)
+    : weights.outer.indexBits;
+  return outputWires(read + keep, blocks.outer) + keep;
 }
 
 /** Wires that the look-up of the outer PREPARE borrows. */
@@ -146,33 +157,66 @@ export const outerBorrows = ({ outer: { read, slice } }: Pick<SquaresBlocks, 'ou
  * @param idle - wires that its look-up may borrow.
  */
 export function outerPrepare(
-  { weights, blocks }: Prepared,
+  prepared: Prepared,
   wires: PrepareWires,
   lent: readonly number[],
   idle: readonly number[],
 ): Operation {
-  const { outer, keepBits } = weights;
+  const { weights, blocks } = prepared;
+  const { outer, keepBits, places } = weights;
   const index = [...wires.item, ...(wires.face === null ? [] : [wires.face])];
-  const sampled = aliasSampling(
-    index,
-    {
-      uniform: wires.outerUniform,
-      output: lent.slice(0, -keepBits.keep),
-      carries: lent.slice(-keepBits.keep),
-      idle,
-    },
-    {
-      address: index,
-      addresses: firstAddresses(2 ** index.length),
-      alternate: (i) => outer.alternate[i]!,
-      keep: (i) => outer.keep[i]!,
-    },
-    blocks.outer,
-  );
+  const sampled = places
+    ? sequence(hadamards(wires.outerUniform), drawnData(prepared, wires, lent, idle))
+    : aliasSampling(
+        index,
+        samplingWires(wires, lent, keepBits.keep, idle),
+        {
+          address: index,
+          addresses: firstAddresses(2 ** index.length),
+          alternate: (i) => outer.alternate[i]!,
+          keep: (i) => outer.keep[i]!,
+        },
+        blocks.outer,
+      );
   return span(
     'outer PREPARE',
     'prepare',
     sequence(hadamards(index), wires.square === null ? nothing : hadamards([wires.square]), sampled),
+  );
+}
+
+const samplingWires = (
+  wires: PrepareWires,
+  lent: readonly number[],
+  keepBits: number,
+  idle: readonly number[],
+) => ({
+  uniform: wires.outerUniform,
+  output: lent.slice(0, -keepBits),
+  carries: lent.slice(-keepBits),
+  idle,
+});
+
+/** Brings the data of the entry that index and uniform number draw into the first of the lent wires. */
+function drawnData(
+  prepared: Prepared,
+  wires: PrepareWires,
+  lent: readonly number[],
+  idle: readonly number[],
+): Operation {
+  const { outer, keepBits } = prepared.weights;
+  const table = itemDataTable(factsOf(prepared));
+  return aliasData(
+    samplingWires(wires, lent, keepBits.keep, idle),
+    {
+      address: wires.item,
+      addresses: firstAddresses(2 ** wires.item.length),
+      alternate: (i) => outer.alternate[i]!,
+      keep: (i) => outer.keep[i]!,
+      dataBits: table.width,
+      data: table.bit,
+    },
+    prepared.blocks.outer,
   );
 }
 
@@ -188,22 +232,43 @@ export function squaresWalkStep(form: SquaresForm, wires: SquaresWires, control:
   );
 }
 
-/** Loads what depends on the item alone, applies the item, and takes the data back. */
-export function squaresItem(form: SquaresForm, wires: SquaresWires): Operation {
+/**
+ * Loads what depends on the item alone, applies the item, and takes the data back.
+ *
+ * @param drawn - wires that the outer PREPARE left in use: where entries have places, their data are there already
+ */
+function squaresItem(form: SquaresForm, wires: SquaresWires, drawn: readonly number[]): Operation {
+  if (form.weights.places) return applied(form, wires, drawn);
   const table = itemDataTable(form);
   return scratch(outputWires(table.width, form.blocks.items), (output) => {
-    const data = itemDataWires(form.weights, form.flags(0).length, output);
-    const apply = sequence(
-      // 2|0⟩⟨0| − 1 is −1 times the flip.
-      gate('Z', data.isSquare),
-      gate('Z', data.negative),
-      wires.square === null ? nothing : gate('CZ', data.paired, wires.square),
-      form.aroundItem(data, (extra) => twoUses(form, wires, data, extra)),
-    );
     const idle = idleWires(form.system, wires, wires.item);
     const load = readTable(wires.item, output, table, form.blocks.items, idle);
-    return within(span('item data', 'prepare', load), apply);
+    return within(span('item data', 'prepare', load), applied(form, wires, output));
   });
+}
+
+/** What the outer index leads to, where nothing but its wires (and the uniform number, where entries have places) steers. */
+export function steeredItem(form: SquaresForm, wires: SquaresWires): Operation {
+  if (!form.weights.places) return squaresItem(form, wires, []);
+  const prepared = { ...form, facts: form };
+  return scratch(outerScratch(prepared), (lent) =>
+    within(
+      drawnData(prepared, wires, lent, idleWires(form.system, wires, wires.item)),
+      squaresItem(form, wires, lent),
+    ),
+  );
+}
+
+/** The item whose data are in the first of the wires. */
+function applied(form: SquaresForm, wires: SquaresWires, output: readonly number[]): Operation {
+  const data = itemDataWires(form.weights, form.flags(0).length, output);
+  return sequence(
+    // 2|0⟩⟨0| − 1 is −1 times the flip.
+    gate('Z', data.isSquare),
+    gate('Z', data.negative),
+    wires.square === null ? nothing : gate('CZ', data.paired, wires.square),
+    form.aroundItem(data, (extra) => twoUses(form, wires, data, extra)),
+  );
 }
 
 /**

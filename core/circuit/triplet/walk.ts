@@ -2,6 +2,7 @@ import type { Machine } from '../gates/machine';
 import { gate, type Operation, sequence } from '../gates/operation';
 import type { Rotate } from '../primitives/majorana';
 import { gradientWires, rotateByGradient, rotateExactly } from '../primitives/phase-gradient';
+import type { ItemFacts } from '../squares/item-data';
 import {
   idleWires,
   type SquaresBlocks,
@@ -9,9 +10,9 @@ import {
   type SquaresWires,
   squaresAncillas,
   squaresBlockEncoding,
-  squaresItem,
   squaresWalkStep,
   squaresWires,
+  steeredItem,
 } from '../squares/walk';
 import { type ProductBlocks, product, type SpinTreatment } from './product';
 import type { TripletTables } from './tables';
@@ -60,6 +61,18 @@ export function walkWires(
 /** Wires whose all-zero state the block encoding is projected on. */
 export const ancillaWires = (wires: WalkWires): number[] => squaresAncillas(wires);
 
+/** What the triplet form says of its items. */
+export function tripletFacts(tables: TripletTables): ItemFacts {
+  const { items } = tables;
+  return {
+    weights: tables,
+    isSquare: (t) => t < items.length - 1,
+    isNegative: (t) => items[t]!.sign < 0,
+    isPaired: (t) => items[t]!.paired,
+    flags: () => [],
+  };
+}
+
 /** The triplet form of an encoding by squares; see {@link SquaresForm}. */
 export function tripletForm(
   tables: TripletTables,
@@ -67,15 +80,10 @@ export function tripletForm(
   spin: SpinTreatment,
   blocks: WalkBlocks,
 ): SquaresForm {
-  const { items } = tables;
   return {
-    weights: tables,
+    ...tripletFacts(tables),
     blocks,
     system: wires.system,
-    isSquare: (t) => t < items.length - 1,
-    isNegative: (t) => items[t]!.sign < 0,
-    isPaired: (t) => items[t]!.paired,
-    flags: () => [],
     // The one-body product lacks a factor i, which cancels where there are two uses.
     aroundItem: ({ isTwofold }, square) =>
       sequence(gate('X', isTwofold), gate('S', isTwofold), gate('X', isTwofold), square([])),
@@ -111,12 +119,12 @@ export function walkStep(
   return squaresWalkStep(tripletForm(tables, wires, spin, blocks), wires, control);
 }
 
-/** Loads what depends on the item alone, applies the item, and takes the data back. */
+/** See {@link steeredItem}. */
 export function withItemData(
   tables: TripletTables,
   wires: WalkWires,
   spin: SpinTreatment,
   blocks: WalkBlocks,
 ): Operation {
-  return squaresItem(tripletForm(tables, wires, spin, blocks), wires);
+  return steeredItem(tripletForm(tables, wires, spin, blocks), wires);
 }

@@ -1,8 +1,9 @@
 import { describe, expect, it } from 'vitest';
 import { Machine } from '../../../core/circuit/gates/machine';
 import { SparseState } from '../../../core/circuit/simulate/sparse-state';
-import { encodedProgram, tripletTables } from '../../../core/circuit/triplet/tables';
-import { blockEncoding, walkWires, withItemData } from '../../../core/circuit/triplet/walk';
+import { drawing } from '../../../core/circuit/squares/tables';
+import { encodedProgram, type TripletTables, tripletTables } from '../../../core/circuit/triplet/tables';
+import { blockEncoding, type WalkWires, walkWires, withItemData } from '../../../core/circuit/triplet/walk';
 import type { TripletProgram } from '../../../core/encode/program';
 import type { Mu } from '../../../core/hamiltonian/operators';
 import {
@@ -68,9 +69,12 @@ function entries(given: TripletProgram, encoded: TripletProgram) {
   return [...squares, oneBody, ...products];
 }
 
-const setItem = (machine: Machine, item: readonly number[], entry: number) => {
-  for (const [i, wire] of item.entries()) if ((entry >> i) & 1) machine.gate('X', wire);
-};
+/** Index and uniform number with which alias sampling draws an entry. */
+function setItem(machine: Machine, tables: TripletTables, wires: WalkWires, entry: number): void {
+  const drawn = drawing(tables.outer, entry)!;
+  for (const [i, wire] of wires.item.entries()) if ((drawn.index >> i) & 1) machine.gate('X', wire);
+  for (const [i, wire] of wires.outerUniform.entries()) if ((drawn.uniform >> i) & 1) machine.gate('X', wire);
+}
 
 describe.each(['index', 'swap-layers'] as const)('products of two vectors, spin by %s', (spin) => {
   it.each([
@@ -84,11 +88,11 @@ describe.each(['index', 'swap-layers'] as const)('products of two vectors, spin 
     const encoded = encodedProgram(given, tables);
     for (const [entry, expected] of entries(given, encoded).entries()) {
       const block = simulate(tables, outcomes, (machine, wires) => {
-        setItem(machine, wires.item, entry);
+        setItem(machine, tables, wires, entry);
         machine.gate('H', wires.square!);
         withItemData(tables, wires, spin, BLOCKS[blocks]!).run(machine);
         machine.gate('H', wires.square!);
-        setItem(machine, wires.item, entry);
+        setItem(machine, tables, wires, entry);
       });
       expect(distance(block, expected), `entry ${entry}`).toBeLessThan(TOLERANCE);
     }
@@ -108,12 +112,12 @@ describe.each(['index', 'swap-layers'] as const)('products of two vectors, spin 
         machine.gate('H', wire);
         machine.gate('CX', wire, free[i]!);
       }
-      setItem(machine, wires.item, entry);
+      setItem(machine, tables, wires, entry);
       const once = withItemData(tables, wires, spin, BLOCKS[0]!);
       once.run(machine);
       once.run(machine);
-      setItem(machine, wires.item, entry);
-      const others = [...wires.item, ...wires.row, ...wires.innerUniform, wires.x];
+      setItem(machine, tables, wires, entry);
+      const others = [...wires.item, ...wires.outerUniform, ...wires.row, ...wires.innerUniform, wires.x];
       let same = 0;
       state.visit((isSet, re, im) => {
         const back = free.every((wire, i) => isSet(wire) === isSet(label[i]!)) && !others.some(isSet);
