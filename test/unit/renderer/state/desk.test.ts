@@ -114,9 +114,9 @@ describe('the job from files to ledger', () => {
     expect(d.lines.load).toMatchObject({ mark: 'full', fact: '1 array, 8 orbitals' });
     expect(d.terms.kept).toEqual(['sf', 'so2']);
     await d.reckon();
-    expect(d.lines.variants).toMatchObject({ mark: 'full', fact: '7 of 7 done' });
+    expect(d.lines.variants).toMatchObject({ mark: 'full', fact: '8 of 8 done' });
     expect(d.lines.ledger.fact).toContain('leads');
-    expect(d.ledger.columns).toHaveLength(5);
+    expect(d.ledger.columns).toHaveLength(6);
   });
 
   it('shows a file that cannot be read in four parts and can read another', async () => {
@@ -172,13 +172,13 @@ describe('the job from files to ledger', () => {
     expect(d.variants.entries.map((e) => e.status)).toEqual([
       'done',
       'done',
-      ...Array.from({ length: 5 }, () => 'stopped'),
+      ...Array.from({ length: 6 }, () => 'stopped'),
     ]);
     expect(d.variants.busy).toBe(false);
     stopAt = -1;
     await d.reckon();
-    expect(asked).toHaveLength(5);
-    expect(d.variants.done).toBe(7);
+    expect(asked).toHaveLength(6);
+    expect(d.variants.done).toBe(8);
   });
 
   it('marks one variant as failed and finishes the others', async () => {
@@ -202,7 +202,7 @@ describe('the job from files to ledger', () => {
     await d.reckon();
     expect(d.variants.entries[0]).toMatchObject({ status: 'failed', problem });
     expect(d.lines.variants.mark).toBe('error');
-    expect(d.variants.done).toBe(6);
+    expect(d.variants.done).toBe(7);
   });
 });
 
@@ -237,7 +237,7 @@ describe('a changed question', () => {
     d.terms.toggle('so2');
     expect(d.variants.done).toBe(0);
     d.terms.toggle('so2');
-    expect(d.variants.done).toBe(7);
+    expect(d.variants.done).toBe(8);
   });
 
   it('keeps the last sound value while a field is not understood', () => {
@@ -266,7 +266,7 @@ describe('keys in the ledger', () => {
     ledger.move(0, 1);
     expect(ledger.cursor!.row).toBe('floor');
     ledger.moveToEnd(true);
-    expect(ledger.cursor!.name).toBe(ledger.columns[4]!.sides[0]!.name);
+    expect(ledger.cursor!.name).toBe(ledger.columns[5]!.sides[0]!.name);
     ledger.moveToEnd(false);
     ledger.swapFocus();
     expect(ledger.cursor!.name).toBe(ledger.columns[0]!.sides[1]!.name);
@@ -276,14 +276,14 @@ describe('keys in the ledger', () => {
     const d = await loaded();
     await d.reckon();
     const { ledger } = d;
-    const last = ledger.columns[4]!;
+    const last = ledger.columns[5]!;
     ledger.focusOn('step', last.sides[0]!.name);
     ledger.togglePin();
     expect(ledger.columns[0]!.key).toBe(last.key);
     ledger.hide();
-    expect(ledger.columns).toHaveLength(4);
-    ledger.showAll();
     expect(ledger.columns).toHaveLength(5);
+    ledger.showAll();
+    expect(ledger.columns).toHaveLength(6);
     ledger.focusOn('qubits', ledger.columns[1]!.sides[0]!.name);
     ledger.orderByFocus();
     expect(ledger.order).toBe('qubits');
