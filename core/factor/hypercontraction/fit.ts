@@ -9,6 +9,8 @@ import { combine, pack, unpack } from './variables';
 /** Smoothing widths of ζ in hartree, each stage starting from the last; eigenvalues of κ⁰ have ten times these. */
 const WIDTHS = [3e-3, 1e-3, 3e-4, 1e-4, 3e-5, 1e-5];
 const KAPPA_WIDTH = 10;
+/** Of these, the first ones are passed over where a fit goes on from an earlier one. */
+const KNOWN = 2;
 /** The weight of the residual is set so that it comes out at this part of the target. */
 const AIM = 0.97;
 /** λ falls like a power of the residual, from which the first weight is guessed: λ ∝ residual^−FLATNESS. */
@@ -38,7 +40,7 @@ export async function fitTensor(
   problem: FitProblem,
   start: HypercontractionPoint,
   target: number,
-  { steps = 1500, onBest }: Pick<HypercontractionOptions, 'steps' | 'onBest'>,
+  { steps = 1500, onBest, start: earlier }: Pick<HypercontractionOptions, 'steps' | 'onBest' | 'start'>,
   ctx: JobContext,
 ): Promise<Fit> {
   const { n } = problem;
@@ -95,8 +97,9 @@ export async function fitTensor(
   let found = look(start);
   consider(found);
   let weight = (FLATNESS * found.lambda) / target ** 2;
-  const most = Math.ceil(steps / WIDTHS.length);
-  for (const width of WIDTHS) {
+  const widths = WIDTHS.slice(earlier ? KNOWN : 0);
+  const most = Math.ceil(steps / widths.length);
+  for (const width of widths) {
     found = await stage(weight, width, most);
     weight *= Math.max(0.25, Math.min(4, (found.residual / (AIM * target)) ** 2));
   }
