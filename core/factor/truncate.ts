@@ -4,6 +4,7 @@ import { antisymmetricNormsBatch, multiply } from '../linalg';
 import { ZERO_WEIGHT } from './eigenvectors';
 import { traceOfPairs } from './elements';
 import type { Factorisation, SquareFactors, TripleFactors } from './factors';
+import { type Choice, capped, centred } from './limit';
 import { type FoldTarget, foldSquare, foldTriple } from './mean-field';
 import { lcuNorms, squareOneNorms } from './one-norms';
 import { selectFactors } from './select';
@@ -25,7 +26,7 @@ export function chooseKept(
   norms: readonly Float64Array[],
   sizes: readonly Float64Array[],
   budget: number,
-): { readonly kept: number[][]; readonly dropped: number[][]; readonly sum: number } {
+): Choice {
   const kept: number[][] = norms.map(() => []);
   const dropped: number[][] = norms.map(() => []);
   const candidates = norms.flatMap((block, b) =>
@@ -45,31 +46,6 @@ export function chooseKept(
   }
   for (const list of [...kept, ...dropped]) list.sort((x, y) => x - y);
   return { kept, dropped, sum };
-}
-
-/** The same choice with at most `most` factors of a block: the heaviest stay. Infinite norms are not touched. */
-function capped(
-  { kept, dropped, sum }: ReturnType<typeof chooseKept>,
-  norms: readonly Float64Array[],
-  most: number,
-): ReturnType<typeof chooseKept> {
-  let all = sum;
-  const limited = kept.map((own, b) => {
-    const byNorm = [...own].sort((s, t) => norms[b]![t]! - norms[b]![s]! || s - t);
-    return byNorm.filter((t, i) => {
-      if (i < most || norms[b]![t] === Number.POSITIVE_INFINITY) return true;
-      all += norms[b]![t]!;
-      return false;
-    });
-  });
-  return {
-    kept: limited.map((own) => own.sort((s, t) => s - t)),
-    dropped: dropped.map((own, b) => {
-      const staying = new Set(limited[b]);
-      return [...own, ...kept[b]!.filter((t) => !staying.has(t))].sort((s, t) => s - t);
-    }),
-    sum: all,
-  };
 }
 
 /** Sizes of the weights, |w_t| or s_t. */
@@ -130,15 +106,18 @@ export async function truncate(
     choice = chooseKept(norms, sizes, budget);
     fold = await foldDropped(blocks, choice.dropped, n, occupations, ctx);
   }
+  let centre = { constant: 0, bound: 0 };
   if (most !== null) {
-    choice = capped(choice, norms, most);
+    const limited = capped(choice, norms, most);
+    choice = limited;
     fold = await foldDropped(blocks, choice.dropped, n, occupations, ctx);
+    if (!withoutCoulomb) centre = await centred(blocks, limited.beyond, occupations, ctx);
   }
   if (withoutCoulomb) {
     return onlySpinParts(blocks, choice, n, occupations, ctx);
   }
   const { folded } = fold;
-  let { constant } = fold;
+  let constant = fold.constant + centre.constant;
   if (remainder) {
     addPairs(folded.planes, remainder.oneBody, n);
     constant += leftOut - 0.5 * remainder.traceSquare;
@@ -151,7 +130,7 @@ export async function truncate(
     ),
     residual: {
       frobenius: Math.sqrt(square) + (remainder?.trace ?? 0),
-      oneNormBound: choice.sum + leftOut + fold.replacement,
+      oneNormBound: choice.sum + centre.bound + leftOut + fold.replacement,
       dropped: count,
     },
     foldedMeanField: count > 0 || remainder ? folded : null,
@@ -162,7 +141,7 @@ export async function truncate(
 /** The same choice with the Coulomb block taken out. */
 async function onlySpinParts(
   blocks: readonly SpatialBlock[],
-  { kept, dropped }: Pick<ReturnType<typeof chooseKept>, 'kept' | 'dropped'>,
+  { kept, dropped }: Pick<Choice, 'kept' | 'dropped'>,
   n: number,
   occupations: ArrayLike<number>,
   ctx: JobContext,

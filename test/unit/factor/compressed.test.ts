@@ -47,3 +47,31 @@ describe('compressed factors of a Hamiltonian without any symmetry', () => {
     );
   });
 });
+
+describe('a limit to the number of factors', () => {
+  // Two doubly filled orbitals of three: bits 0…3 of a state, orbital by orbital.
+  const occupations = [2, 2, 0];
+  const filled = 0b1111;
+  const whole = randomHamiltonian(3, 21, { charge: true, spinOrbit: 'none', spinSpin: false });
+  const h = { ...whole, electrons: 4 };
+
+  it.each(groupings)(
+    '%s: leaves the energy of a closed shell as it is, and keeps to its bound',
+    async (grouping) => {
+      const given = await factorise(h, { grouping, occupations, principal: true, most: 2 }, ctx);
+      expect(given.residual.dropped).toBeGreaterThan(2);
+      const encoding = await buildEncoding(
+        h,
+        given,
+        parseVariant(`triplet/${grouping}/index/none/clean`),
+        {},
+        ctx,
+      );
+      const off = difference(matrixOf(encoding.rebuild()), matrixOf(h));
+      expect(Math.abs(off.re[filled * off.n + filled]!)).toBeLessThan(1e-12);
+      const moved = operatorNorm(off);
+      expect(moved).toBeGreaterThan(1e-3);
+      expect(moved).toBeLessThanOrEqual(given.residual.oneNormBound);
+    },
+  );
+});
