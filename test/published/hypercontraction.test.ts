@@ -13,6 +13,7 @@ const medium = findSet('ch2o_631g_20o');
 
 async function spinFree(folder: string) {
   const set = await loadSet(folder);
+  if (set.kind !== 'spatial') throw new TypeError('a set over spatial orbitals is needed');
   const h = buildHamiltonian(set, { terms: ['sf'] }) as SpatialHamiltonian;
   return { h, occupations: set.occupations };
 }
