@@ -82,7 +82,14 @@ export async function factorise(
     { n: hamiltonian.orbitals, threshold, occupations, remainder, keepSpinParts, withoutCoulomb, most },
     ctx,
   );
-  return { grouping, notes, ...kept };
+  const { oneNormBound } = kept.residual;
+  const limited =
+    most !== null && oneNormBound > threshold
+      ? [
+          `at most ${most} factors a block: what is left out is bounded by ${oneNormBound.toPrecision(3)} Eh, above the threshold`,
+        ]
+      : [];
+  return { grouping, notes: [...notes, ...limited], ...kept };
 }
 
 async function separateFactors(
