@@ -4,6 +4,7 @@ import { GateCounter } from '../../core/circuit/gates/counter';
 import { Machine } from '../../core/circuit/gates/machine';
 import {
   type AliasTable,
+  aliasData,
   aliasSampling,
   aliasSamplingToffoli,
   aliasTable,
@@ -17,6 +18,7 @@ import {
 } from '../../core/circuit/primitives/reflection';
 import { firstAddresses } from '../../core/circuit/primitives/unary-iteration';
 import { SparseState } from '../../core/circuit/simulate/sparse-state';
+import { drawing } from '../../core/circuit/squares/tables';
 
 const read = (isSet: (w: number) => boolean, wires: readonly number[]) =>
   wires.reduce((sum, w, i) => sum + (isSet(w) ? 2 ** i : 0), 0);
@@ -108,6 +110,88 @@ it('the circuit samples the table, comes back to zero, and costs what the formul
           const counter = new GateCounter();
           const counting = new Machine(counter);
           build(counting, table, readBlock, eraseBlock).operation[direction](counting);
+          expect(GateCounter.total(counter.root).toffoli).toBe(cost);
+        }
+      },
+    ),
+    { numRuns: 60 },
+  );
+});
+
+it('data are drawn with the same probabilities as entries, at the same index, and cost what the formula says', () => {
+  fc.assert(
+    fc.property(
+      weightLists,
+      fc.integer({ min: 1, max: 3 }),
+      fc.constantFrom({ read: 1, erase: 1 }, { read: 2, erase: 4 }, { read: 4, erase: 2 }),
+      fc.constantFrom<'random' | 0 | 1>('random', 0, 1),
+      (weights, keepBits, blocks, outcomes) => {
+        fc.pre(weights.some((w) => w > 1e-9));
+        const table = aliasTable(weights, 4, keepBits);
+        const dataBits = 5;
+        // Every entry has data of its own: 2·entry + 3 in five bits, and no two entries the same.
+        const dataOf = (entry: number) => (2 * entry + 3) % 32;
+        const make = (machine: Machine) => {
+          const index = machine.allocateRegister(4);
+          const wires = {
+            uniform: machine.allocateRegister(keepBits),
+            output: machine.allocateRegister((2 * dataBits + keepBits) * blocks.read),
+            carries: machine.allocateRegister(keepBits),
+            idle: [],
+          };
+          const source = {
+            address: index,
+            addresses: firstAddresses(16),
+            alternate: (a: number) => table.alternate[a]!,
+            keep: (a: number) => table.keep[a]!,
+            dataBits,
+            data: (a: number, b: number) => ((dataOf(a) >> b) & 1) === 1,
+          };
+          return { index, wires, operation: aliasData(wires, source, blocks) };
+        };
+        const state = new SparseState({ maxWires: 96, outcomes });
+        const machine = new Machine(state);
+        const { index, wires, operation } = make(machine);
+        const steering = [...index, ...wires.uniform];
+        hadamards(steering).run(machine);
+        // The comparison leaves other values in the uniform number until it is taken back.
+        const label = machine.allocateRegister(keepBits);
+        const copy = () => {
+          for (const [i, wire] of label.entries()) machine.gate('CX', wires.uniform[i]!, wire);
+        };
+        copy();
+        operation.run(machine);
+        const probability = new Float64Array(32);
+        state.visit((isSet, re, im) => {
+          probability[read(isSet, wires.output.slice(0, dataBits))]! += re * re + im * im;
+          // Which entry it is follows from index and uniform number alone.
+          const at = read(isSet, index);
+          const entry = read(isSet, label) < table.keep[at]! ? at : table.alternate[at]!;
+          expect(read(isSet, wires.output.slice(0, dataBits))).toBe(dataOf(entry));
+        });
+        for (let i = 0; i < 16; i++) {
+          expect(probability[dataOf(i)]).toBeCloseTo(table.probabilities[i]!, 12);
+          const drawn = drawing(table, i);
+          expect(drawn === null).toBe(table.probabilities[i] === 0);
+          if (!drawn) continue;
+          const { index: at, uniform } = drawn;
+          expect(uniform < table.keep[at]! ? at : table.alternate[at]).toBe(i);
+        }
+        operation.runAdjoint(machine);
+        copy();
+        hadamards(steering).run(machine);
+        for (const register of [index, wires.uniform, wires.output, wires.carries, label]) {
+          machine.releaseRegister(register);
+        }
+        const all = firstAddresses(16);
+        const counts = { read: countBlocks(all, blocks.read), erase: countBlocks(all, blocks.erase) };
+        const expected = aliasSamplingToffoli(counts, dataBits, keepBits, blocks, 2 * dataBits + keepBits);
+        for (const [direction, cost] of [
+          ['run', expected.prepare],
+          ['runAdjoint', expected.unprepare],
+        ] as const) {
+          const counter = new GateCounter();
+          make(new Machine(counter)).operation[direction](new Machine(counter));
           expect(GateCounter.total(counter.root).toffoli).toBe(cost);
         }
       },
