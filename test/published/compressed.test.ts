@@ -72,6 +72,8 @@ describe.each(['f_sto3g_2p', 'c_631g_2p', 'br_def2svp_4p'])('%s with all terms',
         whole.blocks.map((block) => Math.min(most, block.count)),
       );
       expect(given.residual.oneNormBound).toBeGreaterThan(1e-6);
+      expect(given.notes.join()).toContain(`at most ${most} factors a block`);
+      expect(whole.notes.join()).not.toContain('at most');
       const mixed = await compressFactors(h, given, { factors: most }, ctx);
       expect(mixed.residual).toEqual(given.residual);
       const plain = await encode(h, mixed, `triplet/${grouping}`, 'none');
