@@ -69,14 +69,3 @@ function blockExponential(a: Float64Array, size: number, scale: number): Float64
   for (let i = 0; i < squarings; i++) result = multiply(result, result, size, size, size);
   return result;
 }
-
-/** Uniform numbers from −½ to ½ of a seed. */
-export function uniformNumbers(seed: number): () => number {
-  let state = seed | 0;
-  return () => {
-    state = (state + 0x6d2b79f5) | 0;
-    let x = Math.imul(state ^ (state >>> 15), 1 | state);
-    x = (x + Math.imul(x ^ (x >>> 7), 61 | x)) ^ x;
-    return ((x ^ (x >>> 14)) >>> 0) / 4294967296 - 0.5;
-  };
-}

@@ -1,9 +1,9 @@
 import { numAntisymmetricPairs, numSymmetricPairs } from '../../integrals/integral-set';
 import type { JobContext } from '../../job';
-import { multiply } from '../../linalg';
+import { multiply, randomSource } from '../../linalg';
 import { matrixBlocks } from '../components';
-import { descend, WIDTHS } from './descent';
-import { exponential, uniformNumbers } from './exponential';
+import { descend, type MixingProblem, WIDTHS } from './descent';
+import { exponential } from './exponential';
 import { recast } from './recast';
 import { type SquarePoint, type SquareSetting, slotScales, squareProblem } from './squares';
 import { arrayOf, checkSameTensor, type MixingState, type MixingStore } from './state';
@@ -145,7 +145,7 @@ export async function mixTriples(
 
 /** From the best of the starting points, with medians or without shifts. */
 async function run<Point extends { readonly count: number }>(
-  problem: Parameters<typeof descend<Point>>[0],
+  problem: MixingProblem<Point>,
   starts: readonly Point[],
   part: string,
   saved: MixingState | null,
@@ -196,7 +196,7 @@ function resized(values: Float64Array, length: number): Float64Array {
 
 /** Fixed numbers: what they are does not matter, only that both sides meet the same. */
 function probesOf(width: number): Float64Array {
-  const random = uniformNumbers(12345);
+  const random = randomSource(12345);
   return Float64Array.from({ length: PROBES * width }, random);
 }
 
@@ -206,11 +206,11 @@ function leaking<
 >(padded: Point, given: number, seed: number, turn: (point: Point, rotation: Float64Array) => Point): Point {
   const { count, classes, signs } = padded;
   if (count === given) return padded;
-  const random = uniformNumbers(seed);
+  const random = randomSource(seed);
   const generator = new Float64Array(count * count);
   for (let s = given; s < count; s++) {
     for (let t = 0; t < given; t++) {
-      const x = (0.4 / Math.sqrt(count)) * random();
+      const x = (0.2 / Math.sqrt(count)) * random();
       if (classes[s] !== classes[t] || signs?.[s] !== signs?.[t]) continue;
       generator[s * count + t] = x;
       generator[t * count + s] = -x;

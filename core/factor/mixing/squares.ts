@@ -122,7 +122,7 @@ export function slotScales({ dim, slots }: SectorLayout, columns: Float64Array):
   return sizes.map((size) => Math.max(size, floor));
 }
 
-export async function squareValue(
+async function squareValue(
   setting: SquareSetting,
   scales: readonly number[],
   point: SquarePoint,

@@ -112,7 +112,7 @@ export function tripleProblem(
   };
 }
 
-export function largestRow(rows: Float64Array, width: number): number {
+function largestRow(rows: Float64Array, width: number): number {
   let largest = 0;
   for (let from = 0; from < rows.length; from += width) {
     let sum = 0;
@@ -122,7 +122,7 @@ export function largestRow(rows: Float64Array, width: number): number {
   return Math.sqrt(largest);
 }
 
-export async function tripleValue(
+async function tripleValue(
   setting: TripleSetting,
   scales: readonly [number, number],
   point: TriplePoint,
