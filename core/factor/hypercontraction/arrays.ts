@@ -70,17 +70,6 @@ export function scaleColumns(a: Float64Array, factors: ArrayLike<number>): Float
   return out;
 }
 
-/** Sums of the rows of a count × count matrix. */
-export function rowSums(a: Float64Array, count: number): Float64Array {
-  const out = new Float64Array(count);
-  for (let i = 0, at = 0; i < count; i++) {
-    let sum = 0;
-    for (let j = 0; j < count; j++, at++) sum += a[at]!;
-    out[i] = sum;
-  }
-  return out;
-}
-
 /** a + scale·b, into a. */
 export function addScaledTo(a: Float64Array, b: Float64Array, scale: number): void {
   for (let i = 0; i < a.length; i++) a[i]! += scale * b[i]!;

@@ -64,7 +64,7 @@ export interface HypercontractionPoint {
 }
 
 export interface HypercontractionOptions {
-  /** M; `auto`: 6N, at most the number of orbital pairs, where the fit can be exact. @defaultValue 'auto' */
+  /** M; `auto`: 5N, at most the number of orbital pairs, where the fit can be exact. @defaultValue 'auto' */
   readonly rank?: number | 'auto';
   /** Fits g + ξ ⊗ 1 + 1 ⊗ ξ with the best ξ. @defaultValue true */
   readonly shift?: boolean;

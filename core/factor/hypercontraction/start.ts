@@ -69,7 +69,7 @@ export async function startingPoint(
 }
 
 /** ζ = Q⁺ (S G′ Sᵀ) Q⁺ for given vectors, with the flat directions of Q left out. */
-export function leastSquaresZeta(
+function leastSquaresZeta(
   problem: FitProblem,
   vectors: Float64Array,
   m: number,
