@@ -47,7 +47,7 @@ export interface Places {
   readonly firstProduct: number;
   /** Bits of a row's address. */
   readonly placeBits: number;
-  /** Vectors of the library, and the address of the first: a multiple of 2^changeBits. */
+  /** Vectors of the library, and the address of the first. */
   readonly vectors: number;
   readonly library: number;
   /** Bits in which the addresses of two vectors may differ. */
@@ -82,7 +82,7 @@ export function indexingOf(sizes: Pick<SquaresSizes, 'rows' | 'twoFaced' | 'prod
   const entries = firstProduct + products.count;
   const itemBits = Math.max(1, addressBits(entries));
   const changeBits = addressBits(products.vectors);
-  const { bases, library, end } = packed(sizeBits, changeBits);
+  const { bases, end } = packed(sizeBits, changeBits);
   const placeBits = Math.max(rowBits, addressBits(end));
   return {
     ...common,
@@ -92,23 +92,22 @@ export function indexingOf(sizes: Pick<SquaresSizes, 'rows' | 'twoFaced' | 'prod
     faceOffset: 2 ** placeBits,
     firstEntry,
     nextFace: 1,
-    places: { entries, firstProduct, placeBits, vectors: products.vectors, library, changeBits },
+    places: { entries, firstProduct, placeBits, vectors: products.vectors, library: 0, changeBits },
   };
 }
 
-/** Buckets of 2^{bits} addresses, the widest first: each then stands at a multiple of its width without gaps. */
+/** The library first, then buckets of 2^{bits} addresses, the widest first: each stands at a multiple of its width. */
 function packed(sizeBits: Uint8Array, changeBits: number) {
   const order = Array.from(sizeBits, (bits, t) => ({ bits, t }));
-  order.push({ bits: changeBits, t: -1 });
   order.sort((a, b) => b.bits - a.bits || a.t - b.t);
+  const widest = 2 ** order[0]!.bits;
+  let end = Math.ceil(2 ** changeBits / widest) * widest;
   const bases = new Uint32Array(sizeBits.length);
-  let [library, end] = [0, 0];
   for (const { bits, t } of order) {
-    if (t < 0) library = end;
-    else bases[t] = end;
+    bases[t] = end;
     end += 2 ** bits;
   }
-  return { bases, library, end };
+  return { bases, end };
 }
 
 /** Addresses of the first `counts[t]` rows of every item that `keep` lets through, ascending. */

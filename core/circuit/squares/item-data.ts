@@ -29,28 +29,40 @@ export interface ItemDataWires {
   /** Address of the first row, and what the second vector of a product has for it, as a difference (XOR). */
   readonly place: readonly number[];
   readonly change: readonly number[];
+  /** So many of the first wires of `change` are a product's; of another entry they are sizes and high bits of the place. */
+  readonly shared: number;
   /** The form's own. */
   readonly flags: readonly number[];
 }
 
-/** Bits of the fields in the order of the wires; the three flags that every form has are one each. */
+/**
+ * Bits of the fields in the order of the wires; the three flags that every form has are one each. Products have no sizes,
+ * and their place has no high bits: what tells their two places apart stands there instead.
+ */
 function widths(indexing: Indexing, flags: number) {
   const { rowBits, hasFaces, places } = indexing;
+  if (!places)
+    return { sizes: rowBits, common: 3, isTwofold: 0, face: 0, low: 0, change: 0, either: 0, flags };
+  const { placeBits, changeBits } = places;
   return {
-    sizes: rowBits,
-    negative: 1,
-    paired: 1,
-    isSquare: 1,
-    isTwofold: places ? 1 : 0,
-    face: places && hasFaces ? 1 : 0,
-    place: places?.placeBits ?? 0,
-    change: places?.changeBits ?? 0,
+    sizes: 0,
+    common: 3,
+    isTwofold: 1,
+    face: hasFaces ? 1 : 0,
+    low: changeBits,
+    change: 0,
+    either: Math.max(rowBits + placeBits - changeBits, changeBits),
     flags,
   };
 }
 
 export function itemDataWidth(indexing: Indexing, flags: number): number {
   return Object.values(widths(indexing, flags)).reduce((sum, bits) => sum + bits, 0);
+}
+
+/** Wires that a product and other entries use for different things. */
+export function sharedWires({ rowBits, places }: Indexing): number {
+  return places ? Math.min(rowBits + places.placeBits - places.changeBits, places.changeBits) : 0;
 }
 
 export function itemDataWires(indexing: Indexing, flags: number, wires: readonly number[]): ItemDataWires {
@@ -61,17 +73,21 @@ export function itemDataWires(indexing: Indexing, flags: number, wires: readonly
   };
   const bits = widths(indexing, flags);
   const sizes = take(bits.sizes);
-  const [negative, paired, isSquare] = take(3) as [number, number, number];
+  const [negative, paired, isSquare] = take(bits.common) as [number, number, number];
+  const isTwofold = take(bits.isTwofold)[0] ?? isSquare;
+  const face = take(bits.face)[0] ?? null;
+  const low = take(bits.low);
+  const either = take(bits.either);
+  const own = take(bits.flags);
+  const common = { negative, paired, isSquare, isTwofold, face, flags: own, shared: sharedWires(indexing) };
+  const { rowBits, places } = indexing;
+  if (!places) return { ...common, sizes, place: [], change: [] };
+  const { placeBits, changeBits } = places;
   return {
-    sizes,
-    negative,
-    paired,
-    isSquare,
-    isTwofold: take(bits.isTwofold)[0] ?? isSquare,
-    face: take(bits.face)[0] ?? null,
-    place: take(bits.place),
-    change: take(bits.change),
-    flags: take(bits.flags),
+    ...common,
+    sizes: either.slice(0, rowBits),
+    place: [...low, ...either.slice(rowBits, rowBits + placeBits - changeBits)],
+    change: either.slice(0, changeBits),
   };
 }
 
@@ -84,39 +100,45 @@ export function itemDataTable(facts: ItemFacts): Table {
   const { rowBits, sizeBits, itemCount, bases, places, products, hasFaces, firstEntry } = weights;
   const isSet = (number: number, b: number) => ((number >>> b) & 1) === 1;
   const own = Array.from({ length: itemCount }, (_, t) => facts.flags(t));
-  const word = (t: number): boolean[] => [
-    ...Array.from({ length: rowBits }, (_, b) => sizeBits[t]! > b),
-    facts.isNegative(t),
-    facts.isPaired(t),
-    facts.isSquare(t),
-  ];
+  const sizesOf = (t: number) => Array.from({ length: rowBits }, (_, b) => sizeBits[t]! > b);
+  const common = (t: number) => [facts.isNegative(t), facts.isPaired(t), facts.isSquare(t)];
   if (!places || !products) {
-    const words = own.map((flags, t) => [...word(t), ...flags]);
+    const words = own.map((flags, t) => [...sizesOf(t), ...common(t), ...flags]);
     return {
       addresses: firstAddresses(itemCount),
       width: itemDataWidth(weights, own[0]!.length),
       bit: (t, b) => words[t]![b]!,
     };
   }
-  const place = (at: number, change: number) => [
-    ...Array.from({ length: places.placeBits }, (_, b) => isSet(at, b)),
-    ...Array.from({ length: places.changeBits }, (_, b) => isSet(change, b)),
-  ];
+  const { placeBits, changeBits } = places;
+  const { either } = widths(weights, 0);
+  const bitsOf = (number: number, from: number, to: number) =>
+    Array.from({ length: to - from }, (_, b) => isSet(number, from + b));
+  const padded = (bits: boolean[]) => [...bits, ...new Array<boolean>(either - bits.length).fill(false)];
   const itemWord = (entry: number): boolean[] => {
     const t = firstEntry.findLastIndex((first) => first <= entry);
     const face = hasFaces ? [entry > firstEntry[t]!] : [];
-    return [...word(t), facts.isSquare(t), ...face, ...place(bases[t]!, 0), ...own[t]!];
+    const base = bases[t]!;
+    const upper = [...sizesOf(t), ...bitsOf(base, changeBits, placeBits)];
+    return [
+      ...common(t),
+      facts.isSquare(t),
+      ...face,
+      ...bitsOf(base, 0, changeBits),
+      ...padded(upper),
+      ...own[t]!,
+    ];
   };
   const productWord = (p: number): boolean[] => {
     const [m, n] = [products.first[p]!, products.second[p]!];
     return [
-      ...new Array<boolean>(rowBits).fill(false),
       products.sign[p]! < 0,
       false,
       m === n,
       true,
       ...(hasFaces ? [false] : []),
-      ...place(places.library + m, m ^ n),
+      ...bitsOf(m, 0, changeBits),
+      ...padded(bitsOf(m ^ n, 0, changeBits)),
       ...own[0]!.map(() => false),
     ];
   };

@@ -3,7 +3,7 @@ import { type Blocks, erasureWires } from '../primitives/look-up';
 import { outputWires, readWires } from '../primitives/reading';
 import { reflectionToffoli } from '../primitives/reflection';
 import type { Subroutine } from '../recipe';
-import { itemDataWidth } from './item-data';
+import { itemDataWidth, sharedWires } from './item-data';
 import type { SquaresLayout } from './layout';
 import {
   BABBUSH,
@@ -133,7 +133,21 @@ function blockEncodingRecipe(
     children: [
       ...samplingLeaves('outer PREPARE', outer, outer.exchanged, bits.keep, blocks.outer, 0),
       layout.places
-        ? applied
+        ? {
+            name: 'entry',
+            registers: [{ name: 'change of a product', qubits: sharedWires(layout) }],
+            children: [
+              leaf({
+                name: 'change of a product',
+                part: 'select.other',
+                toffoli: sharedWires(layout),
+                formula: 'one AND for each wire that other entries use otherwise',
+                inputs: {},
+                source: DERIVED,
+              }),
+              applied,
+            ],
+          }
         : {
             name: 'item',
             registers: [{ name: 'item data', qubits: outputWires(items.width, blocks.items) }],

@@ -262,14 +262,41 @@ export function steeredItem(form: SquaresForm, wires: SquaresWires): Operation {
 /** The item whose data are in the first of the wires. */
 function applied(form: SquaresForm, wires: SquaresWires, output: readonly number[]): Operation {
   const data = itemDataWires(form.weights, form.flags(0).length, output);
-  return sequence(
-    // 2|0⟩⟨0| − 1 is −1 times the flip.
-    gate('Z', data.isSquare),
-    gate('Z', data.negative),
-    wires.square === null ? nothing : gate('CZ', data.paired, wires.square),
-    form.aroundItem(data, (extra) => twoUses(form, wires, data, extra)),
+  return withChangeApart(data, (item) =>
+    sequence(
+      // 2|0⟩⟨0| − 1 is −1 times the flip.
+      gate('Z', item.isSquare),
+      gate('Z', item.negative),
+      wires.square === null ? nothing : gate('CZ', item.paired, wires.square),
+      form.aroundItem(item, (extra) => twoUses(form, wires, item, extra)),
+    ),
   );
 }
+
+/** Moves the change of a product out of the wires that have another meaning for other entries: one AND each. */
+function withChangeApart(data: ItemDataWires, apply: (item: ItemDataWires) => Operation): Operation {
+  const { shared, change } = data;
+  if (shared === 0) return apply(data);
+  return scratch(shared, (own) =>
+    within(
+      within(
+        asProduct(data),
+        span(
+          'change of a product',
+          'select.other',
+          repeat(shared, (i) =>
+            sequence(gate('AND', data.isTwofold, change[i]!, own[i]!), gate('CX', own[i]!, change[i]!)),
+          ),
+        ),
+      ),
+      apply({ ...data, change: [...own, ...change.slice(shared)] }),
+    ),
+  );
+}
+
+/** Makes `isTwofold` say whether the entry is a product: twofold and no square. */
+const asProduct = ({ isSquare, isTwofold }: Pick<ItemDataWires, 'isSquare' | 'isTwofold'>): Operation =>
+  gate('CX', isSquare, isTwofold);
 
 /**
  * B₂†·R·B₁ with B = PREPARE†·SELECT·PREPARE over the rows of the item. For a square R = 2|0⟩⟨0| − 1 (up to sign)
@@ -331,14 +358,12 @@ function productOrder(
   extra: readonly number[],
 ): Operation {
   const { rowBits } = form.weights;
-  const { place, change, isSquare, isTwofold } = data;
+  const { place, change, isTwofold } = data;
   const order = wires.square!;
   const address = [...wires.row, ...place.slice(rowBits)];
   const product = form.product;
-  // Twofold and no square: a product.
-  const asProduct = gate('CX', isSquare, isTwofold);
   const exchangeSpins = within(
-    asProduct,
+    asProduct(data),
     span(
       'spins of a product',
       'select.other',
@@ -367,7 +392,7 @@ function productOrder(
         oneAfterTheOther(use(false), sequence(innerReflection(wires, data), exchangeSpins), use(true)),
       );
     }),
-    within(asProduct, gate('CX', isTwofold, order)),
+    within(asProduct(data), gate('CX', isTwofold, order)),
   );
 }
 
