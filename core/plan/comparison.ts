@@ -38,7 +38,10 @@ export interface VariantEstimate {
   readonly residual: {
     readonly frobenius: number;
     readonly oneNormBound: number;
+    /** First and second order of a reference determinant; null where there is no estimate. */
     readonly energyEstimate: number | null;
+    /** Change of spin-dependent levels and couplings among low states, to first order; null where there is no estimate. */
+    readonly spinCouplings: number | null;
   };
   readonly bits: { readonly keep: number; readonly rotation: number };
   readonly step: {

@@ -10,7 +10,7 @@ import type { TargetRequest } from '../estimate';
 import { heldTerms } from '../hamiltonian';
 import type { IntegralSet, SelectableTerm } from '../integrals';
 import { Cancelled, InputError, type JobContext, type Problem } from '../job';
-import { toHartree } from '../units';
+import { formatSignificant, fromHartree, toHartree } from '../units';
 import type { VariantEstimate } from './comparison';
 import { costOf, targetOf, thresholdOf, toleranceOf } from './costing';
 import { Encodings } from './encodings';
@@ -20,6 +20,7 @@ import { FramedEncodings } from './framed-encodings';
 import type { MixingStates } from './mixing-states';
 import { recommend } from './recommendation';
 import type { ComparisonRequest, ComparisonRun, VariantOutcome } from './request';
+import { SpinCouplings } from './spin-couplings';
 import { hamiltonianOf, occupationsOf } from './system';
 import { termSummaries } from './term-summaries';
 
@@ -74,6 +75,7 @@ export async function runComparison(
   );
   const floors = new Floors(hamiltonian, MAX_DETERMINANTS);
   const energies = new EnergyEstimates(hamiltonian, occupations);
+  const spinCouplings = new SpinCouplings(occupations);
 
   const variants = request.variants ?? defaultVariants(set);
   const outcomes: VariantOutcome[] = [];
@@ -91,9 +93,22 @@ export async function runComparison(
           const factorisation = await encodings.factorisationOf(variant, named);
           const frame = await encodings.frameOf(variant, named);
           const energy = await energies.of(encoding, factorisation, named, frame);
-          const estimate = await estimateOf(encoding, energy, variant, terms, request, target, floors, named);
-          const missing = typeof energy === 'string' ? [`no estimate of the energy error: ${energy}`] : [];
-          return { estimate, notes: [...(encoding.notes ?? []), ...missing] };
+          const couplings = await couplingsOf(energy, spinCouplings, named);
+          const estimate = await estimateOf(
+            encoding,
+            { energy, couplings },
+            variant,
+            terms,
+            request,
+            target,
+            floors,
+            named,
+          );
+          const remarks = [
+            ...(typeof energy === 'string' ? [`no estimate of the energy error: ${energy}`] : []),
+            ...remarkOn(couplings, toleranceOf(target)),
+          ];
+          return { estimate, notes: [...(encoding.notes ?? []), ...remarks] };
         });
     outcomes.push(outcome);
     events.onOutcome?.(outcome);
@@ -155,9 +170,28 @@ function labelled(context: JobContext, label: string): JobContext {
   };
 }
 
+/** 0 where nothing was dropped. */
+async function couplingsOf(
+  energy: TruncationEnergy | string | null,
+  couplings: SpinCouplings,
+  context: JobContext,
+): Promise<number | null> {
+  if (energy === null) return 0;
+  return typeof energy === 'string' ? null : couplings.of(energy, context);
+}
+
+/** Spin-dependent parts are light: a threshold in terms of λ may drop what the question is about. */
+function remarkOn(couplings: number | null, tolerance: number): string[] {
+  if (couplings === null || couplings <= tolerance) return [];
+  const [found, allowed] = [couplings, tolerance].map((x) => formatSignificant(fromHartree(x, 'cm-1'), 2));
+  return [
+    `truncation changes spin-dependent couplings of low states by ${found} cm⁻¹, more than the budget's ${allowed} cm⁻¹: lower the threshold or take a mixed encoding`,
+  ];
+}
+
 async function estimateOf(
   encoding: Encoding,
-  energy: TruncationEnergy | string | null,
+  { energy, couplings }: { energy: TruncationEnergy | string | null; couplings: number | null },
   variant: VariantName,
   terms: readonly SelectableTerm[],
   request: ComparisonRequest,
@@ -184,6 +218,7 @@ async function estimateOf(
       frobenius: residual.frobenius,
       oneNormBound: residual.oneNormBound,
       energyEstimate: figureOf(energy),
+      spinCouplings: couplings,
     },
     bits: cost.bits,
     step: cost.step,

@@ -98,6 +98,11 @@ const EXPLAIN: Readonly<Record<RowId, Explain>> = {
           ? 'A bound: no level moves further than this. '
           : `A bound; the estimate of the shift is ${figures.energyUnderHead(e.residual.energyEstimate, view.target)} ${figures.UNIT_WORDS[view.target.unit]}. `,
       ),
+      words(
+        e.residual.spinCouplings === null
+          ? ''
+          : `Spin-dependent couplings of low states change by ${figures.energyUnderHead(e.residual.spinCouplings, view.target)} ${figures.UNIT_WORDS[view.target.unit]}. `,
+      ),
       source('Triangle inequality over the dropped unitaries.'),
     ],
   ],

@@ -52,7 +52,9 @@ describe('the JSON document of a comparison', () => {
       '.variants[].spectralFloor',
       ...['value', 'kind', 'sector', 'low', 'high'].map((key) => `.variants[].spectralFloor.${key}`),
       ...['constant', 'factors', 'rows', 'residual'].map((key) => `.variants[].${key}`),
-      ...['frobenius', 'oneNormBound', 'energyEstimate'].map((key) => `.variants[].residual.${key}`),
+      ...['frobenius', 'oneNormBound', 'energyEstimate', 'spinCouplings'].map(
+        (key) => `.variants[].residual.${key}`,
+      ),
       '.variants[].bits',
       '.variants[].bits.keep',
       '.variants[].bits.rotation',

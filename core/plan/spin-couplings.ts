@@ -1,0 +1,53 @@
+import { fromProductForm, type SpatialHamiltonian, type SpinHamiltonian } from '../hamiltonian';
+import type { JobContext } from '../job';
+import type { TruncationEnergy } from './energy-estimate';
+import { type LowStates, lowStates } from './low-states';
+
+/** Above this, windows of the whole tensor take seconds a variant. */
+const MOST_ORBITALS = 32;
+
+/**
+ * What truncation of the spin-dependent parts means: how much it changes levels and couplings of low states near the
+ * Fermi level, to first order (low-states.ts). The energy of a closed shell hardly knows these parts: its estimate says
+ * nothing of them.
+ */
+export class SpinCouplings {
+  readonly #occupations: readonly number[] | null;
+  readonly #states = new Map<SpinHamiltonian, Promise<LowStates>>();
+  readonly #known = new Map<SpinHamiltonian, Promise<number>>();
+
+  /** @param occupations - reference of the states, or null: there are no estimates */
+  constructor(occupations: readonly number[] | null) {
+    this.#occupations = occupations;
+  }
+
+  /**
+   * Hartree; null where there is no estimate: complex spinors, factors without a packed form, more than 32 orbitals.
+   */
+  async of({ whole, kept }: TruncationEnergy, context: JobContext): Promise<number | null> {
+    if (whole.kind !== 'spatial' || kept.kind !== 'spatial' || !this.#occupations) return null;
+    if (whole.orbitals > MOST_ORBITALS) return null;
+    if (!whole.g.spinOrbit && !whole.g.spinSpin) return 0;
+    let states = this.#states.get(whole);
+    if (!states) {
+      states = lowStates(whole, this.#occupations, context);
+      this.#states.set(whole, states);
+    }
+    let found = this.#known.get(kept);
+    if (!found) {
+      found = (await states).change(spinDependentPart(whole), spinDependentPart(kept));
+      this.#known.set(kept, found);
+    }
+    return found;
+  }
+}
+
+function spinDependentPart({ k, g, orbitals, electrons, terms }: SpatialHamiltonian): SpatialHamiltonian {
+  const planes = Float64Array.from(k.planes);
+  planes.fill(0, 0, orbitals * orbitals);
+  return fromProductForm({
+    ...{ orbitals, electrons, terms, constant: 0 },
+    k: { ...k, planes },
+    g: { ...g, charge: null },
+  });
+}
