@@ -129,7 +129,8 @@ function keepErrors(shape: EncodingShape, { oneBody, twoBody }: LambdaSplit): Er
  *
  * A product ½{M_m, M_n} of two operators of norm 1 that change by 2δ each costs 4δλ. As Σ_m ½{ΔM_m, Y_m} with ‖Y_m‖ at most
  * the weights that vector m has a part in, 2λ/M on average, M vectors add up like 1/√M; signs within Y_m, which make it
- * less, are left out, and as for squares half the worst case is taken.
+ * less, are left out, and as for squares half the worst case is taken: exact norms of F, and of OH and CH2O in four orbitals,
+ * were 0.6 to 1.9 times the estimate at 8 to 14 bits (squares: 0.1 to 2.1; computed).
  */
 function rotationErrors(shape: EncodingShape, { oneBody, twoBody }: LambdaSplit): ErrorAtZeroBits | null {
   if (shape.kind === 'sparse') return null;
