@@ -49,6 +49,15 @@ describe('axes', () => {
     ]);
   });
 
+  it('gives a hypercontracted charge part no medians, and separate grouping', () => {
+    expect(product({ factorisation: ['hypercontracted'], lookup: ['clean'] })).toEqual([
+      'hypercontracted/separate/index/none/clean',
+      'hypercontracted/separate/index/optimised/clean',
+      'hypercontracted/separate/swap-layers/none/clean',
+      'hypercontracted/separate/swap-layers/optimised/clean',
+    ]);
+  });
+
   it('finds its way back from nothing', () => {
     const back = toggled([], 'factorisation', 'sparse');
     expect(back).toContain('sparse/-/index/none/clean');
