@@ -40,8 +40,11 @@ export interface VariantEstimate {
     readonly oneNormBound: number;
     /** First and second order of a reference determinant; null where there is no estimate. */
     readonly energyEstimate: number | null;
-    /** Change of spin-dependent levels and couplings among low states, to first order; null where there is no estimate. */
-    readonly spinCouplings: number | null;
+    /**
+     * Change of levels and couplings among low states beside a shift that all share, to first order; null where there is
+     * no estimate.
+     */
+    readonly lowStates: number | null;
   };
   readonly bits: { readonly keep: number; readonly rotation: number };
   readonly step: {

@@ -49,7 +49,7 @@ export function frameDocument(frame: FrameRecord): object {
 export function variantDocument(v: VariantEstimate): object {
   const { oneBody, twoBody, total, parts } = v.lambda;
   const { value, kind, sector, low, high } = v.spectralFloor;
-  const { frobenius, oneNormBound, energyEstimate, spinCouplings } = v.residual;
+  const { frobenius, oneNormBound, energyEstimate, lowStates } = v.residual;
   return {
     name: v.name,
     terms: v.terms,
@@ -63,7 +63,7 @@ export function variantDocument(v: VariantEstimate): object {
     constant: v.constant,
     factors: v.factors,
     rows: v.rows,
-    residual: { frobenius, oneNormBound, energyEstimate, spinCouplings },
+    residual: { frobenius, oneNormBound, energyEstimate, lowStates },
     bits: { keep: v.bits.keep, rotation: v.bits.rotation },
     step: {
       toffoli: v.step.toffoli,

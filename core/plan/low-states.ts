@@ -1,7 +1,13 @@
 import { normalOrder, type OrbitalWindow, restrictToWindow, type SpatialHamiltonian } from '../hamiltonian';
 import type { JobContext } from '../job';
 import type { ComplexMatrix } from '../linalg';
-import { denseSector, singleExcitations, type WatchedStates, watchedStates } from '../verify';
+import {
+  denseSector,
+  type StateChange,
+  singleExcitations,
+  type WatchedStates,
+  watchedStates,
+} from '../verify';
 
 /** Orbitals in which all determinants are taken: at most 252 of them, diagonalised in a second. */
 const ALL = 5;
@@ -15,10 +21,10 @@ export interface LowStates {
   /** In words, for a note. */
   readonly description: string;
   /**
-   * How much the levels and couplings of these states change from one operator to another, to first order; hartree.
-   * Both are over all orbitals of the set.
+   * How much the levels and couplings of these states change from one operator to another, to first order: at most, over
+   * both spaces. Both operators are over all orbitals of the set.
    */
-  readonly change: (a: SpatialHamiltonian, b: SpatialHamiltonian) => Promise<number>;
+  readonly change: (a: SpatialHamiltonian, b: SpatialHamiltonian) => Promise<StateChange>;
 }
 
 interface Space {
@@ -61,10 +67,12 @@ export async function lowStates(
   return {
     description,
     async change(a, b) {
-      let most = 0;
+      const most = { norm: 0, centred: 0 };
       for (const { matrixOf, change } of watched) {
         await context.checkpoint();
-        most = Math.max(most, change(await matrixOf(a), await matrixOf(b)));
+        const { norm, centred } = change(await matrixOf(a), await matrixOf(b));
+        most.norm = Math.max(most.norm, norm);
+        most.centred = Math.max(most.centred, centred);
       }
       return most;
     },

@@ -30,7 +30,7 @@ export async function measuredRounding(
     await context.checkpoint();
     const tables = tripletTables(program, { keep, innerKeep: keep, rotation });
     const rounded = await matrixOf(encodedProgram(program, tables));
-    return states.change(rounded, exact) * 2 ** Math.min(keep, rotation);
+    return states.change(rounded, exact).norm * 2 ** Math.min(keep, rotation);
   };
   let [keep, rotation] = [0, 0];
   for (const [i, bits] of SAMPLES.entries()) {

@@ -17,10 +17,10 @@ import { Encodings } from './encodings';
 import { EnergyEstimates, type TruncationEnergy } from './energy-estimate';
 import { Floors } from './floors';
 import { FramedEncodings } from './framed-encodings';
+import { LowStateShifts } from './low-state-shifts';
 import type { MixingStates } from './mixing-states';
 import { recommend } from './recommendation';
 import type { ComparisonRequest, ComparisonRun, VariantOutcome } from './request';
-import { SpinCouplings } from './spin-couplings';
 import { hamiltonianOf, occupationsOf } from './system';
 import { termSummaries } from './term-summaries';
 
@@ -75,7 +75,7 @@ export async function runComparison(
   );
   const floors = new Floors(hamiltonian, MAX_DETERMINANTS);
   const energies = new EnergyEstimates(hamiltonian, occupations);
-  const spinCouplings = new SpinCouplings(occupations);
+  const lowStateShifts = new LowStateShifts(occupations);
 
   const variants = request.variants ?? defaultVariants(set);
   const outcomes: VariantOutcome[] = [];
@@ -93,10 +93,10 @@ export async function runComparison(
           const factorisation = await encodings.factorisationOf(variant, named);
           const frame = await encodings.frameOf(variant, named);
           const energy = await energies.of(encoding, factorisation, named, frame);
-          const couplings = await couplingsOf(energy, spinCouplings, named);
+          const shift = await shiftOf(energy, lowStateShifts, named);
           const estimate = await estimateOf(
             encoding,
-            { energy, couplings },
+            { energy, shift },
             variant,
             terms,
             request,
@@ -106,7 +106,7 @@ export async function runComparison(
           );
           const remarks = [
             ...(typeof energy === 'string' ? [`no estimate of the energy error: ${energy}`] : []),
-            ...remarkOn(couplings, toleranceOf(target)),
+            ...remarkOn(shift, toleranceOf(target)),
           ];
           return { estimate, notes: [...(encoding.notes ?? []), ...remarks] };
         });
@@ -171,27 +171,27 @@ function labelled(context: JobContext, label: string): JobContext {
 }
 
 /** 0 where nothing was dropped. */
-async function couplingsOf(
+async function shiftOf(
   energy: TruncationEnergy | string | null,
-  couplings: SpinCouplings,
+  shifts: LowStateShifts,
   context: JobContext,
 ): Promise<number | null> {
   if (energy === null) return 0;
-  return typeof energy === 'string' ? null : couplings.of(energy, context);
+  return typeof energy === 'string' ? null : shifts.of(energy, context);
 }
 
 /** Spin-dependent parts are light: a threshold in terms of λ may drop what the question is about. */
-function remarkOn(couplings: number | null, tolerance: number): string[] {
-  if (couplings === null || couplings <= tolerance) return [];
-  const [found, allowed] = [couplings, tolerance].map((x) => formatSignificant(fromHartree(x, 'cm-1'), 2));
+function remarkOn(shift: number | null, tolerance: number): string[] {
+  if (shift === null || shift <= tolerance) return [];
+  const [found, allowed] = [shift, tolerance].map((x) => formatSignificant(fromHartree(x, 'cm-1'), 2));
   return [
-    `truncation changes spin-dependent couplings of low states by ${found} cm⁻¹, more than the budget's ${allowed} cm⁻¹: lower the threshold or take a mixed encoding`,
+    `truncation moves low levels against each other, or their couplings, by ${found} cm⁻¹, more than the budget's ${allowed} cm⁻¹ (to first order): a lower threshold mends that`,
   ];
 }
 
 async function estimateOf(
   encoding: Encoding,
-  { energy, couplings }: { energy: TruncationEnergy | string | null; couplings: number | null },
+  { energy, shift }: { energy: TruncationEnergy | string | null; shift: number | null },
   variant: VariantName,
   terms: readonly SelectableTerm[],
   request: ComparisonRequest,
@@ -218,7 +218,7 @@ async function estimateOf(
       frobenius: residual.frobenius,
       oneNormBound: residual.oneNormBound,
       energyEstimate: figureOf(energy),
-      spinCouplings: couplings,
+      lowStates: shift,
     },
     bits: cost.bits,
     step: cost.step,

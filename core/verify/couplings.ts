@@ -12,12 +12,17 @@ export interface WatchedStates {
   /** Their levels, hartree. */
   readonly levels: Float64Array;
   /**
-   * Spectral norm of P(a − b)P, P the projector on these states: no level, splitting or matrix element among them
-   * changes by more to first order. Hartree.
+   * P(a − b)P, P the projector on these states: to first order no level or matrix element among them changes by more than
+   * its spectral norm, and none by more than `centred` against a shift that all share. Hartree.
    *
    * @param parts - matrices in the same space of two Hamiltonians that differ as the given and a changed one do
    */
-  readonly change: (a: ComplexMatrix, b: ComplexMatrix) => number;
+  readonly change: (a: ComplexMatrix, b: ComplexMatrix) => StateChange;
+}
+
+export interface StateChange {
+  readonly norm: number;
+  readonly centred: number;
 }
 
 /** States nearer than this belong together, hartree: a hundredth of a wave number. */
@@ -56,7 +61,8 @@ export function watchedStates(matrix: ComplexMatrix, states: number): WatchedSta
       }
     }
     const spectrum = hermitianEigenvalues(projected);
-    return Math.max(Math.abs(spectrum[0]!), Math.abs(spectrum[kept - 1]!));
+    const [low, high] = [spectrum[0]!, spectrum[kept - 1]!];
+    return { norm: Math.max(Math.abs(low), Math.abs(high)), centred: (high - low) / 2 };
   };
   return { levels: values.slice(0, kept), change };
 }

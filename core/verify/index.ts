@@ -1,5 +1,5 @@
 export { type OpenBlock, type SteeredBlock, simulatedBlock } from './block-encoding';
-export { denseSector, type WatchedStates, watchedStates } from './couplings';
+export { denseSector, type StateChange, type WatchedStates, watchedStates } from './couplings';
 export {
   type DeterminantEnergies,
   determinantEnergies,

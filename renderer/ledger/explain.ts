@@ -99,9 +99,9 @@ const EXPLAIN: Readonly<Record<RowId, Explain>> = {
           : `A bound; the estimate of the shift is ${figures.energyUnderHead(e.residual.energyEstimate, view.target)} ${figures.UNIT_WORDS[view.target.unit]}. `,
       ),
       words(
-        e.residual.spinCouplings === null
+        e.residual.lowStates === null
           ? ''
-          : `Spin-dependent couplings of low states change by ${figures.energyUnderHead(e.residual.spinCouplings, view.target)} ${figures.UNIT_WORDS[view.target.unit]}. `,
+          : `Low levels move against each other, or their couplings, by ${figures.energyUnderHead(e.residual.lowStates, view.target)} ${figures.UNIT_WORDS[view.target.unit]}. `,
       ),
       source('Triangle inequality over the dropped unitaries.'),
     ],

@@ -52,7 +52,7 @@ describe('the JSON document of a comparison', () => {
       '.variants[].spectralFloor',
       ...['value', 'kind', 'sector', 'low', 'high'].map((key) => `.variants[].spectralFloor.${key}`),
       ...['constant', 'factors', 'rows', 'residual'].map((key) => `.variants[].${key}`),
-      ...['frobenius', 'oneNormBound', 'energyEstimate', 'spinCouplings'].map(
+      ...['frobenius', 'oneNormBound', 'energyEstimate', 'lowStates'].map(
         (key) => `.variants[].residual.${key}`,
       ),
       '.variants[].bits',

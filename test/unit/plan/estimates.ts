@@ -34,7 +34,7 @@ export function estimate(name: string, change: Partial<VariantEstimate> = {}): V
     constant: -100,
     factors: 50,
     rows: 1234,
-    residual: { frobenius: 0, oneNormBound: 0, energyEstimate: null, spinCouplings: null },
+    residual: { frobenius: 0, oneNormBound: 0, energyEstimate: null, lowStates: null },
     bits: { keep: 12, rotation: 16 },
     step: { toffoli, t: 64, parts },
     logicalQubits: 900,

@@ -39,7 +39,7 @@ export function estimate(name: string, change: Partial<VariantEstimate> = {}): V
     constant: -100,
     factors: 148,
     rows: 7210,
-    residual: { frobenius: 1e-6, oneNormBound: 1.9e-6, energyEstimate: null, spinCouplings: null },
+    residual: { frobenius: 1e-6, oneNormBound: 1.9e-6, energyEstimate: null, lowStates: null },
     bits: { keep: 19, rotation: 18 },
     step: { toffoli, t: swap ? 176 : 352, parts },
     logicalQubits: 1872,

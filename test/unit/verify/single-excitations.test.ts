@@ -60,8 +60,22 @@ describe('watched states', () => {
     coupled.re[0] = 100;
     coupled.re[1 * 5 + 3] = 7;
     coupled.re[3 * 5 + 1] = 7;
-    expect(states.change(coupled, zero)).toBeCloseTo(0.25, 12);
-    expect(states.change(zero, coupled)).toBeCloseTo(0.25, 12);
+    for (const [a, b] of [
+      [coupled, zero],
+      [zero, coupled],
+    ] as const) {
+      const { norm, centred } = states.change(a, b);
+      expect(norm).toBeCloseTo(0.25, 12);
+      // Eigenvalues ±0.25 in the space of the two.
+      expect(centred).toBeCloseTo(0.25, 12);
+    }
+  });
+
+  it('tells a shift that all share from the rest', () => {
+    const states = watchedStates(diagonal([3, -1, 0, 1, 2]), 2);
+    const { norm, centred } = states.change(diagonal([9, 0.3, 0.5, 9, 9]), zero);
+    expect(norm).toBeCloseTo(0.5, 12);
+    expect(centred).toBeCloseTo(0.1, 12);
   });
 
   it('adds the partners of the last state', () => {

@@ -1,4 +1,4 @@
-import { fromProductForm, type SpatialHamiltonian, type SpinHamiltonian } from '../hamiltonian';
+import type { SpinHamiltonian } from '../hamiltonian';
 import type { JobContext } from '../job';
 import type { TruncationEnergy } from './energy-estimate';
 import { type LowStates, lowStates } from './low-states';
@@ -7,11 +7,10 @@ import { type LowStates, lowStates } from './low-states';
 const MOST_ORBITALS = 32;
 
 /**
- * What truncation of the spin-dependent parts means: how much it changes levels and couplings of low states near the
- * Fermi level, to first order (low-states.ts). The energy of a closed shell hardly knows these parts: its estimate says
- * nothing of them.
+ * What truncation does to low levels near the Fermi level, beside a shift that all share, and to the couplings between
+ * them, to first order (low-states.ts). The energy of a closed shell hardly knows spin–orbit coupling: its estimate says nothing of that.
  */
-export class SpinCouplings {
+export class LowStateShifts {
   readonly #occupations: readonly number[] | null;
   readonly #states = new Map<SpinHamiltonian, Promise<LowStates>>();
   readonly #known = new Map<SpinHamiltonian, Promise<number>>();
@@ -27,7 +26,6 @@ export class SpinCouplings {
   async of({ whole, kept }: TruncationEnergy, context: JobContext): Promise<number | null> {
     if (whole.kind !== 'spatial' || kept.kind !== 'spatial' || !this.#occupations) return null;
     if (whole.orbitals > MOST_ORBITALS) return null;
-    if (!whole.g.spinOrbit && !whole.g.spinSpin) return 0;
     let states = this.#states.get(whole);
     if (!states) {
       states = lowStates(whole, this.#occupations, context);
@@ -35,19 +33,9 @@ export class SpinCouplings {
     }
     let found = this.#known.get(kept);
     if (!found) {
-      found = (await states).change(spinDependentPart(whole), spinDependentPart(kept));
+      found = (await states).change(whole, kept).then(({ centred }) => centred);
       this.#known.set(kept, found);
     }
     return found;
   }
-}
-
-function spinDependentPart({ k, g, orbitals, electrons, terms }: SpatialHamiltonian): SpatialHamiltonian {
-  const planes = Float64Array.from(k.planes);
-  planes.fill(0, 0, orbitals * orbitals);
-  return fromProductForm({
-    ...{ orbitals, electrons, terms, constant: 0 },
-    k: { ...k, planes },
-    g: { ...g, charge: null },
-  });
 }
