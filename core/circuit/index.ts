@@ -56,18 +56,12 @@ export {
   spinorWires,
   withSpinorItem,
 } from './spinor/walk';
+export { type PrepareWires, prepareWires, type SquaresBlocks } from './squares/form';
 export type { ItemFacts } from './squares/item-data';
+export { outerBorrows, outerPrepare, outerScratch } from './squares/outer';
 export { roundedVector } from './squares/rounded-vector';
 export type { StepBits } from './squares/step';
 export { drawing, type WeightTables } from './squares/tables';
-export {
-  outerBorrows,
-  outerPrepare,
-  outerScratch,
-  type PrepareWires,
-  prepareWires,
-  type SquaresBlocks,
-} from './squares/walk';
 export { chooseBlocks } from './triplet/blocks';
 export type { SpinTreatment } from './triplet/product';
 export { tripletRecipe } from './triplet/recipe';

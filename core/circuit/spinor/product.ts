@@ -13,7 +13,7 @@ import {
 import { givens, givensChain, modePhase, tiltLayer } from '../primitives/givens';
 import { type Blocks, contentAfterSwaps, erase, lookUp, type Table } from '../primitives/look-up';
 import { type Rotate, swapLayer } from '../primitives/majorana';
-import type { ProductUse } from '../squares/walk';
+import type { ProductUse } from '../squares/form';
 import { type AngleGroup, groupAngles, groupBits, type ItemFlag, type SpinorLayout } from './layout';
 import { groupBit, rowBit, type SpinorTables } from './tables';
 

@@ -7,11 +7,9 @@ import {
   type SquaresForm,
   type SquaresWires,
   squaresAncillas,
-  squaresBlockEncoding,
-  squaresWalkStep,
   squaresWires,
-  steeredItem,
-} from '../squares/walk';
+} from '../squares/form';
+import { squaresBlockEncoding, squaresWalkStep, steeredItem } from '../squares/walk';
 import type { ItemFlag } from './layout';
 import { type ProductBlocks, product } from './product';
 import type { SpinorTables } from './tables';

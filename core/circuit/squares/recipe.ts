@@ -3,6 +3,7 @@ import { type Blocks, erasureWires } from '../primitives/look-up';
 import { outputWires, readWires } from '../primitives/reading';
 import { reflectionToffoli } from '../primitives/reflection';
 import type { Subroutine } from '../recipe';
+import type { SquaresBlocks } from './form';
 import { itemDataWidth, sharedWires } from './item-data';
 import type { SquaresLayout } from './layout';
 import {
@@ -19,7 +20,6 @@ import {
   type TableSizes,
 } from './leaves';
 import type { KeepBits } from './tables';
-import type { SquaresBlocks } from './walk';
 
 /** What a form of encoding adds to the recipe of its squares. */
 export interface FormRecipe {

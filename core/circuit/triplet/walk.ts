@@ -2,18 +2,16 @@ import type { Machine } from '../gates/machine';
 import { gate, type Operation, sequence } from '../gates/operation';
 import type { Rotate } from '../primitives/majorana';
 import { gradientWires, rotateByGradient, rotateExactly } from '../primitives/phase-gradient';
-import type { ItemFacts } from '../squares/item-data';
 import {
   idleWires,
   type SquaresBlocks,
   type SquaresForm,
   type SquaresWires,
   squaresAncillas,
-  squaresBlockEncoding,
-  squaresWalkStep,
   squaresWires,
-  steeredItem,
-} from '../squares/walk';
+} from '../squares/form';
+import type { ItemFacts } from '../squares/item-data';
+import { squaresBlockEncoding, squaresWalkStep, steeredItem } from '../squares/walk';
 import { type ProductBlocks, product, type SpinTreatment } from './product';
 import type { TripletTables } from './tables';
 

@@ -1,7 +1,8 @@
 import { expect, it } from 'vitest';
 import type { Machine } from '../../../core/circuit/gates/machine';
 import { prepareGradient } from '../../../core/circuit/primitives/phase-gradient';
-import { outerPrepare, outerScratch, prepareWires } from '../../../core/circuit/squares/walk';
+import { prepareWires } from '../../../core/circuit/squares/form';
+import { outerPrepare, outerScratch } from '../../../core/circuit/squares/outer';
 import { tripletTables } from '../../../core/circuit/triplet/tables';
 import { walkStep, walkWires } from '../../../core/circuit/triplet/walk';
 import type { TripletProgram, TripletRow } from '../../../core/encode/program';
