@@ -9,6 +9,7 @@ export {
 } from './cholesky';
 export { type ClusteredBasis, clusterBasis, clusterTriples } from './cluster';
 export { antisymmetricExponential, polished } from './exponential';
+export { GradientMemory } from './gradient-memory';
 export {
   hermitianEigen,
   hermitianEigenAsync,
@@ -16,6 +17,7 @@ export {
   hermitianEigenvaluesAsync,
   hermitianEigenvaluesBatch,
 } from './hermitian';
+export type { SmoothValue } from './line-search';
 export {
   extremalEigenvalues,
   type LowestEigenpairs,
@@ -27,12 +29,7 @@ export {
 export { type MultiplyOptions, multiply, multiplyAsync, transpose } from './multiply';
 export { hermitianNuclearNorm, sumOfSizes, symmetricNuclearNorm } from './norms';
 export { householderQr, type ThinQr } from './qr';
-export {
-  minimiseSmooth,
-  type QuasiNewtonOptions,
-  type QuasiNewtonResult,
-  type SmoothValue,
-} from './quasi-newton';
+export { minimiseSmooth, type QuasiNewtonOptions, type QuasiNewtonResult } from './quasi-newton';
 export { randomSource } from './random';
 export { type SingularOptions, singularValues } from './singular';
 export {
@@ -49,3 +46,4 @@ export type {
   SingularValues,
   SymmetricEigen,
 } from './types';
+export { addScaledTo, dot } from './vectors';

@@ -94,7 +94,7 @@ describe('objective of the hypercontraction', () => {
           const [up, down] = [Float64Array.from(x), Float64Array.from(x)];
           up[i]! += step;
           down[i]! -= step;
-          const slope = (value(up).objective - value(down).objective) / (2 * step);
+          const slope = (value(up).value - value(down).value) / (2 * step);
           expect(Math.abs(slope - gradient[i]!)).toBeLessThan(1e-5 * (1 + Math.abs(slope)));
         }
       }),

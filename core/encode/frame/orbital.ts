@@ -1,7 +1,13 @@
 import { rotatedSquare, type SpatialHamiltonian } from '../../hamiltonian';
 import type { JobContext } from '../../job';
-import { antisymmetricExponential, multiply, polished, randomSource } from '../../linalg';
-import { Directions, dot, type GroupValue } from './descent';
+import {
+  antisymmetricExponential,
+  dot,
+  GradientMemory,
+  multiply,
+  polished,
+  randomSource,
+} from '../../linalg';
 import { majoranaNorm, type NormValue, type SpinFree, selfRepulsion, spinFreePart } from './majorana-norm';
 
 export interface OrbitalFrameOptions {
@@ -30,6 +36,8 @@ const SETTLED_STEPS = 5;
 /** Largest angle of one step, radians. */
 const LONGEST = 0.4;
 const MAX_BACKTRACKS = 8;
+/** Pairs of steps and gradient changes that directions are made from. */
+const PAIRS = 12;
 /** Above this, a descent takes a minute, and only the start that is rarely bad is followed. */
 const CHEAP_ORBITALS = 24;
 
@@ -92,6 +100,13 @@ export async function orbitalFrame(
   return { rotation: polished(rotation, n), norm: { before, after }, evaluations };
 }
 
+/** Value and gradient at a point of the orthogonal group; whoever asks keeps the point. */
+interface GroupValue {
+  readonly lambda: number;
+  /** Antisymmetric n×n: dλ = Σ_{p>q} gradient_pq X_pq for U → e^X U. */
+  readonly gradient: Float64Array;
+}
+
 type Objective = (turned: SpinFree) => Promise<NormValue>;
 
 /** One descent on the orthogonal group. Every point is made from the given integrals, so that rounding does not add up. */
@@ -118,15 +133,15 @@ class Descent {
     onStep: (step: number) => void,
   ): Promise<void> {
     const { n } = this.#part;
-    const directions = new Directions();
+    const memory = new GradientMemory(PAIRS);
     let value = await this.#value(this.rotation, objective, context);
     const history: number[] = [value.lambda];
     let length = LONGEST / 4;
     for (let step = 0; step < steps; step++) {
       onStep(step);
-      const moved = await this.#search(value, directions.next(value.gradient), length, objective, context);
+      const moved = await this.#search(value, memory.direction(value.gradient), length, objective, context);
       if (!moved) break;
-      directions.learn(
+      memory.learn(
         moved.step,
         moved.value.gradient.map((x, i) => x - value.gradient[i]!),
       );

@@ -33,12 +33,6 @@ export function pairWeights(weights: Float64Array): Float64Array {
   return out;
 }
 
-export function dot(a: Float64Array, b: Float64Array): number {
-  let sum = 0;
-  for (let i = 0; i < a.length; i++) sum += a[i]! * b[i]!;
-  return sum;
-}
-
 /** a_i·b_i for `rows` rows of `length` numbers. */
 export function rowDots(a: Float64Array, b: Float64Array, rows: number, length: number): Float64Array {
   const out = new Float64Array(rows);
@@ -68,11 +62,6 @@ export function scaleColumns(a: Float64Array, factors: ArrayLike<number>): Float
     for (let j = 0; j < width; j++) out[at + j] = factors[j]! * a[at + j]!;
   }
   return out;
-}
-
-/** a + scale·b, into a. */
-export function addScaledTo(a: Float64Array, b: Float64Array, scale: number): void {
-  for (let i = 0; i < a.length; i++) a[i]! += scale * b[i]!;
 }
 
 /** Element by element. */

@@ -1,7 +1,7 @@
 import type { JobContext } from '../../job';
+import { minimiseSmooth } from '../../linalg';
 import type { HypercontractionOptions, HypercontractionPoint } from './block';
 import { squaredDifference } from './least-squares';
-import { minimise } from './minimise';
 import { smoothOneNorm } from './one-norm';
 import type { FitProblem } from './problem';
 import { combine, pack, unpack } from './variables';
@@ -18,6 +18,8 @@ const FLATNESS = 0.05;
 /** Stages after the last width that may be needed to bring the residual below its target, and their length. */
 const SETTLING = 8;
 const SETTLING_STEPS = 40;
+/** How a stage descends: evaluations are dear, and no stage need settle further than the next width asks. */
+const DESCENT = { memory: 20, settled: 1e-5, search: 'backtracking', firstLength: 0.01 } as const;
 /** Steps between two looks at λ as it is without smoothing. */
 const LOOK = 20;
 
@@ -67,23 +69,23 @@ export async function fitTensor(
     if (found.reached) onBest?.(found.point, found.lambda);
   };
   const stage = async (weight: number, width: number, most: number) => {
-    const run = await minimise(
-      x,
-      async (at) => {
-        await ctx.checkpoint();
+    const run = await minimiseSmooth(
+      (at) => {
         const point = unpack(at, count, n, shifted);
         return combine(point, [
           { slope: squaredDifference(problem, point), scale: weight },
           { slope: smoothOneNorm(problem, point, { zeta: width, kappa: KAPPA_WIDTH * width }), scale: 1 },
         ]);
       },
+      x,
       {
+        ...DESCENT,
         steps: most,
-        onStep: (at, _, step) => {
+        checkpoint: () => ctx.checkpoint(),
+        onStep: (at, step) => {
           counted++;
           ctx.report('hypercontraction', Math.min(counted, steps), steps);
           if (step % LOOK === 0) consider(look(unpack(at, count, n, shifted)));
-          return true;
         },
       },
     );

@@ -1,6 +1,6 @@
-import { multiply } from '../../linalg';
+import { addScaledTo, dot, multiply } from '../../linalg';
 import { planeInto } from '../elements';
-import { addScaledTo, dot, pairRows, pairsOf, rowDots, scaleColumns, scaleRows } from './arrays';
+import { pairRows, pairsOf, rowDots, scaleColumns, scaleRows } from './arrays';
 import type { HypercontractionPoint } from './block';
 import type { FitProblem } from './problem';
 

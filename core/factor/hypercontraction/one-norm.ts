@@ -1,5 +1,5 @@
-import { multiply } from '../../linalg';
-import { addScaledTo, hadamard, rowDots, scaleColumns, scaleRows } from './arrays';
+import { addScaledTo, multiply } from '../../linalg';
+import { hadamard, rowDots, scaleColumns, scaleRows } from './arrays';
 import type { HypercontractionPoint } from './block';
 import type { Slope } from './least-squares';
 import { smoothNuclearNorm } from './nuclear';

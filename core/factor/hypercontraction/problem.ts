@@ -1,9 +1,9 @@
 import { coulombBlock, planeOf, type SpatialHamiltonian } from '../../hamiltonian';
 import { numSymmetricPairs } from '../../integrals/integral-set';
 import type { JobContext } from '../../job';
-import { symmetricEigenAsync } from '../../linalg';
+import { addScaledTo, symmetricEigenAsync } from '../../linalg';
 import { weightedTraceOfPairs } from '../elements';
-import { addScaledTo, pairWeights } from './arrays';
+import { pairWeights } from './arrays';
 import { meanField } from './mean-field';
 
 /** What is fitted: G = Σ_l σ_l v_l v_lᵀ over orthonormal symmetric pairs, and what λ depends on besides. Hartree. */

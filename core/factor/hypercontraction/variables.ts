@@ -1,6 +1,6 @@
+import type { SmoothValue } from '../../linalg';
 import type { HypercontractionPoint } from './block';
 import type { Slope } from './least-squares';
-import type { Evaluation } from './minimise';
 
 /**
  * Lengths in which the minimiser measures ζ and ξ beside the components of the vectors: about the inverse root of their
@@ -43,13 +43,13 @@ export function unpack(x: Float64Array, m: number, n: number, shifted: boolean):
 export function combine(
   { count: m, vectors, lengths }: UnpackedPoint,
   terms: readonly { readonly slope: Slope; readonly scale: number }[],
-): Evaluation {
+): SmoothValue {
   const n = vectors.length / m;
   const shifted = terms.some(({ slope }) => slope.shift !== null);
   const gradient = new Float64Array(m * n + triangle(m) + (shifted ? triangle(n) : 0));
-  let objective = 0;
+  let value = 0;
   for (const { slope, scale } of terms) {
-    objective += scale * slope.value;
+    value += scale * slope.value;
     for (let i = 0; i < m; i++) {
       const from = i * n;
       let along = 0;
@@ -60,7 +60,7 @@ export function combine(
     packSymmetric(gradient, m * n, slope.zeta, m, scale * ZETA_SCALE);
     if (slope.shift) packSymmetric(gradient, m * n + triangle(m), slope.shift, n, scale * SHIFT_SCALE);
   }
-  return { objective, gradient };
+  return { value, gradient };
 }
 
 const triangle = (n: number): number => (n * (n + 1)) / 2;

@@ -1,4 +1,5 @@
 import type { JobContext } from '../../job';
+import { dot, GradientMemory } from '../../linalg';
 
 /** λ of a point, smoothed and exact, and how it changes along the directions in which the point can move. */
 export interface MixingValue {
@@ -40,8 +41,7 @@ const MEMORY = 8;
 const FIRST = 0.3;
 
 /**
- * Descent by limited-memory BFGS on a matrix group (J. Nocedal and S. J. Wright, Numerical Optimization, algorithm 7.4,
- * quoted from memory), tangent vectors of different points compared in the group's own frame, steps backtracked until
+ * Descent by limited-memory BFGS on a matrix group, see {@link GradientMemory}, tangent vectors of different points compared in the group's own frame, steps backtracked until
  * λ falls as it should. Never returns a worse point than `start`.
  *
  * @throws Cancelled when stopped; `onBest` has then seen the best so far.
@@ -77,7 +77,7 @@ export async function descend<Point>(
     let value = await evaluate(point, width);
     consider(point, value.exact, stage);
     if (stage === options.stage) await considerMedians(stage);
-    const memory = new Memory();
+    const memory = new GradientMemory(MEMORY);
     let idle = 0;
     for (let step = 0; step < steps && idle < 2; step++) {
       ctx.report(label, stage * steps + step, total);
@@ -85,11 +85,15 @@ export async function descend<Point>(
       const moved = await search(problem, point, value, memory, width, evaluate, ctx);
       if (!moved) {
         if (memory.size === 0) break;
-        memory.clear();
+        memory.forget();
         continue;
       }
       const gain = value.smooth - moved.value.smooth;
-      memory.add(moved.step, value.gradient, moved.value.gradient);
+      const before = value.gradient;
+      memory.learn(
+        moved.step,
+        moved.value.gradient.map((x, i) => x - before[i]!),
+      );
       point = moved.point;
       value = moved.value;
       consider(point, value.exact, stage);
@@ -105,74 +109,22 @@ async function search<Point>(
   problem: MixingProblem<Point>,
   point: Point,
   value: MixingValue,
-  memory: Memory,
+  memory: GradientMemory,
   width: number,
   evaluate: (at: Point, width: number) => Promise<MixingValue>,
   ctx: JobContext,
 ) {
-  const direction = memory.apply(value.gradient);
+  const direction = memory.direction(value.gradient);
   const slope = dot(direction, value.gradient);
-  if (!(slope > 0)) return null;
+  if (!(slope < 0)) return null;
   let length = memory.size > 0 ? 1 : FIRST / Math.sqrt(dot(direction, direction));
   for (let attempt = 0; attempt < MAX_BACKTRACKS; attempt++, length *= 0.35) {
     await ctx.checkpoint();
-    const moved = problem.move(point, direction, -length);
+    const moved = problem.move(point, direction, length);
     const found = await evaluate(moved, width);
-    if (found.smooth <= value.smooth - 1e-4 * length * slope) {
-      return { point: moved, value: found, step: direction.map((x) => -length * x) };
+    if (found.smooth <= value.smooth + 1e-4 * length * slope) {
+      return { point: moved, value: found, step: direction.map((x) => length * x) };
     }
   }
   return null;
-}
-
-/** The last steps and what they did to the gradient. */
-class Memory {
-  readonly #pairs: { readonly s: Float64Array; readonly y: Float64Array; readonly sy: number }[] = [];
-
-  get size(): number {
-    return this.#pairs.length;
-  }
-
-  clear(): void {
-    this.#pairs.length = 0;
-  }
-
-  add(s: Float64Array, before: Float64Array, after: Float64Array): void {
-    const y = after.map((x, i) => x - before[i]!);
-    const sy = dot(s, y);
-    // A step along which the slope did not rise says nothing about a minimum.
-    if (!(sy > 1e-10 * Math.sqrt(dot(s, s) * dot(y, y)))) return;
-    this.#pairs.push({ s, y, sy });
-    if (this.#pairs.length > MEMORY) this.#pairs.shift();
-  }
-
-  /** An approximation of the inverse Hessian times the gradient. */
-  apply(gradient: Float64Array): Float64Array {
-    const q = Float64Array.from(gradient);
-    const coefficients = new Array<number>(this.#pairs.length);
-    for (let i = this.#pairs.length - 1; i >= 0; i--) {
-      const { s, y, sy } = this.#pairs[i]!;
-      coefficients[i] = dot(s, q) / sy;
-      addScaled(q, y, -coefficients[i]!);
-    }
-    const last = this.#pairs.at(-1);
-    if (last) {
-      const scale = last.sy / dot(last.y, last.y);
-      for (let i = 0; i < q.length; i++) q[i]! *= scale;
-    }
-    this.#pairs.forEach(({ s, y, sy }, i) => {
-      addScaled(q, s, coefficients[i]! - dot(y, q) / sy);
-    });
-    return q;
-  }
-}
-
-function dot(a: Float64Array, b: Float64Array): number {
-  let sum = 0;
-  for (let i = 0; i < a.length; i++) sum += a[i]! * b[i]!;
-  return sum;
-}
-
-function addScaled(target: Float64Array, x: Float64Array, scale: number): void {
-  for (let i = 0; i < target.length; i++) target[i]! += scale * x[i]!;
 }

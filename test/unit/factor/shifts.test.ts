@@ -12,7 +12,6 @@ import {
   spinorForm,
 } from '../../../core/hamiltonian';
 import { inlineContext } from '../../../core/job';
-import { minimiseSmooth } from '../../../core/linalg';
 import { findSet, loadSet } from '../../published/data-set';
 import { randomHamiltonian, uniform } from '../hamiltonian/random-hamiltonian';
 
@@ -175,32 +174,5 @@ describe('real sets', () => {
     const found = await optimiseShifts(h, given, {}, ctx);
     expect(found.lambda).toBeLessThan(0.999 * found.medianLambda);
     expect(found.lambda - found.lowerBound).toBeLessThan(1e-4 * found.lambda);
-  });
-});
-
-describe('limited-memory quasi-Newton steps', () => {
-  it('find the minimum of a curved valley (H. H. Rosenbrock’s function, least at 1, 1)', async () => {
-    const found = await minimiseSmooth(
-      ([x, y]) => {
-        const [a, b] = [1 - x!, y! - x! * x!];
-        return { value: a * a + 100 * b * b, gradient: Float64Array.of(-2 * a - 400 * x! * b, 200 * b) };
-      },
-      Float64Array.of(-1.2, 1),
-      { settled: 0 },
-    );
-    expect(found.x[0]).toBeCloseTo(1, 6);
-    expect(found.x[1]).toBeCloseTo(1, 6);
-  });
-
-  it('come close to a kink', async () => {
-    const found = await minimiseSmooth(
-      ([x, y]) => ({
-        value: Math.abs(x! - 2) + 3 * Math.abs(y! + 1) + 0.5 * (x! + y!) ** 2,
-        gradient: Float64Array.of(Math.sign(x! - 2) + x! + y!, 3 * Math.sign(y! + 1) + x! + y!),
-      }),
-      Float64Array.of(5, 4),
-    );
-    // On the kinks x = 2, y = −1 the square pulls with 1 ≤ 1 and 1 ≤ 3: it is the minimum.
-    expect(found.value).toBeLessThan(0.5 + 1e-3);
   });
 });
