@@ -1,27 +1,42 @@
 import { multiply } from './multiply';
 
+/** Powers of the matrix that are formed: the series is summed as a polynomial in the highest of them. */
+const POWERS = 4;
+/** 1/k! up to the degree 15, whose remainder at norm ≤ ½ is below 1e-18. */
+const COEFFICIENTS = Array.from({ length: POWERS * POWERS }, (_, k) => {
+  let factorial = 1;
+  for (let i = 2; i <= k; i++) factorial *= i;
+  return 1 / factorial;
+});
+
 /**
- * exp(X) of a real antisymmetric n×n matrix, row-major: orthogonal to rounding. Power series at norm ≤ ½, squared back;
- * matrix products only.
+ * exp(scale·A) of a real n×n matrix, row-major: for antisymmetric A orthogonal to rounding.
+ *
+ * The power series is taken at norm ≤ ½ (M. S. Paterson and L. J. Stockmeyer, SIAM J. Comput. 2, 60 (1973): six products
+ * for sixteen terms) and squared back.
  */
-export function antisymmetricExponential(x: Float64Array, n: number): Float64Array {
+export function matrixExponential(a: Float64Array, n: number, scale = 1): Float64Array {
   let square = 0;
-  for (let i = 0; i < n * n; i++) square += x[i]! * x[i]!;
-  // The Frobenius norm over √2 bounds the largest |eigenvalue|, since they come in ± pairs.
-  const norm = Math.sqrt(square / 2);
-  let exponential: Float64Array = new Float64Array(n * n);
-  for (let i = 0; i < n; i++) exponential[i * n + i] = 1;
-  if (norm === 0) return exponential;
-  const squarings = Math.max(0, Math.ceil(Math.log2(2 * norm)));
-  const small = x.map((value) => value / 2 ** squarings);
-  let term: Float64Array = small;
-  for (let i = 0; i < n * n; i++) exponential[i]! += small[i]!;
-  for (let k = 2; k <= 18; k++) {
-    term = multiply(small, term, n, n, n).map((value) => value / k);
-    for (let i = 0; i < n * n; i++) exponential[i]! += term[i]!;
+  for (const x of a) square += x * x;
+  const norm = Math.abs(scale) * Math.sqrt(square);
+  const squarings = norm > 0 ? Math.max(0, Math.ceil(Math.log2(2 * norm))) : 0;
+  const powers: Float64Array[] = [a.map((x) => (x * scale) / 2 ** squarings)];
+  while (powers.length < POWERS) powers.push(multiply(powers[0]!, powers.at(-1)!, n, n, n));
+  let sum = new Float64Array(n * n);
+  for (let from = POWERS * (POWERS - 1); from >= 0; from -= POWERS) {
+    if (from < POWERS * (POWERS - 1)) {
+      sum = Float64Array.from(multiply(powers[POWERS - 1]!, sum, n, n, n));
+    }
+    for (let i = 0; i < n; i++) sum[i * n + i]! += COEFFICIENTS[from]!;
+    for (let k = 1; k < POWERS; k++) {
+      const c = COEFFICIENTS[from + k]!;
+      const power = powers[k - 1]!;
+      for (let i = 0; i < sum.length; i++) sum[i]! += c * power[i]!;
+    }
   }
-  for (let i = 0; i < squarings; i++) exponential = multiply(exponential, exponential, n, n, n);
-  return exponential;
+  let result: Float64Array = sum;
+  for (let i = 0; i < squarings; i++) result = multiply(result, result, n, n, n);
+  return result;
 }
 
 /**

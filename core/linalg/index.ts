@@ -8,7 +8,7 @@ export {
   type RowSource,
 } from './cholesky';
 export { type ClusteredBasis, clusterBasis, clusterTriples } from './cluster';
-export { antisymmetricExponential, polished } from './exponential';
+export { matrixExponential, polished } from './exponential';
 export { GradientMemory } from './gradient-memory';
 export {
   hermitianEigen,

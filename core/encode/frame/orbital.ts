@@ -1,13 +1,6 @@
 import { rotatedSquare, type SpatialHamiltonian } from '../../hamiltonian';
 import type { JobContext } from '../../job';
-import {
-  antisymmetricExponential,
-  dot,
-  GradientMemory,
-  multiply,
-  polished,
-  randomSource,
-} from '../../linalg';
+import { dot, GradientMemory, matrixExponential, multiply, polished, randomSource } from '../../linalg';
 import { majoranaNorm, type NormValue, type SpinFree, selfRepulsion, spinFreePart } from './majorana-norm';
 
 export interface OrbitalFrameOptions {
@@ -145,7 +138,7 @@ class Descent {
         moved.step,
         moved.value.gradient.map((x, i) => x - value.gradient[i]!),
       );
-      this.rotation = polished(multiply(antisymmetricExponential(moved.step, n), this.rotation, n, n, n), n);
+      this.rotation = polished(multiply(matrixExponential(moved.step, n), this.rotation, n, n, n), n);
       value = moved.value;
       // From the second step on, directions carry their length.
       length = Number.POSITIVE_INFINITY;
@@ -175,7 +168,7 @@ class Descent {
         : Math.min(longest, LONGEST) / largest;
     for (let attempt = 0; attempt < MAX_BACKTRACKS; attempt++, length *= 0.35) {
       const step = direction.map((x) => length * x);
-      const u = multiply(antisymmetricExponential(step, n), this.rotation, n, n, n);
+      const u = multiply(matrixExponential(step, n), this.rotation, n, n, n);
       const found = await this.#value(u, objective, context);
       if (found.lambda <= value.lambda + 1e-4 * length * slope) return { value: found, step };
     }
@@ -217,5 +210,5 @@ function turnedAtRandom(n: number, size: number, random: () => number): Float64A
       x[q * n + p] = -angle;
     }
   }
-  return antisymmetricExponential(x, n);
+  return matrixExponential(x, n);
 }

@@ -1,19 +1,8 @@
-import { multiply } from '../../linalg';
-
-/** Powers of the matrix that are formed: the series is summed as a polynomial in the highest of them. */
-const POWERS = 4;
-/** 1/k! up to the degree 15, whose remainder at norm ≤ ½ is below 1e-18. */
-const COEFFICIENTS = Array.from({ length: POWERS * POWERS }, (_, k) => {
-  let factorial = 1;
-  for (let i = 2; i <= k; i++) factorial *= i;
-  return 1 / factorial;
-});
+import { matrixExponential } from '../../linalg';
 
 /**
- * exp(scale·A), count×count, A without elements between members of different classes; neither has the result any.
- *
- * The power series is taken at norm ≤ ½ (M. S. Paterson and L. J. Stockmeyer, SIAM J. Comput. 2, 60 (1973): six products
- * for sixteen terms) and squared back: for antisymmetric A orthogonal to rounding.
+ * exp(scale·A), count×count, class by class: A has no elements between members of different classes, and neither has the
+ * result any.
  */
 export function exponential(
   a: Float64Array,
@@ -36,7 +25,7 @@ export function exponential(
         block[i * size + j] = a[s * count + t]!;
       });
     });
-    const found = blockExponential(block, size, scale);
+    const found = matrixExponential(block, size, scale);
     own.forEach((s, i) => {
       own.forEach((t, j) => {
         out[s * count + t] = found[i * size + j]!;
@@ -44,28 +33,4 @@ export function exponential(
     });
   }
   return out;
-}
-
-function blockExponential(a: Float64Array, size: number, scale: number): Float64Array {
-  let square = 0;
-  for (const x of a) square += x * x;
-  const norm = Math.abs(scale) * Math.sqrt(square);
-  const squarings = norm > 0 ? Math.max(0, Math.ceil(Math.log2(2 * norm))) : 0;
-  const powers: Float64Array[] = [a.map((x) => (x * scale) / 2 ** squarings)];
-  while (powers.length < POWERS) powers.push(multiply(powers[0]!, powers.at(-1)!, size, size, size));
-  let sum = new Float64Array(size * size);
-  for (let from = POWERS * (POWERS - 1); from >= 0; from -= POWERS) {
-    if (from < POWERS * (POWERS - 1)) {
-      sum = Float64Array.from(multiply(powers[POWERS - 1]!, sum, size, size, size));
-    }
-    for (let i = 0; i < size; i++) sum[i * size + i]! += COEFFICIENTS[from]!;
-    for (let k = 1; k < POWERS; k++) {
-      const c = COEFFICIENTS[from + k]!;
-      const power = powers[k - 1]!;
-      for (let i = 0; i < sum.length; i++) sum[i]! += c * power[i]!;
-    }
-  }
-  let result: Float64Array = sum;
-  for (let i = 0; i < squarings; i++) result = multiply(result, result, size, size, size);
-  return result;
 }

@@ -6,7 +6,7 @@ import { orbitalFrame } from '../../../../core/encode/frame/orbital';
 import { factorise } from '../../../../core/factor';
 import { rotateOrbitals, tensorElement } from '../../../../core/hamiltonian';
 import { Cancelled, inlineContext } from '../../../../core/job';
-import { antisymmetricExponential, multiply } from '../../../../core/linalg';
+import { matrixExponential, multiply } from '../../../../core/linalg';
 import { fockMatrix } from '../../../../core/verify';
 import { randomArray, randomHamiltonian, uniform } from '../../hamiltonian/random-hamiltonian';
 import { pauliNorm } from './pauli-norm';
@@ -45,7 +45,7 @@ describe('one-norm of the merged Majorana strings of a spin-free Hamiltonian', (
     const at = async (t: number) => {
       const turned = await rotateOrbitals(
         hamiltonian,
-        antisymmetricExponential(
+        matrixExponential(
           x.map((v) => t * v),
           n,
         ),
@@ -70,7 +70,7 @@ describe('one-norm of the merged Majorana strings of a spin-free Hamiltonian', (
         const { gradient } = await majoranaNorm(spinFreePart(hamiltonian)!, epsilon, true, ctx);
         const x = antisymmetric(n, seed + 1);
         const at = async (t: number) => {
-          const u = antisymmetricExponential(
+          const u = matrixExponential(
             x.map((value) => t * value),
             n,
           );
@@ -137,7 +137,7 @@ describe('orbital frame', () => {
       g: { ...plain.g, charge },
     };
     const least = (await majoranaNorm(spinFreePart(diagonal)!, 0, false, ctx)).lambda;
-    const u = antisymmetricExponential(antisymmetric(n, 8), n);
+    const u = matrixExponential(antisymmetric(n, 8), n);
     const turned = await rotateOrbitals(diagonal, u, ctx);
     const frame = (await orbitalFrame(turned, { steps: 200 }, ctx))!;
     expect(frame.norm.before).toBeGreaterThan(1.2 * least);
@@ -166,7 +166,7 @@ describe('turned orbitals', () => {
   it.each(['none', 'median'])('leave λ of joint triplet and spinor factors, %s shift', async (shift) => {
     const n = 3;
     const hamiltonian = randomHamiltonian(n, 41);
-    const turned = await rotateOrbitals(hamiltonian, antisymmetricExponential(antisymmetric(n, 9), n), ctx);
+    const turned = await rotateOrbitals(hamiltonian, matrixExponential(antisymmetric(n, 9), n), ctx);
     for (const form of ['triplet', 'spinor']) {
       const variant = parseVariant(`${form}/joint/index/${shift}/clean`);
       const lambda = async (h: typeof hamiltonian) =>
