@@ -11,7 +11,7 @@ export type {
   SquareFactors,
   TripleFactors,
 } from './factors';
-export { hypercontractedFactorisation } from './hypercontracted';
+export { type HypercontractedOptions, hypercontractedFactorisation } from './hypercontracted';
 export { approximateCharge, hypercontractedHamiltonian } from './hypercontraction/approximation';
 export type {
   HypercontractedFactors,

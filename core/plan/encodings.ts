@@ -10,13 +10,14 @@ import {
   type Factorisation,
   factorise,
   type Grouping,
-  hypercontractedFactorisation,
   jointRefusal,
   optimiseShifts,
 } from '../factor';
 import type { SpatialHamiltonian, SpinHamiltonian } from '../hamiltonian';
 import type { JobContext } from '../job';
+import { fittedCharge } from './fitted-charge';
 import { thinLightParts } from './light-parts';
+import { type LowStates, lowStates } from './low-states';
 import { type MixingStates, mixingOwner } from './mixing-states';
 import type { FactorCount } from './request';
 import { measuredRounding } from './rounding-scale';
@@ -47,6 +48,7 @@ export class Encodings {
   readonly #mixing: MixingChoices;
   readonly #factorisations = new Map<string, Factorisation>();
   readonly #encodings = new Map<string, Encoding>();
+  #states: LowStates | null = null;
 
   /**
    * @param threshold - sum of LCU norms that truncation may drop, hartree
@@ -190,7 +192,10 @@ export class Encodings {
         keepSpinParts: true,
         ...(this.#occupations ? { occupations: this.#occupations } : {}),
       };
-      found = await this.#thinned(h, await hypercontractedFactorisation(h, options, context), context);
+      const allowed = Math.max(this.#threshold, this.#tolerance);
+      const statesOf = () => this.#lowStates(h, context);
+      const fitted = await fittedCharge(h, options, { statesOf, allowed }, context);
+      found = await this.#thinned(h, fitted, context);
       // Of the spin-orbit triples, which the fit leaves alone.
       if (shift) ({ factorisation: found } = await optimiseShifts(h, found, {}, context));
       this.#factorisations.set(key, found);
@@ -200,8 +205,15 @@ export class Encodings {
 
   /** Spin-dependent parts thinned by what they mean for low states. */
   async #thinned(h: SpatialHamiltonian, whole: Factorisation, context: JobContext): Promise<Factorisation> {
-    const { factorisation, note } = await thinLightParts(h, whole, this.#filling(), this.#tolerance, context);
+    const watched = { statesOf: () => this.#lowStates(h, context), tolerance: this.#tolerance };
+    const { factorisation, note } = await thinLightParts(h, whole, this.#filling(), watched, context);
     return { ...factorisation, notes: [...factorisation.notes, note] };
+  }
+
+  /** Of the whole Hamiltonian. */
+  async #lowStates(h: SpatialHamiltonian, context: JobContext): Promise<LowStates> {
+    this.#states ??= await lowStates(h, this.#filling(), context);
+    return this.#states;
   }
 
   /** The number of factors that was asked for, or null. */

@@ -3,7 +3,7 @@ import { fromProductForm, type SpatialHamiltonian, zeroOperator } from '../hamil
 import type { JobContext } from '../job';
 import { formatSignificant, fromHartree } from '../units';
 import { hamiltonianOfFactors } from './energy-estimate-hamiltonian';
-import { lowStates } from './low-states';
+import type { LowStates } from './low-states';
 
 /** Sizes below this are no rows: vectors have unit norm. */
 const ROW_ZERO = 1e-9;
@@ -26,13 +26,14 @@ export interface LightPartsChoice {
  * the residual.
  *
  * @param whole - with every factor of these parts
+ * @param statesOf - of the whole of h
  * @param tolerance - hartree, ≥ 0
  */
 export async function thinLightParts(
   h: SpatialHamiltonian,
   whole: Factorisation,
   occupations: readonly number[],
-  tolerance: number,
+  { statesOf, tolerance }: { readonly statesOf: () => Promise<LowStates>; readonly tolerance: number },
   context: JobContext,
 ): Promise<LightPartsChoice> {
   const parts = await lightParts(whole, h.orbitals, occupations, context);
@@ -40,6 +41,7 @@ export async function thinLightParts(
     return { factorisation: whole, note: 'no two-electron spin-dependent part to thin' };
   }
   if (tolerance === 0) return { factorisation: whole, note: 'nothing may be dropped: no row was taken out' };
+  const states = await statesOf();
   const { orbitals, electrons, terms } = h;
   // Only what can change: the difference of two large numbers would drown it.
   const given = fromProductForm({
@@ -47,7 +49,6 @@ export async function thinLightParts(
     k: zeroOperator('even', orbitals),
     g: { ...h.g, charge: null },
   });
-  const states = await lowStates(h, occupations, context);
   const attempt = async (cut: number) => {
     context.report('choosing rows of the spin-dependent parts', 0, null);
     await context.checkpoint();

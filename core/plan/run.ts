@@ -106,7 +106,7 @@ export async function runComparison(
           );
           const remarks = [
             ...(typeof energy === 'string' ? [`no estimate of the energy error: ${energy}`] : []),
-            ...remarkOn(shift, toleranceOf(target)),
+            ...remarkOn(variant, shift, toleranceOf(target)),
           ];
           return { estimate, notes: [...(encoding.notes ?? []), ...remarks] };
         });
@@ -181,11 +181,12 @@ async function shiftOf(
 }
 
 /** Spin-dependent parts are light: a threshold in terms of λ may drop what the question is about. */
-function remarkOn(shift: number | null, tolerance: number): string[] {
+function remarkOn(variant: VariantName, shift: number | null, tolerance: number): string[] {
   if (shift === null || shift <= tolerance) return [];
   const [found, allowed] = [shift, tolerance].map((x) => formatSignificant(fromHartree(x, 'cm-1'), 2));
+  const fitted = variant.factorisation === 'hypercontracted';
   return [
-    `truncation moves low levels against each other, or their couplings, by ${found} cm⁻¹, more than the budget's ${allowed} cm⁻¹ (to first order): a lower threshold mends that`,
+    `${fitted ? 'the fit of the charge part' : 'truncation'} moves low levels against each other, or their couplings, by ${found} cm⁻¹ to first order, ${fitted ? 'where the budget has' : 'and a lower threshold mends that: the budget has'} ${allowed} cm⁻¹`,
   ];
 }
 
