@@ -1,8 +1,8 @@
-import { addScaledTo, multiply } from '../../linalg';
+import { addScaledTo, multiply, symmetricEigen } from '../../linalg';
+import { normsAbout, smooth, smoothMedian } from '../smooth-norms';
 import { hadamard, rowDots, scaleColumns, scaleRows } from './arrays';
 import type { HypercontractionPoint } from './block';
 import type { Slope } from './least-squares';
-import { smoothNuclearNorm } from './nuclear';
 import type { FitProblem } from './problem';
 
 /** Widths δ at which sizes are rounded off, √(x² + δ²) − δ, hartree: of ζ, and of the eigenvalues of κ⁰. */
@@ -45,8 +45,12 @@ export function smoothOneNorm(
         kappa[p * n + q]! += (excess + 0.5 * (holes[p]! + holes[q]!)) * shift[p * n + q]!;
     }
   }
-  const { norm, direction } = smoothNuclearNorm(kappa, n, widths.kappa, shift !== null);
-  let lambda = norm;
+  const eigen = symmetricEigen(kappa, n);
+  // Where the sum is least it has no slope: the derivative needs no further term.
+  const centre = shift ? smoothMedian(eigen.values, widths.kappa) : 0;
+  const { direction } = normsAbout(eigen, n, [centre], [1], widths.kappa);
+  let lambda = 0;
+  for (const value of eigen.values) lambda += smooth(value - centre, widths.kappa).s - widths.kappa;
 
   const turned = multiply(u, direction, m, n, n);
   const x = multiply(turned, u, m, n, m, { transposeB: true });
@@ -56,12 +60,10 @@ export function smoothOneNorm(
   for (let i = 0, at = 0; i < m; i++) {
     for (let j = 0; j < m; j++, at++) {
       const value = zeta[at]!;
-      const size = Math.sqrt(value * value + delta * delta);
+      const { s, f } = smooth(value, delta);
       const share = i === j ? 0.25 : 0.5;
-      lambda += share * (size - delta);
-      dz[at] =
-        share * (size > 0 ? value / size : 0) +
-        0.5 * (theta[i]! * free[j]! + theta[j]! * free[i]! - x[at]! * o[at]!);
+      lambda += share * (s - delta);
+      dz[at] = share * f + 0.5 * (theta[i]! * free[j]! + theta[j]! * free[i]! - x[at]! * o[at]!);
     }
   }
   const du = scaleRows(turned, y, n);

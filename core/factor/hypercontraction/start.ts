@@ -2,9 +2,9 @@ import { numSymmetricPairs } from '../../integrals/integral-set';
 import type { JobContext } from '../../job';
 import { multiply, pivotedCholeskyAsync, symmetricEigen } from '../../linalg';
 import { planeInto } from '../elements';
+import { smoothMedian } from '../smooth-norms';
 import { pairRows, pairsOf, pairWeights, scaleColumns } from './arrays';
 import type { HypercontractionPoint } from './block';
-import { smoothMedian } from './nuclear';
 import type { FitProblem } from './problem';
 
 /** Candidates among which the starting vectors are chosen, for each vector asked for. */

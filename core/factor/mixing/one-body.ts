@@ -1,6 +1,6 @@
 import { symmetricEigenvalues } from '../../linalg';
 import { type PlaneSlot, planeInto } from '../elements';
-import { addPairs, antisymmetricNorm, shiftedNorms, smoothMedian } from './norms';
+import { addPairs, antisymmetricNorm, shiftedNorms, smoothMedian } from '../smooth-norms';
 
 /** A plane of κ that the shifts of factors act on. */
 export interface ShiftedPlane {

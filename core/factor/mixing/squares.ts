@@ -1,9 +1,9 @@
 import type { JobContext, Task } from '../../job';
 import { multiply, symmetricEigenvalues } from '../../linalg';
 import { type PlaneSlot, planeInto, type SectorLayout } from '../elements';
+import { addPairs, antisymmetricNorm, shiftedNorms, smoothMedian } from '../smooth-norms';
 import type { MixingProblem, MixingValue } from './descent';
 import { exponential } from './exponential';
-import { addPairs, antisymmetricNorm, shiftedNorms, smoothMedian } from './norms';
 import { oneBodyNorm, type ShiftedPlane } from './one-body';
 
 /** Factors as raw columns, Σ σ v vᵀ = G, and a shift of the charge plane for each, in √hartree. */

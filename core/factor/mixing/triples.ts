@@ -2,9 +2,9 @@ import { numAntisymmetricPairs, numSymmetricPairs } from '../../integrals/integr
 import type { JobContext, Task } from '../../job';
 import { multiply, symmetricEigenvalues } from '../../linalg';
 import { planeInto } from '../elements';
+import { addPairs, antisymmetricNorm, shiftedNorms, smoothMedian } from '../smooth-norms';
 import type { MixingProblem, MixingValue } from './descent';
 import { exponential } from './exponential';
-import { addPairs, antisymmetricNorm, shiftedNorms, smoothMedian } from './norms';
 import { oneBodyNorm } from './one-body';
 
 /** Triples of one Cartesian component, w = Σ a ⊗ S, in √hartree each, and a shift of each S. */

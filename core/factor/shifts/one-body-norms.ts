@@ -1,7 +1,7 @@
 import { MUS, type TripletOperator, toSpinOrbitals } from '../../hamiltonian';
 import { type ComplexMatrix, hermitianEigen, multiply, symmetricEigenvalues } from '../../linalg';
 import { planeInto } from '../elements';
-import { addPairs, antisymmetricNorm, shiftedNorms, smoothMedian } from '../mixing/norms';
+import { addPairs, antisymmetricNorm, shiftedNorms, smoothMedian } from '../smooth-norms';
 import { hermitianInto } from '../spinor-elements';
 
 /** One plane of κ, in coordinates over the orthonormal Hermitian elements. Hartree. */

@@ -8,8 +8,8 @@ import { numAntisymmetricPairs, numSymmetricPairs } from '../../integrals/integr
 import type { JobContext } from '../../job';
 import { sectorLayout, traceOfPairs } from '../elements';
 import type { Factorisation, SpinorFactors, SquareFactors, TripleFactors } from '../factors';
-import { addPairs } from '../mixing/norms';
 import { tripleOneNorms } from '../one-norms';
+import { addPairs } from '../smooth-norms';
 import { modeSpectra } from './mode-spectra';
 import { addHermitianPairs, type KappaPlane } from './one-body-norms';
 

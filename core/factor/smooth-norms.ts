@@ -1,4 +1,4 @@
-import { antisymmetricPairs, multiply, symmetricEigen } from '../../linalg';
+import { antisymmetricPairs, multiply, type SymmetricEigen, symmetricEigen } from '../linalg';
 
 /** A nuclear norm, smoothed by √(x² + δ²), with what its derivatives are made of. */
 export interface SmoothNorm {
@@ -11,7 +11,7 @@ export interface SmoothNorm {
 }
 
 /** √(x² + δ²) and its derivative. */
-function smooth(x: number, delta: number): { readonly s: number; readonly f: number } {
+export function smooth(x: number, delta: number): { readonly s: number; readonly f: number } {
   const s = Math.sqrt(x * x + delta * delta);
   return { s, f: s > 0 ? x / s : 0 };
 }
@@ -33,7 +33,17 @@ export function shiftedNorms(
   weights: readonly number[],
   delta: number,
 ): ShiftedNorms {
-  const { values, vectors } = symmetricEigen(plane, n);
+  return normsAbout(symmetricEigen(plane, n), n, shifts, weights, delta);
+}
+
+/** The same of a plane whose eigenvectors are the rows of `vectors`. */
+export function normsAbout(
+  { values, vectors }: SymmetricEigen,
+  n: number,
+  shifts: readonly number[],
+  weights: readonly number[],
+  delta: number,
+): ShiftedNorms {
   const norms = shifts.map(() => 0);
   const exacts = shifts.map(() => 0);
   const slopes = shifts.map(() => 0);
