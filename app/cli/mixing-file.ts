@@ -1,4 +1,5 @@
-import { existsSync, readFileSync } from 'node:fs';
+import { accessSync, constants, existsSync, readFileSync } from 'node:fs';
+import { dirname } from 'node:path';
 import { InputError } from '../../core/job';
 import { type MixingOwner, type MixingRun, MixingStates } from '../../core/plan';
 import { writeWhole } from './output';
@@ -19,9 +20,10 @@ export class MixingFile {
   #changed = false;
   #written = performance.now();
 
-  /** @throws InputError `bad-mixing-state` where the file is none of these, `cannot-read` */
+  /** @throws InputError `bad-mixing-state` where the file is none of these, `cannot-read`, `cannot-write` */
   constructor(path: string) {
     this.#path = path;
+    refuseNoFolder(path);
     this.states = new MixingStates(readRuns(path), path, () => {
       this.#changed = true;
       if (performance.now() - this.#written > WRITE_MS) this.flush();
@@ -34,6 +36,21 @@ export class MixingFile {
     writeWhole(this.#path, textOf(this.states.runs()));
     this.#changed = false;
     this.#written = performance.now();
+  }
+}
+
+/** Not only when there is something to lose. */
+function refuseNoFolder(path: string): void {
+  try {
+    accessSync(dirname(path), constants.W_OK);
+  } catch (error) {
+    throw new InputError({
+      code: 'cannot-write',
+      where: path,
+      found: `its folder cannot be written to (${(error as NodeJS.ErrnoException).code ?? 'unknown reason'})`,
+      expected: 'an existing folder with permission to write',
+      mend: 'Make the folder, or name another file.',
+    });
   }
 }
 

@@ -97,7 +97,9 @@ export class Encodings {
 
   /** With what rounding does to it, so that bits follow from that. */
   async #measured(encoding: Encoding, context: JobContext): Promise<Encoding> {
-    if (this.#hamiltonian.kind !== 'spatial' || !encoding.program) return encoding;
+    // Without any weight there are no tables to round.
+    if (this.#hamiltonian.kind !== 'spatial' || !encoding.program || encoding.lambda.total === 0)
+      return encoding;
     const rounding = await measuredRounding(this.#hamiltonian, encoding, this.#filling(), context);
     return { ...encoding, shape: { ...encoding.shape, measuredRounding: rounding } };
   }

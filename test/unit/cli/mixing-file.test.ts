@@ -69,6 +69,14 @@ describe('a file of mixing runs', () => {
     expect(found).toContain(word);
   });
 
+  it('is refused at once where its folder is missing', () => {
+    const found = problem(() => new MixingFile(join(folder, 'missing', 'mixing.json')));
+    expect(found).toMatchObject({
+      code: 'cannot-write',
+      expected: expect.stringContaining('existing folder'),
+    });
+  });
+
   it('takes a second run once the first is known', () => {
     write();
     const file = new MixingFile(path);

@@ -58,3 +58,31 @@ describe('what truncation does to low states', () => {
     expect(coarse!.warns).toBe(true);
   });
 });
+
+describe('a single orbital', () => {
+  it('has no weight left after its shift, in every form', async () => {
+    const inputs = await openInputs({ files: ['test/fixtures/sets/oh_sto3g'], recipe: null }, ctx);
+    const set = await loadInputs(inputs, 'all', 'throw', ctx);
+    const forms = ['triplet', 'compressed', 'mixed', 'hypercontracted'];
+    const { outcomes } = await runComparison(
+      set,
+      {
+        terms: ['sf', 'so1', 'somf', 'so2'],
+        electrons: null,
+        occupations: null,
+        window: { orbitals: [2], electrons: null },
+        target: { value: 5, unit: 'cm-1', meaning: 'level' },
+        threshold: 0,
+        bits: 'auto',
+        overlaps: [1],
+        qubitsMax: null,
+        variants: expandVariants(forms.map((form) => `${form}/separate/index/optimised/clean`).join(',')),
+      },
+      ctx,
+    );
+    expect(outcomes.map(({ status }) => status)).toEqual(forms.map(() => 'done'));
+    for (const outcome of outcomes) {
+      if (outcome.status === 'done') expect(outcome.estimate.lambda.total).toBeLessThan(1e-12);
+    }
+  });
+});
