@@ -1,6 +1,7 @@
 import { MUS, planeOf, type SpatialHamiltonian } from '../hamiltonian';
 import { numAntisymmetricPairs, numSymmetricPairs } from '../integrals/integral-set';
 import type { JobContext } from '../job';
+import { concatenated } from '../linalg';
 import { ZERO_WEIGHT } from './eigenvectors';
 import { planeInto, sectorLayout, traceOfPairs } from './elements';
 import type { FactorBlock, Factorisation, SquareFactors, TripleFactors } from './factors';
@@ -157,9 +158,9 @@ async function triplesOf(
   const { n } = block;
   const [nanti, npair] = [numAntisymmetricPairs(n), numSymmetricPairs(n)];
   const count = found.reduce((sum, { point }) => sum + point.count, 0);
-  const a = normalised(joined(found.map(({ point }) => point.antisymmetric)), count, nanti);
-  const s = normalised(joined(found.map(({ point }) => point.symmetric)), count, npair);
-  const shifts = joined(found.map(({ point }) => point.shifts)).map((c, t) =>
+  const a = normalised(concatenated(found.map(({ point }) => point.antisymmetric)), count, nanti);
+  const s = normalised(concatenated(found.map(({ point }) => point.symmetric)), count, npair);
+  const shifts = concatenated(found.map(({ point }) => point.shifts)).map((c, t) =>
     s.weights[t]! > 0 ? c / Math.sqrt(s.weights[t]!) : 0,
   );
   const strengths = a.weights.map((w, t) => Math.sqrt(w * s.weights[t]!));
@@ -183,16 +184,6 @@ async function triplesOf(
 function withoutEmpty<Block extends FactorBlock>(block: Block, sizes: Float64Array): Block {
   const kept = [...sizes.keys()].filter((t) => sizes[t]! > ZERO_WEIGHT);
   return kept.length === block.count ? block : selectFactors(block, kept);
-}
-
-function joined(parts: readonly Float64Array[]): Float64Array {
-  const out = new Float64Array(parts.reduce((sum, part) => sum + part.length, 0));
-  let at = 0;
-  for (const part of parts) {
-    out.set(part, at);
-    at += part.length;
-  }
-  return out;
 }
 
 const planeAt = (planes: Float64Array, mu: number, n: number) =>

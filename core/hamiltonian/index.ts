@@ -25,6 +25,7 @@ export {
   toSpinOrbitals,
   zeroOperator,
 } from './operators';
+export { PAULI_ENTRIES } from './pauli';
 export { rotatedSquare, rotateOrbitals, rotateSpin, squareOfTriangle, turnedSpinPlanes } from './rotate';
 export { rotatePairsTask } from './rotate-pairs';
 export { spinorForm } from './spinor-form';

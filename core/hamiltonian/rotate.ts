@@ -1,6 +1,6 @@
 import { numAntisymmetricPairs, numSymmetricPairs } from '../integrals/integral-set';
 import type { JobContext } from '../job';
-import { multiply, transpose } from '../linalg';
+import { concatenated, multiply, transpose } from '../linalg';
 import { fromStoredForm } from './forms';
 import type { SpatialHamiltonian, TwoElectronTensor } from './hamiltonian';
 import type { TripletOperator } from './operators';
@@ -173,16 +173,6 @@ async function rotatedRectangle(
   const turned = transpose(half, nanti, npair);
   const whole = await rotatePairs({ n, symmetric: false, rows: npair, values: turned, u }, context);
   return transpose(whole, npair, nanti);
-}
-
-function concatenated(parts: readonly Float64Array[]): Float64Array {
-  const out = new Float64Array(parts.reduce((sum, part) => sum + part.length, 0));
-  let at = 0;
-  for (const part of parts) {
-    out.set(part, at);
-    at += part.length;
-  }
-  return out;
 }
 
 function rotateOperator(operator: TripletOperator, u: Float64Array): TripletOperator {

@@ -46,4 +46,4 @@ export type {
   SingularValues,
   SymmetricEigen,
 } from './types';
-export { addScaledTo, dot } from './vectors';
+export { addScaledTo, concatenated, dot } from './vectors';

@@ -3,12 +3,11 @@ import { type Encoding, formatVariant, type VariantName } from '../encode';
 import type { IntegralSet } from '../integrals';
 import { InputError, type JobContext } from '../job';
 import { type CircuitCount, countWalkStep } from './circuit-count';
-import { costOf, targetOf, thresholdOf, toleranceOf } from './costing';
-import { Encodings } from './encodings';
+import { costOf, targetOf } from './costing';
 import type { FrameRecord } from './frame';
-import { FramedEncodings } from './framed-encodings';
 import type { ComparisonRequest } from './request';
-import { hamiltonianOf, occupationsOf } from './system';
+import { refuseLeftOut, requestedEncodings } from './requested-encodings';
+import { hamiltonianOf } from './system';
 import { type CircuitEstimate, type CircuitPart, walkCircuit } from './walk-circuit';
 
 /** A comparison of one variant, of which the circuit is wanted. */
@@ -44,28 +43,11 @@ interface Planned {
 }
 
 async function plan(set: IntegralSet, request: CircuitRequest, context: JobContext): Promise<Planned> {
-  const target = targetOf(request);
-  const threshold = thresholdOf(request, target);
-  const occupations = occupationsOf(set, request);
-  const encodings = new FramedEncodings(
-    hamiltonianOf(set, request),
-    (h) =>
-      new Encodings(h, threshold, occupations, toleranceOf(target), { factors: request.factors ?? 'auto' }),
-    request.frames,
-  );
-  const reason = encodings.refusal(request.variant);
-  if (reason !== null) {
-    throw new InputError({
-      code: 'left-out',
-      where: `variant "${formatVariant(request.variant)}"`,
-      found: reason,
-      expected: 'an encoding that can be made',
-      mend: 'Choose another grouping, e.g. separate.',
-    });
-  }
+  const encodings = requestedEncodings(set, hamiltonianOf(set, request), request);
+  refuseLeftOut(encodings, request.variant);
   const encoding = await encodings.of(request.variant, context);
   const frame = encodings.records().find(({ turned }) => turned) ?? null;
-  return { encoding, frame, estimate: costOf(encoding, request.variant, target, request) };
+  return { encoding, frame, estimate: costOf(encoding, request.variant, targetOf(request), request) };
 }
 
 /** Counts the walk step of a variant gate by gate: the `step` of a comparison under the same options. */

@@ -12,15 +12,14 @@ import type { IntegralSet, SelectableTerm } from '../integrals';
 import { Cancelled, InputError, type JobContext, type Problem } from '../job';
 import { formatSignificant, fromHartree, toHartree } from '../units';
 import type { VariantEstimate } from './comparison';
-import { costOf, targetOf, thresholdOf, toleranceOf } from './costing';
-import { Encodings } from './encodings';
+import { costOf, targetOf, toleranceOf } from './costing';
 import { EnergyEstimates, type TruncationEnergy } from './energy-estimate';
 import { Floors } from './floors';
-import { FramedEncodings } from './framed-encodings';
 import { LowStateShifts } from './low-state-shifts';
 import type { MixingStates } from './mixing-states';
 import { recommend } from './recommendation';
 import type { ComparisonRequest, ComparisonRun, VariantOutcome } from './request';
+import { requestedEncodings } from './requested-encodings';
 import { hamiltonianOf, occupationsOf } from './system';
 import { termSummaries } from './term-summaries';
 
@@ -65,14 +64,8 @@ export async function runComparison(
   const hartree = toHartree(request.target.value, request.target.unit);
   const target = targetOf(request);
   const terms = hamiltonian.kind === 'spatial' ? hamiltonian.terms : heldTerms(set);
-  const threshold = thresholdOf(request, target);
   const occupations = occupationsOf(set, request);
-  const mixing = { factors: request.factors ?? 'auto', states } as const;
-  const encodings = new FramedEncodings(
-    hamiltonian,
-    (h) => new Encodings(h, threshold, occupations, toleranceOf(target), mixing),
-    request.frames,
-  );
+  const encodings = requestedEncodings(set, hamiltonian, request, states);
   const floors = new Floors(hamiltonian, MAX_DETERMINANTS);
   const energies = new EnergyEstimates(hamiltonian, occupations);
   const lowStateShifts = new LowStateShifts(occupations);

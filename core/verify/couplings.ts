@@ -15,7 +15,7 @@ export interface WatchedStates {
    * P(a − b)P, P the projector on these states: to first order no level or matrix element among them changes by more than
    * its spectral norm, and none by more than `centred` against a shift that all share. Hartree.
    *
-   * @param parts - matrices in the same space of two Hamiltonians that differ as the given and a changed one do
+   * Both are matrices in the same space, of two Hamiltonians that differ as the given and a changed one do.
    */
   readonly change: (a: ComplexMatrix, b: ComplexMatrix) => StateChange;
 }

@@ -1,5 +1,11 @@
 import type { SparseProgram, TermKind } from '../encode';
-import { type Mu, type OrbitalWindow, type SpinHamiltonian, spinorFromStoredForm } from '../hamiltonian';
+import {
+  type Mu,
+  type OrbitalWindow,
+  PAULI_ENTRIES,
+  type SpinHamiltonian,
+  spinorFromStoredForm,
+} from '../hamiltonian';
 import type { JobContext } from '../job';
 
 /** Rows between two checkpoints. */
@@ -188,29 +194,9 @@ class SparseWindow {
   }
 }
 
-/** σ^μ: row spin, column spin, re, im. */
-const SIGMA: Readonly<Record<Mu, readonly (readonly [number, number, number, number])[]>> = {
-  0: [
-    [0, 0, 1, 0],
-    [1, 1, 1, 0],
-  ],
-  1: [
-    [0, 1, 1, 0],
-    [1, 0, 1, 0],
-  ],
-  2: [
-    [0, 1, 0, -1],
-    [1, 0, 0, 1],
-  ],
-  3: [
-    [0, 0, 1, 0],
-    [1, 1, -1, 0],
-  ],
-};
-
 /** ½(T_pq + T_qp) of a symmetric element, (i/2)(T_pq − T_qp) of an antisymmetric one, T = Σ (σ^μ)_στ a†_pσ a_qτ. */
 function elements(antisymmetric: boolean, mu: Mu, p: number, q: number): Element[] {
-  return SIGMA[mu].flatMap(([row, column, x, y]) =>
+  return PAULI_ENTRIES[mu]!.flatMap(({ row, column, re: x, im: y }) =>
     antisymmetric
       ? [
           { P: 2 * p + row, Q: 2 * q + column, x: -y / 2, y: x / 2 },

@@ -1,4 +1,10 @@
-import { type Mu, type SpatialHamiltonian, tensorElement, toSpinOrbitals } from '../../hamiltonian';
+import {
+  type Mu,
+  PAULI_ENTRIES,
+  type SpatialHamiltonian,
+  tensorElement,
+  toSpinOrbitals,
+} from '../../hamiltonian';
 import type { JobContext } from '../../job';
 
 /*
@@ -38,50 +44,6 @@ export interface Diagonal {
 }
 
 type Complex = readonly [re: number, im: number];
-
-/** σ^μ_στ, [re, im]. */
-const SIGMA: readonly (readonly (readonly Complex[])[])[] = [
-  [
-    [
-      [1, 0],
-      [0, 0],
-    ],
-    [
-      [0, 0],
-      [1, 0],
-    ],
-  ],
-  [
-    [
-      [0, 0],
-      [1, 0],
-    ],
-    [
-      [1, 0],
-      [0, 0],
-    ],
-  ],
-  [
-    [
-      [0, 0],
-      [0, -1],
-    ],
-    [
-      [0, 1],
-      [0, 0],
-    ],
-  ],
-  [
-    [
-      [1, 0],
-      [0, 0],
-    ],
-    [
-      [0, 0],
-      [-1, 0],
-    ],
-  ],
-];
 
 /** All strings that a shift touches, O(N³) of them. */
 export async function touchedStrings(h: SpatialHamiltonian, ctx: JobContext) {
@@ -187,13 +149,13 @@ function antisymmetrised(h: SpatialHamiltonian, p: number, q: number, r: number)
 function spinSum(g: readonly (readonly Complex[])[], a: number, b: number, c: number, d: number): Complex {
   let re = 0;
   let im = 0;
-  for (let mu = 0; mu < 4; mu++) {
-    const [x, y] = SIGMA[mu]![a]![b]!;
-    if (x === 0 && y === 0) continue;
-    for (let nu = 0; nu < 4; nu++) {
-      const [z, w] = SIGMA[nu]![c]![d]!;
-      if (z === 0 && w === 0) continue;
-      const [sr, si] = [x * z - y * w, x * w + y * z];
+  for (const [mu, first] of PAULI_ENTRIES.entries()) {
+    const left = first.find(({ row, column }) => row === a && column === b);
+    if (!left) continue;
+    for (const [nu, second] of PAULI_ENTRIES.entries()) {
+      const right = second.find(({ row, column }) => row === c && column === d);
+      if (!right) continue;
+      const [sr, si] = [left.re * right.re - left.im * right.im, left.re * right.im + left.im * right.re];
       const [gr, gi] = g[mu]![nu]!;
       re += sr * gr - si * gi;
       im += sr * gi + si * gr;

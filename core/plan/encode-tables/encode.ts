@@ -5,10 +5,9 @@ import { heldTerms, type OrbitalWindow } from '../../hamiltonian';
 import type { IntegralSet } from '../../integrals';
 import { InputError, type JobContext } from '../../job';
 import type { CircuitRequest } from '../circuit-run';
-import { costOf, targetOf, thresholdOf, toleranceOf } from '../costing';
-import { Encodings } from '../encodings';
+import { costOf, targetOf } from '../costing';
 import type { Frame } from '../frame';
-import { FramedEncodings } from '../framed-encodings';
+import { refuseLeftOut, requestedEncodings } from '../requested-encodings';
 import { hamiltonianOf, occupationsOf, type SystemRequest } from '../system';
 import { phaseBitsOf } from '../walk-circuit';
 import { whole } from './arrays';
@@ -43,28 +42,13 @@ export async function encodeTables(
   const variant = formatVariant(request.variant);
   const refuse = (code: string, found: string, expected: string, mend: string): InputError =>
     new InputError({ code, where: `variant "${variant}"`, found, expected, mend });
-  const target = targetOf(request);
   const occupations = occupationsOf(set, request);
-  const threshold = thresholdOf(request, target);
-  const encodings = new FramedEncodings(
-    hamiltonianOf(set, request),
-    (h) =>
-      new Encodings(h, threshold, occupations, toleranceOf(target), { factors: request.factors ?? 'auto' }),
-    request.frames,
-  );
-  const reason = encodings.refusal(request.variant);
-  if (reason !== null) {
-    throw refuse(
-      'left-out',
-      reason,
-      'an encoding that can be made',
-      'Choose another grouping, e.g. separate.',
-    );
-  }
+  const encodings = requestedEncodings(set, hamiltonianOf(set, request), request);
+  refuseLeftOut(encodings, request.variant);
   const encoding = await encodings.of(request.variant, context);
   const frame = await encodings.frameOf(request.variant, context);
   const hamiltonian = await encodings.hamiltonianOf(request.variant, context);
-  const estimate = costOf(encoding, request.variant, target, request);
+  const estimate = costOf(encoding, request.variant, targetOf(request), request);
   const { bits: used } = estimate;
   if (used.keep > MOST_BITS || used.rotation > MOST_BITS) {
     throw refuse(

@@ -1,0 +1,46 @@
+import { formatVariant, type VariantName } from '../encode';
+import type { SpinHamiltonian } from '../hamiltonian';
+import type { IntegralSet } from '../integrals';
+import { InputError } from '../job';
+import { targetOf, thresholdOf, toleranceOf } from './costing';
+import { Encodings } from './encodings';
+import { FramedEncodings } from './framed-encodings';
+import type { MixingStates } from './mixing-states';
+import type { ComparisonRequest } from './request';
+import { occupationsOf } from './system';
+
+/**
+ * The encodings that a request asks for, whatever its variants.
+ *
+ * @param hamiltonian - of the request
+ * @param states - where the mixing of factors is kept, so that it can be taken up again
+ */
+export function requestedEncodings(
+  set: IntegralSet,
+  hamiltonian: SpinHamiltonian,
+  request: Omit<ComparisonRequest, 'variants'>,
+  states: MixingStates | null = null,
+): FramedEncodings {
+  const target = targetOf(request);
+  const threshold = thresholdOf(request, target);
+  const occupations = occupationsOf(set, request);
+  const mixing = { factors: request.factors ?? 'auto', states } as const;
+  return new FramedEncodings(
+    hamiltonian,
+    (h) => new Encodings(h, threshold, occupations, toleranceOf(target), mixing),
+    request.frames,
+  );
+}
+
+/** @throws InputError `left-out` where the one variant that is wanted cannot be made */
+export function refuseLeftOut(encodings: FramedEncodings, variant: VariantName): void {
+  const reason = encodings.refusal(variant);
+  if (reason === null) return;
+  throw new InputError({
+    code: 'left-out',
+    where: `variant "${formatVariant(variant)}"`,
+    found: reason,
+    expected: 'an encoding that can be made',
+    mend: 'Choose another grouping, e.g. separate.',
+  });
+}
