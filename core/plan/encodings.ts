@@ -17,7 +17,7 @@ import type { SpatialHamiltonian, SpinHamiltonian } from '../hamiltonian';
 import type { JobContext } from '../job';
 import { fittedCharge } from './fitted-charge';
 import { thinLightParts } from './light-parts';
-import { type LowStates, lowStates } from './low-states';
+import { LowStatesFinder } from './low-states';
 import { type MixingStates, mixingOwner } from './mixing-states';
 import type { FactorCount } from './request';
 import { measuredRounding } from './rounding-scale';
@@ -46,9 +46,9 @@ export class Encodings {
   readonly #occupations: readonly number[] | null;
   readonly #tolerance: number;
   readonly #mixing: MixingChoices;
+  readonly #finder: LowStatesFinder;
   readonly #factorisations = new Map<string, Factorisation>();
   readonly #encodings = new Map<string, Encoding>();
-  #states: LowStates | null = null;
 
   /**
    * @param threshold - sum of LCU norms that truncation may drop, hartree
@@ -56,6 +56,7 @@ export class Encodings {
    * @param tolerance - of mixed and hypercontracted encodings: what thinning of the spin-dependent parts may change,
    *   hartree
    * @param mixing - of compressed and mixed encodings
+   * @param finder - of the low states that judge thinning, where others need them too; null: one of its own
    */
   constructor(
     hamiltonian: SpinHamiltonian,
@@ -63,12 +64,14 @@ export class Encodings {
     occupations: readonly number[] | null,
     tolerance: number,
     mixing: MixingChoices = {},
+    finder: LowStatesFinder | null = null,
   ) {
     this.#hamiltonian = hamiltonian;
     this.#threshold = threshold;
     this.#occupations = occupations;
     this.#tolerance = tolerance;
     this.#mixing = mixing;
+    this.#finder = finder ?? new LowStatesFinder(this.#filling());
   }
 
   /** Why the variant is left out though its name is sound, or null. */
@@ -195,7 +198,7 @@ export class Encodings {
         ...(this.#occupations ? { occupations: this.#occupations } : {}),
       };
       const allowed = Math.max(this.#threshold, this.#tolerance);
-      const statesOf = () => this.#lowStates(h, context);
+      const statesOf = () => this.#finder.of(h, context);
       const fitted = await fittedCharge(h, options, { statesOf, allowed }, context);
       found = await this.#thinned(h, fitted, context);
       // Of the spin-orbit triples, which the fit leaves alone.
@@ -207,15 +210,9 @@ export class Encodings {
 
   /** Spin-dependent parts thinned by what they mean for low states. */
   async #thinned(h: SpatialHamiltonian, whole: Factorisation, context: JobContext): Promise<Factorisation> {
-    const watched = { statesOf: () => this.#lowStates(h, context), tolerance: this.#tolerance };
+    const watched = { statesOf: () => this.#finder.of(h, context), tolerance: this.#tolerance };
     const { factorisation, note } = await thinLightParts(h, whole, this.#filling(), watched, context);
     return { ...factorisation, notes: [...factorisation.notes, note] };
-  }
-
-  /** Of the whole Hamiltonian. */
-  async #lowStates(h: SpatialHamiltonian, context: JobContext): Promise<LowStates> {
-    this.#states ??= await lowStates(h, this.#filling(), context);
-    return this.#states;
   }
 
   /** The number of factors that was asked for, or null. */

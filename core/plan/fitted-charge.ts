@@ -61,5 +61,5 @@ async function changeOf(
   context: JobContext,
 ): Promise<number> {
   const left = await hamiltonianOfFactors(h, factorisation, context);
-  return left ? (await states.change(h, left)).centred : 0;
+  return left ? (await states.change(h, left, context)).centred : 0;
 }

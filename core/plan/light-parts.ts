@@ -56,7 +56,10 @@ export async function thinLightParts(
     const { light, meanField } = thinned;
     const factors = { ...whole, blocks: light, foldedMeanField: meanField, foldedConstant: 0 };
     const left = await hamiltonianOfFactors(given, factors, context);
-    return { thinned, change: left ? (await states.change(given, left)).norm : Number.POSITIVE_INFINITY };
+    return {
+      thinned,
+      change: left ? (await states.change(given, left, context)).norm : Number.POSITIVE_INFINITY,
+    };
   };
   for (let cut = parts.heaviest; cut > LEAST * parts.heaviest; cut /= STEP) {
     let best = await attempt(cut);

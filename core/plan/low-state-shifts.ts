@@ -1,7 +1,7 @@
 import type { SpinHamiltonian } from '../hamiltonian';
 import type { JobContext } from '../job';
 import type { TruncationEnergy } from './energy-estimate';
-import { type LowStates, lowStates } from './low-states';
+import type { LowStatesFinder } from './low-states';
 
 /** Above this, windows of the whole tensor take seconds a variant. */
 const MOST_ORBITALS = 32;
@@ -11,29 +11,24 @@ const MOST_ORBITALS = 32;
  * them, to first order (low-states.ts). The energy of a closed shell hardly knows spin–orbit coupling: its estimate says nothing of that.
  */
 export class LowStateShifts {
-  readonly #occupations: readonly number[] | null;
-  readonly #states = new Map<SpinHamiltonian, Promise<LowStates>>();
-  readonly #known = new Map<SpinHamiltonian, Promise<number>>();
+  readonly #finder: LowStatesFinder | null;
+  readonly #known = new Map<SpinHamiltonian, number>();
 
-  /** @param occupations - reference of the states, or null: there are no estimates */
-  constructor(occupations: readonly number[] | null) {
-    this.#occupations = occupations;
+  /** @param finder - of the reference, or null: there are no estimates */
+  constructor(finder: LowStatesFinder | null) {
+    this.#finder = finder;
   }
 
   /**
    * Hartree; null where there is no estimate: complex spinors, factors without a packed form, more than 32 orbitals.
    */
   async of({ whole, kept }: TruncationEnergy, context: JobContext): Promise<number | null> {
-    if (whole.kind !== 'spatial' || kept.kind !== 'spatial' || !this.#occupations) return null;
+    if (whole.kind !== 'spatial' || kept.kind !== 'spatial' || !this.#finder) return null;
     if (whole.orbitals > MOST_ORBITALS) return null;
-    let states = this.#states.get(whole);
-    if (!states) {
-      states = lowStates(whole, this.#occupations, context);
-      this.#states.set(whole, states);
-    }
     let found = this.#known.get(kept);
-    if (!found) {
-      found = (await states).change(whole, kept).then(({ centred }) => centred);
+    if (found === undefined) {
+      const states = await this.#finder.of(whole, context);
+      ({ centred: found } = await states.change(whole, kept, context));
       this.#known.set(kept, found);
     }
     return found;

@@ -16,7 +16,7 @@ const SINGLES = 16;
 /** States that are watched in each of the two, counted with multiplicity. */
 export const STATES = { all: 12, singles: 40 } as const;
 
-/** Low states of a Hamiltonian near the Fermi level, found once; see {@link lowStates}. */
+/** Low states of a Hamiltonian near the Fermi level; see {@link LowStatesFinder}. */
 export interface LowStates {
   /** In words, for a note. */
   readonly description: string;
@@ -24,19 +24,43 @@ export interface LowStates {
    * How much the levels and couplings of these states change from one operator to another, to first order: at most, over
    * both spaces. Both operators are over all orbitals of the set.
    */
-  readonly change: (a: SpatialHamiltonian, b: SpatialHamiltonian) => Promise<StateChange>;
+  readonly change: (
+    a: SpatialHamiltonian,
+    b: SpatialHamiltonian,
+    context: JobContext,
+  ) => Promise<StateChange>;
 }
 
 interface Space {
-  readonly matrixOf: (h: SpatialHamiltonian) => Promise<ComplexMatrix>;
+  readonly matrixOf: (h: SpatialHamiltonian, context: JobContext) => Promise<ComplexMatrix>;
   readonly states: number;
+}
+
+/** Low states of the Hamiltonians of one job, found once each. */
+export class LowStatesFinder {
+  readonly #occupations: readonly number[];
+  readonly #found = new Map<SpatialHamiltonian, LowStates>();
+
+  /** @param occupations - of the reference, 0…2 each */
+  constructor(occupations: readonly number[]) {
+    this.#occupations = occupations;
+  }
+
+  async of(h: SpatialHamiltonian, context: JobContext): Promise<LowStates> {
+    let found = this.#found.get(h);
+    if (!found) {
+      found = await lowStates(h, this.#occupations, context);
+      this.#found.set(h, found);
+    }
+    return found;
+  }
 }
 
 /**
  * The lowest states among all determinants of five orbitals about the Fermi level and, where the reference is a closed
  * shell, among the single excitations of sixteen. Other orbitals are frozen with their occupations.
  */
-export async function lowStates(
+async function lowStates(
   h: SpatialHamiltonian,
   occupations: readonly number[],
   context: JobContext,
@@ -44,7 +68,7 @@ export async function lowStates(
   const order = orderAboutFermiLevel(h, occupations);
   const few = windowOf(h, order.slice(0, ALL), occupations);
   const spaces: Space[] = [
-    { matrixOf: (a) => denseSector(restrictToWindow(a, few), context), states: STATES.all },
+    { matrixOf: (a, own) => denseSector(restrictToWindow(a, few), own), states: STATES.all },
   ];
   let description = `all determinants of ${few.orbitals.length} orbitals`;
   if (occupations.every((x) => x === 0 || x === 2) && h.orbitals > ALL) {
@@ -62,15 +86,15 @@ export async function lowStates(
   for (const { matrixOf, states } of spaces) {
     context.report('low states near the Fermi level', watched.length, spaces.length);
     await context.checkpoint();
-    watched.push({ matrixOf, ...watchedStates(await matrixOf(h), states) });
+    watched.push({ matrixOf, ...watchedStates(await matrixOf(h, context), states) });
   }
   return {
     description,
-    async change(a, b) {
+    async change(a, b, own) {
       const most = { norm: 0, centred: 0 };
       for (const { matrixOf, change } of watched) {
-        await context.checkpoint();
-        const { norm, centred } = change(await matrixOf(a), await matrixOf(b));
+        await own.checkpoint();
+        const { norm, centred } = change(await matrixOf(a, own), await matrixOf(b, own));
         most.norm = Math.max(most.norm, norm);
         most.centred = Math.max(most.centred, centred);
       }

@@ -5,6 +5,7 @@ import { InputError } from '../job';
 import { targetOf, thresholdOf, toleranceOf } from './costing';
 import { Encodings } from './encodings';
 import { FramedEncodings } from './framed-encodings';
+import type { LowStatesFinder } from './low-states';
 import type { MixingStates } from './mixing-states';
 import type { ComparisonRequest } from './request';
 import { occupationsOf } from './system';
@@ -13,21 +14,22 @@ import { occupationsOf } from './system';
  * The encodings that a request asks for, whatever its variants.
  *
  * @param hamiltonian - of the request
- * @param states - where the mixing of factors is kept, so that it can be taken up again
+ * @param shared - where the mixing of factors is kept, so that it can be taken up again; what finds low states
  */
 export function requestedEncodings(
   set: IntegralSet,
   hamiltonian: SpinHamiltonian,
   request: Omit<ComparisonRequest, 'variants'>,
-  states: MixingStates | null = null,
+  shared: { readonly states?: MixingStates | null; readonly finder?: LowStatesFinder | null } = {},
 ): FramedEncodings {
   const target = targetOf(request);
   const threshold = thresholdOf(request, target);
   const occupations = occupationsOf(set, request);
+  const { states = null, finder = null } = shared;
   const mixing = { factors: request.factors ?? 'auto', states } as const;
   return new FramedEncodings(
     hamiltonian,
-    (h) => new Encodings(h, threshold, occupations, toleranceOf(target), mixing),
+    (h) => new Encodings(h, threshold, occupations, toleranceOf(target), mixing, finder),
     request.frames,
   );
 }

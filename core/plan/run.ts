@@ -16,6 +16,7 @@ import { costOf, targetOf, toleranceOf } from './costing';
 import { EnergyEstimates, type TruncationEnergy } from './energy-estimate';
 import { Floors } from './floors';
 import { LowStateShifts } from './low-state-shifts';
+import { LowStatesFinder } from './low-states';
 import type { MixingStates } from './mixing-states';
 import { recommend } from './recommendation';
 import type { ComparisonRequest, ComparisonRun, VariantOutcome } from './request';
@@ -65,10 +66,11 @@ export async function runComparison(
   const target = targetOf(request);
   const terms = hamiltonian.kind === 'spatial' ? hamiltonian.terms : heldTerms(set);
   const occupations = occupationsOf(set, request);
-  const encodings = requestedEncodings(set, hamiltonian, request, states);
+  const finder = occupations ? new LowStatesFinder(occupations) : null;
+  const encodings = requestedEncodings(set, hamiltonian, request, { states, finder });
   const floors = new Floors(hamiltonian, MAX_DETERMINANTS);
   const energies = new EnergyEstimates(hamiltonian, occupations);
-  const lowStateShifts = new LowStateShifts(occupations);
+  const lowStateShifts = new LowStateShifts(finder);
 
   const variants = request.variants ?? defaultVariants(set);
   const outcomes: VariantOutcome[] = [];
